@@ -1,0 +1,21 @@
+import type { Migration } from "kysely";
+import * as guards from "./20261201060000_guards";
+import * as people from "./20261201060100_people";
+import * as families from "./20261201060200_families";
+import * as lots from "./20261201060300_lots";
+import * as derivations from "./20261201060400_derivations";
+import * as packages from "./20261201060500_packages";
+import * as stations from "./20261201060600_stations";
+import * as ledger from "./20261201060700_ledger";
+
+/** Every migration by name, in order. A static list, so that it works the same under tsx, vitest and the built app. */
+export const migrations: Record<string, Migration> = {
+  "20261201060000_guards": guards,
+  "20261201060100_people": people,
+  "20261201060200_families": families,
+  "20261201060300_lots": lots,
+  "20261201060400_derivations": derivations,
+  "20261201060500_packages": packages,
+  "20261201060600_stations": stations,
+  "20261201060700_ledger": ledger,
+};
