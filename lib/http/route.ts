@@ -1,0 +1,103 @@
+import { v7 as uuidv7 } from "uuid";
+import type { z } from "zod";
+import { getDb } from "@/db/client";
+import { resolveActor } from "@/lib/auth/resolve-actor";
+import { env } from "@/lib/env";
+import { AppError } from "@/lib/errors";
+import { log } from "@/lib/log";
+import { assertRole, type Actor, type Ctx } from "@/lib/services/context";
+import { type AnyCommand, type CommandInput, isUpload } from "./command";
+import { withIdempotency } from "./idempotency";
+import { problemResponse, toAppError } from "./problem";
+import { JSON_MAX_BYTES, parseJson, readBytes } from "./read-body";
+import { validate } from "./validate";
+
+type RouteContext = { params: Promise<Record<string, string | string[]>> };
+export type RouteHandler = (request: Request, context: RouteContext) => Promise<Response>;
+
+/** Makes a context for one request. */
+export function newContext(actor: Actor, address = ""): Ctx {
+  return { db: getDb(), actor, now: () => new Date(), newId: uuidv7, requestId: uuidv7(), address };
+}
+
+/** The App Router handler of a command: who asks, is it allowed, is it well formed, do it, is the reply what was promised. */
+export function route(command: AnyCommand): RouteHandler {
+  return async (request, context) => {
+    let requestId: string = uuidv7();
+    try {
+      const actor = await resolveActor(request.headers);
+      const ctx = newContext(actor, request.headers.get("x-forwarded-for") ?? "");
+      requestId = ctx.requestId;
+      assertMayCall(command, actor, request.headers, request.method);
+      const raw = { params: await context.params, query: Object.fromEntries(new URL(request.url).searchParams) };
+      const input = await readInput(command, request, raw);
+      return await withIdempotency(command, ctx, request.headers, input.bytes, async () => {
+        return replyOf(command, await command.handle(ctx as never, input.value as never));
+      });
+    } catch (thrown) {
+      const error = toAppError(thrown);
+      if (error.code === "server.fault") log.error({ requestId, command: command.id, err: error.cause ?? error }, "request failed");
+      return problemResponse(error, requestId);
+    }
+  };
+}
+
+/**
+ * Role, credential and origin of a call.
+ * @throws AppError `auth.required`, `auth.forbidden`, `auth.session_required`, `auth.origin_mismatch`
+ */
+export function assertMayCall(command: AnyCommand, actor: Actor, headers: Headers, method: string): void {
+  const { access } = command;
+  if (access.who === "public") return;
+  if (actor.kind === "public") throw new AppError("auth.required", { message: "Send a session cookie or a bearer key." });
+  if (access.who === "station") {
+    if (actor.kind !== "station") throw new AppError("auth.forbidden", { needs: ["station"], message: "Only a station's key may call this." });
+    return;
+  }
+  if (actor.kind !== "person") throw new AppError("auth.forbidden", { needs: access.roles, message: "A station's key may not call this." });
+  assertRole({ actor } as Ctx, ...access.roles);
+  if (access.session && actor.via !== "session") {
+    throw new AppError("auth.session_required", { message: "This is decided by a signed-in person in a browser; a key cannot." });
+  }
+  if (method !== "GET" && method !== "HEAD" && actor.via === "session") assertSameOrigin(headers);
+}
+
+/** The `Origin` of a state-changing call made with a cookie. @throws AppError `auth.origin_mismatch` */
+export function assertSameOrigin(headers: Headers): void {
+  if (headers.get("origin") !== env().origin) {
+    throw new AppError("auth.origin_mismatch", { message: "The request did not come from this site's own pages." });
+  }
+}
+
+async function readInput(command: AnyCommand, request: Request, raw: { params: unknown; query: unknown }) {
+  const params = command.params ? validate(command.params as z.ZodType, raw.params, "/path") : {};
+  const query = command.query ? validate(command.query as z.ZodType, raw.query, "/query") : {};
+  const contentType = (request.headers.get("content-type") ?? "").split(";")[0]?.trim().toLowerCase() ?? "";
+  let bytes: Buffer = Buffer.alloc(0);
+  let body: unknown;
+  if (isUpload(command.body)) {
+    const { contentTypes, maxBytes } = command.body.upload;
+    if (!contentTypes.includes(contentType)) {
+      throw new AppError("request.unsupported_type", { contentTypes, message: `Send one of ${contentTypes.join(", ")}.` });
+    }
+    bytes = await readBytes(request, maxBytes);
+    body = { bytes, contentType };
+  } else if (command.body) {
+    if (contentType !== "" && contentType !== "application/json") {
+      throw new AppError("request.unsupported_type", { contentTypes: ["application/json"], message: "Send application/json." });
+    }
+    bytes = await readBytes(request, JSON_MAX_BYTES);
+    body = validate(command.body as z.ZodType, parseJson(bytes));
+  }
+  return { bytes, value: { params, query, body, headers: request.headers } as CommandInput<undefined, undefined, undefined> };
+}
+
+/** The reply as promised: unknown members are left out, a member missing is our bug and not the caller's problem to find. */
+function replyOf(command: AnyCommand, value: unknown): Response {
+  if (value instanceof Response) return value;
+  const { status, schema } = command.reply;
+  if (!schema) return new Response(null, { status });
+  const checked = (schema as z.ZodType).safeParse(value);
+  if (!checked.success) throw new Error(`${command.id} answers outside its schema: ${checked.error.message}`);
+  return Response.json(checked.data, { status, headers: { "cache-control": "no-store" } });
+}
