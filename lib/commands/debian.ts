@@ -1,0 +1,86 @@
+/** Debian's packages: installed as root, or unpacked into a private folder by anybody else. */
+import { existsSync, mkdirSync, readFileSync, rmSync, writeFileSync } from "node:fs";
+import { join } from "node:path";
+import { privatePackagesFolder } from "@/db/postgres-binaries";
+import { runTool } from "@/lib/commands/run-tool";
+import { childEnv } from "@/lib/env";
+import { AppError } from "@/lib/errors";
+
+const CLUSTER_SETTINGS = "/etc/postgresql-common/createcluster.conf";
+
+export interface InstallOptions {
+  home: string;
+  signal?: AbortSignal;
+}
+
+/** Whether this process may install packages for the whole machine. */
+export function mayInstall(): boolean {
+  return process.getuid?.() === 0 && existsSync("/usr/bin/apt-get");
+}
+
+/**
+ * Installs packages with apt-get. Needs root.
+ * @throws AppError `packages.not_installed` {packages} with apt-get's reason.
+ */
+export async function installPackages(packages: string[], options: InstallOptions): Promise<void> {
+  if (packages.some((name) => name.startsWith("postgresql"))) keepDebianFromMakingCluster();
+  const env = childEnv({ DEBIAN_FRONTEND: "noninteractive" });
+  const flags = ["-y", "-qq", "--no-install-recommends", "-o", "Dpkg::Options::=--force-confold"];
+  try {
+    await runTool("apt-get", ["update", "-qq"], { env, signal: options.signal });
+    await runTool("apt-get", ["install", ...flags, ...packages], { env, signal: options.signal });
+  } catch (error) {
+    throw notInstalled(packages, error);
+  }
+}
+
+/** Otherwise the package starts a server on port 5432 that nobody asked for. An existing file is the admin's. */
+function keepDebianFromMakingCluster(): void {
+  if (existsSync(CLUSTER_SETTINGS)) return;
+  mkdirSync("/etc/postgresql-common", { recursive: true });
+  writeFileSync(CLUSTER_SETTINGS, "create_main_cluster = false\n");
+}
+
+/**
+ * Downloads packages with whatever they need and this machine lacks, and unpacks them below the home. Needs no root:
+ * apt-get works on lists and archives of its own there.
+ * @throws AppError `packages.not_installed` {packages} with apt-get's reason.
+ */
+export async function unpackPackages(packages: string[], options: InstallOptions): Promise<void> {
+  const root = privatePackagesFolder(options.home);
+  const apt = join(options.home, "apt");
+  for (const folder of ["lists/partial", "cache/archives/partial", "downloads"]) {
+    mkdirSync(join(apt, folder), { recursive: true });
+  }
+  const dirs = ["-o", `Dir::State::lists=${join(apt, "lists")}`, "-o", `Dir::Cache=${join(apt, "cache")}`];
+  const downloads = { cwd: join(apt, "downloads"), signal: options.signal };
+  try {
+    await runTool("apt-get", [...dirs, "update", "-qq"], downloads);
+    const plan = await runTool(
+      "apt-get",
+      [...dirs, "install", "-s", "-q", "--no-install-recommends", ...packages],
+      downloads,
+    );
+    const missing = plan.split("\n").flatMap((line) => /^Inst (\S+)/.exec(line)?.[1] ?? []);
+    await runTool("apt-get", [...dirs, "download", "-q", ...missing], downloads);
+    mkdirSync(root, { recursive: true });
+    await runTool("/bin/sh", ["-c", `for f in *.deb; do dpkg -x "$f" "$1" || exit 1; done`, "sh", root], downloads);
+  } catch (error) {
+    rmSync(root, { recursive: true, force: true });
+    throw notInstalled(packages, error);
+  } finally {
+    rmSync(apt, { recursive: true, force: true });
+  }
+}
+
+function notInstalled(packages: string[], cause: unknown): unknown {
+  if (!(cause instanceof AppError) || cause.code === "command.stopped") return cause;
+  const message = `Debian's ${packages.join(", ")} could not be had: ${cause.message}`;
+  return new AppError("packages.not_installed", { packages, message }, { cause });
+}
+
+/** Debian's name and version, for messages. */
+export function systemName(): string {
+  if (!existsSync("/etc/os-release")) return "this system";
+  return /^PRETTY_NAME="?([^"\n]+)/m.exec(readFileSync("/etc/os-release", "utf8"))?.[1] ?? "this system";
+}
