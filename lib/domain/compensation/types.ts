@@ -73,7 +73,7 @@ export interface Reading {
 export interface RunReadings {
   id: string;
   purpose: Purpose;
-  /** The run that this one replaces for the serials it names. */
+  /** Id of the run that this one replaces; the rows of that run are then not used. */
   supersedes?: string | null;
   readings: readonly Reading[];
 }

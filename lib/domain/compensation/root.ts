@@ -1,0 +1,35 @@
+import { AppError } from "@/lib/errors";
+
+/**
+ * The x in [low, high] where an increasing or decreasing continuous function crosses zero: false position with the
+ * Illinois halving, and a bisection whenever that stalls.
+ * @param low, high finite bounds with values of opposite sign (or zero).
+ * @returns x to about 1e-15 relative.
+ * @throws AppError `root.not_bracketed` {low, high}.
+ */
+export function findRoot(f: (x: number) => number, low: number, high: number): number {
+  let a = low;
+  let b = high;
+  let fa = f(a);
+  let fb = f(b);
+  if (fa === 0) return a;
+  if (fb === 0) return b;
+  if (!(fa * fb < 0)) throw new AppError("root.not_bracketed", { low, high });
+  for (let step = 0; step < 200; step++) {
+    const bisect = step % 3 === 2;
+    let x = bisect ? (a + b) / 2 : b - (fb * (b - a)) / (fb - fa);
+    if (!(x > Math.min(a, b) && x < Math.max(a, b))) x = (a + b) / 2;
+    if (x === a || x === b || Math.abs(b - a) <= 4e-16 * Math.abs(x)) return x;
+    const fx = f(x);
+    if (fx === 0) return x;
+    if (fx * fb < 0) {
+      a = b;
+      fa = fb;
+    } else {
+      fa /= 2;
+    }
+    b = x;
+    fb = fx;
+  }
+  return b;
+}

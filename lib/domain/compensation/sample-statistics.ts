@@ -1,0 +1,33 @@
+/**
+ * Mean of a sample. A second pass takes up what the first rounding lost, so that large values with a small
+ * scatter keep their digits.
+ * @param values N ≥ 1 finite numbers.
+ * @returns the mean, null for an empty sample.
+ */
+export function meanOf(values: readonly number[]): number | null {
+  if (values.length === 0) return null;
+  let sum = 0;
+  for (const value of values) sum += value;
+  const rough = sum / values.length;
+  let rest = 0;
+  for (const value of values) rest += value - rough;
+  return rough + rest / values.length;
+}
+
+/**
+ * Sample standard deviation with n − 1, from differences to the mean.
+ * @param values finite numbers.
+ * @returns the deviation in the values' unit, null below two values.
+ */
+export function standardDeviationOf(values: readonly number[]): number | null {
+  const mean = meanOf(values);
+  if (mean === null || values.length < 2) return null;
+  let squares = 0;
+  let rest = 0;
+  for (const value of values) {
+    const difference = value - mean;
+    squares += difference * difference;
+    rest += difference;
+  }
+  return Math.sqrt(Math.max(0, squares - (rest * rest) / values.length) / (values.length - 1));
+}
