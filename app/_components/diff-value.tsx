@@ -1,0 +1,29 @@
+export interface DiffValueProps {
+  /** Formatted; null where it was not there. */
+  from: string | null;
+  to: string | null;
+  unit?: string;
+  /** Formatted step in the same unit, with its sign. */
+  step?: string;
+  /** Step in stored integers (LSB). */
+  lsb?: string;
+}
+
+/** old → new, with the step in the value's unit and in stored steps. */
+export function DiffValue({ from, to, unit, step, lsb }: DiffValueProps) {
+  return (
+    <span className="font-mono text-sm whitespace-nowrap">
+      <span className="sr-only">was </span>
+      <span className="text-ink-soft">{from ?? "none"}</span>
+      <span aria-hidden="true"> → </span>
+      <span className="sr-only">, is </span>
+      <span>{to ?? "none"}</span>
+      {unit ? <span className="font-sans text-ink-soft"> {unit}</span> : null}
+      {step || lsb ? (
+        <span className="ml-2 text-xs text-ink-soft">
+          {[step, lsb ? `${lsb} steps` : ""].filter(Boolean).join(" · ")}
+        </span>
+      ) : null}
+    </span>
+  );
+}

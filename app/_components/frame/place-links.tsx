@@ -1,0 +1,29 @@
+"use client";
+
+import Link from "next/link";
+import { usePathname } from "next/navigation";
+import { isInPlace, places } from "@/app/_components/frame/places";
+
+/** The five places as a row, for screens wide enough. */
+export function PlaceLinks() {
+  const path = usePathname();
+  return (
+    <nav aria-label="Places" className="hidden h-full gap-[22px] md:flex">
+      {places.map((place) => {
+        const here = isInPlace(place, path);
+        return (
+          <Link
+            key={place.href}
+            href={place.href}
+            aria-current={here ? "page" : undefined}
+            className={`flex items-center border-b-2 pt-0.5 no-underline ${
+              here ? "border-copper font-semibold text-ink" : "border-transparent text-ink-soft hover:text-ink"
+            }`}
+          >
+            {place.name}
+          </Link>
+        );
+      })}
+    </nav>
+  );
+}

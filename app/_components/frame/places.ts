@@ -1,0 +1,20 @@
+/** One of the five places of the frame. `covers` are the paths that belong to it, `key` follows `g`. */
+export interface Place {
+  name: string;
+  href: string;
+  key: string;
+  covers: readonly string[];
+}
+
+export const places: readonly Place[] = [
+  { name: "Today", href: "/today", key: "t", covers: ["/today"] },
+  { name: "Lots", href: "/lots", key: "l", covers: ["/lots", "/packages", "/derivations", "/runs"] },
+  { name: "Layouts", href: "/families", key: "f", covers: ["/families"] },
+  { name: "Trace", href: "/trace", key: "r", covers: ["/trace", "/compare"] },
+  { name: "Stations", href: "/stations", key: "s", covers: ["/stations"] },
+];
+
+/** True where the path lies in the place. */
+export function isInPlace(place: Place, path: string): boolean {
+  return place.covers.some((prefix) => path === prefix || path.startsWith(`${prefix}/`));
+}

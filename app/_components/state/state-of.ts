@@ -1,0 +1,96 @@
+import type { StateMarkProps } from "@/app/_components/state/state-mark";
+
+const draft: StateMarkProps = {
+  tone: "info",
+  shape: "square",
+  word: "draft",
+  title: "Being written; nothing rests on it yet",
+};
+const inReview: StateMarkProps = { tone: "wait", word: "in review", title: "Waits for a second person" };
+
+const published = {
+  draft,
+  "in-review": inReview,
+  published: { tone: "good", word: "published", title: "Frozen, decided by a second person" },
+  retired: { tone: "idle", word: "retired", title: "No longer offered for new work" },
+} satisfies Record<string, StateMarkProps>;
+
+/** Word, tone and shape of every state of the product, by kind of object. */
+const states = {
+  revision: published,
+  layout: published,
+  derivation: {
+    working: { tone: "wait", word: "working", title: "Being computed" },
+    proposed: { tone: "wait", word: "waiting for a second person" },
+    approved: { tone: "good", word: "approved" },
+    "partly-approved": { tone: "caution", word: "partly approved", title: "Some devices approved, others not" },
+    refused: { tone: "bad", word: "refused" },
+    failed: { tone: "bad", word: "failed" },
+  },
+  "coefficient-set": {
+    proposed: { tone: "info", word: "proposed", title: "Computed, nobody has decided yet" },
+    approved: { tone: "good", word: "approved" },
+    refused: { tone: "bad", word: "refused" },
+    stale: { tone: "caution", word: "stale", title: "Its run was superseded or its family revision left" },
+    revoked: { tone: "bad", word: "revoked", title: "Approval taken back; never packed again" },
+  },
+  package: {
+    building: { tone: "wait", word: "building" },
+    draft,
+    failed: { tone: "bad", word: "failed", title: "The build did not finish; nothing was stored" },
+    "in-review": inReview,
+    approved: { tone: "good", shape: "ring", word: "approved", title: "Signed by a second person, not yet live" },
+    refused: { tone: "bad", word: "refused" },
+    live: { tone: "good", word: "live", title: "What stations write now" },
+    superseded: { tone: "idle", word: "superseded", title: "Another release went live after it" },
+    withdrawn: { tone: "bad", word: "withdrawn", title: "Stopped; no station may write it" },
+  },
+  reinstatement: {
+    asked: { tone: "wait", word: "asked", title: "Waits for a second person" },
+    done: { tone: "good", word: "done" },
+    refused: { tone: "bad", word: "refused" },
+  },
+  device: {
+    active: { tone: "good", word: "active" },
+    held: { tone: "bad", shape: "bar", word: "held", title: "Stopped by one person; going on takes two" },
+    scrapped: { tone: "bad", word: "scrapped" },
+    rework: { tone: "caution", word: "in rework" },
+    shipped: { tone: "idle", shape: "dot", word: "shipped" },
+    returned: { tone: "caution", word: "returned" },
+  },
+  check: {
+    pass: { tone: "good", word: "pass" },
+    warn: { tone: "wait", word: "warn", title: "Needs a waiver before review" },
+    waived: { tone: "caution", word: "waived", title: "Accepted by a named person with a reason" },
+    fail: { tone: "bad", word: "fail", title: "Blocks the package" },
+  },
+  finding: {
+    hard: { tone: "bad", word: "blocks", title: "Approval is not possible" },
+    soft: { tone: "caution", word: "needs a reason", title: "Approval needs an acknowledgement with a reason" },
+    note: { tone: "info", word: "note" },
+  },
+  "write-outcome": {
+    verified: { tone: "good", word: "verified", title: "What was read back equals what should be there" },
+    mismatch: { tone: "bad", word: "mismatch", title: "What was read back differs" },
+    failed: { tone: "bad", word: "failed" },
+    interrupted: { tone: "caution", word: "interrupted", title: "What the device carries now is unknown" },
+    "unknown-image": { tone: "bad", word: "unknown image" },
+    "unknown-serial": { tone: "bad", word: "unknown serial" },
+    duplicate: { tone: "idle", word: "known already" },
+    conflict: { tone: "bad", word: "conflict", title: "The same record arrived with other content" },
+  },
+  dump: {
+    exact: { tone: "good", word: "equal to the image" },
+    differs: { tone: "bad", word: "differs" },
+    "other-serial": { tone: "bad", word: "image of another serial" },
+    unknown: { tone: "caution", word: "unknown image" },
+  },
+} satisfies Record<string, Record<string, StateMarkProps>>;
+
+export type StateKind = keyof typeof states;
+
+/** Mark of a state. A state without an entry is shown in its own words, so that nothing new disappears from sight. */
+export function stateOf(kind: StateKind, state: string): StateMarkProps {
+  const known: Record<string, StateMarkProps> = states[kind];
+  return known[state] ?? { tone: "idle", word: state.replaceAll("-", " ") };
+}
