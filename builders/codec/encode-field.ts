@@ -1,0 +1,116 @@
+import type { CompiledField } from "@/builders/codec/compile-layout";
+import { roundHalfEven } from "@/builders/codec/round-half-even";
+import { AppError } from "@/lib/errors";
+
+/** Where a value is written and whose it is, for errors. */
+export interface EncodeTarget {
+  bytes: Uint8Array;
+  view: DataView;
+  serial: string;
+}
+
+/**
+ * Writes one value. Integers are stored as round-half-even((value − bias) / scale), in binary64, one subtraction and
+ * then one division; f32 is the nearest binary32, ties to even. Limits are inclusive and apply before rounding.
+ * @throws AppError with {serial, field, value, limit}: `image.source_missing`, `image.not_finite`,
+ * `image.limit_exceeded`, `image.value_out_of_range`, `image.value_not_numeric`, `image.value_not_text`,
+ * `image.not_ascii`, `image.serial_too_long`, `image.text_too_long`. Nothing is clamped or wrapped.
+ */
+export function encodeField(field: CompiledField, value: unknown, target: EncodeTarget): void {
+  if (value === null || value === undefined) {
+    throw refusal("image.source_missing", field, value, null, target.serial, "has no value");
+  }
+  if (field.number) encodeNumber(field, value, target);
+  else if (field.type === "ascii") encodeText(field, value, target);
+  else encodeHexConstant(field, value, target);
+}
+
+function encodeNumber(field: CompiledField, value: unknown, target: EncodeTarget): void {
+  if (typeof value !== "number") {
+    throw refusal("image.value_not_numeric", field, value, null, target.serial, "is not a number");
+  }
+  if (!Number.isFinite(value)) {
+    throw refusal("image.not_finite", field, String(value), null, target.serial, "is not a finite number");
+  }
+  if (value < field.min) {
+    throw refusal("image.limit_exceeded", field, value, field.min, target.serial, `is below the limit ${field.min}`);
+  }
+  if (value > field.max) {
+    throw refusal("image.limit_exceeded", field, value, field.max, target.serial, `is above the limit ${field.max}`);
+  }
+  if (field.type === "f64") target.view.setFloat64(field.at, value, field.littleEndian);
+  else if (field.type === "f32") encodeSingle(field, value, target);
+  else encodeInteger(field, value, target);
+}
+
+function encodeSingle(field: CompiledField, value: number, target: EncodeTarget): void {
+  const single = Math.fround(value);
+  if (!Number.isFinite(single)) throw outOfRange(field, value, value < 0, target.serial);
+  target.view.setFloat32(field.at, single, field.littleEndian);
+}
+
+function encodeInteger(field: CompiledField, value: number, target: EncodeTarget): void {
+  const type = field.number as NonNullable<CompiledField["number"]>;
+  const stored = roundHalfEven((value - field.bias) / field.scale);
+  if (!(stored >= type.min && stored <= type.max)) {
+    throw outOfRange(field, value, stored < type.min, target.serial);
+  }
+  writeInteger(target.bytes, field.at, field.width, field.littleEndian, stored);
+}
+
+/** Writes an integer of up to 32 bits in two's complement. */
+export function writeInteger(bytes: Uint8Array, at: number, width: number, littleEndian: boolean, value: number): void {
+  if (littleEndian) {
+    for (let i = 0; i < width; i++) bytes[at + i] = value >> (8 * i);
+  } else {
+    for (let i = 0; i < width; i++) bytes[at + i] = value >> (8 * (width - 1 - i));
+  }
+}
+
+function encodeText(field: CompiledField, value: unknown, target: EncodeTarget): void {
+  if (typeof value !== "string") {
+    throw refusal("image.value_not_text", field, value, null, target.serial, "is not a text");
+  }
+  if (value.length > field.width) {
+    const code = field.source === "device.serial" ? "image.serial_too_long" : "image.text_too_long";
+    throw refusal(code, field, value, field.width, target.serial, `is longer than ${field.width} characters`);
+  }
+  const { bytes } = target;
+  for (let i = 0; i < field.width; i++) {
+    const char = i < value.length ? value.charCodeAt(i) : 0;
+    // NUL pads the text, so it can't be part of it.
+    if (i < value.length && (char < 0x20 || char > 0x7e)) {
+      throw refusal("image.not_ascii", field, value, null, target.serial, "has characters outside printable ASCII");
+    }
+    bytes[field.at + i] = char;
+  }
+}
+
+function encodeHexConstant(field: CompiledField, value: unknown, target: EncodeTarget): void {
+  if (typeof value !== "string" || value.length !== 2 * field.width) {
+    throw refusal("image.value_not_text", field, value, null, target.serial, "is not a constant of hex digits");
+  }
+  for (let i = 0; i < field.width; i++) {
+    target.bytes[field.at + i] = Number.parseInt(value.slice(2 * i, 2 * i + 2), 16);
+  }
+}
+
+function outOfRange(field: CompiledField, value: number, below: boolean, serial: string): AppError {
+  const type = field.number as NonNullable<CompiledField["number"]>;
+  const end = below ? type.min : type.max;
+  const limit = type.kind === "integer" ? end * field.scale + field.bias : end;
+  return refusal("image.value_out_of_range", field, value, limit, serial, `does not fit into ${field.type}`);
+}
+
+function refusal(
+  code: string,
+  field: CompiledField,
+  value: unknown,
+  limit: number | null,
+  serial: string,
+  reason: string,
+): AppError {
+  const shown = value === undefined ? null : value;
+  const message = `${serial}: ${field.name}${shown === null ? "" : ` = ${shown}`} ${reason}`;
+  return new AppError(code, { serial, field: field.name, value: shown, limit, message });
+}

@@ -1,0 +1,101 @@
+import type { CompiledLayout } from "@/builders/codec/compile-layout";
+import { decodeField, readUnsigned } from "@/builders/codec/decode-field";
+import { encodeField, writeInteger } from "@/builders/codec/encode-field";
+import { toHex } from "@/builders/codec/hex-text";
+import type { ImageSources } from "@/builders/codec/sources";
+import { AppError } from "@/lib/errors";
+
+/** One field or checksum of an image as read. Members stand in the order of RFC 8785, so that writing them is canonical. */
+export interface DecodedField {
+  at: number;
+  name: string;
+  /** Lower-case hex of the stored bytes. */
+  raw: string;
+  unit: string | null;
+  /** Null where the bytes hold no value (NaN, unprintable text). */
+  value: number | string | null;
+}
+
+export interface ChecksumResult {
+  name: string;
+  ok: boolean;
+  /** Computed over the covered bytes, as an unsigned number. */
+  expected: number;
+  /** As stored, as an unsigned number. */
+  stored: number;
+}
+
+/**
+ * The bytes of one device's EEPROM: fill everywhere, then the fields, then the checksums in the order listed.
+ * @throws AppError as {@link encodeField}, with {serial, field, value, limit}.
+ */
+export function encodeImage(layout: CompiledLayout, sources: ImageSources): Uint8Array<ArrayBuffer> {
+  const bytes = new Uint8Array(layout.bytes).fill(layout.fill);
+  const target = { bytes, view: new DataView(bytes.buffer), serial: sources.device.serial };
+  for (const field of layout.fields) encodeField(field, field.read(sources), target);
+  for (const sum of layout.checksums) {
+    writeInteger(bytes, sum.at, sum.width, sum.littleEndian, sum.crc(bytes, sum.from, sum.end));
+  }
+  return bytes;
+}
+
+/**
+ * Every field and checksum of an image: fields in the layout's order, then checksums (value: unsigned number, no unit).
+ * @throws AppError `image.wrong_length` {expected, actual}
+ */
+export function decodeImage(layout: CompiledLayout, bytes: Uint8Array): DecodedField[] {
+  assertLength(layout, bytes);
+  const view = new DataView(bytes.buffer, bytes.byteOffset, bytes.byteLength);
+  const decoded: DecodedField[] = [];
+  for (const field of layout.fields) {
+    decoded.push({
+      at: field.at,
+      name: field.name,
+      raw: toHex(bytes, field.at, field.at + field.width),
+      unit: field.unit,
+      value: decodeField(field, bytes, view),
+    });
+  }
+  for (const sum of layout.checksums) {
+    decoded.push({
+      at: sum.at,
+      name: sum.name,
+      raw: toHex(bytes, sum.at, sum.at + sum.width),
+      unit: null,
+      value: readUnsigned(bytes, sum.at, sum.width, sum.littleEndian),
+    });
+  }
+  return decoded;
+}
+
+/**
+ * Compares every stored checksum with the one computed over the stored bytes.
+ * @throws AppError `image.wrong_length` {expected, actual}
+ */
+export function checkChecksums(layout: CompiledLayout, bytes: Uint8Array): ChecksumResult[] {
+  assertLength(layout, bytes);
+  return layout.checksums.map((sum) => {
+    const expected = sum.crc(bytes, sum.from, sum.end);
+    const stored = readUnsigned(bytes, sum.at, sum.width, sum.littleEndian);
+    return { name: sum.name, ok: expected === stored, expected, stored };
+  });
+}
+
+/**
+ * The bytes that digests, readback and dump comparison are about: kept ranges taken as fill (contract, section 4).
+ * @returns a copy, or the same array where nothing is kept.
+ * @throws AppError `image.wrong_length` {expected, actual}
+ */
+export function imageDigestBytes(layout: CompiledLayout, bytes: Uint8Array): Uint8Array {
+  assertLength(layout, bytes);
+  if (layout.kept.length === 0) return bytes;
+  const copy = bytes.slice();
+  for (const [from, to] of layout.kept) copy.fill(layout.fill, from, to + 1);
+  return copy;
+}
+
+function assertLength(layout: CompiledLayout, bytes: Uint8Array): void {
+  if (bytes.length === layout.bytes) return;
+  const message = `The image has ${bytes.length} bytes, the layout ${layout.bytes}`;
+  throw new AppError("image.wrong_length", { expected: layout.bytes, actual: bytes.length, message });
+}

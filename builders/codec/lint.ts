@@ -1,0 +1,169 @@
+import semver from "semver";
+import { findFieldWidth, findNumberType } from "@/builders/codec/field-types";
+import { fits } from "@/builders/codec/lint-field";
+import { lintPlacement } from "@/builders/codec/lint-placement";
+import { readLayout } from "@/builders/codec/lint-shape";
+import { listStructureProblems } from "@/builders/codec/lint-structure";
+import { coefficientsOfOrder } from "@/builders/codec/sources";
+import { isFirmwareRange, isRangeText, mayShareFirmware } from "@/lib/domain/firmware-range";
+import { assertStepCovers, layoutStep, newestLower, type Step } from "@/lib/domain/semver-step";
+import { AppError, type Problem } from "@/lib/errors";
+import type { LayoutDocument, LayoutField } from "@/schemas/documents/layout";
+
+/** What of a family the rules look at: its code, and what its sources give (°C, kg, mV/V). */
+export interface FamilyRulesLike {
+  code: string;
+  referenceC: number;
+  capacityKg: number;
+  nominalMvV: number;
+}
+
+export interface LintOptions {
+  family?: FamilyRulesLike;
+  /** Published layouts of the family, in any order; retired ones among them. */
+  publishedVersions?: readonly LayoutDocument[];
+  /** Length of the longest serial that the family has. */
+  existingSerialLengthMax?: number;
+}
+
+export interface LintResult {
+  /** What stands against publishing and encoding. */
+  errors: Problem[];
+  /** What a careful author looks at. */
+  warnings: Problem[];
+  /** Smallest version step against the newest published lower version; null where there is none. */
+  step: Step | null;
+}
+
+/**
+ * Judges a layout by its meaning. Takes documents of any shape, so that it serves the editor while they are typed; the
+ * JSON Schema is the full judge of shape. Paths are JSON pointers (RFC 6901).
+ */
+export function lintLayout(document: unknown, options: LintOptions = {}): LintResult {
+  const errors = listStructureProblems(document);
+  const { readable } = readLayout(document);
+  if (!readable) return { errors, warnings: [], step: null };
+  const { layout, paths } = readable;
+  const versions = lintVersions(layout, options.publishedVersions ?? []);
+  errors.push(...lintFamily(layout, options.family), ...lintCoefficients(layout, paths.fields));
+  errors.push(...lintKnownValues(layout, paths.fields, options.family), ...versions.errors);
+  const warnings = [
+    ...lintPlacement(layout, paths),
+    ...lintSerial(layout, paths.fields, options),
+    ...versions.warnings,
+  ];
+  return { errors, warnings, step: versions.step };
+}
+
+function lintFamily(layout: LayoutDocument, family: FamilyRulesLike | undefined): Problem[] {
+  if (!family || layout.family === family.code) return [];
+  return [
+    {
+      path: "/family",
+      code: "layout.family_mismatch",
+      message: `The layout is for “${layout.family}”, not ${family.code}`,
+    },
+  ];
+}
+
+/** Firmware computes with every coefficient of the order, so a missing one is wrong bytes, and one too many has no value. */
+function lintCoefficients(layout: LayoutDocument, paths: readonly string[]): Problem[] {
+  const needed = coefficientsOfOrder(layout.order).map((name) => `coefficients.${name}`);
+  const used = layout.fields.map((field) => ("from" in field.value ? field.value.from : null));
+  const missing = needed.filter((name) => !(used as (string | null)[]).includes(name));
+  return [
+    ...missing.map((name) => ({
+      path: "/fields",
+      code: "layout.coefficient_missing",
+      message: `No field holds ${name}, which order ${layout.order} needs`,
+    })),
+    ...used.flatMap((name, i) =>
+      layout.order === 1 && (name === "coefficients.zeroTc2" || name === "coefficients.gainTc2")
+        ? [{ path: `${paths[i]}/value/from`, code: "field.order_exceeded", message: `Order 1 has no ${name}` }]
+        : [],
+    ),
+  ];
+}
+
+/** Values that are known before any device is: the layout's own version and the family's. */
+function lintKnownValues(
+  layout: LayoutDocument,
+  paths: readonly string[],
+  family: FamilyRulesLike | undefined,
+): Problem[] {
+  const version = semver.parse(layout.version);
+  const known: Record<string, number | undefined> = {
+    "layout.major": version?.major,
+    "layout.minor": version?.minor,
+    "layout.patch": version?.patch,
+    "family.referenceTemperature": family?.referenceC,
+    "family.capacity": family?.capacityKg,
+    "family.nominalOutput": family?.nominalMvV,
+  };
+  return layout.fields.flatMap((field, i) => {
+    const value = "from" in field.value ? known[field.value.from] : undefined;
+    if (value === undefined || takes(field, value)) return [];
+    const message = `“${field.name}” cannot take ${value}, which is its value here`;
+    return [{ path: paths[i] as string, code: "field.value_out_of_range", message }];
+  });
+}
+
+function takes(field: LayoutField, value: number): boolean {
+  const type = findNumberType(field.type);
+  if (!type) return true;
+  const { min = value, max = value } = field;
+  return value >= min && value <= max && fits(field, type, value);
+}
+
+function lintSerial(layout: LayoutDocument, paths: readonly string[], options: LintOptions): Problem[] {
+  const at = layout.fields.findIndex((field) => "from" in field.value && field.value.from === "device.serial");
+  const field = layout.fields[at];
+  if (!field) {
+    const message = "No field holds the serial, so a read image does not tell whose it is";
+    return [{ path: "/fields", code: "layout.serial_missing", message }];
+  }
+  const width = findFieldWidth(field);
+  const longest = options.existingSerialLengthMax ?? 0;
+  if (width === undefined || longest <= width) return [];
+  const message = `“${field.name}” holds ${width} characters, the family has serials of ${longest}`;
+  return [{ path: `${paths[at]}/length`, code: "field.serial_too_short", message }];
+}
+
+function lintVersions(layout: LayoutDocument, published: readonly LayoutDocument[]): LintResult {
+  const errors: Problem[] = [];
+  const { version, firmware } = layout;
+  const add = (path: string, code: string, message: string) => errors.push({ path, code, message });
+  const versionOk = typeof version === "string" && /^\d+\.\d+\.\d+$/.test(version) && semver.valid(version) === version;
+  if (!versionOk) add("/version", "layout.version_invalid", "needs three numbers, such as 1.0.0");
+  const ranged = typeof firmware === "string" && isRangeText(firmware);
+  if (!ranged) add("/firmware", "firmware.range_invalid", "is not a range of versions, such as >=2.1.0 <3.0.0");
+  else if (!isFirmwareRange(firmware)) add("/firmware", "firmware.range_empty", "no version satisfies this range");
+  if (!versionOk || !ranged) return { errors, warnings: [], step: null };
+  if (published.some((one) => one.version === version)) {
+    add("/version", "layout.version_taken", `${version} is published already`);
+  }
+  const previous = newestLower(published, version);
+  const { step } = layoutStep(previous, layout);
+  const refused = refusalOf(() => assertStepCovers(previous?.version ?? null, version, step));
+  if (refused) add("/version", refused.code, refused.message);
+  return { errors, warnings: sharedFirmware(layout, published), step };
+}
+
+function sharedFirmware(layout: LayoutDocument, published: readonly LayoutDocument[]): Problem[] {
+  const others = published.filter(
+    (one) => one.version !== layout.version && mayShareFirmware(one.firmware, layout.firmware),
+  );
+  if (others.length === 0) return [];
+  const message = `Layout ${others.map((one) => one.version).join(", ")} is for some of the same firmware`;
+  return [{ path: "/firmware", code: "firmware.shared", message }];
+}
+
+function refusalOf(check: () => void): AppError | undefined {
+  try {
+    check();
+    return undefined;
+  } catch (error) {
+    if (error instanceof AppError) return error;
+    throw error;
+  }
+}

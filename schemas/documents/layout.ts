@@ -1,0 +1,144 @@
+/**
+ * The layout document: which bytes of the EEPROM hold what (contract, section 4).
+ *
+ * `parseLayout` compiles the JSON Schema with ajv, which builds code at run time; it is for the server. The browser's
+ * content security policy forbids that, so there the shape is judged by the editor's JSON Schema support with the same
+ * `layout.schema.json`, and the meaning by `builders/codec/lint`, which tolerates documents of any shape.
+ * Browser code imports the types of this file only (`import type`).
+ */
+import { Ajv2020, type ErrorObject, type ValidateFunction } from "ajv/dist/2020";
+import type { Problem } from "@/lib/errors";
+import layoutSchema from "@/schemas/documents/layout.schema.json";
+
+export type ByteOrder = "little" | "big";
+
+/** Types a field can have; `ascii` takes a `length`, `bytes` takes its width from its constant. */
+export type FieldType = "u8" | "i8" | "u16" | "i16" | "u24" | "i24" | "u32" | "i32" | "f32" | "f64" | "ascii" | "bytes";
+
+/** Where a field's value may come from when the image of a device is encoded. */
+export type SourceName =
+  | "device.serial"
+  | "lot.code"
+  | `layout.${"major" | "minor" | "patch"}`
+  | `package.${"major" | "minor" | "patch"}`
+  | `coefficients.${CoefficientName}`
+  | `family.${"referenceTemperature" | "capacity" | "nominalOutput"}`;
+
+export type CoefficientName =
+  | "tempOffset"
+  | "tempSlope"
+  | "zero"
+  | "zeroTc"
+  | "zeroTc2"
+  | "gain"
+  | "gainTc"
+  | "gainTc2";
+
+/** A number, a text (ascii) or an even count of hex digits (bytes). */
+export type FieldValue = { from: SourceName } | { const: number | string };
+
+/** Inclusive offsets into the image. */
+export type ByteRange = [from: number, to: number];
+
+export interface LayoutMemory {
+  bytes: number;
+  pageBytes: number;
+  /** Address of image byte 0 in the device, 0…4294967295. */
+  baseAddress: number;
+  /** Value of every byte that no field or checksum covers, 0…255. */
+  fill: number;
+  byteOrder: ByteOrder;
+}
+
+export interface LayoutField {
+  name: string;
+  /** Offset of the first byte in the image. */
+  at: number;
+  type: FieldType;
+  /** Bytes of an ascii field. */
+  length?: number;
+  byteOrder?: ByteOrder;
+  /** Integers only: value of one step, in `unit`; 1 where absent. */
+  scale?: number;
+  /** Integers only: value stored as 0, in `unit`; 0 where absent. */
+  bias?: number;
+  unit?: string;
+  /** Inclusive limits of the value before rounding, in `unit`. */
+  min?: number;
+  max?: number;
+  description?: string;
+  value: FieldValue;
+}
+
+export interface LayoutChecksum {
+  name: string;
+  at: number;
+  /** Catalogue name, e.g. `CRC-16/IBM-3740`. */
+  algorithm: string;
+  byteOrder?: ByteOrder;
+  over: ByteRange;
+  description?: string;
+}
+
+export interface LayoutDocument {
+  format: "trimwright/layout@1";
+  /** Code of the family. */
+  family: string;
+  /** Semantic version without prerelease or build. */
+  version: string;
+  /** Range of firmware versions that read this layout. */
+  firmware: string;
+  /** Order of the compensation, 1 or 2. */
+  order: 1 | 2;
+  description?: string;
+  memory: LayoutMemory;
+  /** Ranges that belong to the device and are never written. */
+  kept?: ByteRange[];
+  fields: LayoutField[];
+  checksums: LayoutChecksum[];
+}
+
+let validate: ValidateFunction<LayoutDocument> | undefined;
+
+/** The schema compiled once, at first use. */
+function layoutValidator(): ValidateFunction<LayoutDocument> {
+  validate ??= new Ajv2020({ strict: true, allErrors: true, allowUnionTypes: true }).compile<LayoutDocument>(
+    layoutSchema,
+  );
+  return validate;
+}
+
+/**
+ * Checks the shape of a layout document against `layout.schema.json`. Server only (see above).
+ * @param json any parsed JSON.
+ * @returns the same object typed, or every problem of shape with its JSON pointer (code `layout.shape`).
+ */
+export function parseLayout(
+  json: unknown,
+): { layout: LayoutDocument; problems?: undefined } | { layout?: undefined; problems: Problem[] } {
+  const check = layoutValidator();
+  if (check(json)) return { layout: json };
+  return { problems: (check.errors ?? []).map(problemOf) };
+}
+
+function problemOf(error: ErrorObject): Problem {
+  const extra = error.params as { additionalProperty?: string; missingProperty?: string; allowedValues?: unknown[] };
+  const named = extra.additionalProperty ?? extra.missingProperty;
+  const path = named === undefined ? error.instancePath : `${error.instancePath}/${escapePointer(named)}`;
+  return { path, code: "layout.shape", message: messageOf(error, extra) };
+}
+
+function messageOf(
+  error: ErrorObject,
+  extra: { additionalProperty?: string; missingProperty?: string; allowedValues?: unknown[] },
+): string {
+  if (extra.additionalProperty !== undefined) return `“${extra.additionalProperty}” is not known here`;
+  if (extra.missingProperty !== undefined) return `“${extra.missingProperty}” is missing`;
+  if (extra.allowedValues !== undefined) return `must be one of ${extra.allowedValues.join(", ")}`;
+  return error.message ?? "is not valid";
+}
+
+/** RFC 6901, section 3: `~` and `/` are escaped. */
+function escapePointer(token: string): string {
+  return token.replaceAll("~", "~0").replaceAll("/", "~1");
+}
