@@ -18,7 +18,20 @@ export default defineConfig({
           pool: "forks",
         },
       },
-      { extends: true, test: { name: "e2e", include: ["tests/e2e/**/*.test.ts"], testTimeout: 600_000, hookTimeout: 300_000, pool: "forks" } },
+      {
+        extends: true,
+        test: { name: "faults", include: ["tests/faults/**/*.test.ts"], testTimeout: 120_000, pool: "forks" },
+      },
+      {
+        extends: true,
+        test: {
+          name: "e2e",
+          include: ["tests/e2e/**/*.test.ts"],
+          testTimeout: 600_000,
+          hookTimeout: 300_000,
+          pool: "forks",
+        },
+      },
     ],
   },
 });

@@ -60,18 +60,23 @@ export function env(): Env {
 
 /** Sets variables for this process and reads the settings anew: a start decides ports and addresses while it runs. */
 export function setEnv(values: Record<string, string>): void {
-  Object.assign(process.env, values);
+  Object.assign(process.env, values); // a string for every variable: an undefined would become the text "undefined"
   cached = undefined;
 }
 
-/** The process's variables with some changed, for a child process. */
-export function childEnv(values: Record<string, string>): NodeJS.ProcessEnv {
-  return { ...process.env, ...values };
+/** The process's variables with some changed, for a child process; undefined takes a variable away. */
+export function childEnv(values: Record<string, string | undefined>): NodeJS.ProcessEnv {
+  return { ...process.env, ...values } as NodeJS.ProcessEnv;
 }
 
 /** Whether a continuous-integration service runs this process: plain output, no questions. */
 export function isContinuousIntegration(): boolean {
   return process.env.CI !== undefined && process.env.CI !== "" && process.env.CI !== "false";
+}
+
+/** Folders that programs are looked for in. */
+export function searchPath(): string {
+  return process.env.PATH ?? "/usr/bin:/bin";
 }
 
 /** Address of a running test server (its superuser), given by the test command to the test runner. */

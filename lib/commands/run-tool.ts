@@ -1,5 +1,6 @@
 /** Runs a program of the system to its end and turns its failure into one plain line. */
 import { spawn } from "node:child_process";
+import { childEnv } from "@/lib/env";
 import { AppError } from "@/lib/errors";
 
 export interface ToolOptions {
@@ -27,7 +28,7 @@ export function runToEnd(program: string, args: string[], options: ToolOptions =
   return new Promise((resolve, reject) => {
     const child = spawn(program, args, {
       cwd: options.cwd,
-      env: options.env ?? process.env,
+      env: options.env ?? childEnv({}),
       stdio: options.show === true ? ["ignore", "inherit", "inherit"] : ["ignore", "pipe", "pipe"],
     });
     const out = { stdout: "", stderr: "" };

@@ -1,8 +1,9 @@
 /** Global set-up of the projects with a database: a server and a migrated template, whoever started the run. */
 import type { TestProject } from "vitest/node";
 import { ensureTemplate } from "@/db/test-database";
+import { CHECKOUT } from "@/lib/commands/checkout";
+import { joinTestServer } from "@/lib/commands/test-server";
 import { findTestServerUrl } from "@/lib/env";
-import { CHECKOUT, joinTestServer } from "./test-server";
 
 declare module "vitest" {
   interface ProvidedContext {

@@ -5,13 +5,13 @@
 import { mkdirSync, readdirSync, rmSync } from "node:fs";
 import { join } from "node:path";
 import { type LocalServer, startLocalServer } from "@/db/local-server";
+import { CHECKOUT } from "@/lib/commands/checkout";
 import { ensurePostgres } from "@/lib/commands/ensure-postgres";
 import { findHolder, tryLock, waitForLock } from "@/lib/commands/process-lock";
 
-export const CHECKOUT = join(import.meta.dirname, "../..");
-const HOME = join(CHECKOUT, ".local-test");
-const USERS = join(HOME, "users");
-const GATE = join(HOME, "server.lock");
+export const TEST_HOME = join(CHECKOUT, ".local-test");
+const USERS = join(TEST_HOME, "users");
+const GATE = join(TEST_HOME, "server.lock");
 
 export interface TestServer {
   /** Connection of the superuser. */
@@ -25,8 +25,8 @@ export async function joinTestServer(): Promise<TestServer> {
   mkdirSync(USERS, { recursive: true });
   const gate = await waitForLock(GATE);
   try {
-    await ensurePostgres({ home: HOME });
-    const server = await startLocalServer({ home: HOME, fsync: false, maxConnections: 300 });
+    await ensurePostgres({ home: TEST_HOME });
+    const server = await startLocalServer({ home: TEST_HOME, fsync: false, maxConnections: 300 });
     const user = tryLock(join(USERS, String(process.pid)));
     return {
       url: server.urlOf("postgres"),

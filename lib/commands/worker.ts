@@ -1,0 +1,49 @@
+/** `npm run worker`: takes jobs from the queues and hands each to its service, until it is asked to stop. */
+import { once } from "node:events";
+import PgBoss from "pg-boss";
+import { v7 } from "uuid";
+import { closeDb, getDb } from "@/db/client";
+import { assertAppRoleIsWeak } from "@/db/roles";
+import { jobHandlers } from "@/lib/commands/job-handlers";
+import { env } from "@/lib/env";
+import type { JobPayloads } from "@/lib/jobs/payloads";
+import { QUEUES, type QueueName } from "@/lib/jobs/queues";
+import type { Ctx } from "@/lib/services/context";
+
+/** Time for running jobs at a stop; one that needs longer is taken up again by the next worker. */
+const FINISH_WITHIN_MS = 10_000;
+const POLL_SECONDS = 0.5;
+
+export default async function worker(_args: string[], signal: AbortSignal): Promise<number> {
+  await assertAppRoleIsWeak(getDb());
+  const boss = new PgBoss({
+    connectionString: env().databaseUrl,
+    application_name: "trimwright-worker",
+    schema: "pgboss",
+    migrate: false,
+    max: 4,
+  });
+  boss.on("error", (error) => console.error(`job queues: ${error.message}`));
+  await boss.start();
+  try {
+    for (const queue of QUEUES) await serveQueue(boss, queue);
+    console.log("worker ready");
+    if (!signal.aborted) await once(signal, "abort");
+  } finally {
+    await boss.stop({ graceful: true, wait: true, timeout: FINISH_WITHIN_MS });
+    await closeDb();
+  }
+  return 0;
+}
+
+async function serveQueue<Q extends QueueName>(boss: PgBoss, queue: Q): Promise<void> {
+  const handle = jobHandlers[queue];
+  if (handle === undefined) return;
+  await boss.work<JobPayloads[Q]>(queue, { batchSize: 1, pollingIntervalSeconds: POLL_SECONDS }, async (jobs) => {
+    for (const job of jobs) await handle(systemCtx(job.id), job.data);
+  });
+}
+
+function systemCtx(requestId: string): Ctx {
+  return { db: getDb(), actor: { kind: "system" }, now: () => new Date(), newId: v7, requestId, address: "" };
+}
