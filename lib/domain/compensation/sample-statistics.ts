@@ -31,3 +31,14 @@ export function standardDeviationOf(values: readonly number[]): number | null {
   }
   return Math.sqrt(Math.max(0, squares - (rest * rest) / values.length) / (values.length - 1));
 }
+
+/** Largest less smallest value; 0 for none or one. */
+export function spreadOf(values: readonly number[]): number {
+  let low = Number.POSITIVE_INFINITY;
+  let high = Number.NEGATIVE_INFINITY;
+  for (const value of values) {
+    low = Math.min(low, value);
+    high = Math.max(high, value);
+  }
+  return values.length === 0 ? 0 : high - low;
+}

@@ -1,0 +1,105 @@
+import { AppError } from "@/lib/errors";
+import type { DevicePoint, Purpose, Reading } from "./types";
+
+/** Temperatures closer than this count as one, K. */
+const DISTINCT_K = 5;
+/** Means of decimals differ from the decimal by rounding; 5 K written are 5 K. */
+const ROUNDING_K = 1e-9;
+
+interface PointSums {
+  row: number;
+  rows: number;
+  chamberC: number;
+  deviceTemp: number;
+  unloaded: number;
+  unloadedSignal: number;
+  loaded: number;
+  signalPerKg: number;
+  inverseKg: number;
+}
+
+/** The rows of one device in one run, gathered by point. */
+export interface DeviceRows {
+  points: Map<number, PointSums>;
+  hardwareId: string | null;
+}
+
+/** Sums the rows of a run by device and point, in one pass. Rows may come in any order. */
+export function gatherReadings(readings: readonly Reading[]): Map<string, DeviceRows> {
+  const devices = new Map<string, DeviceRows>();
+  for (const reading of readings) {
+    let device = devices.get(reading.serial);
+    if (!device) {
+      device = { points: new Map(), hardwareId: null };
+      devices.set(reading.serial, device);
+    }
+    device.hardwareId ??= reading.hardwareId ?? null;
+    let sums = device.points.get(reading.point);
+    if (!sums) {
+      sums = {
+        row: reading.row,
+        rows: 0,
+        chamberC: 0,
+        deviceTemp: 0,
+        unloaded: 0,
+        unloadedSignal: 0,
+        loaded: 0,
+        signalPerKg: 0,
+        inverseKg: 0,
+      };
+      device.points.set(reading.point, sums);
+    }
+    sums.rows++;
+    sums.chamberC += reading.chamberC;
+    sums.deviceTemp += reading.deviceTemp;
+    if (reading.loadKg === 0) {
+      sums.unloaded++;
+      sums.unloadedSignal += reading.signalMvV;
+    } else {
+      sums.loaded++;
+      sums.signalPerKg += reading.signalMvV / reading.loadKg;
+      sums.inverseKg += 1 / reading.loadKg;
+    }
+  }
+  return devices;
+}
+
+/**
+ * Means of a device's points in rising point number: temperatures over all rows, zero over the unloaded ones, span as
+ * the mean over the loaded ones of (signal − zero)·capacity/load (contract, section 3).
+ * @throws AppError `reading.loaded_without_unloaded` {serial, point, row}.
+ */
+export function pointMeans(serial: string, rows: DeviceRows, purpose: Purpose, capacityKg: number): DevicePoint[] {
+  const means: DevicePoint[] = [];
+  for (const [point, sums] of rows.points) {
+    if (sums.unloaded === 0) throw new AppError("reading.loaded_without_unloaded", { serial, point, row: sums.row });
+    const zeroMvV = sums.unloadedSignal / sums.unloaded;
+    means.push({
+      purpose,
+      point,
+      chamberC: sums.chamberC / sums.rows,
+      deviceTemp: sums.deviceTemp / sums.rows,
+      zeroMvV,
+      spanMvV: sums.loaded > 0 ? (capacityKg * (sums.signalPerKg - zeroMvV * sums.inverseKg)) / sums.loaded : null,
+    });
+  }
+  return means.sort((a, b) => a.point - b.point);
+}
+
+/**
+ * Points by distinct temperature, rising: a temperature counts when it is at least 5 K above the last one counted;
+ * points in between belong to that last one.
+ */
+export function groupByTemperature<P extends { chamberC: number }>(points: readonly P[]): P[][] {
+  const groups: P[][] = [];
+  let counted = 0;
+  for (const point of [...points].sort((a, b) => a.chamberC - b.chamberC)) {
+    const group = groups.at(-1);
+    if (group && point.chamberC - counted < DISTINCT_K - ROUNDING_K) group.push(point);
+    else {
+      groups.push([point]);
+      counted = point.chamberC;
+    }
+  }
+  return groups;
+}

@@ -1,0 +1,62 @@
+import { studentQuantile } from "./distributions";
+import { poolingLimit } from "./envelope";
+import { findGrubbsStatistic, grubbsCritical } from "./grubbs";
+import { meanOf, standardDeviationOf } from "./sample-statistics";
+import { toleranceFactor } from "./tolerance";
+import type { FamilyRules, GainCoefficients, PooledResult } from "./types";
+
+/** Fewer sample devices than this can't stand for a lot. */
+export const SAMPLE_MIN = 5;
+
+/** Two-sided level of the outlier test on the sample's gainTc. */
+const OUTLIER_ALPHA = 0.05;
+
+/**
+ * The lot's gainTc from the sample's individual trims: plain means, an exact two-sided normal tolerance interval
+ * mean ± k·s and a confidence interval of the mean. Inside when k·s is at most the pooling limit.
+ * @returns null for an empty sample; intervals and verdict need two devices.
+ */
+export function poolGain(trims: readonly GainCoefficients[], order: 1 | 2, family: FamilyRules): PooledResult | null {
+  const slopes = trims.map((trim) => trim.gainTc);
+  const gains = trims.map((trim) => trim.gain);
+  const gainTc = meanOf(slopes);
+  const meanGain = meanOf(gains);
+  if (gainTc === null || meanGain === null) return null;
+  const { coverage, confidence } = family;
+  const n = trims.length;
+  const sd = standardDeviationOf(slopes);
+  const limit = poolingLimit(family);
+  const pooled: PooledResult = {
+    gainTc,
+    ...(order === 2 && { gainTc2: meanOf(trims.map((trim) => trim.gainTc2 ?? 0)) ?? 0 }),
+    sd,
+    n,
+    meanGain,
+    sdGain: standardDeviationOf(gains),
+    confidenceInterval: null,
+    toleranceInterval: null,
+    toleranceFactor: null,
+    coverage,
+    confidence,
+    limit,
+    verdict: "not-judged",
+  };
+  if (sd === null) return pooled;
+  const ofMean = (studentQuantile((1 + confidence) / 2, n - 1) * sd) / Math.sqrt(n);
+  const k = toleranceFactor({ n, coverage, confidence });
+  pooled.confidenceInterval = [gainTc - ofMean, gainTc + ofMean];
+  pooled.toleranceInterval = [gainTc - k * sd, gainTc + k * sd];
+  pooled.toleranceFactor = k;
+  pooled.verdict = k * sd <= limit ? "inside" : "outside";
+  return pooled;
+}
+
+/** The device whose gainTc stands out from the sample by Grubbs' test (two-sided, 5 %), if one does. */
+export function findGainTcOutlier(
+  trims: readonly GainCoefficients[],
+): { index: number; g: number; critical: number } | undefined {
+  const found = findGrubbsStatistic(trims.map((trim) => trim.gainTc));
+  if (!found) return undefined;
+  const critical = grubbsCritical(trims.length, OUTLIER_ALPHA);
+  return found.g > critical ? { ...found, critical } : undefined;
+}

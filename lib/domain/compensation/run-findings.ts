@@ -1,0 +1,232 @@
+import { maximumPermissibleError } from "./envelope";
+import { FindingGatherer } from "./finding-gatherer";
+import { makeFinding } from "./findings";
+import { findGrubbsStatistic, grubbsCritical } from "./grubbs";
+import { groupByTemperature } from "./points";
+import { spreadOf } from "./sample-statistics";
+import type { FamilyRules, Finding, Purpose, Reading } from "./types";
+
+/** Spread of the chamber within a point, K: OIML R 60-2:2021, 2.7.3.1. */
+const STABLE_K = 2;
+/** A span run further than this from the reference is at another distinct temperature. */
+const SPAN_NEAR_K = 5;
+/** Outlier test on repeats: fewer can't show one; level over all repeats of a run. */
+const REPEATS_MIN = 5;
+const OUTLIER_ALPHA = 0.01;
+
+type DeviceRows = Map<number, Reading[]>;
+
+interface PointSummary {
+  point: number;
+  chamberC: number;
+  deviceTemp: number;
+  loaded: boolean;
+}
+
+function byDevice(readings: readonly Reading[]): Map<string, DeviceRows> {
+  const devices = new Map<string, DeviceRows>();
+  for (const reading of readings) {
+    let points = devices.get(reading.serial);
+    if (!points) {
+      points = new Map();
+      devices.set(reading.serial, points);
+    }
+    const rows = points.get(reading.point);
+    if (rows) rows.push(reading);
+    else points.set(reading.point, [reading]);
+  }
+  return devices;
+}
+
+function summarise(point: number, rows: readonly Reading[]): PointSummary {
+  let chamberC = 0;
+  let deviceTemp = 0;
+  let loaded = false;
+  for (const row of rows) {
+    chamberC += row.chamberC / rows.length;
+    deviceTemp += row.deviceTemp / rows.length;
+    loaded ||= row.loadKg > 0;
+  }
+  return { point, chamberC, deviceTemp, loaded };
+}
+
+function checkRow(reading: Reading, family: FamilyRules, found: FindingGatherer): void {
+  const { serial, point, soakMin, loadKg, row } = reading;
+  const { minSoakMinutes, minLoadFraction, capacityKg } = family;
+  if (soakMin < minSoakMinutes) found.add("soak.too_short", serial, point, -soakMin, { soakMin, minSoakMinutes, row });
+  const minLoadKg = minLoadFraction * capacityKg;
+  // The threshold is a product of decimals: a load written exactly at it is not below.
+  if (loadKg > 0 && loadKg < minLoadKg * (1 - 1e-12))
+    found.add("load.below_threshold", serial, point, -loadKg, { loadKg, minLoadKg, row });
+  if (loadKg > capacityKg) found.add("load.above_capacity", serial, point, loadKg, { loadKg, capacityKg, row });
+}
+
+function checkClock(rows: readonly Reading[], found: FindingGatherer): void {
+  if (rows.length < 2) return;
+  const timed = rows.map((reading) => ({ reading, time: Date.parse(reading.takenAt) }));
+  timed.sort((a, b) => a.reading.soakMin - b.reading.soakMin || a.time - b.time);
+  let latest = Number.NEGATIVE_INFINITY;
+  for (const { reading, time } of timed) {
+    const { serial, point, row } = reading;
+    if (time < latest) found.add("clock.backwards", serial, point, latest - time, { row });
+    else latest = time;
+  }
+}
+
+function checkChamber(rows: readonly Reading[], found: FindingGatherer): void {
+  const spreadK = spreadOf(rows.map((row) => row.chamberC));
+  const first = rows[0];
+  if (first && spreadK > STABLE_K)
+    found.add("point.unstable", first.serial, first.point, spreadK, { spreadK, limitK: STABLE_K });
+}
+
+/** Repeats of one key: rows of it, and what of the signal should be equal in each. */
+interface Repeats {
+  rows: Reading[];
+  /** In verification intervals. */
+  values: number[];
+  /** Load in verification intervals. */
+  load: number;
+}
+
+/** Unloaded repeats as signals, loaded ones as spans brought to their mean load; both in v. */
+function repeatsOf(rows: readonly Reading[], family: FamilyRules): Repeats[] {
+  const perMvV = family.intervals / family.nominalMvV;
+  const unloaded = rows.filter((row) => row.loadKg === 0);
+  const loaded = rows.filter((row) => row.loadKg > 0);
+  const zero = unloaded.reduce((sum, row) => sum + row.signalMvV / unloaded.length, 0);
+  const kg = loaded.reduce((sum, row) => sum + row.loadKg / loaded.length, 0);
+  const repeats: Repeats[] = [];
+  if (unloaded.length > 1)
+    repeats.push({ rows: unloaded, values: unloaded.map((row) => row.signalMvV * perMvV), load: 0 });
+  if (loaded.length > 1) {
+    const values = loaded.map((row) => ((row.signalMvV - zero) * perMvV * kg) / row.loadKg);
+    repeats.push({ rows: loaded, values, load: (kg / family.capacityKg) * family.intervals });
+  }
+  return repeats;
+}
+
+function checkScatter({ rows, values, load }: Repeats, family: FamilyRules, found: FindingGatherer): void {
+  const spreadV = spreadOf(values);
+  const limitV = maximumPermissibleError(load, family);
+  const first = rows[0];
+  if (first && spreadV > limitV)
+    found.add("repeats.scatter", first.serial, first.point, spreadV / limitV, { spreadV, limitV, row: first.row });
+}
+
+/** Grubbs on every set of repeats that is large enough, at a level shared by all of them. */
+function checkOutliers(all: readonly Repeats[], found: FindingGatherer): void {
+  const critical = new Map<number, number>();
+  for (const { rows, values } of all) {
+    const n = values.length;
+    const statistic = findGrubbsStatistic(values);
+    if (!statistic) continue;
+    let limit = critical.get(n);
+    if (limit === undefined) {
+      limit = grubbsCritical(n, OUTLIER_ALPHA / all.length);
+      critical.set(n, limit);
+    }
+    const { row, serial, point } = rows[statistic.index] as Reading;
+    if (statistic.g > limit)
+      found.add("reading.outlier", serial, point, statistic.g / limit, { row, g: statistic.g, critical: limit });
+  }
+}
+
+/** Whether the device's own temperature rises (or falls) with the chamber from each distinct temperature to the next. */
+function followsChamber(groups: readonly PointSummary[][]): boolean {
+  const means = groups.map((group) => group.reduce((sum, point) => sum + point.deviceTemp / group.length, 0));
+  const steps = means.slice(1).map((mean, i) => Math.sign(mean - (means[i] as number)));
+  return steps.every((step) => step !== 0 && step === steps[0]);
+}
+
+/** Checks over a device's temperatures in a run that is to have several. Returns whether a temperature came twice. */
+function checkTemperatures(
+  serial: string,
+  points: readonly PointSummary[],
+  family: FamilyRules,
+  found: FindingGatherer,
+): boolean {
+  const groups = groupByTemperature(points);
+  const spanK = spreadOf(points.map((point) => point.chamberC));
+  const { minTemperatureSpanK } = family;
+  if (groups.length < 2) found.add("temperatures.not_distinct", serial, null, 0, {});
+  if (spanK < minTemperatureSpanK - 1e-9)
+    found.add("span.temperature_too_small", serial, null, -spanK, { spanK, minTemperatureSpanK });
+  if (!followsChamber(groups)) found.add("thermometer.not_monotonic", serial, null, 0, {});
+  return groups.some((group) => group.length > 1);
+}
+
+function checkLoads(
+  serial: string,
+  points: readonly PointSummary[],
+  purpose: Purpose,
+  family: FamilyRules,
+  found: FindingGatherer,
+): void {
+  const { referenceC } = family;
+  for (const { point, loaded, chamberC } of points) {
+    if (!loaded) found.add("load.missing", serial, point, 0, {});
+    const away = Math.abs(chamberC - referenceC);
+    if (purpose === "span" && away > SPAN_NEAR_K)
+      found.add("span.far_from_reference", serial, point, away, { chamberC, referenceC });
+  }
+}
+
+/** Devices whose readings equal those of another one digit for digit, which real ones never do. */
+function checkCopies(devices: ReadonlyMap<string, DeviceRows>): Finding[] {
+  const seen = new Map<string, string>();
+  const copies: string[] = [];
+  for (const [serial, points] of devices) {
+    const content: number[] = [];
+    for (const rows of points.values())
+      for (const row of rows) content.push(row.point, row.deviceTemp, row.loadKg, row.signalMvV);
+    const key = content.join(" ");
+    if (seen.has(key)) copies.push(serial);
+    else seen.set(key, serial);
+  }
+  if (copies.length === 0) return [];
+  const [first] = copies;
+  const serial = copies.length === 1 ? first : null;
+  return [makeFinding("reading.copied", { serial, data: { devices: copies.length, serials: copies.slice(0, 20) } })];
+}
+
+/** Points at which most devices of the run were read. */
+function usualPoints(devices: ReadonlyMap<string, DeviceRows>): number[] {
+  const counts = new Map<number, number>();
+  for (const points of devices.values())
+    for (const point of points.keys()) counts.set(point, (counts.get(point) ?? 0) + 1);
+  return [...counts].filter(([, count]) => count > devices.size / 2).map(([point]) => point);
+}
+
+/**
+ * What to know about a run whose rows are in order: equal findings of many devices are gathered, one a code and point.
+ * @param readings rows that {@link checkRun} took.
+ */
+export function listRunFindings(family: FamilyRules, purpose: Purpose, readings: readonly Reading[]): Finding[] {
+  const found = new FindingGatherer();
+  const devices = byDevice(readings);
+  const usual = usualPoints(devices);
+  const severalTemperatures = purpose === "sample" || purpose === "zero" || purpose === "verification";
+  const loadedRun = purpose === "sample" || purpose === "span" || purpose === "verification";
+  const manyRepeats: Repeats[] = [];
+  let returned = false;
+  for (const reading of readings) checkRow(reading, family, found);
+  for (const [serial, rowsByPoint] of devices) {
+    const points: PointSummary[] = [];
+    for (const [point, rows] of rowsByPoint) {
+      points.push(summarise(point, rows));
+      checkClock(rows, found);
+      checkChamber(rows, found);
+      for (const repeats of repeatsOf(rows, family)) {
+        checkScatter(repeats, family, found);
+        if (repeats.values.length >= REPEATS_MIN) manyRepeats.push(repeats);
+      }
+    }
+    if (severalTemperatures) returned = checkTemperatures(serial, points, family, found) || returned;
+    if (loadedRun) checkLoads(serial, points, purpose, family, found);
+    for (const point of usual) if (!rowsByPoint.has(point)) found.add("point.missing", serial, point, 0, {});
+  }
+  checkOutliers(manyRepeats, found);
+  const notes = severalTemperatures && !returned ? [makeFinding("point.no_return")] : [];
+  return [...found.list(), ...checkCopies(devices), ...notes];
+}
