@@ -1,0 +1,93 @@
+import { isPlainPath } from "@/builders/bundle/zip";
+import { getCrc } from "@/builders/codec/crc";
+import { AppError } from "@/lib/errors";
+
+const LOCAL = 0x04034b50;
+const CENTRAL = 0x02014b50;
+const END = 0x06054b50;
+const LOCAL_BYTES = 30;
+const CENTRAL_BYTES = 46;
+const END_BYTES = 22;
+/** 1980-01-01 as a DOS date; midnight is 0. */
+const ZIP_EPOCH_DOS_DATE = 0x0021;
+
+/**
+ * Reads the kind of zip that {@link writeZip} makes and no other (record layout: PKWARE APPNOTE 6.3). Being strict keeps
+ * out what readers disagree on: entries twice, hidden bytes between entries, directories that tell other than the
+ * entries, paths that leave the folder, compressed entries that unpack to more than they take.
+ * @returns content by path, in the order of the file; the contents are views into `bytes`.
+ * @throws AppError `bundle.zip_malformed` {at}
+ */
+export function readZip(bytes: Uint8Array): Map<string, Uint8Array> {
+  const view = new DataView(bytes.buffer, bytes.byteOffset, bytes.byteLength);
+  const end = bytes.length - END_BYTES;
+  assertZip(end >= 0 && view.getUint32(end, true) === END, end, "has no end record as its last bytes");
+  const count = view.getUint16(end + 10, true);
+  const directory = view.getUint32(end + 16, true);
+  const plainEnd =
+    view.getUint32(end + 4, true) === 0 &&
+    view.getUint16(end + 8, true) === count &&
+    view.getUint16(end + 20, true) === 0;
+  assertZip(plainEnd, end, "spans disks or has a comment");
+  assertZip(directory + view.getUint32(end + 12, true) === end, end, "has bytes between directory and end record");
+
+  const files = new Map<string, Uint8Array>();
+  let at = 0;
+  let entry = directory;
+  let last = "";
+  for (let i = 0; i < count; i++) {
+    assertZip(entry + CENTRAL_BYTES <= end && view.getUint32(entry, true) === CENTRAL, entry, "has a broken directory");
+    assertZip(view.getUint32(entry + 42, true) === at, entry, "has bytes between its entries");
+    const { path, content, next } = readEntry(bytes, view, at, directory);
+    assertSameHead(view, at, entry, path.length);
+    assertZip(path > last, at, "has entries that are not in order, or one twice");
+    const name = textOf(bytes.subarray(entry + CENTRAL_BYTES, entry + CENTRAL_BYTES + path.length));
+    assertZip(name === path, entry, "names an entry differently in its directory");
+    files.set(path, content);
+    last = path;
+    at = next;
+    entry += CENTRAL_BYTES + path.length;
+  }
+  assertZip(at === directory && entry === end, at, "has bytes that belong to no entry");
+  return files;
+}
+
+function readEntry(bytes: Uint8Array, view: DataView, at: number, directory: number) {
+  assertZip(at + LOCAL_BYTES <= directory && view.getUint32(at, true) === LOCAL, at, "has a broken entry");
+  assertZip(view.getUint16(at + 6, true) === 0, at, "has an entry with flags");
+  assertZip(view.getUint16(at + 8, true) === 0, at, "has an entry that is not stored");
+  const dated = view.getUint16(at + 10, true) === 0 && view.getUint16(at + 12, true) === ZIP_EPOCH_DOS_DATE;
+  assertZip(dated, at, "has an entry with another date than 1980-01-01");
+  const size = view.getUint32(at + 18, true);
+  assertZip(view.getUint32(at + 22, true) === size, at, "has an entry of two sizes");
+  assertZip(view.getUint16(at + 28, true) === 0, at, "has an entry with extra fields");
+  const start = at + LOCAL_BYTES + view.getUint16(at + 26, true);
+  assertZip(start + size <= directory, at, "has an entry that runs into the directory");
+  const path = textOf(bytes.subarray(at + LOCAL_BYTES, start));
+  assertZip(isPlainPath(path), at, "has an entry whose path is not plain");
+  const content = bytes.subarray(start, start + size);
+  assertZip(getCrc("CRC-32/ISO-HDLC")(content, 0, size) === view.getUint32(at + 14, true), at, "has a damaged entry");
+  return { path, content, next: start + size };
+}
+
+/** Version, flags, method, date, check, sizes and length of the name stand twice and have to agree; nothing may follow. */
+function assertSameHead(view: DataView, local: number, central: number, nameLength: number): void {
+  for (let i = 4; i < 28; i += 2) {
+    const same = view.getUint16(local + i, true) === view.getUint16(central + i + 2, true);
+    assertZip(same, central, "has an entry that its directory describes differently");
+  }
+  const plain =
+    view.getUint16(central + 28, true) === nameLength &&
+    view.getUint16(central + 30, true) === 0 &&
+    view.getUint16(central + 32, true) === 0 &&
+    view.getUint16(central + 34, true) === 0;
+  assertZip(plain, central, "has a directory with extra fields or comments");
+}
+
+function textOf(bytes: Uint8Array): string {
+  return String.fromCharCode(...bytes.subarray(0, 300));
+}
+
+function assertZip(holds: boolean, at: number, reason: string): void {
+  if (!holds) throw new AppError("bundle.zip_malformed", { at, message: `The zip ${reason}` });
+}
