@@ -1,0 +1,101 @@
+import { sql } from "kysely";
+import type { Db, Trx } from "@/db/executor";
+import type { Reading } from "@/lib/domain/compensation/types";
+
+/** Rows a statement takes: keeps one statement's parameters at a few megabytes. */
+const ROWS_A_STATEMENT = 20_000;
+
+/**
+ * Stores a run's readings, column by column through `unnest`.
+ * @param deviceIds the device of every serial that occurs.
+ */
+export async function insertReadings(
+  trx: Trx,
+  runId: string,
+  readings: readonly Reading[],
+  deviceIds: ReadonlyMap<string, string>,
+): Promise<void> {
+  for (let from = 0; from < readings.length; from += ROWS_A_STATEMENT) {
+    await insertChunk(trx, runId, readings.slice(from, from + ROWS_A_STATEMENT), deviceIds);
+  }
+}
+
+async function insertChunk(
+  trx: Trx,
+  runId: string,
+  rows: readonly Reading[],
+  deviceIds: ReadonlyMap<string, string>,
+): Promise<void> {
+  const column = <T>(of: (row: Reading) => T) => rows.map(of);
+  await sql`
+    insert into reading (run_id, row_number, device_id, point, chamber_c, soak_min, device_temp, load_kg, signal_mv_v,
+      taken_at, position, hardware_id, dwell_s, output_mv_v)
+    select ${runId}::uuid, given.* from unnest(
+      ${column((row) => row.row)}::int[],
+      ${column((row) => deviceIds.get(row.serial) as string)}::uuid[],
+      ${column((row) => row.point)}::int[],
+      ${column((row) => row.chamberC)}::float8[],
+      ${column((row) => row.soakMin)}::float8[],
+      ${column((row) => row.deviceTemp)}::float8[],
+      ${column((row) => row.loadKg)}::float8[],
+      ${column((row) => row.signalMvV)}::float8[],
+      ${column((row) => row.takenAt)}::timestamptz[],
+      ${column((row) => row.position ?? null)}::text[],
+      ${column((row) => row.hardwareId ?? null)}::text[],
+      ${column((row) => row.dwellS ?? null)}::float8[],
+      ${column((row) => row.outputMvV ?? null)}::float8[]) as given
+  `.execute(trx);
+}
+
+export type StoredReading = Reading & { runId: string };
+
+function selectReadings(db: Db) {
+  return db
+    .selectFrom("reading")
+    .innerJoin("device", "device.id", "reading.deviceId")
+    .select([
+      "reading.runId",
+      "reading.rowNumber as row",
+      "device.serial",
+      "reading.point",
+      "reading.chamberC",
+      "reading.soakMin",
+      "reading.deviceTemp",
+      "reading.loadKg",
+      "reading.signalMvV",
+      "reading.takenAt",
+      "reading.position",
+      "reading.hardwareId",
+      "reading.dwellS",
+      "reading.outputMvV",
+    ]);
+}
+
+const readingOf = <R extends { takenAt: Date }>(row: R) => ({ ...row, takenAt: row.takenAt.toISOString() });
+
+/** All readings of some runs, by run and row of the file. */
+export async function listReadings(db: Db, runIds: readonly string[]): Promise<StoredReading[]> {
+  if (runIds.length === 0) return [];
+  const rows = await selectReadings(db)
+    .where("reading.runId", "in", [...runIds])
+    .orderBy("reading.runId")
+    .orderBy("reading.rowNumber")
+    .execute();
+  return rows.map(readingOf);
+}
+
+/** One page of a run's readings by row of the file, of one device where a serial is given. */
+export async function listReadingsPage(
+  db: Db,
+  runId: string,
+  page: { afterRow: number; limit: number; serial?: string },
+): Promise<StoredReading[]> {
+  let query = selectReadings(db)
+    .where("reading.runId", "=", runId)
+    .where("reading.rowNumber", ">", page.afterRow)
+    .orderBy("reading.rowNumber")
+    .limit(page.limit);
+  if (page.serial !== undefined) query = query.where("device.serial", "=", page.serial);
+  const rows = await query.execute();
+  return rows.map(readingOf);
+}
