@@ -105,3 +105,14 @@ export async function insertDevices(trx: Trx, { lotId, devices, addedAt, addedBy
     from unnest(${ids}::uuid[], ${serials}::text[], ${hardwareIds}::text[]) as given (id, serial, hardware_id)
   `.execute(trx);
 }
+
+/** Length of the longest serial among a family's devices; 0 where it has none. */
+export async function findSerialLengthMax(db: Db, familyId: string): Promise<number> {
+  const row = await db
+    .selectFrom("device")
+    .innerJoin("lot", "lot.id", "device.lotId")
+    .select(sql<number | null>`max(length(device.serial))::int`.as("length"))
+    .where("lot.familyId", "=", familyId)
+    .executeTakeFirst();
+  return row?.length ?? 0;
+}

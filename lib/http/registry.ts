@@ -1,4 +1,13 @@
 import type { AnyCommand } from "./command";
+import { equipmentCommands } from "./commands/equipment";
+import { familyCommands } from "./commands/families";
+import { layoutCommands } from "./commands/layouts";
+import { lotCommands } from "./commands/lots";
 
 /** Every command of the API, for the OpenAPI document and the tests. A route file without its command here fails a test. */
-export const commands: readonly AnyCommand[] = [];
+export const commands: readonly AnyCommand[] = [
+  ...familyCommands,
+  ...layoutCommands,
+  ...equipmentCommands,
+  ...lotCommands,
+];

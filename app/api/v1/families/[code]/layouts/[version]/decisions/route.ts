@@ -1,0 +1,4 @@
+import { decideLayout } from "@/lib/http/commands/layouts";
+import { route } from "@/lib/http/route";
+
+export const POST = route(decideLayout);

@@ -1,0 +1,4 @@
+import { submitLayout } from "@/lib/http/commands/layouts";
+import { route } from "@/lib/http/route";
+
+export const POST = route(submitLayout);

@@ -1,0 +1,4 @@
+import { decideRevision } from "@/lib/http/commands/families";
+import { route } from "@/lib/http/route";
+
+export const POST = route(decideRevision);

@@ -1,0 +1,4 @@
+import { submitRevision } from "@/lib/http/commands/families";
+import { route } from "@/lib/http/route";
+
+export const POST = route(submitRevision);

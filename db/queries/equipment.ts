@@ -1,0 +1,93 @@
+import type { Selectable } from "kysely";
+import type { Db, Trx } from "@/db/executor";
+import type { Equipment } from "@/db/generated/types.generated";
+import { isUuid } from "@/db/queries/code-or-id";
+import { AppError } from "@/lib/errors";
+
+export type EquipmentKind = "sensor" | "chamber" | "load" | "reader";
+
+export interface EquipmentRow {
+  id: string;
+  code: string;
+  kind: EquipmentKind;
+  certificate: string;
+  /** `YYYY-MM-DD`, last day of validity. */
+  calibratedUntil: string;
+  /** Expanded uncertainty of the certificate in the kind's unit: °C, °C, kg, mV/V. */
+  uncertainty: number;
+  createdAt: Date;
+  createdBy: string;
+  updatedAt: Date;
+}
+
+const equipmentColumns = [
+  "id",
+  "code",
+  "kind",
+  "certificate",
+  "calibratedUntil",
+  "uncertainty",
+  "createdAt",
+  "createdBy",
+  "updatedAt",
+] as const;
+
+/** The driver is told to leave dates as text (they have no time zone); the generated type calls them Date. */
+function rowOf(row: Pick<Selectable<Equipment>, (typeof equipmentColumns)[number]>): EquipmentRow {
+  return { ...row, kind: row.kind as EquipmentKind, calibratedUntil: row.calibratedUntil as unknown as string };
+}
+
+/** Equipment by code. */
+export async function listEquipment(
+  db: Db,
+  { after, limit }: { after?: string; limit: number },
+): Promise<EquipmentRow[]> {
+  const rows = await db
+    .selectFrom("equipment")
+    .select(equipmentColumns)
+    .$if(after !== undefined, (query) => query.where("code", ">", after as string))
+    .orderBy("code")
+    .limit(limit)
+    .execute();
+  return rows.map(rowOf);
+}
+
+/** Pieces of equipment with these codes, by code; unknown codes have no row. */
+export async function findEquipmentByCode(db: Db, codes: readonly string[]): Promise<EquipmentRow[]> {
+  if (codes.length === 0) return [];
+  const rows = await db
+    .selectFrom("equipment")
+    .select(equipmentColumns)
+    .where("code", "in", codes)
+    .orderBy("code")
+    .execute();
+  return rows.map(rowOf);
+}
+
+/** A piece of equipment, locked until commit. @throws AppError `equipment.not_found` */
+export async function lockEquipment(trx: Trx, codeOrId: string): Promise<EquipmentRow> {
+  const row = await trx
+    .selectFrom("equipment")
+    .select(equipmentColumns)
+    .where(isUuid(codeOrId) ? "id" : "code", "=", isUuid(codeOrId) ? codeOrId : codeOrId.trim().toUpperCase())
+    .forUpdate()
+    .executeTakeFirstOrThrow(
+      () => new AppError("equipment.not_found", { equipment: codeOrId, message: `There is no equipment ${codeOrId}.` }),
+    );
+  return rowOf(row);
+}
+
+/** @throws constraint `equipment_code_unique` → `equipment.exists` */
+export async function insertEquipment(trx: Trx, row: EquipmentRow): Promise<void> {
+  await trx.insertInto("equipment").values(row).execute();
+}
+
+export type EquipmentChange = Partial<Pick<EquipmentRow, "certificate" | "calibratedUntil" | "uncertainty">>;
+
+export async function updateEquipment(
+  trx: Trx,
+  id: string,
+  change: EquipmentChange & { updatedAt: Date },
+): Promise<void> {
+  await trx.updateTable("equipment").set(change).where("id", "=", id).execute();
+}

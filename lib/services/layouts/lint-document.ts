@@ -1,0 +1,46 @@
+import { type LintResult, lintLayout } from "@/builders/codec/lint";
+import type { Db } from "@/db/executor";
+import { findSerialLengthMax } from "@/db/queries/devices";
+import { type FamilyRow, findNewestPublishedRevision, getFamily, listFamilyRevisions } from "@/db/queries/families";
+import { listPublishedLayoutDocuments } from "@/db/queries/layouts";
+import { AppError } from "@/lib/errors";
+import { assertRole, type PersonCtx } from "@/lib/services/context";
+import { type LayoutDocument, parseLayout } from "@/schemas/documents/layout";
+
+/** A document judged by its schema and by its meaning, within its family. Never throws for what is wrong with it. */
+export async function lintForFamily(
+  db: Db,
+  family: FamilyRow,
+  document: unknown,
+): Promise<LintResult & { layout?: LayoutDocument }> {
+  const revision = (await findNewestPublishedRevision(db, family.id)) ?? (await listFamilyRevisions(db, family.id))[0];
+  const { layout, problems = [] } = parseLayout(document);
+  const { errors, warnings, step } = lintLayout(document, {
+    family: revision ? { ...revision.document, code: family.code } : undefined,
+    publishedVersions: await listPublishedLayoutDocuments(db, family.id),
+    existingSerialLengthMax: await findSerialLengthMax(db, family.id),
+  });
+  const judged = new Set(problems.map((problem) => problem.path));
+  return { errors: [...problems, ...errors.filter((error) => !judged.has(error.path))], warnings, step, layout };
+}
+
+/** What a document's author should know before asking for publishing. @throws AppError `family.not_found` */
+export async function lintDocument(ctx: PersonCtx, input: { family: string; document: unknown }): Promise<LintResult> {
+  assertRole(ctx, "engineer", "reviewer");
+  return lintForFamily(ctx.db, await getFamily(ctx.db, input.family), input.document);
+}
+
+/** The document typed, if nothing stands against it. @throws AppError `layout.invalid` {errors, warnings, step} */
+export async function getValidLayout(
+  db: Db,
+  family: FamilyRow,
+  document: unknown,
+): Promise<Pick<LintResult, "step"> & { layout: LayoutDocument }> {
+  const { layout, errors, warnings, step } = await lintForFamily(db, family, document);
+  const [first] = errors;
+  if (first || !layout) {
+    const message = first ? `${first.path || "The document"}: ${first.message}` : "The document is no layout.";
+    throw new AppError("layout.invalid", { errors, warnings, step, message });
+  }
+  return { layout, step };
+}

@@ -1,0 +1,68 @@
+import { z } from "zod";
+import { id, pageOf, sha256Hex, timestamp, version } from "@/schemas/api/common";
+import { publishState, signedDecision } from "@/schemas/api/families";
+
+export const LAYOUT_MAX_BYTES = 1024 * 1024;
+
+const problem = z.object({
+  path: z.string().meta({ description: "JSON pointer into the document" }),
+  code: z.string(),
+  message: z.string(),
+});
+
+export const layoutStepName = z.enum(["major", "minor", "patch"]);
+
+export const lintReply = z.object({
+  errors: z.array(problem),
+  warnings: z.array(problem),
+  step: layoutStepName
+    .nullable()
+    .meta({ description: "Smallest step against the newest published lower version; null where there is none" }),
+});
+
+export const layoutSummary = z.object({
+  id,
+  family: z.string(),
+  version: z.string(),
+  state: publishState,
+  firmware: z.string(),
+  order: z.number().int(),
+  bytes: z.number().int().meta({ description: "Size of the memory" }),
+  sha256: sha256Hex,
+  step: layoutStepName.nullable(),
+  createdAt: timestamp,
+  createdBy: z.string(),
+  updatedAt: timestamp,
+  updatedBy: z.string(),
+  submittedAt: timestamp.nullable(),
+  submittedBy: z.string().nullable(),
+  publishedAt: timestamp.nullable(),
+  retiredAt: timestamp.nullable(),
+});
+
+export const layoutList = pageOf(layoutSummary);
+
+export const layoutReply = z.object({
+  ...layoutSummary.shape,
+  draft: z
+    .number()
+    .int()
+    .meta({ description: "Number of the saved draft, for `?draft=` or If-Match of the next save" }),
+  document: z.record(z.string(), z.unknown()),
+  source: z.string().meta({ description: "The document as its author wrote it" }),
+  makers: z.array(z.string()),
+  decisions: z.array(signedDecision),
+});
+
+export const layoutPath = z.object({ code: z.string().trim().min(1).max(64), version });
+
+export const saveQuery = z.object({
+  draft: z.coerce
+    .number()
+    .int()
+    .min(1)
+    .optional()
+    .meta({ description: "Number of the draft that was edited; another one now saved is a 409" }),
+});
+
+export const retireBody = z.object({ reason: z.string().trim().max(2000).optional() });
