@@ -1,0 +1,78 @@
+import { sql } from "kysely";
+import type { Db } from "@/db/executor";
+
+export interface LotProgressRow {
+  devices: number;
+  /** Runs that no later one supersedes. */
+  runs: number;
+  /** Devices with at least one reading. */
+  devicesRead: number;
+  /** Devices whose newest coefficient set is approved, and is not yet decided. */
+  devicesApproved: number;
+  devicesProposed: number;
+  /** Devices of the live package, 0 where nothing is live. */
+  devicesLive: number;
+  /** Devices whose last write record was verified, of all that have one. */
+  devicesVerified: number;
+  devicesWritten: number;
+}
+
+/** How many of a lot's devices have got how far. */
+export async function getLotProgress(db: Db, lotId: string): Promise<LotProgressRow> {
+  const { rows } = await sql<LotProgressRow>`
+    with member as (select d.id from device d where d.lot_id = ${lotId}::uuid),
+    newest as (
+      select s.state from member
+      cross join lateral (
+        select c.state from coefficient_set c where c.device_id = member.id and c.state is not null
+        order by c.created_at desc, c.id desc limit 1) s),
+    last_write as (
+      select w.outcome from member
+      cross join lateral (
+        select r.outcome from write_record r where r.device_id = member.id
+        order by r.finished_at desc, r.counter desc limit 1) w)
+    select
+      (select count(*)::int from member) as devices,
+      (select count(*)::int from run r where r.lot_id = ${lotId}::uuid
+        and not exists (select 1 from run later where later.supersedes_id = r.id)) as runs,
+      (select count(*)::int from member where exists (select 1 from reading g where g.device_id = member.id)) as devices_read,
+      (select count(*)::int from newest where state = 'approved') as devices_approved,
+      (select count(*)::int from newest where state = 'proposed') as devices_proposed,
+      (select count(*)::int from image i join package p on p.id = i.package_id
+        where p.lot_id = ${lotId}::uuid and p.state = 'live') as devices_live,
+      (select count(*)::int from last_write where outcome = 'verified') as devices_verified,
+      (select count(*)::int from last_write) as devices_written
+  `.execute(db);
+  return rows[0] as LotProgressRow;
+}
+
+export interface NewestPackageRow {
+  id: string;
+  version: string;
+  state: string;
+  /** Checks with the verdict fail. */
+  failed: number;
+}
+
+/** The lot's package with the highest number, whatever became of it. */
+export async function findNewestPackage(db: Db, lotId: string): Promise<NewestPackageRow | undefined> {
+  return db
+    .selectFrom("package")
+    .select(["package.id", "package.version", "package.state"])
+    .select((eb) =>
+      eb
+        .selectFrom("packageCheck")
+        .select(sql<number>`count(*)::int`.as("count"))
+        .whereRef("packageCheck.packageId", "=", "package.id")
+        .where("packageCheck.verdict", "=", "fail")
+        .$asScalar()
+        .as("failed"),
+    )
+    .where("package.lotId", "=", lotId)
+    .orderBy("package.versionMajor", "desc")
+    .orderBy("package.versionMinor", "desc")
+    .orderBy("package.versionPatch", "desc")
+    .limit(1)
+    .executeTakeFirst()
+    .then((row) => row && { ...row, failed: row.failed ?? 0 });
+}
