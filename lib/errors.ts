@@ -33,6 +33,7 @@ const STATUS_BY_CODE: Record<string, { status: number; title: string }> = {
   "device.in_other_lot": { status: 409, title: "The serial belongs to another lot" },
   "run.duplicate": { status: 409, title: "The same bytes were uploaded before" },
   "run.already_superseded": { status: 409, title: "That run was superseded before" },
+  "run.too_many_rows": { status: 413, title: "Too many rows" },
   "layout.not_published": { status: 409, title: "The layout is not published" },
   "layout.firmware_mismatch": { status: 409, title: "The layout is not for the lot's firmware" },
   "package.nothing_approved": { status: 409, title: "No approved coefficients to pack" },

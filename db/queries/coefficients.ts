@@ -248,3 +248,15 @@ export async function listNewestSets(db: Db, lotId: string, filter: NewestSetFil
   if (filter.limit !== undefined) query = query.limit(filter.limit);
   return (await query.execute()).map((row) => setOf(row) as unknown as NewestSetRow);
 }
+
+/** How many sets of a derivation are in each state; those without values are left out. */
+export async function countSetStates(db: Db, derivationId: string): Promise<Partial<Record<SetState, number>>> {
+  const rows = await db
+    .selectFrom("coefficientSet")
+    .select(["state", sql<number>`count(*)::int`.as("count")])
+    .where("derivationId", "=", derivationId)
+    .where("state", "is not", null)
+    .groupBy("state")
+    .execute();
+  return Object.fromEntries(rows.map(({ state, count }) => [state, count]));
+}

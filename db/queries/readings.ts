@@ -99,3 +99,20 @@ export async function listReadingsPage(
   const rows = await query.execute();
   return rows.map(readingOf);
 }
+
+/** Serials that stand in more than one of the runs under one purpose, by purpose and serial; the first few. */
+export async function listRepeatedSerials(
+  db: Db,
+  runIds: readonly string[],
+  limit: number,
+): Promise<{ purpose: string; serial: string; runs: string[] }[]> {
+  if (runIds.length < 2) return [];
+  const { rows } = await sql<{ purpose: string; serial: string; runs: string[] }>`
+    select run.purpose, device.serial, array_agg(used.run_id::text order by used.run_id) as runs
+    from (select distinct run_id, device_id from reading where run_id = any(${runIds as string[]}::uuid[])) used
+    join run on run.id = used.run_id join device on device.id = used.device_id
+    group by run.purpose, device.serial having count(*) > 1
+    order by run.purpose, device.serial limit ${limit}
+  `.execute(db);
+  return rows;
+}

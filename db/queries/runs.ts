@@ -195,3 +195,17 @@ export async function listRunFindings(db: Db, runIds: readonly string[]): Promis
     data: row.data as Exclude<Json, null> as Record<string, unknown>,
   }));
 }
+
+/** Equipment by codes, as far as there is any. */
+export async function findEquipmentByCodes(
+  db: Db,
+  codes: readonly string[],
+): Promise<{ id: string; code: string; certificate: string; calibratedUntil: string; uncertainty: number }[]> {
+  if (codes.length === 0) return [];
+  return db
+    .selectFrom("equipment")
+    .select(["id", "code", "certificate", "calibratedUntil", "uncertainty"])
+    .where("code", "in", [...codes])
+    .orderBy("code")
+    .execute();
+}

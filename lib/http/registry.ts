@@ -1,8 +1,11 @@
 import type { AnyCommand } from "./command";
+import { coefficientCommands } from "./commands/coefficients";
+import { derivationCommands } from "./commands/derivations";
 import { equipmentCommands } from "./commands/equipment";
 import { familyCommands } from "./commands/families";
 import { layoutCommands } from "./commands/layouts";
 import { lotCommands } from "./commands/lots";
+import { runCommands } from "./commands/runs";
 
 /** Every command of the API, for the OpenAPI document and the tests. A route file without its command here fails a test. */
 export const commands: readonly AnyCommand[] = [
@@ -10,4 +13,7 @@ export const commands: readonly AnyCommand[] = [
   ...layoutCommands,
   ...equipmentCommands,
   ...lotCommands,
+  ...runCommands,
+  ...derivationCommands,
+  ...coefficientCommands,
 ];

@@ -44,6 +44,9 @@ export const pageQuery = z.object({
   cursor: z.string().max(200).optional(),
 });
 
+/** The same of a list whose cursor is the last id. */
+export const idPageQuery = pageQuery.extend({ cursor: id.optional() });
+
 export type PageQuery = z.output<typeof pageQuery>;
 
 /** `items` and `next`, null at the end. */

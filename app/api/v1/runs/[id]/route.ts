@@ -1,0 +1,4 @@
+import { getRun } from "@/lib/http/commands/runs";
+import { route } from "@/lib/http/route";
+
+export const GET = route(getRun);

@@ -1,0 +1,107 @@
+import type { Reading } from "@/lib/domain/compensation/types";
+import type { Column } from "./columns";
+import { readDecimal, readLabel, readSerial, readTime, readWhole } from "./read-cell";
+import type { RowErrorList } from "./row-error-list";
+
+/** What could be read of a row that is wrong. */
+export interface PartialRow {
+  serial?: string;
+  point?: number;
+}
+
+interface CellRule {
+  field: Exclude<keyof Reading, "row">;
+  read: (text: string) => string | number | undefined;
+  code: string;
+  needs: string;
+  optional?: boolean;
+}
+
+const decimal = (field: CellRule["field"], optional = false): CellRule => ({
+  field,
+  read: readDecimal,
+  code: "reading.not_a_number",
+  needs: "a decimal number such as -0.0139659",
+  optional,
+});
+
+const label = (field: CellRule["field"]): CellRule => ({
+  field,
+  read: readLabel,
+  code: "reading.text_invalid",
+  needs: "at most 64 characters, starting with a letter or digit",
+  optional: true,
+});
+
+const RULES: Record<Column, CellRule> = {
+  serial: {
+    field: "serial",
+    read: readSerial,
+    code: "reading.serial_invalid",
+    needs: "1 to 32 of A–Z, 0–9, dot, hyphen and underscore, starting with a letter or digit",
+  },
+  point: { field: "point", read: readWhole, code: "reading.point_invalid", needs: "an integer of at most nine digits" },
+  chamber_c: decimal("chamberC"),
+  soak_min: decimal("soakMin"),
+  device_temp: decimal("deviceTemp"),
+  load_kg: decimal("loadKg"),
+  signal_mv_v: decimal("signalMvV"),
+  taken_at: {
+    field: "takenAt",
+    read: readTime,
+    code: "reading.time_invalid",
+    needs: "a time with its offset (RFC 3339), such as 2026-03-02T09:48:00Z",
+  },
+  position: label("position"),
+  hardware_id: label("hardwareId"),
+  dwell_s: decimal("dwellS", true),
+  output_mv_v: decimal("outputMvV", true),
+};
+
+const CELL_SHOWN_MAX = 40;
+
+/** What a cell held, for a message: shortened, without control characters. */
+function shown(text: string): string {
+  const clean = text.replace(/\p{C}/gu, "�");
+  return clean.length > CELL_SHOWN_MAX ? `${clean.slice(0, CELL_SHOWN_MAX)}…` : clean;
+}
+
+/**
+ * One row as a reading; every cell that is wrong is named.
+ * @param line of the file, the header being 1.
+ */
+export function readRow(
+  cells: readonly string[],
+  columns: readonly Column[],
+  line: number,
+  errors: RowErrorList,
+): { reading: Reading } | { partial: PartialRow } {
+  if (cells.length !== columns.length) {
+    const message = `The row has ${cells.length} cells, the header ${columns.length}.`;
+    errors.add({ row: line, column: "", code: "row.cells_wrong", message });
+    return { partial: {} };
+  }
+  const values: Partial<Record<keyof Reading, string | number | null>> = { row: line };
+  let wrong = false;
+  for (let index = 0; index < columns.length; index++) {
+    const column = columns[index] as Column;
+    const { field, read, code, needs, optional } = RULES[column];
+    const text = (cells[index] as string).trim();
+    if (text === "" && optional) values[field] = null;
+    else {
+      const value = read(text);
+      if (value === undefined) {
+        wrong = true;
+        const found = text === "" ? "the cell is empty" : `found "${shown(text)}"`;
+        errors.add({ row: line, column, code, message: `Takes ${needs}; ${found}.` });
+      } else values[field] = value;
+    }
+  }
+  if (!wrong) return { reading: values as unknown as Reading };
+  return {
+    partial: {
+      ...(typeof values.serial === "string" && { serial: values.serial }),
+      ...(typeof values.point === "number" && { point: values.point }),
+    },
+  };
+}

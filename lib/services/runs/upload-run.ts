@@ -1,0 +1,165 @@
+import { createHash } from "node:crypto";
+import type { Trx } from "@/db/executor";
+import { markSetsStale } from "@/db/queries/coefficients";
+import { insertDevices } from "@/db/queries/devices";
+import { getLot, type LotRow, lockLot } from "@/db/queries/lots";
+import { insertReadings } from "@/db/queries/readings";
+import {
+  findEquipmentByCodes,
+  findRunBySha256,
+  getRun,
+  insertRun,
+  insertRunEquipment,
+  insertRunFindings,
+} from "@/db/queries/runs";
+import type { Purpose, Reading } from "@/lib/domain/compensation/types";
+import { AppError } from "@/lib/errors";
+import { assertRole, type PersonCtx } from "@/lib/services/context";
+import { appendEvent } from "@/lib/services/ledger/append-event";
+import { getLotRules } from "@/lib/services/lots/lot-rules";
+import { listEquipmentFindings } from "./equipment-findings";
+import { getRunView } from "./get-run";
+import { type RunFile, readRunFile } from "./read-run-file";
+
+export interface NewRunInput {
+  lot: string;
+  purpose: Purpose;
+  /** Codes. */
+  equipment: readonly string[];
+  addDevices: boolean;
+  supersedes?: string;
+  reason?: string;
+  fileName?: string;
+  bytes: Buffer;
+}
+
+/**
+ * Takes a run's readings into a lot, all of them or none.
+ * @throws AppError `lot.not_found`, `run.duplicate` {run}, `run.invalid` {errors, errorCount}, `run.too_many_rows`,
+ * `run.equipment_unknown` {codes}, `run.supersedes_other_lot`, `run.supersedes_other_purpose`, `run.already_superseded`
+ */
+export async function uploadRun(ctx: PersonCtx, input: NewRunInput) {
+  assertRole(ctx, "engineer");
+  const lot = await getLot(ctx.db, input.lot);
+  const sha256 = createHash("sha256").update(input.bytes).digest();
+  const earlier = await findRunBySha256(ctx.db, lot.id, sha256);
+  if (earlier) {
+    const on = earlier.createdAt.toISOString().slice(0, 10);
+    throw new AppError("run.duplicate", { run: earlier.id, message: `These very bytes were uploaded on ${on}.` });
+  }
+  await assertMaySupersede(ctx, lot, input);
+  const equipment = await requireEquipment(ctx, input.equipment);
+  const { rules } = await getLotRules(ctx.db, lot);
+  const file = await readRunFile(ctx.db, { ...input, lot, rules });
+  const findings = [...file.findings, ...listEquipmentFindings(equipment, lastTakenAt(file.readings))];
+
+  const id = ctx.newId();
+  const staleSets = await ctx.db.transaction().execute(async (trx) => {
+    // Under the lot's lock, a derivation that is just being finished sees this run, or this run sees its sets.
+    if (input.supersedes !== undefined || file.unknown.length > 0) await lockLot(trx, lot.id);
+    await addUnknown(ctx, trx, lot, file);
+    await insertRun(trx, runRowOf(ctx, id, lot, sha256, input, file), input.bytes);
+    await insertRunEquipment(
+      trx,
+      id,
+      equipment.map(({ code: _, ...one }) => one),
+    );
+    await insertRunFindings(
+      trx,
+      id,
+      findings.map((finding) => ({ ...finding, id: ctx.newId() })),
+    );
+    await insertReadings(trx, id, file.readings, file.deviceIds);
+    const stale = input.supersedes === undefined ? [] : await markSetsStale(trx, input.supersedes, ctx.now());
+    const count = stale.reduce((sum, one) => sum + one.count, 0);
+    await appendEvent(ctx, trx, {
+      action: "run.uploaded",
+      subject: id,
+      data: {
+        lot: lot.code,
+        purpose: input.purpose,
+        sha256: sha256.toString("hex"),
+        rows: file.readings.length,
+        devices: file.deviceIds.size,
+        added: file.unknown.length,
+        equipment: equipment.map((one) => one.code),
+        ...(input.supersedes !== undefined && {
+          supersedes: input.supersedes,
+          staleSets: count,
+          staleIn: stale.map((one) => one.derivationId),
+        }),
+      },
+      texts: { reason: input.reason },
+    });
+    return count;
+  });
+  return { ...(await getRunView(ctx, id)), added: file.unknown.length, staleSets };
+}
+
+async function assertMaySupersede(ctx: PersonCtx, lot: LotRow, input: NewRunInput): Promise<void> {
+  if (input.supersedes === undefined) return;
+  const replaced = await getRun(ctx.db, input.supersedes);
+  if (replaced.lotId !== lot.id) {
+    throw new AppError("run.supersedes_other_lot", {
+      lot: replaced.lotCode,
+      message: `That run belongs to lot ${replaced.lotCode}.`,
+    });
+  }
+  if (replaced.purpose !== input.purpose) {
+    const message = `That run is a ${replaced.purpose} run; only one of the same purpose can replace it.`;
+    throw new AppError("run.supersedes_other_purpose", { purpose: replaced.purpose, message });
+  }
+  if (replaced.supersededById !== null) {
+    throw new AppError("run.already_superseded", {
+      by: replaced.supersededById,
+      message: "That run was replaced before; replace the newer one.",
+    });
+  }
+}
+
+async function requireEquipment(ctx: PersonCtx, codes: readonly string[]) {
+  const equipment = await findEquipmentByCodes(ctx.db, codes);
+  const unknown = codes.filter((code) => !equipment.some((one) => one.code === code));
+  if (unknown.length === 0) return equipment;
+  throw new AppError("run.equipment_unknown", {
+    codes: unknown,
+    message: `There is no equipment ${unknown.join(", ")}; add it first.`,
+  });
+}
+
+function lastTakenAt(readings: readonly Reading[]): string {
+  let last = "";
+  for (const { takenAt } of readings) if (takenAt > last) last = takenAt;
+  return last;
+}
+
+async function addUnknown(ctx: PersonCtx, trx: Trx, lot: LotRow, file: RunFile): Promise<void> {
+  const devices = file.unknown.map((serial) => ({ id: ctx.newId(), serial }));
+  await insertDevices(trx, { lotId: lot.id, devices, addedAt: ctx.now(), addedBy: ctx.actor.id });
+  for (const { id, serial } of devices) file.deviceIds.set(serial, id);
+}
+
+function runRowOf(ctx: PersonCtx, id: string, lot: LotRow, sha256: Buffer, input: NewRunInput, file: RunFile) {
+  let low = Number.POSITIVE_INFINITY;
+  let high = Number.NEGATIVE_INFINITY;
+  for (const { chamberC } of file.readings) {
+    low = Math.min(low, chamberC);
+    high = Math.max(high, chamberC);
+  }
+  return {
+    id,
+    lotId: lot.id,
+    purpose: input.purpose,
+    sha256,
+    byteCount: input.bytes.length,
+    rowCount: file.readings.length,
+    deviceCount: file.deviceIds.size,
+    fileName: input.fileName ?? null,
+    temperatureLowC: low,
+    temperatureHighC: high,
+    supersedesId: input.supersedes ?? null,
+    reason: input.reason ?? null,
+    createdAt: ctx.now(),
+    createdBy: ctx.actor.id,
+  };
+}
