@@ -7,3 +7,9 @@ export async function listPersonNames(db: Db, ids: readonly (string | null)[]): 
   const rows = await db.selectFrom("person").select(["id", "name"]).where("id", "in", wanted).execute();
   return new Map(rows.map((row) => [row.id, row.name]));
 }
+
+/** Whether a person has one-time codes enrolled, so that decisions ask for one. */
+export async function isOneTimeEnrolled(db: Db, personId: string): Promise<boolean> {
+  const row = await db.selectFrom("person").select("oneTimeEnrolledAt").where("id", "=", personId).executeTakeFirst();
+  return row?.oneTimeEnrolledAt != null;
+}

@@ -1,0 +1,73 @@
+import { afterAll, beforeAll, describe, expect, it } from "vitest";
+import { openTestApi, type TestApi } from "../support/api";
+
+let api: TestApi;
+beforeAll(async () => {
+  api = await openTestApi();
+});
+afterAll(() => api.close());
+
+const sensor = {
+  code: "PT-01",
+  kind: "sensor",
+  certificate: "K-2026-118",
+  calibratedUntil: "2027-03-31",
+  uncertainty: 0.03,
+};
+const add = (body: object, as: "engineer" | "auditor" = "engineer") => api.call("POST", "/equipment", { as, body });
+const change = (code: string, body: object) => api.call("PATCH", `/equipment/${code}`, { as: "engineer", body });
+
+describe("equipment", () => {
+  it("is added, listed by code and changed", async () => {
+    const { status, body } = await add({ ...sensor, code: "pt-01" });
+    expect(status).toBe(201);
+    expect(body).toMatchObject(sensor);
+    await add({ ...sensor, code: "CH-01", kind: "chamber" });
+    const list = await api.call("GET", "/equipment", { as: "auditor", query: { limit: 1 } });
+    expect(list.body.items.map((one: { code: string }) => one.code)).toEqual(["CH-01"]);
+    const rest = await api.call("GET", "/equipment", { as: "auditor", query: { cursor: list.body.next } });
+    expect(rest.body.items).toMatchObject([sensor]);
+    const changed = await change("pt-01", { certificate: "K-2027-004", calibratedUntil: "2028-03-31" });
+    expect(changed.body).toMatchObject({ ...sensor, certificate: "K-2027-004", calibratedUntil: "2028-03-31" });
+  });
+
+  it("stands in the ledger with old and new values", async () => {
+    const { canonical } = await api.owner
+      .selectFrom("ledgerEvent")
+      .select("canonical")
+      .where("action", "=", "equipment.changed")
+      .executeTakeFirstOrThrow();
+    expect(JSON.parse(canonical)).toMatchObject({
+      subject: "PT-01",
+      data: { from: { certificate: "K-2026-118" }, to: { certificate: "K-2027-004" } },
+    });
+  });
+
+  it.each([
+    ["/kind", { kind: "scale" }],
+    ["/calibratedUntil", { calibratedUntil: "2027-02-30" }],
+    ["/uncertainty", { uncertainty: -1 }],
+    ["/certificate", { certificate: " " }],
+    ["/code", { code: "a b" }],
+  ])("is refused with a bad %s", async (path, values) => {
+    const { status, body } = await add({ ...sensor, code: "BAD", ...values });
+    expect([status, body.errors[0].path]).toEqual([422, path]);
+  });
+
+  it("answers 409 for a code that is taken, 404 for one that is not there, 422 for no change", async () => {
+    expect((await add(sensor)).body.code).toBe("equipment.exists");
+    const missing = await change("NONE", { uncertainty: 1 });
+    expect([missing.status, missing.body.code]).toEqual([404, "equipment.not_found"]);
+    expect((await change("PT-01", {})).status).toBe(422);
+    expect((await change("PT-01", { kind: "load" })).status).toBe(422);
+  });
+
+  it("is kept by engineers, read by readers", async () => {
+    expect((await add({ ...sensor, code: "NO" }, "auditor")).body.code).toBe("auth.forbidden");
+    expect((await api.call("PATCH", "/equipment/PT-01", { as: "reviewer", body: { uncertainty: 1 } })).status).toBe(
+      403,
+    );
+    expect((await api.call("GET", "/equipment", { as: "operator" })).status).toBe(403);
+    expect((await api.call("GET", "/equipment")).status).toBe(401);
+  });
+});
