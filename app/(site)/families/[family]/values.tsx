@@ -1,0 +1,42 @@
+import { familyFieldGroups } from "../family-fields";
+
+type Values = Record<string, unknown>;
+
+const shown = (value: unknown) => (value === undefined ? "—" : String(value).replace(/^-/, "−"));
+
+/** A revision's values with unit and explanation. Against an earlier one, what changed stands old → new. */
+export function FamilyValues({ values, before }: { values: Values; before?: Values }) {
+  const rows = [
+    { name: "name", label: "Name", unit: undefined, help: "As people call it." },
+    {
+      name: "accuracyClass",
+      label: "Accuracy class",
+      unit: undefined,
+      help: "Of OIML R 60; decides the error envelope.",
+    },
+    ...familyFieldGroups.flatMap((group) => group.fields),
+  ];
+  return (
+    <dl className="grid gap-x-8 sm:grid-cols-2">
+      {rows.map(({ name, label, unit, help }) => {
+        const changed = before !== undefined && before[name] !== values[name];
+        return (
+          <div key={name} className="border-b border-rule py-2">
+            <dt className="flex items-baseline justify-between gap-4 text-sm font-semibold">
+              {label}
+              {changed ? <span className="text-xs font-semibold text-ochre">changed</span> : null}
+            </dt>
+            <dd>
+              <span className={name === "name" ? "" : "font-mono"}>
+                {changed ? <span className="text-ink-soft">{shown(before[name])} → </span> : null}
+                {shown(values[name])}
+              </span>
+              {unit ? <span className="text-ink-soft"> {unit}</span> : null}
+              <span className="block text-xs text-ink-soft">{help}</span>
+            </dd>
+          </div>
+        );
+      })}
+    </dl>
+  );
+}
