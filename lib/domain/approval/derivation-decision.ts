@@ -59,27 +59,26 @@ export function chooseSets(sets: readonly DecidedSet[], decision: Decision, seri
 export function findingsInReach(
   findings: readonly DecidedFinding[],
   sets: readonly DecidedSet[],
-  chosen: readonly DecidedSet[],
-  partial: boolean,
+  serials?: readonly string[],
 ): DecidedFinding[] {
-  const inReach = new Set((partial ? chosen : sets.filter((set) => set.role !== "excluded")).map((set) => set.serial));
+  const inReach = new Set(serials ?? sets.filter((set) => set.role !== "excluded").map((set) => set.serial));
   return findings.filter(({ serial }) => serial === null || inReach.has(serial));
 }
 
-/**
- * Refuses an approval that a hard finding stands against, or a soft one that nobody accepted with a reason.
- * @param acknowledged ids of findings accepted now or earlier.
- * @throws AppError `derivation.hard_finding`, `derivation.not_acknowledged`, both {findings, count}
- */
-export function assertApprovable(findings: readonly DecidedFinding[], acknowledged: ReadonlySet<string>): void {
+/** Refuses an approval that a hard finding stands against. @throws AppError `derivation.hard_finding` {findings, count} */
+export function assertNoHardFinding(findings: readonly DecidedFinding[]): void {
   const hard = findings.filter((finding) => finding.severity === "hard");
-  if (hard.length > 0) {
-    throw refusal("derivation.hard_finding", hard, "This stands against approval");
-  }
+  if (hard.length > 0) throw refusal("derivation.hard_finding", hard, "This stands against approval");
+}
+
+/**
+ * Refuses an approval with a soft finding that nobody accepted with a reason.
+ * @param acknowledged ids of findings accepted now or earlier.
+ * @throws AppError `derivation.not_acknowledged` {findings, count}
+ */
+export function assertAcknowledged(findings: readonly DecidedFinding[], acknowledged: ReadonlySet<string>): void {
   const open = findings.filter((finding) => finding.severity === "soft" && !acknowledged.has(finding.id));
-  if (open.length > 0) {
-    throw refusal("derivation.not_acknowledged", open, "Acknowledge this with a reason");
-  }
+  if (open.length > 0) throw refusal("derivation.not_acknowledged", open, "Acknowledge this with a reason");
 }
 
 function refusal(code: string, findings: readonly DecidedFinding[], words: string): AppError {

@@ -11,7 +11,8 @@ import {
 } from "@/db/queries/derivations";
 import { listMakers } from "@/db/queries/makers";
 import {
-  assertApprovable,
+  assertAcknowledged,
+  assertNoHardFinding,
   chooseSets,
   type DecidedSet,
   findingsInReach,
@@ -50,8 +51,9 @@ export async function decideDerivation(ctx: PersonCtx, input: Input): Promise<De
     await assertNoMaker(ctx, trx, derivation);
     assertOpen(derivation);
     const sets = await lockSetStates(trx, derivation.id);
+    const acknowledge =
+      input.decision === "approve" ? await checkFindings(trx, input, sets) : new Map<string, string>();
     const chosen = chooseSets(sets, input.decision, input.serials);
-    const acknowledge = input.decision === "approve" ? await checkFindings(trx, input, sets, chosen) : new Map();
     await record(ctx, trx, { derivation, input, chosen, acknowledge });
   });
   return getDerivationView(ctx, input.id);
@@ -76,17 +78,13 @@ function assertOpen({ state }: DerivationRow): void {
 }
 
 /** @returns reasons by finding of what is accepted with this approval. */
-async function checkFindings(
-  trx: Trx,
-  input: Input,
-  sets: DecidedSet[],
-  chosen: DecidedSet[],
-): Promise<Map<string, string>> {
+async function checkFindings(trx: Trx, input: Input, sets: readonly DecidedSet[]): Promise<Map<string, string>> {
   const findings = await listDerivationFindings(trx, input.id);
-  const inReach = findingsInReach(findings, sets, chosen, input.serials !== undefined);
+  const inReach = findingsInReach(findings, sets, input.serials);
+  assertNoHardFinding(inReach);
   const now = resolveAcknowledgements(findings, inReach, input.acknowledge);
   const earlier = (await listAcknowledgements(trx, input.id)).map((one) => one.findingId);
-  assertApprovable(inReach, new Set([...now.keys(), ...earlier]));
+  assertAcknowledged(inReach, new Set([...now.keys(), ...earlier]));
   return now;
 }
 
