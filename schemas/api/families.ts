@@ -91,6 +91,7 @@ const revisionMembers = {
   createdAt: timestamp,
   createdBy: z.string(),
   submittedAt: timestamp.nullable(),
+  submittedBy: z.string().nullable(),
   publishedAt: timestamp.nullable(),
   retiredAt: timestamp.nullable(),
 };

@@ -19,6 +19,15 @@ const published = {
 const states = {
   revision: published,
   layout: published,
+  lot: {
+    planned: { tone: "idle", word: "planned", title: "Serials at most, no readings yet" },
+    reading: { tone: "info", word: "readings", title: "Runs are there, nothing derived yet" },
+    derived: { tone: "info", word: "derived", title: "Coefficients are there, no package yet" },
+    building: { tone: "info", word: "packing", title: "A package is in the making" },
+    "in-review": inReview,
+    approved: { tone: "good", shape: "ring", word: "approved", title: "A package is signed, not yet live" },
+    live: { tone: "good", word: "live", title: "Stations write a package of this lot" },
+  },
   derivation: {
     working: { tone: "wait", word: "working", title: "Being computed" },
     proposed: { tone: "wait", word: "waiting for a second person" },

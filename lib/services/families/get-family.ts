@@ -38,7 +38,7 @@ export async function getFamily(ctx: Ctx, codeOrId: string): Promise<FamilyView>
   const revisions = await listFamilyRevisions(ctx.db, id);
   const names = await listPersonNames(
     ctx.db,
-    revisions.map((revision) => revision.createdBy),
+    revisions.flatMap((revision) => [revision.createdBy, revision.submittedBy]),
   );
   const views = await Promise.all(revisions.map((revision) => viewOf(ctx, row.code, revision, names)));
   return { ...summaryOf(row), revisions: views };
@@ -70,6 +70,7 @@ async function viewOf(
     createdAt: row.createdAt.toISOString(),
     createdBy: names.get(row.createdBy) ?? "",
     submittedAt: time(row.submittedAt),
+    submittedBy: row.submittedBy === null ? null : (names.get(row.submittedBy) ?? ""),
     publishedAt: time(row.publishedAt),
     retiredAt: time(row.retiredAt),
     makers,

@@ -37,6 +37,11 @@ export async function listSignatures(db: Db, kind: MakerSubject & SubjectKind, s
   return {
     decisions,
     makers: [...new Set(makers.map((maker) => maker.name))],
-    makerIds: makers.map((maker) => maker.personId),
   };
+}
+
+/** Whether the person of a page wrote a subject, so that they can't decide on it. */
+export async function isMaker(ctx: PersonCtx, kind: MakerSubject, subjectId: string): Promise<boolean> {
+  const makers = await listMakers(ctx.db, kind, subjectId);
+  return makers.some((maker) => maker.personId === ctx.actor.id);
 }

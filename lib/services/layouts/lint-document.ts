@@ -1,11 +1,28 @@
-import { type LintResult, lintLayout } from "@/builders/codec/lint";
+import { type LintOptions, type LintResult, lintLayout } from "@/builders/codec/lint";
 import type { Db } from "@/db/executor";
 import { findSerialLengthMax } from "@/db/queries/devices";
 import { type FamilyRow, findNewestPublishedRevision, getFamily, listFamilyRevisions } from "@/db/queries/families";
 import { listPublishedLayoutDocuments } from "@/db/queries/layouts";
 import { AppError } from "@/lib/errors";
-import { assertRole, type PersonCtx } from "@/lib/services/context";
+import { assertRole, type Ctx, type PersonCtx } from "@/lib/services/context";
 import { type LayoutDocument, parseLayout } from "@/schemas/documents/layout";
+
+/** What a family's layouts are judged against: its newest published values (else the newest), its published layouts, its serials. */
+async function getLintBasis(db: Db, family: FamilyRow): Promise<Required<Omit<LintOptions, "family">> & LintOptions> {
+  const revision = (await findNewestPublishedRevision(db, family.id)) ?? (await listFamilyRevisions(db, family.id))[0];
+  return {
+    family: revision && { ...revision.document, code: family.code },
+    publishedVersions: await listPublishedLayoutDocuments(db, family.id),
+    existingSerialLengthMax: await findSerialLengthMax(db, family.id),
+  };
+}
+
+export type LintBasis = Awaited<ReturnType<typeof getLintBasis>>;
+
+/** The same for the editor, which judges while a document is written. @throws AppError `family.not_found` */
+export async function getEditorBasis(ctx: Ctx, family: string): Promise<LintBasis> {
+  return getLintBasis(ctx.db, await getFamily(ctx.db, family));
+}
 
 /** A document judged by its schema and by its meaning, within its family. Never throws for what is wrong with it. */
 export async function lintForFamily(
@@ -13,13 +30,8 @@ export async function lintForFamily(
   family: FamilyRow,
   document: unknown,
 ): Promise<LintResult & { layout?: LayoutDocument }> {
-  const revision = (await findNewestPublishedRevision(db, family.id)) ?? (await listFamilyRevisions(db, family.id))[0];
   const { layout, problems = [] } = parseLayout(document);
-  const { errors, warnings, step } = lintLayout(document, {
-    family: revision ? { ...revision.document, code: family.code } : undefined,
-    publishedVersions: await listPublishedLayoutDocuments(db, family.id),
-    existingSerialLengthMax: await findSerialLengthMax(db, family.id),
-  });
+  const { errors, warnings, step } = lintLayout(document, await getLintBasis(db, family));
   const judged = new Set(problems.map((problem) => problem.path));
   return { errors: [...problems, ...errors.filter((error) => !judged.has(error.path))], warnings, step, layout };
 }

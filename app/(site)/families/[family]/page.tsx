@@ -9,6 +9,7 @@ import { TitleRow } from "@/app/_components/title-row";
 import { holds, orNotFound, pageContext } from "@/lib/http/page-context";
 import { hasOneTimeCode } from "@/lib/services/account/has-one-time-code";
 import { type FamilyRevisionView, getFamily } from "@/lib/services/families/get-family";
+import { isMaker } from "@/lib/services/families/publishing";
 import { listLayouts } from "@/lib/services/layouts/get-layout";
 import { RevisionAction } from "./revision-actions";
 import { RevisionDecision } from "./revision-decision";
@@ -34,7 +35,7 @@ export default async function FamilyPage({ params, searchParams }: PageProps) {
     family.revisions.find((revision) => revision.number === wanted) ?? (family.revisions[0] as FamilyRevisionView);
   const before = family.revisions.find((revision) => revision.number < shown.number && revision.publishedAt !== null);
   const engineer = holds(ctx, "engineer");
-  const wrote = shown.makers.includes(ctx.actor.name);
+  const wrote = await isMaker(ctx, "family-revision", shown.id);
   return (
     <>
       <TitleRow
@@ -51,7 +52,7 @@ export default async function FamilyPage({ params, searchParams }: PageProps) {
             {engineer && shown.state === "draft" ? (
               <RevisionAction code={family.code} number={shown.number} move="submit" />
             ) : null}
-            {engineer && shown.state === "in-review" ? (
+            {engineer && shown.state === "in-review" && shown.submittedBy === ctx.actor.name ? (
               <RevisionAction code={family.code} number={shown.number} move="take-back" />
             ) : null}
           </>
