@@ -2,11 +2,9 @@ import localFont from "next/font/local";
 
 /*
  * Two faces for text and two for figures: the Latin file is preloaded, the extended one is fetched only where a name
- * needs it. Ranges as published with the font packages.
+ * needs it. Ranges as published with the font packages, written out at each
+ * face because the font loader reads literals only.
  */
-const latinExt =
-  "U+0100-02BA,U+02BD-02C5,U+02C7-02CC,U+02CE-02D7,U+02DD-02FF,U+0304,U+0308,U+0329,U+1D00-1DBF,U+1E00-1E9F,U+1EF2-1EFF,U+2020,U+20A0-20AB,U+20AD-20C0,U+2113,U+2C60-2C7F,U+A720-A7FF";
-
 const textLatin = localFont({
   src: "../node_modules/@fontsource-variable/atkinson-hyperlegible-next/files/atkinson-hyperlegible-next-latin-wght-normal.woff2",
   variable: "--font-text-latin",
@@ -22,7 +20,13 @@ const textLatinExt = localFont({
   display: "swap",
   preload: false,
   adjustFontFallback: false,
-  declarations: [{ prop: "unicode-range", value: latinExt }],
+  declarations: [
+    {
+      prop: "unicode-range",
+      value:
+        "U+0100-02BA,U+02BD-02C5,U+02C7-02CC,U+02CE-02D7,U+02DD-02FF,U+0304,U+0308,U+0329,U+1D00-1DBF,U+1E00-1E9F,U+1EF2-1EFF,U+2020,U+20A0-20AB,U+20AD-20C0,U+2113,U+2C60-2C7F,U+A720-A7FF",
+    },
+  ],
 });
 
 const figuresLatin = localFont({
@@ -40,7 +44,13 @@ const figuresLatinExt = localFont({
   display: "swap",
   preload: false,
   adjustFontFallback: false,
-  declarations: [{ prop: "unicode-range", value: latinExt }],
+  declarations: [
+    {
+      prop: "unicode-range",
+      value:
+        "U+0100-02BA,U+02BD-02C5,U+02C7-02CC,U+02CE-02D7,U+02DD-02FF,U+0304,U+0308,U+0329,U+1D00-1DBF,U+1E00-1E9F,U+1EF2-1EFF,U+2020,U+20A0-20AB,U+20AD-20C0,U+2113,U+2C60-2C7F,U+A720-A7FF",
+    },
+  ],
 });
 
 /** Class that declares the font variables; belongs on `html`. */
