@@ -1,0 +1,145 @@
+import { getDevice, listDeviceEvents } from "@/db/queries/device-events";
+import * as query from "@/db/queries/trace";
+import { type ListedWrite, listWritesOfSerial } from "@/db/queries/writes";
+import type { Ctx } from "@/lib/services/context";
+import { type Carried, listCarriedImages } from "@/lib/services/devices/carried-image";
+import type { DeviceTrace, HistoryEntry } from "@/schemas/api/devices";
+
+/** What a serial carries, where that came from, and everything that happened to it. @throws AppError `device.not_found` */
+export async function getDeviceTrace(ctx: Ctx, serial: string): Promise<DeviceTrace> {
+  const device = await getDevice(ctx.db, serial);
+  const [carried] = await listCarriedImages(ctx, { lotId: device.lotId, serial, limit: 1 });
+  const [writes, events, runs, sets, periods] = await Promise.all([
+    listWritesOfSerial(ctx.db, serial),
+    listDeviceEvents(ctx.db, device.id),
+    query.listRunsOfDevice(ctx.db, device.id),
+    query.listSetsOfDevice(ctx.db, device.id),
+    query.listLivePeriodsOfDevice(ctx.db, device.id),
+  ]);
+  const newest = sets.find((set) => set.state !== null);
+  const last = carried?.last ?? null;
+  return {
+    serial,
+    lot: device.lot,
+    family: device.family,
+    state: stateOf(device, carried),
+    held: device.held,
+    scrapped: device.scrapped,
+    shipped: device.shipped,
+    hardwareId: device.hardwareId,
+    firmware: device.firmware ?? device.lotFirmware,
+    current: carried && last
+      ? {
+          package: last.packageId,
+          version: last.version,
+          imageSha256: last.imageSha256,
+          writtenAt: last.finishedAt,
+          station: last.station,
+          outcome: last.outcome,
+          known: carried.known,
+          live: carried.live,
+          sameValuesAsLive: carried.sameValuesAsLive,
+        }
+      : null,
+    coefficients: newest ? { derivation: newest.derivationId, state: newest.state as string, role: newest.role, values: valuesOf(newest) } : null,
+    history: [
+      ...writes.map(writeEntry),
+      ...events.map(eventEntry),
+      ...runs.map(runEntry),
+      ...sets.filter((set) => set.state !== null).map(setEntry),
+      ...periods.map(periodEntry),
+    ].sort((a, b) => b.at.localeCompare(a.at)),
+  };
+}
+
+function stateOf(device: { held: boolean; scrapped: boolean }, carried: Carried | undefined): DeviceTrace["state"] {
+  if (device.scrapped) return "scrapped";
+  if (device.held) return "held";
+  if (!carried?.last) return "never-written";
+  if (!carried.known) return "unknown";
+  if (carried.live) return "carries-live";
+  if (carried.sameValuesAsLive === null) return "carries-unreleased";
+  return carried.sameValuesAsLive ? "carries-live-values" : "carries-other-values";
+}
+
+type SetRow = Awaited<ReturnType<typeof query.listSetsOfDevice>>[number];
+
+function valuesOf(set: SetRow): Record<string, number | null> {
+  const { tempOffset, tempSlope, zero, zeroTc, zeroTc2, gain, gainTc, gainTc2 } = set;
+  const first = { tempOffset, tempSlope, zero, zeroTc, gain, gainTc };
+  return zeroTc2 === null && gainTc2 === null ? first : { ...first, zeroTc2, gainTc2 };
+}
+
+const WRITTEN: Record<string, [string, HistoryEntry["tone"]]> = {
+  verified: ["Written and verified", "good"],
+  mismatch: ["Read back differs", "bad"],
+  failed: ["Writing failed", "bad"],
+  interrupted: ["Writing interrupted", "bad"],
+  "unknown-image": ["Written with bytes of no known image", "bad"],
+  "unknown-serial": ["Reported before the serial was known", "wait"],
+};
+
+function writeEntry(row: ListedWrite): HistoryEntry {
+  const [what, tone] = WRITTEN[row.outcome] ?? [row.outcome, "info"];
+  const flags = row.flags.length > 0 ? `flagged ${row.flags.join(", ")}` : null;
+  return {
+    at: row.finishedAt.toISOString(),
+    kind: "written",
+    what: row.version ? `${what}, ${row.version}` : what,
+    tone: tone === "good" && flags ? "wait" : tone,
+    who: `${row.operator}, ${row.station}`,
+    detail: [row.detail, flags].filter(Boolean).join(" · ") || null,
+    link: row.packageId ? `/packages/${row.packageId}` : null,
+  };
+}
+
+const EVENT: Record<string, [string, HistoryEntry["tone"]]> = {
+  hold: ["Held", "bad"],
+  resume: ["Going on after the hold", "good"],
+  scrap: ["Scrapped", "bad"],
+  rework: ["Reworked", "info"],
+  "board-replaced": ["Board replaced: what was written before no longer counts", "wait"],
+  firmware: ["Firmware changed", "info"],
+  shipped: ["Shipped", "info"],
+  returned: ["Came back", "wait"],
+};
+
+function eventEntry(row: Awaited<ReturnType<typeof listDeviceEvents>>[number]): HistoryEntry {
+  const [what, tone] = EVENT[row.kind] ?? [row.kind, "info"];
+  const facts = [row.reason, row.reference, row.hardwareId && `board ${row.hardwareId}`, row.firmware && `firmware ${row.firmware}`];
+  return { at: row.at.toISOString(), kind: "event", what, tone, who: row.person, detail: facts.filter(Boolean).join(" · "), link: null };
+}
+
+function runEntry(row: Awaited<ReturnType<typeof query.listRunsOfDevice>>[number]): HistoryEntry {
+  const range = row.highC - row.lowC < 1 ? `${row.lowC.toFixed(1)} °C` : `${row.lowC.toFixed(1)} to ${row.highC.toFixed(1)} °C`;
+  const what = `${row.purpose[0]?.toUpperCase()}${row.purpose.slice(1)} run, ${range}`;
+  return { at: row.at.toISOString(), kind: "run", what, tone: "info", who: row.person, detail: row.loaded ? "loaded and unloaded" : "unloaded only", link: `/runs/${row.id}` };
+}
+
+const SET_TONE: Record<string, HistoryEntry["tone"]> = { approved: "good", proposed: "wait", refused: "bad", stale: "wait", revoked: "bad" };
+
+function setEntry(row: SetRow): HistoryEntry {
+  const state = row.state as string;
+  return {
+    at: row.stateChangedAt.toISOString(),
+    kind: "coefficients",
+    what: `Coefficients ${state}`,
+    tone: SET_TONE[state] ?? "info",
+    who: row.person,
+    detail: `${row.method}, as ${row.role}`,
+    link: `/derivations/${row.derivationId}`,
+  };
+}
+
+function periodEntry(row: Awaited<ReturnType<typeof query.listLivePeriodsOfDevice>>[number]): HistoryEntry {
+  const verb = { release: "released", reinstatement: "made live again", withdrawal: "withdrawn" }[row.kind] ?? row.kind;
+  return {
+    at: row.startedAt.toISOString(),
+    kind: "live",
+    what: `Release ${row.version} ${verb}`,
+    tone: row.kind === "withdrawal" ? "bad" : "good",
+    who: row.person,
+    detail: row.reason,
+    link: `/packages/${row.packageId}`,
+  };
+}
