@@ -119,9 +119,10 @@ function setOf<R extends ValueColumns>(row: R): Omit<R, keyof ValueColumns> & { 
 export async function listSets(
   db: Db,
   derivationId: string,
-  page: { after?: string; limit?: number } = {},
+  page: { after?: string; limit?: number; roles?: readonly SetRole[] } = {},
 ): Promise<SetRow[]> {
   let query = selectSets(db).where("coefficientSet.derivationId", "=", derivationId).orderBy("device.serial");
+  if (page.roles !== undefined) query = query.where("coefficientSet.role", "in", [...page.roles]);
   if (page.after !== undefined) query = query.where("device.serial", ">", page.after);
   if (page.limit !== undefined) query = query.limit(page.limit);
   return (await query.execute()).map(setOf);

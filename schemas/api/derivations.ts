@@ -114,6 +114,7 @@ export const derivationSummary = z.object({
   finishedAt: timestamp.nullable(),
 });
 
+export type DerivationSummary = z.output<typeof derivationSummary>;
 export const derivationPage = pageOf(derivationSummary);
 export const startedDerivation = z.object({ id, state: derivationState });
 

@@ -7,6 +7,7 @@ import {
   listDerivationFindings,
   listDerivationRunIds,
   listDerivationsOfLot,
+  listDerivationsOfRun,
   listExclusions,
 } from "@/db/queries/derivations";
 import { getLot } from "@/db/queries/lots";
@@ -17,7 +18,7 @@ import type { Ctx } from "@/lib/services/context";
 import { getLotRules } from "@/lib/services/lots/lot-rules";
 import { type Page, pageOf } from "@/lib/services/page";
 import type { PageQuery } from "@/schemas/api/common";
-import type { DerivationView, DerivedDevice, DerivedDeviceDetail } from "@/schemas/api/derivations";
+import type { DerivationSummary, DerivationView, DerivedDevice, DerivedDeviceDetail } from "@/schemas/api/derivations";
 import type { FindingView } from "@/schemas/api/runs";
 import type { DeviceDetail } from "./compute";
 import { deviceViewOf } from "./device-view";
@@ -92,27 +93,33 @@ export async function getDerivationView(ctx: Ctx, id: string): Promise<Derivatio
 }
 
 /** A lot's derivations and imports, newest first. @throws AppError `lot.not_found` */
-export async function listLotDerivations(ctx: Ctx, lot: string, page: PageQuery) {
+export async function listLotDerivations(ctx: Ctx, lot: string, page: PageQuery): Promise<Page<DerivationSummary>> {
   const { id } = await getLot(ctx.db, lot);
   const found = await listDerivationsOfLot(ctx.db, id, { before: page.cursor, limit: page.limit + 1 });
   const { items, next } = pageOf(found, page.limit, (row) => row.id);
+  return { next, items: items.map(summaryOf) };
+}
+
+function summaryOf(row: DerivationRow): DerivationSummary {
   return {
-    next,
-    items: items.map((row) => ({
-      id: row.id,
-      state: row.state,
-      method: row.method,
-      order: row.order,
-      sha256: row.sha256.toString("hex"),
-      provenRange: rangeOf(row),
-      devices: row.counts.devices ?? 0,
-      withValues: row.counts.withValues ?? 0,
-      findings: row.counts.findings ?? NO_FINDINGS,
-      createdAt: row.createdAt.toISOString(),
-      createdBy: row.createdByName,
-      finishedAt: row.finishedAt?.toISOString() ?? null,
-    })),
+    id: row.id,
+    state: row.state,
+    method: row.method,
+    order: row.order,
+    sha256: row.sha256.toString("hex"),
+    provenRange: rangeOf(row),
+    devices: row.counts.devices ?? 0,
+    withValues: row.counts.withValues ?? 0,
+    findings: row.counts.findings ?? NO_FINDINGS,
+    createdAt: row.createdAt.toISOString(),
+    createdBy: row.createdByName,
+    finishedAt: row.finishedAt?.toISOString() ?? null,
   };
+}
+
+/** Derivations that used a run, newest first. */
+export async function listRunUses(ctx: Ctx, runId: string): Promise<DerivationSummary[]> {
+  return (await listDerivationsOfRun(ctx.db, runId)).map(summaryOf);
 }
 
 /** Devices of a derivation by serial, each with its findings. @throws AppError `derivation.not_found` */
