@@ -38,10 +38,12 @@ interface DatabaseFault {
 export function appErrorFromDatabase(error: unknown): AppError | undefined {
   if (error instanceof AppError || typeof error !== "object" || error === null) return undefined;
   const fault = error as DatabaseFault;
-  if (fault.code === "TW001" && fault.message) return new AppError(fault.message, { fact: fault.detail ?? "" }, { cause: error });
+  if (fault.code === "TW001" && fault.message)
+    return new AppError(fault.message, { fact: fault.detail ?? "" }, { cause: error });
   const code = fault.code === "23505" && fault.constraint ? CODE_BY_CONSTRAINT[fault.constraint] : undefined;
   if (code) return new AppError(code, {}, { cause: error });
-  if (fault.constraint === "role_grant_second_admin") return new AppError("person.second_admin_needed", {}, { cause: error });
+  if (fault.constraint === "role_grant_second_admin")
+    return new AppError("person.second_admin_needed", {}, { cause: error });
   if (fault.constraint === "role_grant_not_own") return new AppError("person.own_roles", {}, { cause: error });
   const unavailable = UNAVAILABLE.test(fault.code ?? "") || UNAVAILABLE_NODE.has(fault.code ?? "");
   const lost = /Connection terminated|timeout exceeded when trying to connect/.test(fault.message ?? "");

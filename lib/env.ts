@@ -69,9 +69,9 @@ export function childEnv(values: Record<string, string | undefined>): NodeJS.Pro
   return { ...process.env, ...values } as NodeJS.ProcessEnv;
 }
 
-/** Whether a continuous-integration service runs this process: plain output, no questions. */
-export function isContinuousIntegration(): boolean {
-  return process.env.CI !== undefined && process.env.CI !== "" && process.env.CI !== "false";
+/** Whether this process is a script of npm's; its children inherit the mark, so a child that it starts takes it away. */
+export function isRunByNpm(): boolean {
+  return process.env.npm_lifecycle_event !== undefined;
 }
 
 /** Folders that programs are looked for in. */

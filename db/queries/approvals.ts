@@ -30,7 +30,17 @@ export async function insertApproval(trx: Trx, approval: NewApproval): Promise<v
 export type ApprovalRow = Omit<NewApproval, "subjectKind" | "decision"> & { subjectKind: string; decision: string };
 
 const approvalColumns = [
-  "id", "subjectKind", "subjectId", "decision", "personId", "personName", "meaning", "reason", "digest", "serialCount", "at",
+  "id",
+  "subjectKind",
+  "subjectId",
+  "decision",
+  "personId",
+  "personName",
+  "meaning",
+  "reason",
+  "digest",
+  "serialCount",
+  "at",
 ] as const;
 
 /** Decisions over one subject, oldest first. */

@@ -1,7 +1,15 @@
 import type { Db, Trx } from "@/db/executor";
 import { AppError } from "@/lib/errors";
 
-export type DeviceEventKind = "hold" | "resume" | "scrap" | "rework" | "board-replaced" | "firmware" | "shipped" | "returned";
+export type DeviceEventKind =
+  | "hold"
+  | "resume"
+  | "scrap"
+  | "rework"
+  | "board-replaced"
+  | "firmware"
+  | "shipped"
+  | "returned";
 
 export interface NewDeviceEvent {
   id: string;
@@ -51,7 +59,12 @@ export interface DeviceChange {
 
 /** Brings the device's own row in line with an event. */
 export async function updateDevice(trx: Trx, id: string, change: DeviceChange): Promise<void> {
-  if (Object.keys(change).length > 0) await trx.updateTable("device").set({ ...change }).where("id", "=", id).execute();
+  if (Object.keys(change).length > 0)
+    await trx
+      .updateTable("device")
+      .set({ ...change })
+      .where("id", "=", id)
+      .execute();
 }
 
 /** A device by serial, with its lot and family. @throws AppError `device.not_found` */
@@ -65,7 +78,9 @@ export async function getDevice(db: Db, serial: string) {
 export async function lockDevice(trx: Trx, serial: string) {
   return selectDevice(trx, serial)
     .forUpdate("device")
-    .executeTakeFirstOrThrow(() => new AppError("device.not_found", { serial, message: `No device has the serial ${serial}.` }));
+    .executeTakeFirstOrThrow(
+      () => new AppError("device.not_found", { serial, message: `No device has the serial ${serial}.` }),
+    );
 }
 
 function selectDevice(db: Db, serial: string) {

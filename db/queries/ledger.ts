@@ -9,7 +9,12 @@ export async function lockLedgerHead(trx: Trx): Promise<{ seq: number; hash: Buf
 
 /** The newest event's place and hash, undefined on an empty ledger. */
 export async function findLedgerHead(db: Db): Promise<{ seq: number; hash: Buffer } | undefined> {
-  const row = await db.selectFrom("ledgerEvent").select(["seq", "hash"]).orderBy("seq", "desc").limit(1).executeTakeFirst();
+  const row = await db
+    .selectFrom("ledgerEvent")
+    .select(["seq", "hash"])
+    .orderBy("seq", "desc")
+    .limit(1)
+    .executeTakeFirst();
   return row && { seq: Number(row.seq), hash: row.hash };
 }
 
@@ -34,5 +39,9 @@ export async function insertLedgerTexts(
   trx: Trx,
   rows: readonly { seq: number; name: string; salt: Buffer; content: string }[],
 ): Promise<void> {
-  if (rows.length > 0) await trx.insertInto("ledgerText").values([...rows]).execute();
+  if (rows.length > 0)
+    await trx
+      .insertInto("ledgerText")
+      .values([...rows])
+      .execute();
 }

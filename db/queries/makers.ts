@@ -14,7 +14,11 @@ export interface NewMaker {
 
 /** Adds evidence of who made something; it can't be taken back, and a package's is frozen at submit. */
 export async function insertMakers(trx: Trx, makers: readonly NewMaker[]): Promise<void> {
-  if (makers.length > 0) await trx.insertInto("maker").values([...makers]).execute();
+  if (makers.length > 0)
+    await trx
+      .insertInto("maker")
+      .values([...makers])
+      .execute();
 }
 
 export interface MakerRow {

@@ -17,7 +17,9 @@ export async function listLayoutsOfPackages(
 }
 
 /** Published and retired layouts of a family, newest first: what a dump of unknown origin may have been written with. */
-export async function listLayoutsInUse(db: Db): Promise<{ layoutId: string; familyId: string; document: LayoutDocument }[]> {
+export async function listLayoutsInUse(
+  db: Db,
+): Promise<{ layoutId: string; familyId: string; document: LayoutDocument }[]> {
   const rows = await db
     .selectFrom("layout")
     .select(["id as layoutId", "familyId", "document"])
@@ -28,7 +30,11 @@ export async function listLayoutsInUse(db: Db): Promise<{ layoutId: string; fami
 }
 
 /** Bytes of the images of devices in a package, by serial. */
-export async function listImageBytes(db: Db, packageId: string, serials: readonly string[]): Promise<Map<string, Buffer>> {
+export async function listImageBytes(
+  db: Db,
+  packageId: string,
+  serials: readonly string[],
+): Promise<Map<string, Buffer>> {
   const rows = await db
     .selectFrom("image")
     .select(["serial", "bytes"])

@@ -135,23 +135,13 @@ export function listStationLots(db: Db, familyIds: readonly string[]): Promise<S
       "package.version",
       "package.digest",
     ])
-    .select((eb) =>
-      eb
-        .selectFrom("image")
-        .whereRef("image.packageId", "=", "package.id")
-        .select(sql<number>`count(*)::int`.as("count"))
-        .$notNull()
-        .as("devices"),
-    )
-    .select((eb) =>
-      eb
-        .selectFrom("device")
-        .whereRef("device.lotId", "=", "lot.id")
-        .where("device.held", "=", true)
-        .select(sql<string[]>`coalesce(array_agg(device.serial order by device.serial), '{}')`.as("serials"))
-        .$notNull()
-        .as("held"),
-    )
+    .select([
+      sql<number>`(select count(*)::int from image where image.package_id = package.id)`.as("devices"),
+      sql<string[]>`(
+        select coalesce(array_agg(device.serial order by device.serial), '{}')
+        from device where device.lot_id = lot.id and device.held
+      )`.as("held"),
+    ])
     .where("lot.sequence", ">", 0)
     .where(sql<boolean>`lot.family_id = any(${familyIds as string[]}::uuid[])`)
     .orderBy("lot.code")

@@ -120,7 +120,11 @@ export interface ImpactRow {
  * Every device that a run, derivation, layout, package or piece of equipment reached, by serial: through coefficient sets whose
  * derivation used it (a sample device's run reaches the whole lot of a pooled gain), and through the images made from them.
  */
-export async function listImpact(db: Db, source: ImpactSource, page: { after?: string; limit: number }): Promise<ImpactRow[]> {
+export async function listImpact(
+  db: Db,
+  source: ImpactSource,
+  page: { after?: string; limit: number },
+): Promise<ImpactRow[]> {
   const { rows } = await sql<ImpactRow>`
     with reached_run as (
       select r.id from run r where r.id = ${source.run ?? null}::uuid

@@ -32,7 +32,10 @@ export interface WriteRow {
 }
 
 /** Records among the ids that are there already. */
-export function listKnownWrites(db: Db, ids: readonly string[]): Promise<{ id: string; stationId: string; contentSha256: Buffer }[]> {
+export function listKnownWrites(
+  db: Db,
+  ids: readonly string[],
+): Promise<{ id: string; stationId: string; contentSha256: Buffer }[]> {
   return db
     .selectFrom("writeRecord")
     .select(["id", "stationId", "contentSha256"])
@@ -86,7 +89,11 @@ export interface WriteImage {
 }
 
 /** Images of the packages for the serials, with the coefficients they hold. */
-export function listWriteImages(db: Db, packageIds: readonly string[], serials: readonly string[]): Promise<WriteImage[]> {
+export function listWriteImages(
+  db: Db,
+  packageIds: readonly string[],
+  serials: readonly string[],
+): Promise<WriteImage[]> {
   return db
     .selectFrom("image")
     .innerJoin("package", "package.id", "image.packageId")

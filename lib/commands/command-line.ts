@@ -1,4 +1,5 @@
 /** Runs one command: signals become an AbortSignal, errors one line, the outcome an exit code. */
+import { isRunByNpm } from "@/lib/env";
 import { AppError } from "@/lib/errors";
 
 /**
@@ -11,16 +12,13 @@ const STOP_SIGNALS = ["SIGINT", "SIGTERM", "SIGHUP"] as const;
 const STOPPED_EXIT_CODE = 130;
 /** Time for handles left open, before the process ends all the same. */
 const LINGER_MS = 3_000;
+const IMPATIENT_AFTER_MS = 1_000;
+const PARENT_LOOK_MS = 500;
 
 /** Loads the command's file, which exports a {@link Command} as default, and runs it to its end. */
 export async function runCommand(name: string, args: string[]): Promise<void> {
   const stop = new AbortController();
-  for (const signal of STOP_SIGNALS) {
-    process.on(signal, () => {
-      if (stop.signal.aborted) process.exit(STOPPED_EXIT_CODE);
-      stop.abort();
-    });
-  }
+  listenForStop(stop);
   try {
     const module = (await import(`./${name}.ts`)) as { default: Command };
     process.exitCode = await module.default(args, stop.signal);
@@ -29,6 +27,29 @@ export async function runCommand(name: string, args: string[]): Promise<void> {
     if (!stop.signal.aborted) console.error(`trimwright: ${plainMessage(error)}`);
   }
   setTimeout(() => process.exit(), LINGER_MS).unref();
+}
+
+/**
+ * Aborts at the first signal and ends the process at a later one. Ctrl-C can arrive twice, from the terminal and passed on
+ * by npm. Npm's shell passes no SIGTERM on and just ends: under npm, losing the parent therefore means the same.
+ */
+function listenForStop(stop: AbortController): void {
+  let firstAt = 0;
+  for (const signal of STOP_SIGNALS) {
+    process.on(signal, () => {
+      if (firstAt > 0 && Date.now() - firstAt > IMPATIENT_AFTER_MS) process.exit(STOPPED_EXIT_CODE);
+      firstAt ||= Date.now();
+      stop.abort();
+    });
+  }
+  if (!isRunByNpm()) return;
+  const parent = process.ppid;
+  const watch = setInterval(() => {
+    if (process.ppid === parent) return;
+    clearInterval(watch);
+    stop.abort();
+  }, PARENT_LOOK_MS);
+  watch.unref();
 }
 
 /** Errors of the system and of PostgreSQL by their code, in words that say what to do. */

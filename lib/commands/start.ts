@@ -113,6 +113,7 @@ async function serve(settings: Env, database: StartDatabase, signal: AbortSignal
 function servedEnv(settings: Env, appUrl: string): NodeJS.ProcessEnv {
   return childEnv({
     NODE_ENV: "production",
+    npm_lifecycle_event: undefined,
     NEXT_TELEMETRY_DISABLED: "1",
     DATABASE_URL: appUrl,
     TRIMWRIGHT_OWNER_URL: undefined,

@@ -26,10 +26,14 @@ export async function runAction<T = unknown>(
     const query = command.query ? validate(command.query as z.ZodType, input.query ?? {}, "/query") : {};
     const body = command.body ? validate(command.body as z.ZodType, input.body ?? {}) : undefined;
     const value = await command.handle(ctx as never, { params, query, body, headers: requestHeaders } as never);
-    return { ok: true, value: command.reply.schema ? ((command.reply.schema as z.ZodType).parse(value) as T) : (undefined as T) };
+    return {
+      ok: true,
+      value: command.reply.schema ? ((command.reply.schema as z.ZodType).parse(value) as T) : (undefined as T),
+    };
   } catch (thrown) {
     const error = toAppError(thrown);
-    if (error.code === "server.fault") log.error({ requestId: ctx.requestId, command: command.id, err: error.cause ?? error }, "action failed");
+    if (error.code === "server.fault")
+      log.error({ requestId: ctx.requestId, command: command.id, err: error.cause ?? error }, "action failed");
     return { ok: false, problem: problemOf(error, ctx.requestId) };
   }
 }

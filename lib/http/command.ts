@@ -8,7 +8,11 @@ export type Access =
   | { who: "person"; roles: readonly Role[]; session?: boolean }
   | { who: "station" };
 
-type CtxOf<A extends Access> = A extends { who: "person" } ? PersonCtx : A extends { who: "station" } ? StationCtx : Ctx;
+type CtxOf<A extends Access> = A extends { who: "person" }
+  ? PersonCtx
+  : A extends { who: "station" }
+    ? StationCtx
+    : Ctx;
 
 /** A body that is not JSON: its bytes, bounded. */
 export interface UploadBody {

@@ -12,8 +12,10 @@ export async function withIdempotency(
   run: () => Promise<Response>,
 ): Promise<Response> {
   const key = headers.get("idempotency-key");
-  if (!command.idempotent || key === null || (ctx.actor.kind !== "person" && ctx.actor.kind !== "station")) return run();
-  if (key.length < 1 || key.length > 200) throw new AppError("request.invalid", { message: "Idempotency-Key takes 1 to 200 characters." });
+  if (!command.idempotent || key === null || (ctx.actor.kind !== "person" && ctx.actor.kind !== "station"))
+    return run();
+  if (key.length < 1 || key.length > 200)
+    throw new AppError("request.invalid", { message: "Idempotency-Key takes 1 to 200 characters." });
   const reply = await replyOnce(ctx, { actorId: ctx.actor.id, route: command.id, key, body }, async () => {
     const response = await run();
     return { status: response.status, body: await response.json() };

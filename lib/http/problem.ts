@@ -31,6 +31,7 @@ export function problemResponse(error: AppError, requestId: string): Response {
   const problem = problemOf(error, requestId);
   const headers: Record<string, string> = { "content-type": "application/problem+json", "cache-control": "no-store" };
   if (problem.status === 401) headers["www-authenticate"] = "Bearer";
-  if (problem.status === 503 || problem.status === 429) headers["retry-after"] = String(error.details.retryAfterSeconds ?? 5);
+  if (problem.status === 503 || problem.status === 429)
+    headers["retry-after"] = String(error.details.retryAfterSeconds ?? 5);
   return new Response(JSON.stringify(problem), { status: problem.status, headers });
 }

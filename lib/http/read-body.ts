@@ -10,7 +10,10 @@ export const JSON_MAX_BYTES = 4 * 1024 * 1024;
 export async function readBytes(request: Request, maxBytes: number): Promise<Buffer> {
   const announced = request.headers.get("content-length");
   const tooLarge = () =>
-    new AppError("request.too_large", { maxBytes, message: `At most ${maxBytes.toLocaleString("en")} bytes are taken; send less at once.` });
+    new AppError("request.too_large", {
+      maxBytes,
+      message: `At most ${maxBytes.toLocaleString("en")} bytes are taken; send less at once.`,
+    });
   if (announced !== null && Number(announced) > maxBytes) throw tooLarge();
   const chunks: Uint8Array[] = [];
   let length = 0;
@@ -20,7 +23,11 @@ export async function readBytes(request: Request, maxBytes: number): Promise<Buf
     chunks.push(chunk);
   }
   if (announced !== null && Number(announced) !== length) {
-    throw new AppError("request.cut_short", { announced: Number(announced), received: length, message: "The upload ended early; send it again." });
+    throw new AppError("request.cut_short", {
+      announced: Number(announced),
+      received: length,
+      message: "The upload ended early; send it again.",
+    });
   }
   return Buffer.concat(chunks, length);
 }

@@ -5,7 +5,7 @@ import { resolveActor } from "@/lib/auth/resolve-actor";
 import { env } from "@/lib/env";
 import { AppError } from "@/lib/errors";
 import { log } from "@/lib/log";
-import { assertRole, type Actor, type Ctx } from "@/lib/services/context";
+import { type Actor, assertRole, type Ctx } from "@/lib/services/context";
 import { type AnyCommand, type CommandInput, isUpload } from "./command";
 import { withIdempotency } from "./idempotency";
 import { problemResponse, toAppError } from "./problem";
@@ -36,7 +36,8 @@ export function route(command: AnyCommand): RouteHandler {
       });
     } catch (thrown) {
       const error = toAppError(thrown);
-      if (error.code === "server.fault") log.error({ requestId, command: command.id, err: error.cause ?? error }, "request failed");
+      if (error.code === "server.fault")
+        log.error({ requestId, command: command.id, err: error.cause ?? error }, "request failed");
       return problemResponse(error, requestId);
     }
   };
@@ -49,15 +50,20 @@ export function route(command: AnyCommand): RouteHandler {
 export function assertMayCall(command: AnyCommand, actor: Actor, headers: Headers, method: string): void {
   const { access } = command;
   if (access.who === "public") return;
-  if (actor.kind === "public") throw new AppError("auth.required", { message: "Send a session cookie or a bearer key." });
+  if (actor.kind === "public")
+    throw new AppError("auth.required", { message: "Send a session cookie or a bearer key." });
   if (access.who === "station") {
-    if (actor.kind !== "station") throw new AppError("auth.forbidden", { needs: ["station"], message: "Only a station's key may call this." });
+    if (actor.kind !== "station")
+      throw new AppError("auth.forbidden", { needs: ["station"], message: "Only a station's key may call this." });
     return;
   }
-  if (actor.kind !== "person") throw new AppError("auth.forbidden", { needs: access.roles, message: "A station's key may not call this." });
+  if (actor.kind !== "person")
+    throw new AppError("auth.forbidden", { needs: access.roles, message: "A station's key may not call this." });
   assertRole({ actor } as Ctx, ...access.roles);
   if (access.session && actor.via !== "session") {
-    throw new AppError("auth.session_required", { message: "This is decided by a signed-in person in a browser; a key cannot." });
+    throw new AppError("auth.session_required", {
+      message: "This is decided by a signed-in person in a browser; a key cannot.",
+    });
   }
   if (method !== "GET" && method !== "HEAD" && actor.via === "session") assertSameOrigin(headers);
 }
@@ -78,18 +84,27 @@ async function readInput(command: AnyCommand, request: Request, raw: { params: u
   if (isUpload(command.body)) {
     const { contentTypes, maxBytes } = command.body.upload;
     if (!contentTypes.includes(contentType)) {
-      throw new AppError("request.unsupported_type", { contentTypes, message: `Send one of ${contentTypes.join(", ")}.` });
+      throw new AppError("request.unsupported_type", {
+        contentTypes,
+        message: `Send one of ${contentTypes.join(", ")}.`,
+      });
     }
     bytes = await readBytes(request, maxBytes);
     body = { bytes, contentType };
   } else if (command.body) {
     if (contentType !== "" && contentType !== "application/json") {
-      throw new AppError("request.unsupported_type", { contentTypes: ["application/json"], message: "Send application/json." });
+      throw new AppError("request.unsupported_type", {
+        contentTypes: ["application/json"],
+        message: "Send application/json.",
+      });
     }
     bytes = await readBytes(request, JSON_MAX_BYTES);
     body = validate(command.body as z.ZodType, parseJson(bytes));
   }
-  return { bytes, value: { params, query, body, headers: request.headers } as CommandInput<undefined, undefined, undefined> };
+  return {
+    bytes,
+    value: { params, query, body, headers: request.headers } as CommandInput<undefined, undefined, undefined>,
+  };
 }
 
 /** The reply as promised: unknown members are left out, a member missing is our bug and not the caller's problem to find. */

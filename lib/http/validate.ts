@@ -16,5 +16,8 @@ export function validate<T>(schema: z.ZodType<T>, value: unknown, root = ""): T 
   if (result.success) return result.data;
   const errors = problemsOf(result.error, root);
   const first = errors[0];
-  throw new AppError("request.invalid", { errors, message: first ? `${first.path || "body"}: ${first.message}` : "Not valid." });
+  throw new AppError("request.invalid", {
+    errors,
+    message: first ? `${first.path || "body"}: ${first.message}` : "Not valid.",
+  });
 }

@@ -1,7 +1,16 @@
 import { z } from "zod";
 import { code, id, oneTimeCode, reason, sha256Hex, timestamp } from "./common";
 
-export const deviceEventKinds = ["hold", "resume", "scrap", "rework", "board-replaced", "firmware", "shipped", "returned"] as const;
+export const deviceEventKinds = [
+  "hold",
+  "resume",
+  "scrap",
+  "rework",
+  "board-replaced",
+  "firmware",
+  "shipped",
+  "returned",
+] as const;
 
 /** What happened to a device; hold and resume are signed with the password. */
 export const newDeviceEvent = z
@@ -22,7 +31,10 @@ export const newDeviceEvent = z
     path: ["hardwareId"],
     message: "Name the hardware id of the new board.",
   })
-  .refine((event) => event.kind !== "firmware" || event.firmware, { path: ["firmware"], message: "Name the firmware version." });
+  .refine((event) => event.kind !== "firmware" || event.firmware, {
+    path: ["firmware"],
+    message: "Name the firmware version.",
+  });
 
 export type NewDeviceEventBody = z.output<typeof newDeviceEvent>;
 
@@ -78,9 +90,7 @@ export const deviceTrace = z.object({
       sameValuesAsLive: z.boolean().nullable(),
     })
     .nullable(),
-  coefficients: z
-    .object({ derivation: id, state: z.string(), role: z.string(), values: coefficients })
-    .nullable(),
+  coefficients: z.object({ derivation: id, state: z.string(), role: z.string(), values: coefficients }).nullable(),
   history: z.array(historyEntry),
 });
 

@@ -5,13 +5,9 @@ export const equipmentKind = z.enum(["sensor", "chamber", "load", "reader"]);
 
 const certificate = z.string().trim().min(1, "Name the certificate.").max(120);
 const calibratedUntil = z.iso.date("Takes a date such as 2027-03-31.").meta({ description: "Last day of validity" });
-const uncertainty = z
-  .number()
-  .min(0)
-  .max(1_000_000)
-  .meta({
-    description: "Expanded uncertainty of the certificate: °C for sensor and chamber, kg for load, mV/V for reader",
-  });
+const uncertainty = z.number().min(0).max(1_000_000).meta({
+  description: "Expanded uncertainty of the certificate: °C for sensor and chamber, kg for load, mV/V for reader",
+});
 
 export const newEquipment = z.strictObject({ code, kind: equipmentKind, certificate, calibratedUntil, uncertainty });
 

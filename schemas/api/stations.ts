@@ -14,11 +14,21 @@ export const station = z.object({
   createdAt: timestamp,
   lastSeenAt: timestamp.nullable(),
   keys: z.array(
-    z.object({ id, prefix: z.string(), createdAt: timestamp, lastUsedAt: timestamp.nullable(), revokedAt: timestamp.nullable() }),
+    z.object({
+      id,
+      prefix: z.string(),
+      createdAt: timestamp,
+      lastUsedAt: timestamp.nullable(),
+      revokedAt: timestamp.nullable(),
+    }),
   ),
 });
 
-export const newStationKey = z.object({ id, key: z.string().meta({ description: "Shown this once; only its hash is stored" }), prefix: z.string() });
+export const newStationKey = z.object({
+  id,
+  key: z.string().meta({ description: "Shown this once; only its hash is stored" }),
+  prefix: z.string(),
+});
 
 export const stationLive = z.object({
   items: z.array(
@@ -59,13 +69,24 @@ export const writeReport = z.object({
 
 export type WriteReport = z.output<typeof writeReport>;
 
-export const writeReports = z.object({ writes: z.array(writeReport).min(1).max(1000, "At most 1,000 records at once.") });
+export const writeReports = z.object({
+  writes: z.array(writeReport).min(1).max(1000, "At most 1,000 records at once."),
+});
 
 export const writeResults = z.object({
   results: z.array(
     z.object({
       id,
-      outcome: z.enum(["verified", "mismatch", "failed", "interrupted", "unknown-image", "unknown-serial", "duplicate", "conflict"]),
+      outcome: z.enum([
+        "verified",
+        "mismatch",
+        "failed",
+        "interrupted",
+        "unknown-image",
+        "unknown-serial",
+        "duplicate",
+        "conflict",
+      ]),
       flags: z.array(z.string()),
     }),
   ),

@@ -50,7 +50,7 @@ export const familyFieldGroups: readonly FamilyFieldGroup[] = [
       {
         name: "intervals",
         label: "Verification intervals n",
-        help: "Class A from 50 000, B 5 000 to 100 000, C 500 to 10 000, D 100 to 1 000 (OIML R 60-1, table 1).",
+        help: "Class A from 50,000, B 5,000 to 100,000, C 500 to 10,000, D 100 to 1,000 (OIML R 60-1, table 1).",
       },
       {
         name: "vMinRatioY",

@@ -5,7 +5,13 @@ export interface KnownTarget {
   /** Undefined where no device has the serial. */
   device?: { hardwareId: string | null; held: boolean; stationMayWrite: boolean };
   /** Undefined where the package has no image of the device. */
-  image?: { sha256: string; hardwareId: string | null; firmware: string; zeroMvV: ((deviceTemp: number) => number) | null; nominalMvV: number };
+  image?: {
+    sha256: string;
+    hardwareId: string | null;
+    firmware: string;
+    zeroMvV: ((deviceTemp: number) => number) | null;
+    nominalMvV: number;
+  };
   /** Whether the package was live when the write finished. */
   liveWhenFinished: boolean;
 }
@@ -47,7 +53,8 @@ export function outcomeOf(write: ReportedWrite, known: KnownTarget): Outcome {
 export function flagsOf(write: ReportedWrite, known: KnownTarget, receivedAt: Date): string[] {
   const { device, image } = known;
   const board = image?.hardwareId ?? device?.hardwareId ?? null;
-  const zero = image?.zeroMvV && write.deviceTemp != null && write.zeroMvV != null ? image.zeroMvV(write.deviceTemp) : null;
+  const zero =
+    image?.zeroMvV && write.deviceTemp != null && write.zeroMvV != null ? image.zeroMvV(write.deviceTemp) : null;
   const tests: [string, boolean][] = [
     ["not-live", !known.liveWhenFinished],
     ["late", receivedAt.getTime() - write.finishedAt.getTime() > LATE_AFTER_MS],
@@ -56,8 +63,16 @@ export function flagsOf(write: ReportedWrite, known: KnownTarget, receivedAt: Da
     ["station-not-allowed", device !== undefined && !device.stationMayWrite],
     ["serial-differs", write.serialBefore != null && write.serialBefore !== write.serial],
     ["board-changed", write.hardwareId != null && board !== null && write.hardwareId !== board],
-    ["firmware-differs", image !== undefined && write.firmware != null && !sameFirmware(write.firmware, image.firmware)],
-    ["zero-off", zero !== null && image !== undefined && Math.abs((write.zeroMvV as number) - zero) > ZERO_SHARE * image.nominalMvV],
+    [
+      "firmware-differs",
+      image !== undefined && write.firmware != null && !sameFirmware(write.firmware, image.firmware),
+    ],
+    [
+      "zero-off",
+      zero !== null &&
+        image !== undefined &&
+        Math.abs((write.zeroMvV as number) - zero) > ZERO_SHARE * image.nominalMvV,
+    ],
     ["no-readback", write.result === "written" && write.readbackSha256 === null],
   ];
   return tests.filter(([, applies]) => applies).map(([flag]) => flag);

@@ -11,7 +11,14 @@ export interface Carried {
   scrapped: boolean;
   shipped: boolean;
   /** Null where nothing was ever reported. */
-  last: { packageId: string | null; version: string | null; imageSha256: string | null; finishedAt: string; station: string; outcome: string } | null;
+  last: {
+    packageId: string | null;
+    version: string | null;
+    imageSha256: string | null;
+    finishedAt: string;
+    station: string;
+    outcome: string;
+  } | null;
   /** What the memory holds is known: the deciding record is verified and no board was replaced since. */
   known: boolean;
   live: boolean;
@@ -46,22 +53,24 @@ export async function listCarriedImages(
     return compareImages({ layout: from, bytes: carried }, { layout: to, bytes: target }).change !== "values";
   };
   return rows.map((row) => {
-    const known = row.outcome === "verified" && !(row.boardReplacedAt && row.finishedAt && row.boardReplacedAt >= row.finishedAt);
+    const known =
+      row.outcome === "verified" && !(row.boardReplacedAt && row.finishedAt && row.boardReplacedAt >= row.finishedAt);
     return {
       serial: row.serial,
       held: row.held,
       scrapped: row.scrapped,
       shipped: row.shipped,
-      last: row.writeId && row.finishedAt
-        ? {
-            packageId: row.packageId,
-            version: row.version,
-            imageSha256: row.imageSha256?.toString("hex") ?? null,
-            finishedAt: row.finishedAt.toISOString(),
-            station: row.station ?? "",
-            outcome: row.outcome ?? "",
-          }
-        : null,
+      last:
+        row.writeId && row.finishedAt
+          ? {
+              packageId: row.packageId,
+              version: row.version,
+              imageSha256: row.imageSha256?.toString("hex") ?? null,
+              finishedAt: row.finishedAt.toISOString(),
+              station: row.station ?? "",
+              outcome: row.outcome ?? "",
+            }
+          : null,
       known,
       live: known && live !== undefined && row.packageId === live.id,
       inLive: liveBytes.has(row.serial),

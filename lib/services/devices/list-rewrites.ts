@@ -22,7 +22,10 @@ const SCAN_ROWS = 1000;
  * Scrapped devices and devices without an image in the live package are not on it.
  * @throws AppError `lot.not_found`
  */
-export async function listRewrites(ctx: Ctx, input: { lot: string; limit: number; cursor?: string }): Promise<Page<Rewrite>> {
+export async function listRewrites(
+  ctx: Ctx,
+  input: { lot: string; limit: number; cursor?: string },
+): Promise<Page<Rewrite>> {
   const lot = await getLot(ctx.db, input.lot);
   if (!(await findLivePackage(ctx.db, lot.id))) return { items: [], next: null };
   const items: Rewrite[] = [];

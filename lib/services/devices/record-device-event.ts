@@ -1,4 +1,10 @@
-import { type DeviceChange, type DeviceEventKind, insertDeviceEvent, lockDevice, updateDevice } from "@/db/queries/device-events";
+import {
+  type DeviceChange,
+  type DeviceEventKind,
+  insertDeviceEvent,
+  lockDevice,
+  updateDevice,
+} from "@/db/queries/device-events";
 import { AppError } from "@/lib/errors";
 import { assertRole, type PersonCtx } from "@/lib/services/context";
 import { appendEvent } from "@/lib/services/ledger/append-event";
@@ -24,7 +30,8 @@ export async function recordDeviceEvent(ctx: PersonCtx, input: { serial: string;
   const { serial, event } = input;
   assertRole(ctx, "engineer", "service");
   if (event.kind === "hold" || event.kind === "resume") {
-    if (ctx.actor.via !== "session") throw new AppError("auth.session_required", { message: "Holding and going on are signed in a browser." });
+    if (ctx.actor.via !== "session")
+      throw new AppError("auth.session_required", { message: "Holding and going on are signed in a browser." });
     await confirmIdentity(ctx, { password: event.password ?? "", oneTimeCode: event.oneTimeCode });
   }
   return ctx.db.transaction().execute(async (trx) => {
@@ -32,16 +39,36 @@ export async function recordDeviceEvent(ctx: PersonCtx, input: { serial: string;
     assertPossible(device, event.kind);
     const id = ctx.newId();
     const { kind, reason } = event;
-    const facts = { reference: event.reference ?? null, hardwareId: event.hardwareId ?? null, firmware: event.firmware ?? null };
-    await insertDeviceEvent(trx, { id, deviceId: device.id, kind, reason, ...facts, personId: ctx.actor.id, at: ctx.now() });
+    const facts = {
+      reference: event.reference ?? null,
+      hardwareId: event.hardwareId ?? null,
+      firmware: event.firmware ?? null,
+    };
+    await insertDeviceEvent(trx, {
+      id,
+      deviceId: device.id,
+      kind,
+      reason,
+      ...facts,
+      personId: ctx.actor.id,
+      at: ctx.now(),
+    });
     await updateDevice(trx, device.id, CHANGE[kind](event));
-    await appendEvent(ctx, trx, { action: `device.${kind}`, subject: serial, data: { event: id, ...facts }, texts: { reason } });
+    await appendEvent(ctx, trx, {
+      action: `device.${kind}`,
+      subject: serial,
+      data: { event: id, ...facts },
+      texts: { reason },
+    });
     return { id, serial, kind, at: ctx.now().toISOString() };
   });
 }
 
 /** What can't be: scrapping twice, holding what is held. @throws AppError `device.wrong_state` */
-function assertPossible(device: { serial: string; held: boolean; scrapped: boolean; shipped: boolean }, kind: DeviceEventKind): void {
+function assertPossible(
+  device: { serial: string; held: boolean; scrapped: boolean; shipped: boolean },
+  kind: DeviceEventKind,
+): void {
   const wrong = (message: string) => new AppError("device.wrong_state", { serial: device.serial, message });
   if (device.scrapped) throw wrong(`${device.serial} is scrapped; nothing more can happen to it.`);
   if (kind === "hold" && device.held) throw wrong(`${device.serial} is held already.`);

@@ -25,7 +25,10 @@ export async function appendEvent(ctx: Ctx, trx: Trx, event: NewEvent): Promise<
     .filter((entry): entry is [string, string] => typeof entry[1] === "string" && entry[1] !== "")
     .map(([name, content]) => ({ name, content, salt: randomBytes(16) }));
   const textHashes = Object.fromEntries(
-    texts.map(({ name, content, salt }) => [`${name}Sha256`, sha256(Buffer.concat([salt, Buffer.from(content)])).toString("hex")]),
+    texts.map(({ name, content, salt }) => [
+      `${name}Sha256`,
+      sha256(Buffer.concat([salt, Buffer.from(content)])).toString("hex"),
+    ]),
   );
   const head = await lockLedgerHead(trx);
   const seq = (head?.seq ?? 0) + 1;
@@ -36,7 +39,19 @@ export async function appendEvent(ctx: Ctx, trx: Trx, event: NewEvent): Promise<
   const previous = head?.hash.toString("hex") ?? FIRST_PREVIOUS;
   const canonical = canonicalEvent({ seq, at: at.toISOString(), actor, action, subject, data, previous });
   const hash = sha256(canonical);
-  await insertLedgerEvent(trx, { seq, at, actor, action, subject, canonical, previous: Buffer.from(previous, "hex"), hash });
-  await insertLedgerTexts(trx, texts.map((text) => ({ seq, ...text })));
+  await insertLedgerEvent(trx, {
+    seq,
+    at,
+    actor,
+    action,
+    subject,
+    canonical,
+    previous: Buffer.from(previous, "hex"),
+    hash,
+  });
+  await insertLedgerTexts(
+    trx,
+    texts.map((text) => ({ seq, ...text })),
+  );
   return { seq, hash: hash.toString("hex") };
 }

@@ -21,13 +21,23 @@ export async function replyOnce(
   run: () => Promise<{ status: number; body: unknown }>,
 ): Promise<StoredReply> {
   const { actorId, route, key } = call;
-  const claim = { actorId, route, key, bodySha256: createHash("sha256").update(call.body).digest(), createdAt: ctx.now() };
+  const claim = {
+    actorId,
+    route,
+    key,
+    bodySha256: createHash("sha256").update(call.body).digest(),
+    createdAt: ctx.now(),
+  };
   const earlier = await insertIdempotentReply(ctx.db, claim);
   if (earlier && !earlier.bodySha256.equals(claim.bodySha256)) {
-    throw new AppError("idempotency.key_reused", { message: "This Idempotency-Key was used with another body; take a new key." });
+    throw new AppError("idempotency.key_reused", {
+      message: "This Idempotency-Key was used with another body; take a new key.",
+    });
   }
   if (earlier?.status === null) {
-    throw new AppError("idempotency.in_progress", { message: "The first call with this key is still running; ask again shortly." });
+    throw new AppError("idempotency.in_progress", {
+      message: "The first call with this key is still running; ask again shortly.",
+    });
   }
   if (earlier) return { status: earlier.status as number, body: earlier.body, replayed: true };
   try {

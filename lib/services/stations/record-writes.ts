@@ -22,11 +22,21 @@ const isPackageId = (text: string) => UUID.test(text);
  * is kept and flagged. The same record sent again is `duplicate`; the same id with other content is `conflict` and changes nothing.
  * One ledger event stands for the batch, with the number of records and the SHA-256 over their digests.
  */
-export async function recordWrites(ctx: StationCtx, writes: readonly WriteReport[]): Promise<{ results: WriteResult[] }> {
+export async function recordWrites(
+  ctx: StationCtx,
+  writes: readonly WriteReport[],
+): Promise<{ results: WriteResult[] }> {
   return ctx.db.transaction().execute(async (trx) => {
-    const hashed = writes.map((report) => ({ report, contentSha256: createHash("sha256").update(canonicalJson(report)).digest() }));
+    const hashed = writes.map((report) => ({
+      report,
+      contentSha256: createHash("sha256").update(canonicalJson(report)).digest(),
+    }));
     const firstOfId = new Map<string, Buffer>();
-    for (const row of await query.listKnownWrites(trx, writes.map((report) => report.id))) firstOfId.set(row.id, row.contentSha256);
+    for (const row of await query.listKnownWrites(
+      trx,
+      writes.map((report) => report.id),
+    ))
+      firstOfId.set(row.id, row.contentSha256);
     const fresh = hashed.filter(({ report, contentSha256 }) => {
       if (firstOfId.has(report.id)) return false;
       firstOfId.set(report.id, contentSha256);
@@ -35,15 +45,26 @@ export async function recordWrites(ctx: StationCtx, writes: readonly WriteReport
     const rows = await judge(ctx, trx, fresh);
     const stored = new Set(await query.insertWrites(trx, rows));
     // Another request of the same station may have stored the same id between our look and our insert.
-    for (const row of await query.listKnownWrites(trx, rows.filter((row) => !stored.has(row.id)).map((row) => row.id))) {
+    for (const row of await query.listKnownWrites(
+      trx,
+      rows.filter((row) => !stored.has(row.id)).map((row) => row.id),
+    )) {
       firstOfId.set(row.id, row.contentSha256);
     }
-    await query.setFirstHardware(trx, rows.flatMap(({ deviceId, hardwareId, outcome, flags }) =>
-      deviceId && hardwareId && outcome === "verified" && !flags.includes("board-changed") ? [{ deviceId, hardwareId }] : []));
+    await query.setFirstHardware(
+      trx,
+      rows.flatMap(({ deviceId, hardwareId, outcome, flags }) =>
+        deviceId && hardwareId && outcome === "verified" && !flags.includes("board-changed")
+          ? [{ deviceId, hardwareId }]
+          : [],
+      ),
+    );
     const results = resultsOf(hashed, rows, stored, firstOfId);
     const conflicts = results.filter((result) => result.outcome === "conflict").map((result) => result.id);
     if (stored.size > 0 || conflicts.length > 0) {
-      const root = createHash("sha256").update(Buffer.concat(rows.filter((row) => stored.has(row.id)).map((row) => row.contentSha256)));
+      const root = createHash("sha256").update(
+        Buffer.concat(rows.filter((row) => stored.has(row.id)).map((row) => row.contentSha256)),
+      );
       await appendEvent(ctx, trx, {
         action: "writes.recorded",
         subject: ctx.actor.id,
@@ -81,7 +102,10 @@ async function judge(
   const packageIds = [...new Set(fresh.map(({ report }) => report.package).filter(isPackageId))];
   const targets = new Map((await query.listWriteTargets(trx, serials)).map((target) => [target.serial, target]));
   const images = new Map(
-    (await query.listWriteImages(trx, packageIds, serials)).map((image) => [`${image.packageId} ${image.serial}`, image]),
+    (await query.listWriteImages(trx, packageIds, serials)).map((image) => [
+      `${image.packageId} ${image.serial}`,
+      image,
+    ]),
   );
   const starts = await query.listLiveStarts(trx, [...new Set([...images.values()].map((image) => image.lotId))]);
   const receivedAt = ctx.now();
@@ -90,7 +114,11 @@ async function judge(
     const image = images.get(`${report.package} ${report.serial}`);
     const write = { ...report, finishedAt: new Date(report.finishedAt) };
     const known: KnownTarget = {
-      device: target && { hardwareId: target.hardwareId, held: target.held, stationMayWrite: ctx.actor.familyIds.includes(target.familyId) },
+      device: target && {
+        hardwareId: target.hardwareId,
+        held: target.held,
+        stationMayWrite: ctx.actor.familyIds.includes(target.familyId),
+      },
       image: image && knownImage(image),
       liveWhenFinished: image !== undefined && liveAt(starts, image.lotId, write.finishedAt) === report.package,
     };

@@ -1,3 +1,4 @@
+import { sha256Hex } from "@/builders/bundle/sha256";
 import { type CompiledLayout, compileLayout } from "@/builders/codec/compile-layout";
 import { compareImages } from "@/builders/codec/difference";
 import { checkChecksums, type DecodedField, decodeImage, imageDigestBytes } from "@/builders/codec/image";
@@ -8,7 +9,6 @@ import { listLayoutsInUse } from "@/db/queries/package-layouts";
 import { AppError } from "@/lib/errors";
 import type { Ctx } from "@/lib/services/context";
 import { layoutsOfPackages } from "@/lib/services/devices/layouts-of-packages";
-import { sha256 } from "@/builders/bundle/sha256";
 import type { DumpResult } from "@/schemas/api/devices";
 
 type Dump = { raw: Buffer } | { hex: ReturnType<typeof readIntelHex> };
@@ -20,7 +20,8 @@ type KnownImage = Awaited<ReturnType<typeof listImagesOfDevice>>[number];
  * @throws AppError `hex.*` with the line, `dump.wrong_length`, `dump.incomplete`, `device.not_found`
  */
 export async function checkDump(ctx: Ctx, input: { serial?: string; bytes: Buffer }): Promise<DumpResult> {
-  const dump: Dump = input.bytes[0] === 0x3a ? { hex: readIntelHex(input.bytes.toString("latin1")) } : { raw: input.bytes };
+  const dump: Dump =
+    input.bytes[0] === 0x3a ? { hex: readIntelHex(input.bytes.toString("latin1")) } : { raw: input.bytes };
   if (input.serial !== undefined) return checkAgainstDevice(ctx, input.serial, dump);
   const known = await findByDigest(ctx, dump);
   if (known) return checkAgainstDevice(ctx, known, dump);
@@ -28,16 +29,23 @@ export async function checkDump(ctx: Ctx, input: { serial?: string; bytes: Buffe
     const layout = compileLayout(document);
     const bytes = findBytes(layout, dump);
     const serial = bytes && serialIn(layout, bytes);
-    if (serial && (await findDevicesBySerial(ctx.db, [serial])).length === 1) return checkAgainstDevice(ctx, serial, dump);
+    if (serial && (await findDevicesBySerial(ctx.db, [serial])).length === 1)
+      return checkAgainstDevice(ctx, serial, dump);
   }
-  return unknown(null, "No layout in use makes sense of these bytes. Check that the whole memory was read, from its base address.");
+  return unknown(
+    null,
+    "No layout in use makes sense of these bytes. Check that the whole memory was read, from its base address.",
+  );
 }
 
 async function checkAgainstDevice(ctx: Ctx, serial: string, dump: Dump): Promise<DumpResult> {
   const [device] = await findDevicesBySerial(ctx.db, [serial]);
   if (!device) throw new AppError("device.not_found", { serial, message: `No device has the serial ${serial}.` });
   const images = await listImagesOfDevice(ctx.db, device.id);
-  const layouts = await layoutsOfPackages(ctx.db, images.map((image) => image.packageId));
+  const layouts = await layoutsOfPackages(
+    ctx.db,
+    images.map((image) => image.packageId),
+  );
   const fitting = images.flatMap((image) => {
     const layout = layouts.get(image.packageId);
     const bytes = layout && findBytes(layout, dump);
@@ -49,8 +57,14 @@ async function checkAgainstDevice(ctx: Ctx, serial: string, dump: Dump): Promise
     throw wrongShape(layouts.values().next().value as CompiledLayout, dump);
   }
   const { image, layout, bytes } = nearest;
-  const facts = { package: image.packageId, version: image.version, live: image.state === "live", checksums: checksumsOf(layout, bytes) };
-  if (isExact(image, layout, bytes)) return { match: "exact", serial, ...facts, differences: [], advice: exactAdvice(image) };
+  const facts = {
+    package: image.packageId,
+    version: image.version,
+    live: image.state === "live",
+    checksums: checksumsOf(layout, bytes),
+  };
+  if (isExact(image, layout, bytes))
+    return { match: "exact", serial, ...facts, differences: [], advice: exactAdvice(image) };
   const found = serialIn(layout, bytes);
   const other = found !== null && found !== serial ? await findDevicesBySerial(ctx.db, [found]) : [];
   const differences = differencesOf(layout, image.bytes, bytes);
@@ -58,11 +72,17 @@ async function checkAgainstDevice(ctx: Ctx, serial: string, dump: Dump): Promise
     const advice = `These bytes name ${found}, not ${serial}. Boards may have been swapped: hold both devices, compare the hardware ids, and do not write until it is clear which cell this is.`;
     return { match: "other-serial", serial: found, ...facts, differences, advice };
   }
-  return { match: "differs", serial, ...facts, differences, advice: differsAdvice(facts.checksums, differences.length, image.version) };
+  return {
+    match: "differs",
+    serial,
+    ...facts,
+    differences,
+    advice: differsAdvice(facts.checksums, differences.length, image.version),
+  };
 }
 
 const isExact = (image: KnownImage, layout: CompiledLayout, bytes: Uint8Array) =>
-  sha256(imageDigestBytes(layout, bytes)) === image.sha256.toString("hex");
+  sha256Hex(imageDigestBytes(layout, bytes)) === image.sha256.toString("hex");
 
 /** The live image, else the newest that ever was live, else the newest. */
 function preferred<T extends { image: KnownImage }>(fitting: readonly T[]): T | undefined {
@@ -75,7 +95,7 @@ async function findByDigest(ctx: Ctx, dump: Dump): Promise<string | null> {
     const layout = compileLayout(document);
     const bytes = findBytes(layout, dump);
     if (!bytes) continue;
-    const [image] = await findImagesBySha256(ctx.db, Buffer.from(sha256(imageDigestBytes(layout, bytes)), "hex"));
+    const [image] = await findImagesBySha256(ctx.db, Buffer.from(sha256Hex(imageDigestBytes(layout, bytes)), "hex"));
     if (image) return image.serial;
   }
   return null;
@@ -102,13 +122,21 @@ function findBytes(layout: CompiledLayout, dump: Dump): Uint8Array | null {
 function wrongShape(layout: CompiledLayout, dump: Dump): AppError {
   if ("raw" in dump) {
     const facts = { expected: layout.bytes, actual: dump.raw.length };
-    return new AppError("dump.wrong_length", { ...facts, message: `A raw dump of this device has ${facts.expected} bytes; this one has ${facts.actual}. Read the whole memory, or send Intel HEX.` });
+    return new AppError("dump.wrong_length", {
+      ...facts,
+      message: `A raw dump of this device has ${facts.expected} bytes; this one has ${facts.actual}. Read the whole memory, or send Intel HEX.`,
+    });
   }
   const base = `0x${layout.baseAddress.toString(16).toUpperCase().padStart(4, "0")}`;
-  return new AppError("dump.incomplete", { base, bytes: layout.bytes, message: `The dump does not hold all ${layout.bytes} bytes from ${base}. Read the whole memory.` });
+  return new AppError("dump.incomplete", {
+    base,
+    bytes: layout.bytes,
+    message: `The dump does not hold all ${layout.bytes} bytes from ${base}. Read the whole memory.`,
+  });
 }
 
-const checksumsOf = (layout: CompiledLayout, bytes: Uint8Array) => checkChecksums(layout, bytes).map(({ name, ok }) => ({ name, ok }));
+const checksumsOf = (layout: CompiledLayout, bytes: Uint8Array) =>
+  checkChecksums(layout, bytes).map(({ name, ok }) => ({ name, ok }));
 
 function serialIn(layout: CompiledLayout, bytes: Uint8Array): string | null {
   const field = layout.fields.find(({ source }) => source === "device.serial");
@@ -124,22 +152,40 @@ function differencesOf(layout: CompiledLayout, expected: Uint8Array, actual: Uin
   return compareImages({ layout, bytes: expected }, { layout, bytes: actual }).bytes.map(({ at, from, to }) => {
     const field = [...before.values()].find((candidate) => holds(candidate, at));
     const found = field && after.get(field.name);
-    return { at, field: field?.name ?? null, expected: hex(from), actual: hex(to), expectedValue: field?.value ?? null, actualValue: found?.value ?? null };
+    return {
+      at,
+      field: field?.name ?? null,
+      expected: hex(from),
+      actual: hex(to),
+      expectedValue: field?.value ?? null,
+      actualValue: found?.value ?? null,
+    };
   });
 }
 
 function exactAdvice(image: KnownImage): string {
   if (image.state === "live") return `Exactly the image of ${image.version}, which is live. Nothing to do.`;
-  if (image.state === "withdrawn") return `Exactly the image of ${image.version}, which was withdrawn. Hold the device and write the live release.`;
+  if (image.state === "withdrawn")
+    return `Exactly the image of ${image.version}, which was withdrawn. Hold the device and write the live release.`;
   return `Exactly the image of ${image.version}, which is not live. Whether it has to be written again stands on the lot's re-write list.`;
 }
 
 function differsAdvice(checksums: { ok: boolean }[], count: number, version: string): string {
   const start = `${count} byte${count === 1 ? "" : "s"} differ from the image of ${version}.`;
-  if (checksums.some(({ ok }) => !ok)) return `${start} A checksum inside is wrong too: the memory is damaged or was written in part. Hold the device, write the live release again and read back.`;
+  if (checksums.some(({ ok }) => !ok))
+    return `${start} A checksum inside is wrong too: the memory is damaged or was written in part. Hold the device, write the live release again and read back.`;
   return `${start} Its checksums are right, so these bytes were written on purpose by something else. Hold the device and find out what wrote it before writing again.`;
 }
 
 function unknown(serial: string | null, advice: string): DumpResult {
-  return { match: "unknown", serial, package: null, version: null, live: false, checksums: [], differences: [], advice };
+  return {
+    match: "unknown",
+    serial,
+    package: null,
+    version: null,
+    live: false,
+    checksums: [],
+    differences: [],
+    advice,
+  };
 }

@@ -28,20 +28,23 @@ export async function getDeviceTrace(ctx: Ctx, serial: string): Promise<DeviceTr
     shipped: device.shipped,
     hardwareId: device.hardwareId,
     firmware: device.firmware ?? device.lotFirmware,
-    current: carried && last
-      ? {
-          package: last.packageId,
-          version: last.version,
-          imageSha256: last.imageSha256,
-          writtenAt: last.finishedAt,
-          station: last.station,
-          outcome: last.outcome,
-          known: carried.known,
-          live: carried.live,
-          sameValuesAsLive: carried.sameValuesAsLive,
-        }
+    current:
+      carried && last
+        ? {
+            package: last.packageId,
+            version: last.version,
+            imageSha256: last.imageSha256,
+            writtenAt: last.finishedAt,
+            station: last.station,
+            outcome: last.outcome,
+            known: carried.known,
+            live: carried.live,
+            sameValuesAsLive: carried.sameValuesAsLive,
+          }
+        : null,
+    coefficients: newest
+      ? { derivation: newest.derivationId, state: newest.state as string, role: newest.role, values: valuesOf(newest) }
       : null,
-    coefficients: newest ? { derivation: newest.derivationId, state: newest.state as string, role: newest.role, values: valuesOf(newest) } : null,
     history: [
       ...writes.map(writeEntry),
       ...events.map(eventEntry),
@@ -106,17 +109,45 @@ const EVENT: Record<string, [string, HistoryEntry["tone"]]> = {
 
 function eventEntry(row: Awaited<ReturnType<typeof listDeviceEvents>>[number]): HistoryEntry {
   const [what, tone] = EVENT[row.kind] ?? [row.kind, "info"];
-  const facts = [row.reason, row.reference, row.hardwareId && `board ${row.hardwareId}`, row.firmware && `firmware ${row.firmware}`];
-  return { at: row.at.toISOString(), kind: "event", what, tone, who: row.person, detail: facts.filter(Boolean).join(" · "), link: null };
+  const facts = [
+    row.reason,
+    row.reference,
+    row.hardwareId && `board ${row.hardwareId}`,
+    row.firmware && `firmware ${row.firmware}`,
+  ];
+  return {
+    at: row.at.toISOString(),
+    kind: "event",
+    what,
+    tone,
+    who: row.person,
+    detail: facts.filter(Boolean).join(" · "),
+    link: null,
+  };
 }
 
 function runEntry(row: Awaited<ReturnType<typeof query.listRunsOfDevice>>[number]): HistoryEntry {
-  const range = row.highC - row.lowC < 1 ? `${row.lowC.toFixed(1)} °C` : `${row.lowC.toFixed(1)} to ${row.highC.toFixed(1)} °C`;
+  const range =
+    row.highC - row.lowC < 1 ? `${row.lowC.toFixed(1)} °C` : `${row.lowC.toFixed(1)} to ${row.highC.toFixed(1)} °C`;
   const what = `${row.purpose[0]?.toUpperCase()}${row.purpose.slice(1)} run, ${range}`;
-  return { at: row.at.toISOString(), kind: "run", what, tone: "info", who: row.person, detail: row.loaded ? "loaded and unloaded" : "unloaded only", link: `/runs/${row.id}` };
+  return {
+    at: row.at.toISOString(),
+    kind: "run",
+    what,
+    tone: "info",
+    who: row.person,
+    detail: row.loaded ? "loaded and unloaded" : "unloaded only",
+    link: `/runs/${row.id}`,
+  };
 }
 
-const SET_TONE: Record<string, HistoryEntry["tone"]> = { approved: "good", proposed: "wait", refused: "bad", stale: "wait", revoked: "bad" };
+const SET_TONE: Record<string, HistoryEntry["tone"]> = {
+  approved: "good",
+  proposed: "wait",
+  refused: "bad",
+  stale: "wait",
+  revoked: "bad",
+};
 
 function setEntry(row: SetRow): HistoryEntry {
   const state = row.state as string;

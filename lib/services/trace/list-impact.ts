@@ -6,9 +6,16 @@ import { type Page, pageOf } from "@/lib/services/page";
 const SOURCES = ["run", "derivation", "layout", "package", "equipment"] as const;
 
 /** Serials that one thing reached. @throws AppError `trace.source_missing` unless exactly one is named */
-export async function listImpact(ctx: Ctx, input: ImpactSource & { limit: number; cursor?: string }): Promise<Page<ImpactRow>> {
+export async function listImpact(
+  ctx: Ctx,
+  input: ImpactSource & { limit: number; cursor?: string },
+): Promise<Page<ImpactRow>> {
   const named = SOURCES.filter((source) => input[source] !== undefined);
-  if (named.length !== 1) throw new AppError("trace.source_missing", { sources: SOURCES, message: `Name exactly one of ${SOURCES.join(", ")}.` });
+  if (named.length !== 1)
+    throw new AppError("trace.source_missing", {
+      sources: SOURCES,
+      message: `Name exactly one of ${SOURCES.join(", ")}.`,
+    });
   const rows = await query(ctx.db, input, { after: input.cursor, limit: input.limit + 1 });
   return pageOf(rows, input.limit, (row) => row.serial);
 }

@@ -144,12 +144,7 @@ describe("malformed files", () => {
     ["an end record with an offset", file(data, ":00000101FE"), "hex.nonzero_offset", 2],
     ["an address record with an offset", file(":020001040800F1", end), "hex.nonzero_offset", 1],
     ["an address record of one byte", file(":0100000408F3", end), "hex.wrong_length", 1],
-    [
-      "a record that wraps in its segment",
-      file(":020000021000EC", ":04FFFE0001020304F5", end),
-      "hex.segment_wrap",
-      2,
-    ],
+    ["a record that wraps in its segment", file(":020000021000EC", ":04FFFE0001020304F5", end), "hex.segment_wrap", 2],
     ["a record beyond FFFFFFFF", file(":02000004FFFFFC", ":04FFFE0001020304F5", end), "hex.address_out_of_range", 2],
   ])("%s is refused with its line", (_, text, code, line) => {
     expect(() => readIntelHex(text)).toThrow(

@@ -1,8 +1,12 @@
+import { formatCount } from "@/lib/domain/format/figure";
 import { familyFieldGroups } from "../family-fields";
 
 type Values = Record<string, unknown>;
 
-const shown = (value: unknown) => (value === undefined ? "—" : String(value).replace(/^-/, "−"));
+function shown(value: unknown): string {
+  if (typeof value !== "number") return value === undefined ? "—" : String(value);
+  return Number.isInteger(value) ? formatCount(value) : String(value).replace("-", "−");
+}
 
 /** A revision's values with unit and explanation. Against an earlier one, what changed stands old → new. */
 export function FamilyValues({ values, before }: { values: Values; before?: Values }) {

@@ -1,0 +1,239 @@
+"use client";
+
+import { useVirtualizer } from "@tanstack/react-virtual";
+import { useRouter } from "next/navigation";
+import { type KeyboardEvent, type MouseEvent, useEffect, useRef, useState } from "react";
+import { type DataColumn, hrefOf, isMono, isRight, type Row, textOf, unitOf } from "@/app/_components/table/column";
+import { DataCell } from "@/app/_components/table/data-cell";
+
+/** From so many rows on only those in sight are drawn, at fixed widths. */
+const virtualFrom = 120;
+const rowHeight = 34;
+
+export interface TableGridProps {
+  name: string;
+  columns: readonly DataColumn[];
+  rows: readonly Row[];
+  keyOf: (row: Row) => string;
+  rowHref?: string;
+  sort?: { key: string; descending: boolean };
+  onSort: (key: string) => void;
+  /** The reader came near the last row. */
+  onEnd: () => void;
+  selected?: ReadonlySet<string>;
+  onSelected?: (keys: ReadonlySet<string>) => void;
+}
+
+/** The rows themselves: sticky heading and first column, arrow keys, Enter opens, Space selects. */
+export function TableGrid(props: TableGridProps) {
+  const { columns, rows, keyOf } = props;
+  const box = useRef<HTMLDivElement>(null);
+  const [current, setCurrent] = useState(0);
+  const isVirtual = rows.length > virtualFrom;
+  const virtualizer = useVirtualizer({
+    count: rows.length,
+    getScrollElement: () => box.current,
+    estimateSize: () => rowHeight,
+    overscan: 16,
+    enabled: isVirtual,
+    initialRect: { width: 1_000, height: 640 },
+  });
+  const items = isVirtual ? virtualizer.getVirtualItems() : rows.map((_, index) => ({ index, start: 0, end: 0 }));
+  const lastDrawn = items.at(-1)?.index ?? 0;
+  const { onEnd } = props;
+  useEffect(() => {
+    if (lastDrawn >= rows.length - 40) onEnd();
+  }, [lastDrawn, rows.length, onEnd]);
+
+  const before = isVirtual ? (items[0]?.start ?? 0) : 0;
+  const after = isVirtual ? virtualizer.getTotalSize() - (items.at(-1)?.end ?? 0) : 0;
+  const focusRow = (index: number) => {
+    const next = Math.min(Math.max(index, 0), rows.length - 1);
+    setCurrent(next);
+    if (isVirtual) virtualizer.scrollToIndex(next);
+    requestAnimationFrame(() => box.current?.querySelector<HTMLElement>(`[data-row="${next}"]`)?.focus());
+  };
+
+  return (
+    <div
+      ref={box}
+      className={`overflow-auto print:max-h-none print:overflow-visible ${isVirtual ? "max-h-[min(70vh,680px)]" : ""}`}
+    >
+      <table
+        aria-label={props.name}
+        aria-rowcount={rows.length + 1}
+        className={`w-full border-separate border-spacing-0 text-sm ${isVirtual ? "table-fixed" : ""}`}
+      >
+        {isVirtual ? <Widths columns={columns} rows={rows} selectable={props.selected !== undefined} /> : null}
+        <TableHead {...props} />
+        <tbody>
+          {before > 0 ? <tr style={{ height: before }} aria-hidden="true" /> : null}
+          {items.map(({ index }) => {
+            const row = rows[index];
+            return row ? (
+              <BodyRow
+                key={keyOf(row)}
+                {...props}
+                row={row}
+                index={index}
+                tabbable={index === Math.min(current, rows.length - 1)}
+                onMove={focusRow}
+              />
+            ) : null;
+          })}
+          {after > 0 ? <tr style={{ height: after }} aria-hidden="true" /> : null}
+        </tbody>
+      </table>
+    </div>
+  );
+}
+
+/** Fixed widths from the longest of the first texts, so that columns stay where they are while rows come and go. */
+function Widths({
+  columns,
+  rows,
+  selectable,
+}: {
+  columns: readonly DataColumn[];
+  rows: readonly Row[];
+  selectable: boolean;
+}) {
+  const sample = rows.slice(0, 200);
+  return (
+    <colgroup>
+      {selectable ? <col style={{ width: 36 }} /> : null}
+      {columns.map((column) => {
+        const extra = column.format?.as === "state" ? 3 : 0;
+        const longest = Math.max(column.header.length + 2, ...sample.map((row) => textOf(column, row).length + extra));
+        return (
+          <col
+            key={column.key}
+            style={{ width: `calc(${Math.min(longest, 48) * (isMono(column) ? 8.6 : 8)}px + 18px)` }}
+          />
+        );
+      })}
+    </colgroup>
+  );
+}
+
+const headLook =
+  "sticky top-0 border-b border-rule bg-raised py-1.5 pr-3 text-xs font-semibold text-ink-soft whitespace-nowrap";
+
+function TableHead({ columns, rows, keyOf, sort, onSort, selected, onSelected }: TableGridProps) {
+  const keys = selected ? rows.map(keyOf) : [];
+  const all = keys.length > 0 && keys.every((key) => selected?.has(key));
+  return (
+    <thead>
+      <tr>
+        {selected ? (
+          <th scope="col" className={`${headLook} z-10 pl-1.5 text-left`}>
+            <input
+              type="checkbox"
+              aria-label="Select all rows shown"
+              checked={all}
+              onChange={() => onSelected?.(all ? new Set() : new Set(keys))}
+              className="size-4 accent-copper"
+            />
+          </th>
+        ) : null}
+        {columns.map((column, index) => {
+          const unit = unitOf(column);
+          const direction = sort?.key === column.key ? (sort.descending ? "descending" : "ascending") : undefined;
+          const place = index === 0 ? "left-0 z-20 pl-1.5" : "z-10";
+          return (
+            <th
+              key={column.key}
+              scope="col"
+              title={column.title}
+              aria-sort={direction}
+              className={`${headLook} ${place} ${isRight(column) ? "text-right" : "text-left"}`}
+            >
+              {column.sortable === false ? (
+                column.header
+              ) : (
+                <button type="button" onClick={() => onSort(column.key)} className="font-semibold hover:text-ink">
+                  {column.header}
+                  <span aria-hidden="true" className="text-copper">
+                    {direction === "ascending" ? " ↑" : direction === "descending" ? " ↓" : ""}
+                  </span>
+                </button>
+              )}
+              {unit ? <span className="block font-normal">{unit}</span> : null}
+            </th>
+          );
+        })}
+      </tr>
+    </thead>
+  );
+}
+
+interface BodyRowProps extends TableGridProps {
+  row: Row;
+  index: number;
+  /** The one row that Tab reaches. */
+  tabbable: boolean;
+  onMove: (index: number) => void;
+}
+
+function BodyRow({ columns, row, index, keyOf, rowHref, selected, onSelected, tabbable, onMove }: BodyRowProps) {
+  const router = useRouter();
+  const key = keyOf(row);
+  const href = rowHref ? hrefOf(rowHref, row) : undefined;
+  const isSelected = selected?.has(key) ?? false;
+  const toggle = () => {
+    const next = new Set(selected);
+    if (!next.delete(key)) next.add(key);
+    onSelected?.(next);
+  };
+  const onKeyDown = (event: KeyboardEvent) => {
+    if (event.target !== event.currentTarget) return;
+    const move = { ArrowDown: 1, ArrowUp: -1, PageDown: 15, PageUp: -15 }[event.key];
+    if (move) onMove(index + move);
+    else if (event.key === "Home") onMove(0);
+    else if (event.key === "End") onMove(Number.MAX_SAFE_INTEGER);
+    else if (event.key === "Enter" && href) router.push(href);
+    else if (event.key === " " && selected) toggle();
+    else return;
+    event.preventDefault();
+  };
+  const onClick = (event: MouseEvent) => {
+    const inControl = (event.target as HTMLElement).closest("a, button, input, label, summary");
+    if (href && !inControl && !window.getSelection()?.toString()) router.push(href);
+  };
+  const back = isSelected ? "bg-tint" : "bg-raised group-hover:bg-paper group-focus:bg-tint";
+  const look = `border-b border-rule/55 py-1.5 pr-3 whitespace-nowrap ${back}`;
+
+  return (
+    <tr
+      data-row={index}
+      aria-rowindex={index + 2}
+      aria-selected={selected ? isSelected : undefined}
+      tabIndex={tabbable ? 0 : -1}
+      onKeyDown={onKeyDown}
+      onClick={onClick}
+      className={`group focus-visible:outline-offset-[-2px] ${href ? "cursor-pointer" : ""}`}
+    >
+      {selected ? (
+        <td className={`${look} pl-1.5`}>
+          <input
+            type="checkbox"
+            tabIndex={-1}
+            aria-label={`Select ${key}`}
+            checked={isSelected}
+            onChange={toggle}
+            className="block size-4 accent-copper"
+          />
+        </td>
+      ) : null}
+      {columns.map((column, at) => {
+        const place = at === 0 ? "sticky left-0 z-[5] pl-1.5" : "";
+        const type = `${isRight(column) ? "text-right" : ""} ${isMono(column) ? "font-mono" : ""}`;
+        return (
+          <td key={column.key} className={`${look} ${place} ${type} overflow-hidden text-ellipsis`}>
+            <DataCell column={column} row={row} href={at === 0 ? href : undefined} />
+          </td>
+        );
+      })}
+    </tr>
+  );
+}

@@ -1,0 +1,207 @@
+import { execFileSync } from "node:child_process";
+import { mkdirSync, readdirSync, readFileSync, rmSync, writeFileSync } from "node:fs";
+import { dirname, join } from "node:path";
+import { describe, expect, it } from "vitest";
+import { previewFiles, releasedFiles } from "@/builders/bundle/bundle";
+import { sha256Hex } from "@/builders/bundle/sha256";
+import { sumsText } from "@/builders/bundle/sums";
+import { VERIFY_COMMANDS, verifyText } from "@/builders/bundle/verify-text";
+import { writeZip } from "@/builders/bundle/zip";
+import { examplePackage, exampleRelease } from "@/tests/reference/bundle/example";
+import { inFolder, PYTHON, runTool } from "@/tests/reference/codec/tools";
+
+const { content, manifest } = examplePackage();
+const files = releasedFiles(content, exampleRelease(content, manifest));
+const zip = await writeZip(files);
+const FIRST = "images/MW20-2609-00001.hex";
+
+async function unpacked<T>(use: (folder: string) => T): Promise<T> {
+  return inFolder((folder) => {
+    writeFileSync(join(folder, "bundle.zip"), zip);
+    mkdirSync(join(folder, "bundle"));
+    runTool("unzip", ["-q", "../bundle.zip"], undefined, join(folder, "bundle"));
+    return use(join(folder, "bundle"));
+  });
+}
+
+/** Commands of VERIFY.txt, taken from its text as a person would: the indented lines. */
+function commandsOf(text: string): string[] {
+  return text
+    .split("\n")
+    .filter((line) => line.startsWith("     "))
+    .map((line) => line.trim());
+}
+
+/** The commands that fail, each run by sh on its own. */
+function failing(folder: string): string[] {
+  return commandsOf(readFileSync(join(folder, "VERIFY.txt"), "utf8")).filter((command) => !passes(command, folder));
+}
+
+function passes(command: string, folder: string): boolean {
+  try {
+    execFileSync("/bin/sh", ["-c", command], { cwd: folder, stdio: "pipe" });
+    return true;
+  } catch (error) {
+    if (typeof (error as { status?: unknown }).status === "number") return false;
+    throw error;
+  }
+}
+
+describe("a bundle as outside programs read it", () => {
+  it("is whole for unzip", async () => {
+    await inFolder((folder) => {
+      writeFileSync(join(folder, "bundle.zip"), zip);
+      const said = runTool("unzip", ["-t", "bundle.zip"], undefined, folder).toString();
+      expect(said).toContain("No errors detected");
+    });
+  });
+
+  it("is stored, sorted, dated 1980-01-01 and without extra fields for zipinfo", async () => {
+    await inFolder((folder) => {
+      writeFileSync(join(folder, "bundle.zip"), zip);
+      const rows = runTool("zipinfo", ["-T", "bundle.zip"], undefined, folder).toString().split("\n").slice(2, -2);
+      expect(rows).toHaveLength(files.size);
+      for (const row of rows) expect(row).toMatch(/^-rw-r--r-- .* [bt]- .* ?stor 19800101\.000000 /);
+      const names = rows.map((row) => row.split(" ").at(-1) as string);
+      expect(names).toEqual([...names].sort());
+      const detail = runTool("zipinfo", ["-v", "bundle.zip"], undefined, folder).toString();
+      const count = (pattern: RegExp) => detail.match(pattern)?.length;
+      expect(count(/length of extra field: +0 bytes/g)).toBe(files.size);
+      expect(count(/compression method: +none \(stored\)/g)).toBe(files.size);
+    });
+  });
+
+  it("reads alike for Python's zipfile", async () => {
+    await inFolder((folder) => {
+      writeFileSync(join(folder, "bundle.zip"), zip);
+      const script = `
+import hashlib, json, zipfile
+with zipfile.ZipFile("bundle.zip") as z:
+    print(json.dumps({n: hashlib.sha256(z.read(n)).hexdigest() for n in z.namelist()}))`;
+      const read = JSON.parse(runTool(PYTHON, ["-c", script], undefined, folder).toString()) as object;
+      expect(read).toEqual(Object.fromEntries([...files].map(([path, data]) => [path, sha256Hex(data)])));
+    });
+  });
+
+  it("has the bytes of a published one-file zip but for the version of its maker", async () => {
+    // Source: stored zip of one file, checked with unzip, zipinfo and Python (tests/fixtures/published/vectors.json).
+    const vectors = JSON.parse(
+      readFileSync(join(import.meta.dirname, "../../fixtures/published/vectors.json"), "utf8"),
+    ) as {
+      "stored_zip_one_file_a.txt_abc": { hex: string };
+    };
+    const expected = Buffer.from(vectors["stored_zip_one_file_a.txt_abc"].hex, "hex");
+    const made = Buffer.from(await writeZip(new Map([["a.txt", "abc"]])));
+    const madeByVersion = expected.indexOf("PK\x01\x02") + 4;
+    expected[madeByVersion] = made[madeByVersion] as number;
+    expect(made.toString("hex")).toBe(expected.toString("hex"));
+  });
+
+  it("is the same bytes in another process and time zone", async () => {
+    const root = join(import.meta.dirname, "../../..");
+    const script = `import { writeZip } from "@/builders/bundle/zip";
+      writeZip(new Map([["b/c.txt", "1"], ["a.txt", "abc"]])).then((zip) => process.stdout.write(Buffer.from(zip).toString("hex")));`;
+    await inFolder(async (folder) => {
+      writeFileSync(join(folder, "make.mts"), script);
+      const run = (zone: string) =>
+        execFileSync(process.execPath, ["--import", "tsx", join(folder, "make.mts")], {
+          cwd: root,
+          env: { ...process.env, TZ: zone, TSX_TSCONFIG_PATH: join(root, "tsconfig.json") },
+        }).toString();
+      const here = Buffer.from(
+        await writeZip(
+          new Map([
+            ["a.txt", "abc"],
+            ["b/c.txt", "1"],
+          ]),
+        ),
+      ).toString("hex");
+      expect(run("Pacific/Kiritimati")).toBe(here);
+      expect(run("America/Adak")).toBe(here);
+    });
+  });
+});
+
+describe("VERIFY.txt run by sh", () => {
+  it("shows the very commands that are tested", () => {
+    const shown = commandsOf(verifyText());
+    for (const command of Object.values(VERIFY_COMMANDS)) expect(shown).toContain(command);
+    expect(shown).toHaveLength(Object.keys(VERIFY_COMMANDS).length + 1);
+  });
+
+  it("passes on an unpacked bundle", async () => {
+    await unpacked((folder) => expect(failing(folder)).toEqual([]));
+  });
+
+  it("prints the key id", async () => {
+    await unpacked((folder) => {
+      const [show = ""] = commandsOf(verifyText());
+      const said = execFileSync("/bin/sh", ["-c", show], { cwd: folder }).toString().trim();
+      expect(readFileSync(join(folder, "release.json"), "utf8")).toContain(`"keyId":"${said}"`);
+    });
+  });
+
+  it("refuses an image that was changed", async () => {
+    await unpacked((folder) => {
+      writeFileSync(join(folder, FIRST), readFileSync(join(folder, "images/MW20-2609-00002.hex")));
+      expect(failing(folder)).toEqual([VERIFY_COMMANDS.files]);
+    });
+  });
+
+  it("refuses an image, SHA256SUMS and manifest.json changed together", async () => {
+    await unpacked((folder) => {
+      const hex = readFileSync(join(folder, "images/MW20-2609-00002.hex"), "utf8");
+      const old = sha256Hex(readFileSync(join(folder, FIRST)));
+      writeFileSync(join(folder, FIRST), hex);
+      const changed = readFileSync(join(folder, "manifest.json"), "utf8").replace(old, sha256Hex(hex));
+      writeFileSync(join(folder, "manifest.json"), changed);
+      const listed = [
+        "images.jsonl",
+        "manifest.json",
+        ...readdirSync(join(folder, "images")).map((name) => `images/${name}`),
+      ];
+      writeFileSync(
+        join(folder, "SHA256SUMS"),
+        sumsText(new Map(listed.map((path) => [path, readFileSync(join(folder, path))]))),
+      );
+      expect(failing(folder)).toEqual([VERIFY_COMMANDS.sums]);
+    });
+  });
+
+  it("refuses a release.json that was changed along with them", async () => {
+    await unpacked((folder) => {
+      const text = readFileSync(join(folder, "release.json"), "utf8").replace('"sequence":1', '"sequence":9');
+      writeFileSync(join(folder, "release.json"), text);
+      expect(failing(folder)).toEqual([VERIFY_COMMANDS.signature]);
+    });
+  });
+
+  it.each(["notes.txt", "images/MW20-2609-99999.hex", "SHA256SUMSx"])(
+    "refuses the file %s that is not listed",
+    async (path) => {
+      await unpacked((folder) => {
+        mkdirSync(dirname(join(folder, path)), { recursive: true });
+        writeFileSync(join(folder, path), "x");
+        expect(failing(folder)).toEqual([VERIFY_COMMANDS.unlisted]);
+      });
+    },
+  );
+
+  it("refuses a bundle that lacks an image", async () => {
+    await unpacked((folder) => {
+      rmSync(join(folder, FIRST));
+      expect(failing(folder)).toEqual([VERIFY_COMMANDS.files, VERIFY_COMMANDS.unlisted]);
+    });
+  });
+
+  it("of a preview passes and says that nothing is released", async () => {
+    const preview = await writeZip(previewFiles(content, { lot: "MW20-2609", version: "1.0.0", state: "draft" }));
+    await inFolder((folder) => {
+      writeFileSync(join(folder, "p.zip"), preview);
+      runTool("unzip", ["-q", "p.zip", "-d", "p"], undefined, folder);
+      expect(readFileSync(join(folder, "p/NOT-RELEASED.txt"), "utf8")).toContain("is not released");
+      expect(readdirSync(join(folder, "p"))).not.toContain("release.json");
+      expect(failing(join(folder, "p"))).toEqual([]);
+    });
+  });
+});

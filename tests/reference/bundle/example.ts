@@ -1,0 +1,72 @@
+import { generateKeyPairSync } from "node:crypto";
+import { hexPath, type PackageContent, packageSums, type ReleaseFiles } from "@/builders/bundle/bundle";
+import { imageLine, imagesJsonl } from "@/builders/bundle/images-jsonl";
+import { buildManifest, documentDigest, type Manifest, manifestBytes, packageDigest } from "@/builders/bundle/manifest";
+import { keyIdOf, publicKeyPem, type ReleaseRecord, releaseBytes, signRelease } from "@/builders/bundle/release";
+import { sha256Hex } from "@/builders/bundle/sha256";
+import { decodeImage, encodeImage } from "@/builders/codec/image";
+import { writeIntelHex } from "@/builders/codec/intel-hex-write";
+import { readGolden } from "@/tests/reference/codec/golden";
+
+/** The golden lot packed, with invented ids. */
+export function examplePackage(): { content: PackageContent; manifest: Manifest } {
+  const { layout, compiled, sources } = readGolden(".", "MW20-2609");
+  const hexes = new Map<string, string>();
+  const lines: string[] = [];
+  const images = sources.map((one) => {
+    const { serial } = one.device;
+    const bytes = encodeImage(compiled, one);
+    const hex = writeIntelHex(bytes, compiled.baseAddress, compiled.kept);
+    const sha256 = sha256Hex(bytes);
+    hexes.set(serial, hex);
+    lines.push(imageLine({ serial, derivation: "d1", sha256, fields: decodeImage(compiled, bytes) }));
+    return {
+      serial,
+      hardwareId: null,
+      bytes: bytes.length,
+      sha256,
+      hex: { path: hexPath(serial), sha256: sha256Hex(hex) },
+    };
+  });
+  const values = imagesJsonl(lines);
+  const manifest = buildManifest({
+    lot: "MW20-2609",
+    family: { code: "MW-20", revision: 1, sha256: "a".repeat(64) },
+    version: "1.0.0",
+    firmware: "2.3.0",
+    layout: { version: layout.version, sha256: documentDigest(layout) },
+    provenRange: [8.06, 41.9],
+    derivations: [{ id: "d1", sha256: "b".repeat(64), method: "pooled-gain", order: 1, runs: [] }],
+    images: images.reverse(),
+    values: { path: "images.jsonl", sha256: sha256Hex(values) },
+  });
+  return { content: { manifest: manifestBytes(manifest), values, hexes }, manifest };
+}
+
+export const signingKey = generateKeyPairSync("ed25519").privateKey;
+
+/** A release of the package, signed by {@link signingKey} unless another is given. */
+export function exampleRelease(content: PackageContent, manifest: Manifest, key = signingKey): ReleaseFiles {
+  const record: ReleaseRecord = {
+    format: "trimwright/release@1",
+    lot: manifest.lot,
+    version: manifest.version,
+    package: packageDigest(manifest),
+    sums: sha256Hex(packageSums(content)),
+    reviewDigest: "c".repeat(64),
+    sequence: 1,
+    kind: "release",
+    reason: null,
+    releasedAt: "2026-03-09T15:40:00.000Z",
+    approvals: [{ name: "Rita Okafor", role: "reviewer", meaning: "approved", at: "2026-03-09T15:40:00.000Z" }],
+    coefficientApprovals: [],
+    waivers: [],
+    exclusions: [],
+    acknowledgements: [],
+    equipment: [],
+    ledgerHead: "d".repeat(64),
+    keyId: keyIdOf(key),
+  };
+  const release = releaseBytes(record);
+  return { release, signature: signRelease(release, key), publicKeyPem: publicKeyPem(key) };
+}
