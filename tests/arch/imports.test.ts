@@ -2,7 +2,9 @@ import { describe, expect, it } from "vitest";
 import { breachesOf, ruleFor } from "./import-rules";
 import { findImports, isThere, readSourceFiles, type SourceFile, stripComments } from "./source-files";
 
-const files = readSourceFiles();
+/** Its examples below look like imports to a reader that knows no strings. */
+const THIS_FILE = "tests/arch/imports.test.ts";
+const files = readSourceFiles().filter(({ path }) => path !== THIS_FILE);
 
 function fileWith(path: string, code: string): SourceFile {
   return { path, code, imports: findImports(code, path) };
@@ -40,6 +42,8 @@ describe("the rules themselves", () => {
     ["lib/domain/fit.ts", 'import { Kysely } from "kysely";'],
     ["lib/domain/fit.ts", 'import { readFileSync } from "node:fs";'],
     ["lib/domain/fit.ts", 'import { x } from "@/db/client";'],
+    ["lib/domain/fit.ts", 'import { parse } from "csv-parse/sync";'],
+    ["lib/domain/readings/x.ts", 'import { readFileSync } from "node:fs";'],
     ["lib/domain/compensation/fit.ts", 'import { x } from "../../../schemas/api/lots";'],
     ["builders/codec/crc.ts", 'import { createHash } from "node:crypto";'],
     ["builders/bundle/zip.ts", 'import { stat } from "node:fs/promises";'],
@@ -61,6 +65,7 @@ describe("the rules themselves", () => {
 
   it.each([
     ["lib/domain/fit.ts", 'import type { Layout } from "@/schemas/documents/layout";'],
+    ["lib/domain/readings/x.ts", 'import { parse } from "csv-parse/sync";'],
     ["builders/bundle/zip.ts", 'import JSZip from "jszip";'],
     ["db/queries/lots.ts", 'import type { Role } from "@/lib/domain/roles";'],
     ["db/migrate.ts", 'import { migrations } from "@/migrations/index";'],

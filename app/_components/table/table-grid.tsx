@@ -66,8 +66,8 @@ export function TableGrid(props: TableGridProps) {
       >
         {isVirtual ? <Widths columns={columns} rows={rows} selectable={props.selected !== undefined} /> : null}
         <TableHead {...props} />
+        <Spacer height={before} />
         <tbody>
-          {before > 0 ? <tr style={{ height: before }} aria-hidden="true" /> : null}
           {items.map(({ index }) => {
             const row = rows[index];
             return row ? (
@@ -81,10 +81,20 @@ export function TableGrid(props: TableGridProps) {
               />
             ) : null;
           })}
-          {after > 0 ? <tr style={{ height: after }} aria-hidden="true" /> : null}
         </tbody>
+        <Spacer height={after} />
       </table>
     </div>
+  );
+}
+
+/** Room for the rows that are not drawn; nothing to a screen reader, which counts by `aria-rowindex`. */
+function Spacer({ height }: { height: number }) {
+  if (height <= 0) return null;
+  return (
+    <tbody aria-hidden="true">
+      <tr style={{ height }} />
+    </tbody>
   );
 }
 
