@@ -1,12 +1,11 @@
 import type { JsonMarker } from "@/app/_components/editor/json-editor";
-import { type MapPart, tintOfSource } from "@/app/_components/memory-map-rows";
+import { type LayoutMemory, memoryOfLayout } from "@/app/_components/memory-map-parts";
 import { compileLayout } from "@/builders/codec/compile-layout";
-import { findFieldWidth, findNumberType } from "@/builders/codec/field-types";
+import { findNumberType } from "@/builders/codec/field-types";
 import { toHex } from "@/builders/codec/hex-text";
 import { decodeImage, encodeImage } from "@/builders/codec/image";
 import { type LintOptions, lintLayout } from "@/builders/codec/lint";
 import { readLayout } from "@/builders/codec/lint-shape";
-import { findChecksumWidth } from "@/builders/codec/memory-map";
 import { sampleSources } from "@/builders/codec/sample";
 import { jsonPositions, lineAndColumn, nearestSpan } from "@/lib/domain/json-positions";
 import { layoutStep, newestLower, type Step, type StepReason } from "@/lib/domain/semver-step";
@@ -39,7 +38,7 @@ export interface Judged {
   /** Differences to the newest published lower version. */
   previous: string | null;
   reasons: StepReason[];
-  memory: { bytes: number; pageBytes: number; used: number; parts: MapPart[] } | null;
+  memory: LayoutMemory | null;
   sample: Sample | null;
   markers: JsonMarker[];
 }
@@ -69,7 +68,7 @@ export function judgeText(text: string, basis: LintOptions): Judged {
     step,
     previous: previous?.version ?? null,
     reasons: layout && previous ? layoutStep(previous, layout).reasons : [],
-    memory: layout ? memoryOf(layout) : null,
+    memory: layout ? memoryOfLayout(layout) : null,
     sample: layout ? encodeSample(layout, basis) : null,
     markers: markersOf(text, errors, warnings),
   };
@@ -81,25 +80,6 @@ function parse(text: string): unknown {
   } catch (error) {
     return error;
   }
-}
-
-function memoryOf(layout: LayoutDocument): Judged["memory"] {
-  const { bytes, pageBytes } = layout.memory;
-  const fields = layout.fields.flatMap((field): MapPart[] => {
-    const length = findFieldWidth(field);
-    if (length === undefined || length <= 0) return [];
-    const tint = tintOfSource("from" in field.value ? field.value.from : undefined);
-    return [{ name: field.name, at: field.at, length, tint, isText: field.type === "ascii" }];
-  });
-  const checksums = layout.checksums.flatMap(({ name, at, algorithm, over }): MapPart[] => {
-    const length = findChecksumWidth(algorithm);
-    return length === undefined ? [] : [{ name, at, length, tint: "checksum", over }];
-  });
-  const kept = (layout.kept ?? []).map(
-    ([from, to]): MapPart => ({ name: "kept", at: from, length: to - from + 1, tint: "kept" }),
-  );
-  const used = [...fields, ...checksums].reduce((sum, part) => sum + part.length, 0);
-  return { bytes, pageBytes, used, parts: [...fields, ...checksums, ...kept].filter((part) => part.length > 0) };
 }
 
 /** An invented device as this layout stores it; null while the layout can't be encoded. */

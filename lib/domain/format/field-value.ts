@@ -1,0 +1,89 @@
+import { formatFigure } from "@/lib/domain/format/figure";
+import { toEngineering } from "@/lib/domain/format/quantity";
+
+/** A stored field as people read it. */
+export interface FieldText {
+  text: string;
+  /** Empty where there is none, or where the value is a plain ratio. */
+  unit: string;
+}
+
+/** Decimals in the engineering unit; the same as elsewhere for the same quantity. */
+const DIGITS: Record<string, number> = {
+  "µV/V": 3,
+  "nV/V/K": 2,
+  "nV/V/K²": 4,
+  "ppm/K": 2,
+  "ppm/K²": 4,
+  "°C": 3,
+  "1": 6,
+};
+const MOST_DIGITS = 10;
+/** Digits that tell any single-precision value from its neighbours. */
+const SIGNIFICANT = 9;
+
+/**
+ * A decoded field in its engineering unit: 1/K as ppm/K, mV/V as µV/V. Texts and values without a unit stand as they are.
+ * @param value as decoded; null where the bytes hold no value.
+ * @param digits at least so many decimals, where a difference would else be rounded away.
+ */
+export function formatField(value: number | string | null, unit: string | null, digits = 0): FieldText {
+  if (value === null) return { text: "no value", unit: "" };
+  if (typeof value === "string") return { text: value, unit: "" };
+  const shown = toEngineering(value, unit);
+  const shownUnit = shown.unit === "1" ? "" : shown.unit;
+  const base = DIGITS[shown.unit];
+  if (base === undefined && digits === 0) return { text: plain(shown.value), unit: shownUnit };
+  return { text: formatFigure(shown.value, { digits: Math.max(base ?? 0, digits) }), unit: shownUnit };
+}
+
+export interface FieldChange {
+  /** Null where the image had no such field. */
+  from: number | string | null;
+  to: number | string | null;
+  unit: string | null;
+  /** Difference of the stored integers; null where there is none. */
+  steps: number | null;
+}
+
+/** Texts of a change: both values, their unit, the step in that unit (ratios in ppm) and in stored steps. */
+export interface FieldChangeText {
+  from: string | null;
+  to: string | null;
+  unit: string;
+  step?: string;
+  lsb?: string;
+}
+
+/** A change of one field in words and figures, with as many decimals as it takes to see it. */
+export function formatFieldChange({ from, to, unit, steps }: FieldChange): FieldChangeText {
+  const difference = typeof from === "number" && typeof to === "number" ? to - from : null;
+  const digits = difference === null ? 0 : digitsToSee(toEngineering(difference, unit).value);
+  const text = (value: number | string | null) => (value === null ? null : formatField(value, unit, digits).text);
+  const known = typeof to === "number" ? to : from;
+  return {
+    from: text(from),
+    to: text(to),
+    unit: formatField(known, unit).unit,
+    step: difference === null ? undefined : stepText(difference, unit),
+    lsb: steps === null ? undefined : formatFigure(steps, { digits: 0, sign: "always", group: true }),
+  };
+}
+
+/** Two significant digits of the difference; none for what is whole. */
+function digitsToSee(difference: number): number {
+  if (difference === 0 || Number.isInteger(difference)) return 0;
+  return Math.min(MOST_DIGITS, Math.max(0, 1 - Math.floor(Math.log10(Math.abs(difference)))));
+}
+
+function stepText(difference: number, unit: string | null): string | undefined {
+  if (unit === null) return undefined;
+  const shown = unit === "1" ? { value: difference * 1e6, unit: "ppm" } : toEngineering(difference, unit);
+  const figure = formatFigure(shown.value, { digits: Math.max(2, digitsToSee(shown.value)), sign: "always" });
+  return `${figure} ${shown.unit}`;
+}
+
+function plain(value: number): string {
+  if (Number.isInteger(value)) return formatFigure(value, { digits: 0 });
+  return String(Number(value.toPrecision(SIGNIFICANT))).replace("-", "−");
+}
