@@ -1,20 +1,26 @@
 import { headers } from "next/headers";
 import { notFound, redirect } from "next/navigation";
 import { resolveActor } from "@/lib/auth/resolve-actor";
-import type { Role } from "@/lib/domain/roles";
+import { READERS, type Role } from "@/lib/domain/roles";
 import { AppError, statusOf } from "@/lib/errors";
 import type { PersonCtx } from "@/lib/services/context";
 import { newContext } from "./route";
 
-/** The context of a page: a signed-in person, else the sign-in page and back. */
-export async function pageContext(): Promise<PersonCtx> {
+/**
+ * The context of a page: a signed-in person, else the sign-in page and back.
+ * Most pages are for readers; who holds none of the roles, as an operator, is taken to the bench.
+ * @param roles who may see the page; `ROLES` for a page of everybody signed in.
+ */
+export async function pageContext(roles: readonly Role[] = READERS): Promise<PersonCtx> {
   const requestHeaders = await headers();
   const actor = await resolveActor(requestHeaders);
   if (actor.kind !== "person") {
     const back = requestHeaders.get("x-path") ?? "/today";
     redirect(`/sign-in?back=${encodeURIComponent(back)}`);
   }
-  return newContext(actor) as PersonCtx;
+  const ctx = newContext(actor) as PersonCtx;
+  if (!holds(ctx, ...roles)) redirect(actor.roles.includes("operator") ? "/stations/bench" : "/account");
+  return ctx;
 }
 
 /** Whether the person of a page holds one of the roles. */

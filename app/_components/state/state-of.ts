@@ -67,6 +67,39 @@ const states = {
     shipped: { tone: "idle", shape: "dot", word: "shipped" },
     returned: { tone: "caution", word: "returned" },
   },
+  /** What a device carries, by its deciding write record. */
+  trace: {
+    "carries-live": { tone: "good", word: "carries the live image" },
+    "carries-live-values": {
+      tone: "good",
+      word: "carries the live values",
+      title: "Another release, equal to the live one in everything but version numbers",
+    },
+    "carries-other-values": {
+      tone: "caution",
+      word: "carries other values than the live ones",
+      title: "Stands on the lot's re-write list",
+    },
+    "carries-unreleased": {
+      tone: "caution",
+      word: "carries an image nothing live compares with",
+      title: "Nothing is live for the lot, or the live release has no image of this device",
+    },
+    unknown: {
+      tone: "bad",
+      shape: "half",
+      word: "what it carries is unknown",
+      title: "The last write was not verified, or the board was replaced since",
+    },
+    "never-written": { tone: "idle", word: "never written", title: "No station has reported a write" },
+    held: { tone: "bad", shape: "bar", word: "held", title: "Stopped by one person; going on takes two" },
+    scrapped: { tone: "bad", word: "scrapped" },
+  },
+  rewrite: {
+    "never-written": { tone: "idle", word: "never written" },
+    unknown: { tone: "bad", shape: "half", word: "unknown", title: "The last write was not verified" },
+    "other-values": { tone: "caution", word: "other values", title: "Not equal in values to the live image" },
+  },
   check: {
     pass: { tone: "good", word: "pass" },
     warn: { tone: "wait", word: "warn", title: "Needs a waiver before review" },
