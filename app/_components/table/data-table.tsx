@@ -35,6 +35,11 @@ export interface DataTableProps {
   rowKey?: string;
   /** Page of a row, as `/trace/{serial}`. */
   rowHref?: string;
+  /** Client pages: opens a row beside the table instead of on a page; `opened` is the key of the one shown. */
+  onOpen?: (row: Row) => void;
+  opened?: string;
+  /** Client pages: makes the shown row of one that the endpoint answered. Has to stay the same function. */
+  toRow?: (row: Row) => Row;
   chips?: readonly FilterChip[];
   sort?: { key: string; descending: boolean };
   /** Beside the chips, one line. */
@@ -53,7 +58,7 @@ export function DataTable(props: DataTableProps) {
   const [wantsCsv, setWantsCsv] = useState(false);
   const sort = state.sort ?? props.sort;
   const needsAll = wantsCsv || state.sort !== undefined || state.chip !== undefined || state.text !== "";
-  const loaded = useRows(props.rows, props.endpoint, needsAll);
+  const loaded = useRows(props.rows, props.endpoint, needsAll, props.toRow);
   const shown = useMemo(() => shownColumns(columns, state), [columns, state]);
   const chip = chips.find(({ id }) => id === state.chip);
   const table = useTable(loaded.rows, columns, sort, chip, state.text);
@@ -113,6 +118,8 @@ export function DataTable(props: DataTableProps) {
         rows={visible.map((row) => row.original)}
         keyOf={(row) => String(valueAt(row, props.rowKey ?? columns[0]?.key ?? "id"))}
         rowHref={props.rowHref}
+        onOpen={props.onOpen}
+        opened={props.opened}
         sort={sort}
         onSort={(key) => change({ sort: nextSort(sort, key) })}
         onEnd={loaded.loadMore}

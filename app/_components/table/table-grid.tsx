@@ -16,6 +16,9 @@ export interface TableGridProps {
   rows: readonly Row[];
   keyOf: (row: Row) => string;
   rowHref?: string;
+  /** Opens a row beside the table; `opened` is the key of the one shown. */
+  onOpen?: (row: Row) => void;
+  opened?: string;
   sort?: { key: string; descending: boolean };
   onSort: (key: string) => void;
   /** The reader came near the last row. */
@@ -185,7 +188,8 @@ interface BodyRowProps extends TableGridProps {
   onMove: (index: number) => void;
 }
 
-function BodyRow({ columns, row, index, keyOf, rowHref, selected, onSelected, tabbable, onMove }: BodyRowProps) {
+function BodyRow(props: BodyRowProps) {
+  const { columns, row, index, keyOf, rowHref, onOpen, opened, selected, onSelected, tabbable, onMove } = props;
   const router = useRouter();
   const key = keyOf(row);
   const href = rowHref ? hrefOf(rowHref, row) : undefined;
@@ -201,6 +205,7 @@ function BodyRow({ columns, row, index, keyOf, rowHref, selected, onSelected, ta
     if (move) onMove(index + move);
     else if (event.key === "Home") onMove(0);
     else if (event.key === "End") onMove(Number.MAX_SAFE_INTEGER);
+    else if (event.key === "Enter" && onOpen) onOpen(row);
     else if (event.key === "Enter" && href) router.push(href);
     else if (event.key === " " && selected) toggle();
     else return;
@@ -208,9 +213,12 @@ function BodyRow({ columns, row, index, keyOf, rowHref, selected, onSelected, ta
   };
   const onClick = (event: MouseEvent) => {
     const inControl = (event.target as HTMLElement).closest("a, button, input, label, summary");
-    if (href && !inControl && !window.getSelection()?.toString()) router.push(href);
+    if (inControl || window.getSelection()?.toString()) return;
+    if (onOpen) onOpen(row);
+    else if (href) router.push(href);
   };
-  const back = isSelected ? "bg-tint" : "bg-raised group-hover:bg-paper group-focus:bg-tint";
+  const isOpen = opened !== undefined && key === opened;
+  const back = isSelected || isOpen ? "bg-tint" : "bg-raised group-hover:bg-paper group-focus:bg-tint";
   const look = `border-b border-rule/55 py-1.5 pr-3 whitespace-nowrap ${back}`;
 
   return (
@@ -218,10 +226,11 @@ function BodyRow({ columns, row, index, keyOf, rowHref, selected, onSelected, ta
       data-row={index}
       aria-rowindex={index + 2}
       aria-selected={selected ? isSelected : undefined}
+      aria-current={isOpen || undefined}
       tabIndex={tabbable ? 0 : -1}
       onKeyDown={onKeyDown}
       onClick={onClick}
-      className={`group focus-visible:outline-offset-[-2px] ${href ? "cursor-pointer" : ""}`}
+      className={`group focus-visible:outline-offset-[-2px] ${href || onOpen ? "cursor-pointer" : ""}`}
     >
       {selected ? (
         <td className={`${look} pl-1.5`}>

@@ -25,8 +25,14 @@ const pageSize = 500;
 /**
  * Rows of a page, or of an API list page by page.
  * @param all everything is needed, as for sorting and filtering: pages are then fetched one after the other.
+ * @param toRow makes the shown row of an answered one.
  */
-export function useRows(given: readonly Row[] | undefined, endpoint: string | undefined, all: boolean): LoadedRows {
+export function useRows(
+  given: readonly Row[] | undefined,
+  endpoint: string | undefined,
+  all: boolean,
+  toRow?: (row: Row) => Row,
+): LoadedRows {
   const query = useInfiniteQuery({
     queryKey: ["list", endpoint],
     enabled: endpoint !== undefined,
@@ -40,7 +46,10 @@ export function useRows(given: readonly Row[] | undefined, endpoint: string | un
   }, [all, hasNextPage, isFetching, error, fetchNextPage]);
 
   const pages = query.data?.pages;
-  const loaded = useMemo(() => pages?.flatMap((page) => page.items) ?? [], [pages]);
+  const loaded = useMemo(() => {
+    const answered = pages?.flatMap((page) => page.items) ?? [];
+    return toRow ? answered.map(toRow) : answered;
+  }, [pages, toRow]);
   if (given) return { rows: given, complete: true, loading: false, error: null, loadMore: nothing, retry: nothing };
   return {
     rows: loaded,
