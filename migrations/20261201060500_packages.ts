@@ -46,7 +46,7 @@ export async function up(db: Kysely<never>): Promise<void> {
     create table image (
       package_id uuid not null references package,
       device_id uuid not null references device,
-      serial text not null,
+      serial text collate "C" not null,
       coefficient_set_id uuid not null references coefficient_set,
       hardware_id text,
       bytes bytea not null,
@@ -55,6 +55,7 @@ export async function up(db: Kysely<never>): Promise<void> {
       primary key (package_id, device_id)
     );
     create index image_device on image (device_id, package_id);
+    create unique index image_serial on image (package_id, serial);
     create index image_sha256 on image (sha256);
     create index image_set on image (coefficient_set_id);
 
