@@ -1,3 +1,4 @@
+import type { JobRunner } from "@/lib/jobs/drain-jobs";
 import type { JobPayloads } from "@/lib/jobs/payloads";
 import type { QueueName } from "@/lib/jobs/queues";
 import type { Ctx } from "@/lib/services/context";
@@ -9,3 +10,13 @@ export type JobHandlers = { [Q in QueueName]?: (ctx: Ctx, payload: JobPayloads[Q
 export const jobHandlers: JobHandlers = {
   derive: runDerivation,
 };
+
+/** The handlers as runners of `drainJobs`, each job with a context made for it. */
+export function runnersFor(makeCtx: () => Ctx): JobRunner {
+  return Object.fromEntries(
+    Object.entries(jobHandlers).map(([queue, handle]) => [
+      queue,
+      (payload: object) => (handle as (ctx: Ctx, payload: object) => Promise<void>)(makeCtx(), payload),
+    ]),
+  );
+}
