@@ -10,9 +10,7 @@ import {
   existsSync,
   mkdirSync,
   openSync,
-  readdirSync,
   readFileSync,
-  readlinkSync,
   rmSync,
   statSync,
   writeFileSync,
@@ -21,15 +19,14 @@ import { connect, createServer } from "node:net";
 import { dirname, join } from "node:path";
 import { setTimeout as delay } from "node:timers/promises";
 import { promisify } from "node:util";
+import { clearStalePidFile, findRunningServer } from "@/db/pid-file";
 import { listPostgres, type PostgresBinaries } from "@/db/postgres-binaries";
 import { OWNER_ROLE } from "@/db/roles";
 import { databasePassword } from "@/lib/env";
 import { AppError } from "@/lib/errors";
-import { isProcessAlive } from "@/lib/process-state";
 
 const run = promisify(execFile);
 const READY_WITHIN_MS = 60_000;
-const ORPHANS_GONE_WITHIN_MS = 10_000;
 
 export interface LocalServer {
   port: number;
@@ -45,6 +42,8 @@ export interface LocalServerOptions {
   /** Off only for tests: a power cut then loses the data. */
   fsync: boolean;
   maxConnections?: number;
+  /** The port to listen on and no other; without one, the port of the last time or any free one. */
+  port?: number;
 }
 
 /** The user that the server runs as; undefined for the user we are. */
@@ -57,7 +56,8 @@ interface Account {
  * Starts the server of a home, making its data folder first when there is none, and waits until it answers. A server
  * that an earlier process left running is taken over.
  * @throws AppError `database.not_installed` without PostgreSQL, `database.version_missing` {major} when the data belong to
- * a version that is not here, `database.start_failed` {log} with the log's last line.
+ * a version that is not here, `database.start_failed` {log} with the log's last line, or {port} when the port that must be
+ * used is taken.
  */
 export async function startLocalServer(options: LocalServerOptions): Promise<LocalServer> {
   mkdirSync(options.home, { recursive: true });
@@ -67,12 +67,7 @@ export async function startLocalServer(options: LocalServerOptions): Promise<Loc
   const owner = account === undefined ? undefined : existsSync(dataDir) ? ownerOf(dataDir) : account;
   if (!existsSync(join(dataDir, "PG_VERSION"))) await initialise(binaries, dataDir, options.home, owner);
 
-  const running = findRunningServer(dataDir);
-  const port = running?.port ?? (await choosePort(options.home));
-  if (running === undefined) {
-    await clearStalePidFile(dataDir);
-    launch(binaries, dataDir, port, options, owner);
-  }
+  const port = findRunningServer(dataDir)?.port ?? (await launchOnPort());
   await waitUntilReady(dataDir, port, options.home);
   writeFileSync(join(options.home, "database-port"), String(port));
   return {
@@ -82,64 +77,19 @@ export async function startLocalServer(options: LocalServerOptions): Promise<Loc
       `postgresql://${role}:${databasePassword(role, options.home)}@127.0.0.1:${port}/${database}`,
     stop: () => stopServer(binaries, dataDir, owner),
   };
+
+  async function launchOnPort(): Promise<number> {
+    await clearStalePidFile(dataDir);
+    const free = await choosePort(options);
+    launch(binaries, dataDir, free, options, owner);
+    return free;
+  }
 }
 
 /** Stops the server of a data folder if one runs, ending its sessions; returns when it is gone. */
 async function stopServer(binaries: PostgresBinaries, dataDir: string, account: Account | undefined): Promise<void> {
   if (findRunningServer(dataDir) === undefined) return;
   await runAs(binaries, "pg_ctl", ["-D", dataDir, "-m", "fast", "-w", "-t", "60", "stop"], account);
-}
-
-/** Pid and port from the folder's pid file, if that process still runs. */
-export function findRunningServer(dataDir: string): { pid: number; port: number } | undefined {
-  const file = join(dataDir, "postmaster.pid");
-  if (!existsSync(file)) return undefined;
-  const lines = readFileSync(file, "utf8").split("\n");
-  const pid = Number(lines[0]);
-  const isOurs = Number.isInteger(pid) && pid > 0 && isProcessAlive(pid) && isPostgres(pid);
-  return isOurs ? { pid, port: Number(lines[3]) } : undefined;
-}
-
-/**
- * Removes the pid file of a server that is gone: a zombie's number, or one in use again, would block the next start. The
- * file also guards the data against sessions that outlive their server, so those are waited for first.
- * @throws AppError `database.start_failed` when such sessions do not end.
- */
-async function clearStalePidFile(dataDir: string): Promise<void> {
-  const file = join(dataDir, "postmaster.pid");
-  if (!existsSync(file)) return;
-  const deadline = Date.now() + ORPHANS_GONE_WITHIN_MS;
-  while (isFolderInUse(dataDir)) {
-    if (Date.now() > deadline) {
-      throw new AppError("database.start_failed", { message: `Sessions of an ended server still use ${dataDir}` });
-    }
-    await delay(50);
-  }
-  rmSync(file, { force: true });
-}
-
-/** Whether a process works in the folder; every process of a PostgreSQL server has its data folder as its own. */
-function isFolderInUse(folder: string): boolean {
-  return readdirSync("/proc")
-    .filter((name) => /^\d+$/.test(name) && isProcessAlive(Number(name)))
-    .some((name) => workingFolderOf(name) === folder);
-}
-
-function workingFolderOf(pid: string): string | undefined {
-  try {
-    return readlinkSync(`/proc/${pid}/cwd`);
-  } catch {
-    return undefined; // ended meanwhile, or another user's, who cannot be using our folder
-  }
-}
-
-/** A number that another program got since is not our server. */
-function isPostgres(pid: number): boolean {
-  try {
-    return readFileSync(`/proc/${pid}/comm`, "utf8").trim() === "postgres";
-  } catch {
-    return false; // ended between the two looks
-  }
 }
 
 async function findServerAccount(): Promise<Account | undefined> {
@@ -273,10 +223,16 @@ function answers(port: number): Promise<boolean> {
 }
 
 /** The port of the last time while it is free, so that addresses stay the same from start to start. */
-async function choosePort(home: string): Promise<number> {
+async function choosePort({ home, port }: LocalServerOptions): Promise<number> {
+  if (port !== undefined) return insistOnPort(port);
   const file = join(home, "database-port");
   const last = existsSync(file) ? Number(readFileSync(file, "utf8")) : 0;
   return (await findFreePort(last)) ?? (await findFreePort(0)) ?? 0;
+}
+
+async function insistOnPort(port: number): Promise<number> {
+  if ((await findFreePort(port)) !== undefined) return port;
+  throw new AppError("database.start_failed", { port, message: `Port ${port} of the database is taken` });
 }
 
 /** The port if nobody listens on it; for 0, any free one. */

@@ -17,8 +17,10 @@ export function privatePackagesFolder(home: string): string {
 }
 
 /** Every PostgreSQL here, newest first; the system's before a private one of the same version. */
-export function listPostgres(home: string): PostgresBinaries[] {
-  return ["/", privatePackagesFolder(home)].flatMap((root) => versionsBelow(root)).sort((a, b) => b.major - a.major);
+export function listPostgres(home: string, system = "/"): PostgresBinaries[] {
+  const installed = versionsBelow(system).map((found) => ({ ...found, env: {} }));
+  const unpacked = versionsBelow(privatePackagesFolder(home));
+  return [...installed, ...unpacked].sort((a, b) => b.major - a.major);
 }
 
 function versionsBelow(root: string): PostgresBinaries[] {
@@ -31,7 +33,6 @@ function versionsBelow(root: string): PostgresBinaries[] {
 
 /** The dynamic linker's search path for a private copy; Debian keeps libraries in one folder per architecture. */
 function libraryPath(root: string): Record<string, string> {
-  if (root === "/") return {};
   const lib = join(root, "usr/lib");
   const folders = readdirSync(lib).filter((name) => name.includes("-linux-gnu"));
   return { LD_LIBRARY_PATH: folders.map((name) => join(lib, name)).join(":") };

@@ -69,11 +69,16 @@ function installPackages() {
   writeFileSync(lock, String(process.pid));
   process.stdout.write("Installing npm packages from the lock file …\n");
   const npm = process.env.npm_execpath ? [process.execPath, [process.env.npm_execpath]] : ["npm", []];
-  const result = spawnSync(npm[0], npm[1].concat(["ci", "--no-fund", "--no-audit", "--loglevel=error"]), {
-    cwd: checkout,
-    encoding: "utf8",
-    stdio: ["ignore", "ignore", "pipe"],
-  });
+  // The build needs the development packages too, whatever NODE_ENV says.
+  const result = spawnSync(
+    npm[0],
+    npm[1].concat(["ci", "--include=dev", "--no-fund", "--no-audit", "--loglevel=error"]),
+    {
+      cwd: checkout,
+      encoding: "utf8",
+      stdio: ["ignore", "ignore", "pipe"],
+    },
+  );
   rmSync(lock, { force: true });
   if (result.status === 0) return;
   const output = String(result.stderr || result.error?.message || "");

@@ -1,6 +1,6 @@
 /** The built app: made anew only when a file that goes into it changed. */
 import { createHash } from "node:crypto";
-import { existsSync, readdirSync, readFileSync, writeFileSync } from "node:fs";
+import { existsSync, readdirSync, readFileSync, rmSync, writeFileSync } from "node:fs";
 import { join, relative } from "node:path";
 import { CHECKOUT, PROGRAMS } from "@/lib/commands/checkout";
 import { waitForLock } from "@/lib/commands/process-lock";
@@ -30,6 +30,7 @@ export async function ensureBuild(options: { signal?: AbortSignal; say: (line: s
     const hashFile = join(distDir, HASH_FILE);
     if (existsSync(hashFile) && readFileSync(hashFile, "utf8") === hash) return false;
     options.say("Building the app (about a minute) …");
+    rmSync(hashFile, { force: true }); // a build cut short is no build of the files it names
     const result = await runToEnd(process.execPath, [PROGRAMS.next, "build"], {
       cwd: CHECKOUT,
       signal: options.signal,

@@ -17,11 +17,18 @@ const PARENT_LOOK_MS = 500;
 
 /** Loads the command's file, which exports a {@link Command} as default, and runs it to its end. */
 export async function runCommand(name: string, args: string[]): Promise<void> {
+  await runToExitCode(async (signal) => {
+    const module = (await import(`./${name}.ts`)) as { default: Command };
+    return await module.default(args, signal);
+  });
+}
+
+/** Runs the work under the process's stop signals and leaves its outcome as the process's exit code. */
+export async function runToExitCode(work: (signal: AbortSignal) => Promise<number>): Promise<void> {
   const stop = new AbortController();
   listenForStop(stop);
   try {
-    const module = (await import(`./${name}.ts`)) as { default: Command };
-    process.exitCode = await module.default(args, stop.signal);
+    process.exitCode = await work(stop.signal);
   } catch (error) {
     process.exitCode = stop.signal.aborted ? STOPPED_EXIT_CODE : 1;
     if (!stop.signal.aborted) console.error(`trimwright: ${plainMessage(error)}`);

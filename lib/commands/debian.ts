@@ -1,5 +1,5 @@
 /** Debian's packages: installed as root, or unpacked into a private folder by anybody else. */
-import { existsSync, mkdirSync, readFileSync, rmSync, writeFileSync } from "node:fs";
+import { existsSync, mkdirSync, readFileSync, renameSync, rmSync, writeFileSync } from "node:fs";
 import { join } from "node:path";
 import { privatePackagesFolder } from "@/db/postgres-binaries";
 import { runTool } from "@/lib/commands/run-tool";
@@ -7,15 +7,23 @@ import { childEnv } from "@/lib/env";
 import { AppError } from "@/lib/errors";
 
 const CLUSTER_SETTINGS = "/etc/postgresql-common/createcluster.conf";
+const APT_GET = "/usr/bin/apt-get";
 
 export interface InstallOptions {
   home: string;
   signal?: AbortSignal;
+  /** Path of apt-get, where a test puts another one in its place. */
+  aptGet?: string;
+}
+
+/** Whether this machine has Debian's packages at all. */
+export function isDebian({ aptGet = APT_GET }: Pick<InstallOptions, "aptGet"> = {}): boolean {
+  return existsSync(aptGet);
 }
 
 /** Whether this process may install packages for the whole machine. */
 export function mayInstall(): boolean {
-  return process.getuid?.() === 0 && existsSync("/usr/bin/apt-get");
+  return process.getuid?.() === 0 && isDebian();
 }
 
 /**
@@ -25,10 +33,11 @@ export function mayInstall(): boolean {
 export async function installPackages(packages: string[], options: InstallOptions): Promise<void> {
   if (packages.some((name) => name.startsWith("postgresql"))) keepDebianFromMakingCluster();
   const env = childEnv({ DEBIAN_FRONTEND: "noninteractive" });
+  const { aptGet = APT_GET, signal } = options;
   const flags = ["-y", "-qq", "--no-install-recommends", "-o", "Dpkg::Options::=--force-confold"];
   try {
-    await runTool("apt-get", ["update", "-qq"], { env, signal: options.signal });
-    await runTool("apt-get", ["install", ...flags, ...packages], { env, signal: options.signal });
+    await runTool(aptGet, ["update", "-qq"], { env, signal });
+    await runTool(aptGet, ["install", ...flags, ...packages], { env, signal });
   } catch (error) {
     throw notInstalled(packages, error);
   }
@@ -47,7 +56,9 @@ function keepDebianFromMakingCluster(): void {
  * @throws AppError `packages.not_installed` {packages} with apt-get's reason.
  */
 export async function unpackPackages(packages: string[], options: InstallOptions): Promise<void> {
+  const { aptGet = APT_GET } = options;
   const root = privatePackagesFolder(options.home);
+  const unfinished = `${root}.unfinished`;
   const apt = join(options.home, "apt");
   for (const folder of ["lists/partial", "cache/archives/partial", "downloads"]) {
     mkdirSync(join(apt, folder), { recursive: true });
@@ -55,21 +66,28 @@ export async function unpackPackages(packages: string[], options: InstallOptions
   const dirs = ["-o", `Dir::State::lists=${join(apt, "lists")}`, "-o", `Dir::Cache=${join(apt, "cache")}`];
   const downloads = { cwd: join(apt, "downloads"), signal: options.signal };
   try {
-    await runTool("apt-get", [...dirs, "update", "-qq"], downloads);
+    await runTool(aptGet, [...dirs, "update", "-qq"], downloads);
     const plan = await runTool(
-      "apt-get",
+      aptGet,
       [...dirs, "install", "-s", "-q", "--no-install-recommends", ...packages],
       downloads,
     );
     const missing = plan.split("\n").flatMap((line) => /^Inst (\S+)/.exec(line)?.[1] ?? []);
-    await runTool("apt-get", [...dirs, "download", "-q", ...missing], downloads);
-    mkdirSync(root, { recursive: true });
-    await runTool("/bin/sh", ["-c", `for f in *.deb; do dpkg -x "$f" "$1" || exit 1; done`, "sh", root], downloads);
-  } catch (error) {
+    await runTool(aptGet, [...dirs, "download", "-q", ...missing], downloads);
+    rmSync(unfinished, { recursive: true, force: true });
+    mkdirSync(unfinished, { recursive: true });
+    await runTool(
+      "/bin/sh",
+      ["-c", `for f in *.deb; do dpkg -x "$f" "$1" || exit 1; done`, "sh", unfinished],
+      downloads,
+    );
+    // Under its name only when it is whole: programs without their libraries would look installed.
     rmSync(root, { recursive: true, force: true });
+    renameSync(unfinished, root);
+  } catch (error) {
     throw notInstalled(packages, error);
   } finally {
-    rmSync(apt, { recursive: true, force: true });
+    for (const folder of [apt, unfinished]) rmSync(folder, { recursive: true, force: true });
   }
 }
 

@@ -13,8 +13,9 @@ import {
   renameDatabase,
 } from "@/db/databases";
 import type { Db } from "@/db/executor";
-import { findRunningServer, type LocalServer, startLocalServer } from "@/db/local-server";
+import { type LocalServer, startLocalServer } from "@/db/local-server";
 import { listPendingMigrations, migrateDatabase } from "@/db/migrate";
+import { findRunningServer } from "@/db/pid-file";
 import { APP_ROLE, assertAppRoleIsWeak, ensureAppRole } from "@/db/roles";
 import { ensurePostgres } from "@/lib/commands/ensure-postgres";
 import { databasePassword, type Env, setEnv } from "@/lib/env";
@@ -87,7 +88,8 @@ async function openOwn(options: StartDatabaseOptions): Promise<StartDatabase> {
       demo,
       revive: async () => {
         if (findRunningServer(server.dataDir) !== undefined) return false;
-        server = await startLocalServer(serverOptions);
+        // At the same address, which the running app and worker have.
+        server = await startLocalServer({ ...serverOptions, port: server.port });
         return true;
       },
       stop: () => server.stop(),
@@ -122,7 +124,10 @@ async function makeDatabase(owner: Kysely<never>, server: LocalServer, options: 
     const appUrl = server.urlOf(UNFINISHED, APP_ROLE);
     setEnv({ DATABASE_URL: appUrl });
     const { seedDemo } = await import("@/lib/demo/seed");
-    await withApp(appUrl, (db) => seedDemo(db, say));
+    await withApp(appUrl, (db) => {
+      signal.addEventListener("abort", () => void db.destroy(), { once: true }); // its next step then fails
+      return seedDemo(db, say);
+    });
     await closeDb();
   }
   signal.throwIfAborted();

@@ -73,7 +73,7 @@ export function assertDiskSpace(folder: string, neededBytes = FREE_BYTES_NEEDED)
 }
 
 /** @throws AppError `start.port_taken` {port} */
-async function assertPortFree({ host, port }: Env): Promise<void> {
+export async function assertPortFree({ host, port }: Pick<Env, "host" | "port">): Promise<void> {
   if ((await findFreePort(port, host)) !== undefined) return;
   throw new AppError("start.port_taken", {
     port,
