@@ -57,7 +57,7 @@ export const deviceState = z.enum([
 
 export const historyEntry = z.object({
   at: timestamp,
-  kind: z.enum(["written", "event", "run", "coefficients", "packed", "live"]),
+  kind: z.enum(["written", "event", "run", "coefficients", "approved", "live"]),
   what: z.string(),
   tone: z.enum(["good", "wait", "bad", "info", "idle"]),
   who: z.string().nullable(),

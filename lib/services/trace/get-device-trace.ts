@@ -1,4 +1,5 @@
 import { getDevice, listDeviceEvents } from "@/db/queries/device-events";
+import { listApprovalsOfDevice } from "@/db/queries/device-origin";
 import * as query from "@/db/queries/trace";
 import { type ListedWrite, listWritesOfSerial } from "@/db/queries/writes";
 import type { Ctx } from "@/lib/services/context";
@@ -9,11 +10,12 @@ import type { DeviceTrace, HistoryEntry } from "@/schemas/api/devices";
 export async function getDeviceTrace(ctx: Ctx, serial: string): Promise<DeviceTrace> {
   const device = await getDevice(ctx.db, serial);
   const [carried] = await listCarriedImages(ctx, { lotId: device.lotId, serial, limit: 1 });
-  const [writes, events, runs, sets, periods] = await Promise.all([
+  const [writes, events, runs, sets, approvals, periods] = await Promise.all([
     listWritesOfSerial(ctx.db, serial),
     listDeviceEvents(ctx.db, device.id),
     query.listRunsOfDevice(ctx.db, device.id),
     query.listSetsOfDevice(ctx.db, device.id),
+    listApprovalsOfDevice(ctx.db, device.id),
     query.listLivePeriodsOfDevice(ctx.db, device.id),
   ]);
   const newest = sets.find((set) => set.state !== null);
@@ -50,6 +52,7 @@ export async function getDeviceTrace(ctx: Ctx, serial: string): Promise<DeviceTr
       ...events.map(eventEntry),
       ...runs.map(runEntry),
       ...sets.filter((set) => set.state !== null).map(setEntry),
+      ...approvals.map(approvalEntry),
       ...periods.map(periodEntry),
     ].sort((a, b) => b.at.localeCompare(a.at)),
   };
@@ -141,24 +144,37 @@ function runEntry(row: Awaited<ReturnType<typeof query.listRunsOfDevice>>[number
   };
 }
 
-const SET_TONE: Record<string, HistoryEntry["tone"]> = {
-  approved: "good",
-  proposed: "wait",
-  refused: "bad",
-  stale: "wait",
-  revoked: "bad",
+const SET_NOW: Record<string, string> = {
+  approved: "approved since",
+  proposed: "not decided yet",
+  refused: "refused since",
+  stale: "stale since: its run was superseded or its family revision left",
+  revoked: "revoked since",
 };
 
 function setEntry(row: SetRow): HistoryEntry {
   const state = row.state as string;
   return {
-    at: row.stateChangedAt.toISOString(),
+    at: row.createdAt.toISOString(),
     kind: "coefficients",
-    what: `Coefficients ${state}`,
-    tone: SET_TONE[state] ?? "info",
+    what: row.method === "import" ? "Coefficients imported" : "Coefficients derived",
+    tone: state === "revoked" || state === "refused" ? "bad" : state === "stale" ? "wait" : "info",
     who: row.person,
-    detail: `${row.method}, as ${row.role}`,
+    detail: `${row.method}, as ${row.role}, ${SET_NOW[state] ?? state}`,
     link: `/derivations/${row.derivationId}`,
+  };
+}
+
+function approvalEntry(row: Awaited<ReturnType<typeof listApprovalsOfDevice>>[number]): HistoryEntry {
+  const packed = row.subjectKind === "package";
+  return {
+    at: new Date(row.at).toISOString(),
+    kind: "approved",
+    what: packed ? `Package ${row.version} approved` : "Coefficients approved",
+    tone: "good",
+    who: row.name,
+    detail: row.meaning,
+    link: packed ? `/packages/${row.subjectId}` : `/derivations/${row.subjectId}`,
   };
 }
 
