@@ -28,12 +28,12 @@ export function getSigningKey(db: Db, id: string): Promise<SigningKeyRow> {
     .executeTakeFirstOrThrow(() => new AppError("signing-key.not_found", { id }));
 }
 
-/** Makes a key the one in use: registers it where it is new and ends the period of every other. */
-export async function useSigningKey(db: Db, key: { id: string; publicPem: string; at: Date }): Promise<void> {
+/** Makes a key the one in use: registers it where it is new, reopens its period where it was used before, and ends that of every other. */
+export async function putKeyInUse(db: Db, key: { id: string; publicPem: string; at: Date }): Promise<void> {
   await db
     .insertInto("signingKey")
     .values({ id: key.id, publicPem: key.publicPem, fromAt: key.at, untilAt: null })
-    .onConflict((conflict) => conflict.column("id").doNothing())
+    .onConflict((conflict) => conflict.column("id").doUpdateSet({ untilAt: null }))
     .execute();
   await db
     .updateTable("signingKey")

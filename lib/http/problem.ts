@@ -33,5 +33,6 @@ export function problemResponse(error: AppError, requestId: string): Response {
   if (problem.status === 401) headers["www-authenticate"] = "Bearer";
   if (problem.status === 503 || problem.status === 429)
     headers["retry-after"] = String(error.details.retryAfterSeconds ?? 5);
+  if (problem.status === 416) headers["content-range"] = `bytes */${error.details.length}`;
   return new Response(JSON.stringify(problem), { status: problem.status, headers });
 }

@@ -6,6 +6,7 @@ import { familyCommands } from "./commands/families";
 import { layoutCommands } from "./commands/layouts";
 import { lotCommands } from "./commands/lots";
 import { runCommands } from "./commands/runs";
+import { signingKeyCommands } from "./commands/signing-keys";
 
 /** Every command of the API, for the OpenAPI document and the tests. A route file without its command here fails a test. */
 export const commands: readonly AnyCommand[] = [
@@ -16,4 +17,5 @@ export const commands: readonly AnyCommand[] = [
   ...runCommands,
   ...derivationCommands,
   ...coefficientCommands,
+  ...signingKeyCommands,
 ];

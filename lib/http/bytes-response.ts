@@ -1,0 +1,48 @@
+import type { StoredBytes } from "@/lib/services/stored-bytes";
+import { allowsRange, namesTag, readRange } from "./byte-range";
+
+/**
+ * Answers a GET for exact bytes: entity tag, `Repr-Digest` (RFC 9530), one range (206, 416), `If-Range`, `If-None-Match` (304).
+ * Nothing on the way may transform them. They are sent as they are read, at the pace of the client.
+ * @throws AppError `request.range_invalid`
+ */
+export function bytesResponse(headers: Headers, bytes: StoredBytes, extra: Record<string, string> = {}): Response {
+  const tag = `"${bytes.sha256}"`;
+  const common: Record<string, string> = {
+    ...extra,
+    etag: tag,
+    "cache-control": "private, no-cache, no-transform",
+    "accept-ranges": "bytes",
+    "repr-digest": `sha-256=:${Buffer.from(bytes.sha256, "hex").toString("base64")}:`,
+  };
+  if (namesTag(headers.get("if-none-match"), tag)) return new Response(null, { status: 304, headers: common });
+  common["content-type"] = bytes.mediaType;
+  common["content-disposition"] = `attachment; filename="${bytes.fileName}"`;
+  common["x-content-type-options"] = "nosniff";
+  const range = allowsRange(headers.get("if-range"), tag) ? readRange(headers.get("range"), bytes.length) : null;
+  if (range === null) {
+    common["content-length"] = String(bytes.length);
+    const body = bytes.length === 0 ? null : streamOf(bytes.read({ first: 0, last: bytes.length - 1 }));
+    return new Response(body, { status: 200, headers: common });
+  }
+  common["content-length"] = String(range.last - range.first + 1);
+  common["content-range"] = `bytes ${range.first}-${range.last}/${bytes.length}`;
+  return new Response(streamOf(bytes.read(range)), { status: 206, headers: common });
+}
+
+function streamOf(pieces: AsyncIterable<Uint8Array>): ReadableStream<Uint8Array> {
+  const iterator = pieces[Symbol.asyncIterator]();
+  return new ReadableStream<Uint8Array>(
+    {
+      async pull(controller) {
+        const { done, value } = await iterator.next();
+        if (done) controller.close();
+        else controller.enqueue(value);
+      },
+      async cancel() {
+        await iterator.return?.();
+      },
+    },
+    { highWaterMark: 0 },
+  );
+}
