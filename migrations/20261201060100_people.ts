@@ -1,6 +1,6 @@
 import { type Kysely, sql } from "kysely";
 
-/** People, their roles and sessions, keys, mailed links, the access log and stored replies of repeated requests. */
+/** People, their roles and sessions, keys, mailed links, the access log, stored replies of repeated requests, and mail. */
 export async function up(db: Kysely<never>): Promise<void> {
   await sql`
     create table person (
@@ -39,6 +39,30 @@ export async function up(db: Kysely<never>): Promise<void> {
         select 1 from public.role_grant g join public.person p on p.id = g.person_id
         where g.person_id = person and g.role = wanted and g.confirmed_at is not null and g.ended_at is null and p.active)
     $$;
+
+    create function guard_role_grant() returns trigger
+    language plpgsql set search_path = pg_catalog, public, pg_temp as $$
+    begin
+      if tg_op = 'UPDATE' then
+        if (new.id, new.person_id, new.role, new.asked_by, new.asked_at)
+          is distinct from (old.id, old.person_id, old.role, old.asked_by, old.asked_at) then
+          perform refuse('role.wrong_state', 'who asked for what stays as written');
+        end if;
+        if old.ended_at is not null then perform refuse('role.wrong_state', 'ended'); end if;
+        if old.confirmed_at is not null and (new.confirmed_by, new.confirmed_at)
+          is distinct from (old.confirmed_by, old.confirmed_at) then
+          perform refuse('role.wrong_state', 'confirmed');
+        end if;
+      elsif new.asked_by is not null and not has_role(new.asked_by, 'admin') then
+        perform refuse('auth.forbidden', 'a role is asked for by an admin');
+      end if;
+      if new.confirmed_by is not null and (tg_op = 'INSERT' or old.confirmed_by is null)
+        and not has_role(new.confirmed_by, 'admin') then
+        perform refuse('auth.forbidden', 'a role is confirmed by an admin');
+      end if;
+      return new;
+    end $$;
+    create trigger role_grant_guard before insert or update on role_grant for each row execute function guard_role_grant();
 
     create table session (
       id uuid primary key,
@@ -104,13 +128,14 @@ export async function up(db: Kysely<never>): Promise<void> {
       body text not null,
       created_at timestamptz not null,
       sent_at timestamptz,
+      kept_at timestamptz,
       attempts integer not null default 0,
       last_error text
     );
     create index mail_created on mail (created_at desc);
   `.execute(db);
   await sql`
-    select app_grant('select, insert, update', array['person','role_grant','session','password_link','access_key','mail']),
-           app_grant('select, insert, update, delete', array['idempotent_reply','access_log'])
+    select app_grant('select, insert, update', array['person','role_grant','access_key']),
+           app_grant('select, insert, update, delete', array['session','password_link','mail','idempotent_reply','access_log'])
   `.execute(db);
 }

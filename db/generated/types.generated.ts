@@ -305,6 +305,7 @@ export interface Mail {
   body: string;
   createdAt: Timestamp;
   id: string;
+  keptAt: Timestamp | null;
   lastError: string | null;
   personId: string | null;
   sentAt: Timestamp | null;
