@@ -7,7 +7,7 @@ const order = ["serials", "readings", "coefficients", "package", "review", "writ
 export function LotThread({ thread, current }: { thread: LotThreadData; current?: (typeof order)[number] }) {
   const base = `/lots/${encodeURIComponent(thread.lot)}`;
   const packages = `${base}/packages`;
-  const review = thread.newestPackageId === null ? undefined : `/packages/${thread.newestPackageId}`;
+  const review = thread.newestPackageId === null ? undefined : `/packages/${thread.newestPackageId}/review`;
   const link = (stitch: ThreadStitch, href: string | undefined): Stitch => ({ ...stitch, href });
   return (
     <Thread
