@@ -18,7 +18,7 @@ const PARENT_LOOK_MS = 500;
 /** Loads the command's file, which exports a {@link Command} as default, and runs it to its end. */
 export async function runCommand(name: string, args: string[]): Promise<void> {
   await runToExitCode(async (signal) => {
-    const module = (await import(`./${name}.ts`)) as { default: Command };
+    const module = (await import(/* @vite-ignore */ `./${name}.ts`)) as { default: Command };
     return await module.default(args, signal);
   });
 }

@@ -25,7 +25,9 @@ export interface ToolResult {
  * @throws AppError `command.not_found` {program}; `command.stopped` when the signal ended it.
  */
 export function runToEnd(program: string, args: string[], options: ToolOptions = {}): Promise<ToolResult> {
+  const stopped = () => new AppError("command.stopped", { program, message: "Stopped" });
   return new Promise((resolve, reject) => {
+    if (options.signal?.aborted) return reject(stopped());
     const child = spawn(program, args, {
       cwd: options.cwd,
       env: options.env ?? childEnv({}),
@@ -45,7 +47,7 @@ export function runToEnd(program: string, args: string[], options: ToolOptions =
     );
     child.once("close", (code) => {
       options.signal?.removeEventListener("abort", stop);
-      if (options.signal?.aborted) reject(new AppError("command.stopped", { program, message: "Stopped" }));
+      if (options.signal?.aborted) reject(stopped());
       else resolve({ code: code ?? 1, ...out });
     });
   });
