@@ -60,7 +60,7 @@ export function releasedFiles(content: PackageContent, release: ReleaseFiles): M
 /** Files of a preview by path: `NOT-RELEASED.txt` stands for the three of a release. @throws AppError `bundle.too_many_devices` */
 export function previewFiles(
   content: PackageContent,
-  facts: { lot: string; version: string; state: string },
+  facts: { lot: string; version: string },
 ): Map<string, Uint8Array | string> {
   return contentFiles(content).set("VERIFY.txt", previewVerifyText()).set("NOT-RELEASED.txt", notReleasedText(facts));
 }

@@ -78,9 +78,9 @@ damaged on the way:
 `;
 }
 
-/** `NOT-RELEASED.txt` of a preview. */
-export function notReleasedText(facts: { lot: string; version: string; state: string }): string {
-  return `Package ${facts.version} of lot ${facts.lot} is not released (state: ${facts.state}).
+/** `NOT-RELEASED.txt` of a preview; it names no state, so that a preview stays the same bytes from draft to approval. */
+export function notReleasedText(facts: { lot: string; version: string }): string {
+  return `Package ${facts.version} of lot ${facts.lot} is not released: this is a preview.
 Do not write devices from this bundle.
 `;
 }

@@ -71,9 +71,9 @@ export function listImages(
     .selectFrom("image")
     .select(imageColumns)
     .where("packageId", "=", packageId)
-    .orderBy(sql`serial collate "C"`)
+    .orderBy("serial")
     .limit(page.limit);
-  if (page.cursor !== undefined) query = query.where(sql<boolean>`serial collate "C" > ${page.cursor}`);
+  if (page.cursor !== undefined) query = query.where("serial", ">", page.cursor);
   if (page.search !== undefined && page.search !== "") {
     query = query.where(sql<boolean>`position(${page.search.toUpperCase()} in serial) > 0`);
   }
@@ -91,13 +91,24 @@ export async function* eachImages(db: Db, packageId: string, size = CHUNK_ROWS):
   }
 }
 
+/** Derivation of each coefficient set that a package holds, by the set's id. */
+export async function listDerivationsOfImages(db: Db, packageId: string): Promise<Map<string, string>> {
+  const rows = await db
+    .selectFrom("image")
+    .innerJoin("coefficientSet", "coefficientSet.id", "image.coefficientSetId")
+    .select(["image.coefficientSetId", "coefficientSet.derivationId"])
+    .where("image.packageId", "=", packageId)
+    .execute();
+  return new Map(rows.map((row) => [row.coefficientSetId, row.derivationId]));
+}
+
 /** Serials of a package, rising. */
 export async function listImageSerials(db: Db, packageId: string): Promise<string[]> {
   const rows = await db
     .selectFrom("image")
     .select("serial")
     .where("packageId", "=", packageId)
-    .orderBy(sql`serial collate "C"`)
+    .orderBy("serial")
     .execute();
   return rows.map((row) => row.serial);
 }

@@ -1,4 +1,5 @@
 import type { AnyCommand } from "./command";
+import { bundleCommands } from "./commands/bundles";
 import { coefficientCommands } from "./commands/coefficients";
 import { derivationCommands } from "./commands/derivations";
 import { equipmentCommands } from "./commands/equipment";
@@ -17,5 +18,6 @@ export const commands: readonly AnyCommand[] = [
   ...runCommands,
   ...derivationCommands,
   ...coefficientCommands,
+  ...bundleCommands,
   ...signingKeyCommands,
 ];

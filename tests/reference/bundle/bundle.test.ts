@@ -195,7 +195,7 @@ describe("VERIFY.txt run by sh", () => {
   });
 
   it("of a preview passes and says that nothing is released", async () => {
-    const preview = await writeZip(previewFiles(content, { lot: "MW20-2609", version: "1.0.0", state: "draft" }));
+    const preview = await writeZip(previewFiles(content, { lot: "MW20-2609", version: "1.0.0" }));
     await inFolder((folder) => {
       writeFileSync(join(folder, "p.zip"), preview);
       runTool("unzip", ["-q", "p.zip", "-d", "p"], undefined, folder);

@@ -1,0 +1,4 @@
+import { packageManifest } from "@/lib/http/commands/bundles";
+import { route } from "@/lib/http/route";
+
+export const GET = route(packageManifest);
