@@ -2,7 +2,8 @@ import { type NextRequest, NextResponse } from "next/server";
 
 /**
  * Content security policy of every page, with a script nonce made anew for each request: Next puts it on its own
- * scripts when it finds it in the request's headers.
+ * scripts when it finds it in the request's headers. Pages also learn their own path, to come back to after sign-in;
+ * one that a client sent along is overwritten.
  */
 export function proxy(request: NextRequest): NextResponse {
   const nonce = btoa(crypto.randomUUID());
@@ -10,11 +11,20 @@ export function proxy(request: NextRequest): NextResponse {
   const headers = new Headers(request.headers);
   headers.set("x-nonce", nonce);
   headers.set("content-security-policy", policy);
+  headers.set("x-path", pathOf(request));
   const response = NextResponse.next({ request: { headers } });
   response.headers.set("content-security-policy", policy);
   response.headers.set("referrer-policy", "same-origin");
   response.headers.set("x-content-type-options", "nosniff");
   return response;
+}
+
+/** Path and query as a person would see them: the router's own parameter for page data is left out. */
+function pathOf({ nextUrl }: NextRequest): string {
+  const query = new URLSearchParams(nextUrl.search);
+  query.delete("_rsc");
+  const search = query.toString();
+  return search === "" ? nextUrl.pathname : `${nextUrl.pathname}?${search}`;
 }
 
 function contentSecurityPolicy(nonce: string): string {

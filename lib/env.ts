@@ -109,6 +109,11 @@ export function parseEnv(source: Record<string, string | undefined>): Env {
   };
 }
 
+/** Tells next-auth, which reads the environment only, the origin; otherwise it would guess one. */
+export function announceOrigin(): void {
+  process.env.NEXTAUTH_URL = env().origin;
+}
+
 /** Secret that signs the browser sessions' tokens: `NEXTAUTH_SECRET`, or one made for this home. */
 export function authSecret(): string {
   return process.env.NEXTAUTH_SECRET || keptSecret("session", () => randomBytes(32).toString("base64url"));

@@ -17,6 +17,8 @@ const STATUS_BY_CODE: Record<string, { status: number; title: string }> = {
   "auth.required": { status: 401, title: "Sign in first" },
   "auth.forbidden": { status: 403, title: "Your role may not do this" },
   "auth.session_required": { status: 403, title: "Needs a signed-in person in a browser" },
+  "auth.sign_in_failed": { status: 401, title: "Not signed in" },
+  "auth.code_required": { status: 401, title: "A one-time code is needed" },
   "auth.password_wrong": { status: 403, title: "The password is wrong" },
   "auth.code_wrong": { status: 403, title: "The one-time code is wrong" },
   "auth.origin_mismatch": { status: 403, title: "The request came from another site" },

@@ -2,7 +2,7 @@
 import { sql } from "kysely";
 import type { Db, Trx } from "@/db/executor";
 
-export type AccessKind = "sign-in" | "sign-in.failed" | "confirm.failed" | "link.asked" | "link.used";
+export type AccessKind = "sign-in" | "sign-in.failed" | "sign-out" | "confirm.failed" | "link.asked" | "link.used";
 
 export interface NewAccess {
   at: Date;

@@ -1,5 +1,5 @@
 import { sql } from "kysely";
-import type { Db } from "@/db/executor";
+import type { Db, Trx } from "@/db/executor";
 import type { Role } from "@/lib/domain/roles";
 import { AppError } from "@/lib/errors";
 
@@ -21,11 +21,18 @@ export async function findSessionHolder(
   db: Db,
   sessionId: string,
   now: Date,
-): Promise<(Holder & { lastSeenAt: Date }) | undefined> {
+): Promise<(Holder & { lastSeenAt: Date; expiresAt: Date }) | undefined> {
   return db
     .selectFrom("session")
     .innerJoin("person", "person.id", "session.personId")
-    .select(["person.id as personId", "person.name", "person.email", "session.lastSeenAt", heldRoles.as("roles")])
+    .select([
+      "person.id as personId",
+      "person.name",
+      "person.email",
+      "session.lastSeenAt",
+      "session.expiresAt",
+      heldRoles.as("roles"),
+    ])
     .where("session.id", "=", sessionId)
     .where("session.endedAt", "is", null)
     .where("session.expiresAt", ">", now)
@@ -69,4 +76,90 @@ export async function takeOneTimeStep(db: Db, personId: string, step: number): P
     .where((eb) => eb.or([eb("oneTimeLastStep", "is", null), eb("oneTimeLastStep", "<", String(step))]))
     .executeTakeFirst();
   return result.numUpdatedRows === 1n;
+}
+
+const personColumns = ["id", "name", "email", "active", "createdAt", "oneTimeEnrolledAt"] as const;
+
+export interface PersonRow {
+  id: string;
+  name: string;
+  email: string;
+  active: boolean;
+  createdAt: Date;
+  oneTimeEnrolledAt: Date | null;
+  passwordChosen: boolean;
+  lastSeenAt: Date | null;
+}
+
+function selectPeople(db: Db) {
+  return db
+    .selectFrom("person")
+    .select(personColumns)
+    .select(sql<boolean>`person.password_hash is not null`.as("passwordChosen"))
+    .select((eb) =>
+      eb
+        .selectFrom("session")
+        .whereRef("session.personId", "=", "person.id")
+        .select((inner) => inner.fn.max("session.lastSeenAt").as("seen"))
+        .as("lastSeenAt"),
+    );
+}
+
+/** People in the order they were added; `after` is the last id of the page before. */
+export function listPeople(db: Db, page: { limit: number; after?: string }): Promise<PersonRow[]> {
+  let query = selectPeople(db).orderBy("id").limit(page.limit);
+  if (page.after !== undefined) query = query.where("id", ">", page.after);
+  return query.execute();
+}
+
+function noSuchPerson(id: string): AppError {
+  return new AppError("person.not_found", { id, message: "There is no such person." });
+}
+
+/** A person. @throws AppError `person.not_found` */
+export function getPerson(db: Db, id: string): Promise<PersonRow> {
+  return selectPeople(db)
+    .where("id", "=", id)
+    .executeTakeFirstOrThrow(() => noSuchPerson(id));
+}
+
+export type LockedPerson = Omit<PersonRow, "lastSeenAt"> & { oneTimeSecret: string | null };
+
+/** A person, locked until commit. @throws AppError `person.not_found` */
+export function lockPerson(trx: Trx, id: string): Promise<LockedPerson> {
+  return trx
+    .selectFrom("person")
+    .select([...personColumns, "oneTimeSecret"])
+    .select(sql<boolean>`person.password_hash is not null`.as("passwordChosen"))
+    .where("id", "=", id)
+    .forUpdate()
+    .executeTakeFirstOrThrow(() => noSuchPerson(id));
+}
+
+export interface NewPerson {
+  id: string;
+  email: string;
+  name: string;
+  createdAt: Date;
+  createdBy: string | null;
+}
+
+/** @throws constraint `person_email_unique` → `person.exists` */
+export async function insertPerson(trx: Trx, person: NewPerson): Promise<void> {
+  await trx.insertInto("person").values(person).execute();
+}
+
+export interface PersonChange {
+  name?: string;
+  email?: string;
+  active?: boolean;
+  passwordHash?: string;
+  oneTimeSecret?: string | null;
+  oneTimeEnrolledAt?: Date | null;
+  oneTimeLastStep?: number | null;
+}
+
+/** @throws constraint `person_email_unique` → `person.exists` */
+export async function updatePerson(trx: Trx, id: string, change: PersonChange): Promise<void> {
+  await trx.updateTable("person").set(change).where("id", "=", id).execute();
 }

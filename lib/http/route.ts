@@ -71,7 +71,9 @@ export function assertMayCall(command: AnyCommand, actor: Actor, headers: Header
 /** The `Origin` of a state-changing call made with a cookie. @throws AppError `auth.origin_mismatch` */
 export function assertSameOrigin(headers: Headers): void {
   if (headers.get("origin") !== env().origin) {
-    throw new AppError("auth.origin_mismatch", { message: "The request did not come from this site's own pages." });
+    throw new AppError("auth.origin_mismatch", {
+      message: `The request did not come from this site's own pages, which are at ${env().origin}.`,
+    });
   }
 }
 

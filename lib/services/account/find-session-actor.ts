@@ -9,10 +9,10 @@ export async function findSessionActor(
   db: Db,
   sessionId: string,
   now: Date,
-): Promise<(PersonActor & { email: string }) | undefined> {
+): Promise<(PersonActor & { email: string; expiresAt: Date }) | undefined> {
   const holder = await findSessionHolder(db, sessionId, now);
   if (holder === undefined) return undefined;
   if (isDueForTouch(holder.lastSeenAt, now)) await touchSession(db, sessionId, now);
-  const { personId, name, email, roles } = holder;
-  return { kind: "person", id: personId, name, email, roles, via: "session", sessionId };
+  const { personId, name, email, roles, expiresAt } = holder;
+  return { kind: "person", id: personId, name, email, roles, via: "session", sessionId, expiresAt };
 }
