@@ -102,6 +102,16 @@ export async function listDerivationsOfImages(db: Db, packageId: string): Promis
   return new Map(rows.map((row) => [row.coefficientSetId, row.derivationId]));
 }
 
+/** Derivation of each of some coefficient sets, by the set's id. */
+export async function listDerivationsOfSets(db: Db, setIds: readonly string[]): Promise<Map<string, string>> {
+  const rows = await db
+    .selectFrom("coefficientSet")
+    .select(["id", "derivationId"])
+    .where(sql<boolean>`id = any(${setIds as string[]}::uuid[])`)
+    .execute();
+  return new Map(rows.map((row) => [row.id, row.derivationId]));
+}
+
 /** Serials of a package, rising. */
 export async function listImageSerials(db: Db, packageId: string): Promise<string[]> {
   const rows = await db

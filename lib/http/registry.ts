@@ -4,6 +4,7 @@ import { coefficientCommands } from "./commands/coefficients";
 import { derivationCommands } from "./commands/derivations";
 import { equipmentCommands } from "./commands/equipment";
 import { familyCommands } from "./commands/families";
+import { imageCommands } from "./commands/images";
 import { layoutCommands } from "./commands/layouts";
 import { lotCommands } from "./commands/lots";
 import { runCommands } from "./commands/runs";
@@ -18,6 +19,7 @@ export const commands: readonly AnyCommand[] = [
   ...runCommands,
   ...derivationCommands,
   ...coefficientCommands,
+  ...imageCommands,
   ...bundleCommands,
   ...signingKeyCommands,
 ];

@@ -1,0 +1,4 @@
+import { listImages } from "@/lib/http/commands/images";
+import { route } from "@/lib/http/route";
+
+export const GET = route(listImages);
