@@ -1,0 +1,25 @@
+"use client";
+
+import Link from "next/link";
+import { signOut } from "next-auth/react";
+
+const look =
+  "rounded border border-rule px-4 py-2 text-[18px] text-ink-soft no-underline hover:border-copper hover:text-ink";
+
+/** The way out of the full screen: signing out for operators, the rest of the product for others. */
+export function LeaveBench({ person, onlyOperator }: { person: string; onlyOperator: boolean }) {
+  return onlyOperator ? (
+    <span className="flex flex-wrap items-center gap-2">
+      <Link href="/trace" className={look}>
+        Look up a serial
+      </Link>
+      <button type="button" className={look} onClick={() => void signOut({ callbackUrl: "/sign-in" })}>
+        Sign out {person}
+      </button>
+    </span>
+  ) : (
+    <Link href="/stations" className={look}>
+      Leave the bench
+    </Link>
+  );
+}

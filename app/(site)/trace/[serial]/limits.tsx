@@ -1,0 +1,48 @@
+import { formatFigure } from "@/lib/domain/format/figure";
+import type { DeviceOrigin } from "@/lib/services/trace/get-device-origin";
+import type { DerivedDeviceDetail } from "@/schemas/api/derivations";
+import type { DeviceTrace } from "@/schemas/api/devices";
+
+export interface LimitsInput {
+  trace: DeviceTrace;
+  origin: DeviceOrigin | null;
+  derived: Pick<DerivedDeviceDetail, "gainFrom" | "role"> | null;
+}
+
+/** What a trace does not show, in plain words: what nobody measured or reported is not known here. */
+export function limitsOf({ trace, origin, derived }: LimitsInput): string[] {
+  const range = origin?.derivation.provenRange;
+  const proof = origin?.runs.some((run) => run.purpose === "proof" && run.own);
+  return [
+    "It tells what a station read back when it wrote, not what the memory holds today. A dump read from the device does.",
+    trace.hardwareId
+      ? "That this board still sits on the cell that was measured. The hardware id tells the board, not the cell under it."
+      : "That this board sits on the cell that was measured: no hardware id was ever reported, so a swapped board would not show.",
+    ...(proof
+      ? []
+      : [
+          "That the firmware computes with these values as intended: only a proof run of the written device shows that.",
+        ]),
+    ...(derived?.gainFrom === "sample-mean" ? ["Anything on its span: it was never loaded."] : []),
+    ...(origin?.derivation.method === "pooled-gain" && derived?.role !== "sample"
+      ? ["Its own gain over temperature: that is the lot's, taken over from the sample."]
+      : []),
+    range
+      ? `Anything below ${formatFigure(range[0], { digits: 1 })} or above ${formatFigure(range[1], { digits: 1 })} °C, where nothing was measured.`
+      : "Anything over temperature, as long as no proven range is known.",
+    "Linearity, hysteresis and creep: they are not compensated.",
+    "An accuracy class: that is proven by type approval and verification under the local rules, by the body licensed for it.",
+  ];
+}
+
+export function Limits(props: LimitsInput) {
+  return (
+    <ul className="list-disc pl-5 text-sm text-ink-soft marker:text-ink-faint">
+      {limitsOf(props).map((limit) => (
+        <li key={limit} className="py-0.5">
+          {limit}
+        </li>
+      ))}
+    </ul>
+  );
+}

@@ -1,0 +1,56 @@
+"use client";
+
+import { useState } from "react";
+import { callApi, type ProblemDetails, problemOf } from "@/app/_components/api-client";
+import { FileDrop } from "@/app/_components/file-drop";
+import { FormError } from "@/app/_components/form/form-error";
+import { DUMP_MAX_BYTES, type DumpResult } from "@/schemas/api/devices";
+import { DumpFindings } from "./dump-findings";
+
+/** Takes a memory dump and says which image it is, or which bytes and parameters differ. */
+export function DumpCheck({ serial }: { serial?: string }) {
+  const [result, setResult] = useState<{ dump: DumpResult; at: number }>();
+  const [problem, setProblem] = useState<ProblemDetails | null>(null);
+  const [busy, setBusy] = useState(false);
+
+  const check = async (file: File) => {
+    setBusy(true);
+    setProblem(null);
+    setResult(undefined);
+    try {
+      const path = serial ? `/api/v1/devices/${encodeURIComponent(serial)}/dump` : "/api/v1/dumps";
+      const dump = await callApi<DumpResult>(path, {
+        method: "POST",
+        body: file,
+        contentType: await contentTypeOf(file),
+      });
+      setResult({ dump, at: Date.now() });
+    } catch (error) {
+      setProblem(problemOf(error));
+    } finally {
+      setBusy(false);
+    }
+  };
+
+  return (
+    <div className="flex flex-col gap-3">
+      <FileDrop
+        label={busy ? "Checking" : "Choose a dump"}
+        accept=".hex,.ihex,.bin,.raw,.eep"
+        help="Intel HEX, or the raw bytes of the whole memory from its base address. Nothing is stored."
+        maxBytes={DUMP_MAX_BYTES}
+        onFile={(file) => void check(file)}
+      />
+      <div aria-live="polite" className="flex flex-col gap-3">
+        <FormError problem={problem} />
+        {result ? <DumpFindings key={result.at} result={result.dump} asked={serial} /> : null}
+      </div>
+    </div>
+  );
+}
+
+/** HEX starts with a colon; anything else is taken as raw memory. */
+async function contentTypeOf(file: File): Promise<string> {
+  const first = new Uint8Array(await file.slice(0, 1).arrayBuffer())[0];
+  return first === 0x3a ? "text/x-intel-hex" : "application/octet-stream";
+}
