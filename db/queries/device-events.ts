@@ -49,6 +49,20 @@ export function listDeviceEvents(db: Db, deviceId: string) {
     .execute();
 }
 
+/** Who held a device last. */
+export async function findHolder(db: Db, deviceId: string): Promise<string | undefined> {
+  const row = await db
+    .selectFrom("deviceEvent")
+    .select("personId")
+    .where("deviceId", "=", deviceId)
+    .where("kind", "=", "hold")
+    .orderBy("at", "desc")
+    .orderBy("id", "desc")
+    .limit(1)
+    .executeTakeFirst();
+  return row?.personId;
+}
+
 export interface DeviceChange {
   held?: boolean;
   scrapped?: boolean;

@@ -16,7 +16,7 @@ export async function listLayoutsOfPackages(
   return rows.map((row) => ({ ...row, document: row.document as unknown as LayoutDocument }));
 }
 
-/** Published and retired layouts of a family, newest first: what a dump of unknown origin may have been written with. */
+/** Published and retired layouts of all families, newest first: what a dump of unknown origin may have been written with. */
 export async function listLayoutsInUse(
   db: Db,
 ): Promise<{ layoutId: string; familyId: string; document: LayoutDocument }[]> {

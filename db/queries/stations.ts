@@ -53,11 +53,41 @@ export interface NewStation {
 /** Adds a station with the families it may write. @throws constraint `station_name_unique` → `station.exists` */
 export async function insertStation(trx: Trx, station: NewStation, familyIds: readonly string[]): Promise<void> {
   await trx.insertInto("station").values(station).execute();
+  await insertStationFamilies(trx, station.id, familyIds);
+}
+
+async function insertStationFamilies(trx: Trx, stationId: string, familyIds: readonly string[]): Promise<void> {
   if (familyIds.length === 0) return;
   await trx
     .insertInto("stationFamily")
-    .values(familyIds.map((familyId) => ({ stationId: station.id, familyId })))
+    .values(familyIds.map((familyId) => ({ stationId, familyId })))
     .execute();
+}
+
+/** Locks a station until commit. @throws AppError `station.not_found` */
+export async function lockStation(trx: Trx, id: string): Promise<void> {
+  await trx
+    .selectFrom("station")
+    .select("id")
+    .where("id", "=", id)
+    .forUpdate()
+    .executeTakeFirstOrThrow(() => new AppError("station.not_found", { id, message: "There is no such station." }));
+}
+
+/** Renames, stops or reopens a locked station. @throws constraint `station_name_unique` → `station.exists` */
+export async function updateStation(trx: Trx, id: string, change: { name?: string; active?: boolean }): Promise<void> {
+  if (Object.keys(change).length > 0)
+    await trx
+      .updateTable("station")
+      .set({ ...change })
+      .where("id", "=", id)
+      .execute();
+}
+
+/** Replaces the families that a locked station may write. */
+export async function replaceStationFamilies(trx: Trx, id: string, familyIds: readonly string[]): Promise<void> {
+  await trx.deleteFrom("stationFamily").where("stationId", "=", id).execute();
+  await insertStationFamilies(trx, id, familyIds);
 }
 
 export interface StationKeyRow {
@@ -69,12 +99,13 @@ export interface StationKeyRow {
   revokedAt: Date | null;
 }
 
-/** A station's keys, newest first; the key itself is stored nowhere. */
-export function listStationKeys(db: Db, stationId: string): Promise<StationKeyRow[]> {
+/** Keys of the stations, newest first; the key itself is stored nowhere. */
+export async function listStationKeys(db: Db, stationIds: readonly string[]): Promise<StationKeyRow[]> {
+  if (stationIds.length === 0) return [];
   return db
     .selectFrom("stationKey")
     .select(["id", "stationId", "prefix", "createdAt", "lastUsedAt", "revokedAt"])
-    .where("stationId", "=", stationId)
+    .where("stationId", "in", [...stationIds])
     .orderBy("id", "desc")
     .execute();
 }

@@ -1,5 +1,6 @@
 import { sql } from "kysely";
 import type { Db } from "@/db/executor";
+import { decidingWrite } from "@/db/queries/writes";
 
 /** Runs that measured a device, newest first, with their temperatures. */
 export function listRunsOfDevice(db: Db, deviceId: string) {
@@ -22,7 +23,7 @@ export function listRunsOfDevice(db: Db, deviceId: string) {
     .execute();
 }
 
-/** Coefficient sets of a device with who decided, newest first. */
+/** Coefficient sets of a device with who derived them, newest first. */
 export function listSetsOfDevice(db: Db, deviceId: string) {
   return db
     .selectFrom("coefficientSet")
@@ -73,26 +74,6 @@ export function listLivePeriodsOfDevice(db: Db, deviceId: string) {
     .execute();
 }
 
-/** Serials and lots whose code begins with or contains the text, for the search that is always there. */
-export async function searchCodes(db: Db, text: string, limit: number) {
-  const devices = await db
-    .selectFrom("device")
-    .innerJoin("lot", "lot.id", "device.lotId")
-    .select(["device.serial", "lot.code as lot"])
-    .where(sql<boolean>`position(${text} in device.serial) > 0`)
-    .orderBy("device.serial")
-    .limit(limit)
-    .execute();
-  const lots = await db
-    .selectFrom("lot")
-    .select("code")
-    .where(sql<boolean>`position(${text} in code) > 0`)
-    .orderBy("code")
-    .limit(limit)
-    .execute();
-  return { devices, lots: lots.map((lot) => lot.code) };
-}
-
 export interface ImpactSource {
   run?: string;
   derivation?: string;
@@ -101,6 +82,17 @@ export interface ImpactSource {
   equipment?: string;
   from?: string;
   to?: string;
+}
+
+/** Whether there is such a thing: equipment by its code, all others by id. */
+export async function isImpactSource(
+  db: Db,
+  noun: "run" | "derivation" | "layout" | "package" | "equipment",
+  idOrCode: string,
+): Promise<boolean> {
+  const match = noun === "equipment" ? sql`code = ${idOrCode}` : sql`id = ${idOrCode}::uuid`;
+  const { rows } = await sql`select 1 from ${sql.table(noun)} where ${match}`.execute(db);
+  return rows.length > 0;
 }
 
 export interface ImpactRow {
@@ -117,35 +109,44 @@ export interface ImpactRow {
 }
 
 /**
- * Every device that a run, derivation, layout, package or piece of equipment reached, by serial: through coefficient sets whose
- * derivation used it (a sample device's run reaches the whole lot of a pooled gain), and through the images made from them.
+ * Every device that a run, derivation, layout, package or piece of equipment reached, by serial: through its readings, through
+ * coefficient sets that rest on them, and through the images made from those. A sample run reaches every device of a pooled-gain
+ * derivation that used it, since all of them carry its gain coefficient; any other run only the devices that it measured.
  */
 export async function listImpact(
   db: Db,
   source: ImpactSource,
   page: { after?: string; limit: number },
 ): Promise<ImpactRow[]> {
+  const from = source.from ?? null;
+  const to = source.to ?? null;
   const { rows } = await sql<ImpactRow>`
     with reached_run as (
-      select r.id from run r where r.id = ${source.run ?? null}::uuid
+      select r.id, r.purpose from run r where r.id = ${source.run ?? null}::uuid
       union
-      select r.id from run r join run_equipment re on re.run_id = r.id join equipment q on q.id = re.equipment_id
-      where q.code = ${source.equipment ?? null}::text
-        and (${source.from ?? null}::timestamptz is null or r.created_at >= ${source.from ?? null}::timestamptz)
-        and (${source.to ?? null}::timestamptz is null or r.created_at <= ${source.to ?? null}::timestamptz)
-    ), reached_derivation as (
-      select id from derivation where id = ${source.derivation ?? null}::uuid
-      union select derivation_id from derivation_run where run_id in (select id from reached_run)
+      select r.id, r.purpose from run r join run_equipment re on re.run_id = r.id join equipment q on q.id = re.equipment_id
+      where q.code = ${source.equipment ?? null}::text and exists (
+        select 1 from reading g where g.run_id = r.id
+          and (${from}::timestamptz is null or g.taken_at >= ${from}::timestamptz)
+          and (${to}::timestamptz is null or g.taken_at <= ${to}::timestamptz))
+    ), measured as (
+      select distinct g.run_id, g.device_id from reading g where g.run_id in (select id from reached_run)
     ), reached_set as (
-      select c.id, c.device_id, c.state, c.role, c.created_at from coefficient_set c where c.derivation_id in (select id from reached_derivation)
+      select c.id, c.device_id, c.state, c.role, c.created_at from coefficient_set c
+      where c.derivation_id = ${source.derivation ?? null}::uuid
+      union
+      select c.id, c.device_id, c.state, c.role, c.created_at
+      from reached_run r join derivation_run dr on dr.run_id = r.id join derivation v on v.id = dr.derivation_id
+      join coefficient_set c on c.derivation_id = v.id
+      where (v.method = 'pooled-gain' and r.purpose = 'sample')
+         or exists (select 1 from measured m where m.run_id = r.id and m.device_id = c.device_id)
     ), reached_image as (
       select i.device_id, i.package_id from image i where i.coefficient_set_id in (select id from reached_set)
       union
       select i.device_id, i.package_id from image i join package p on p.id = i.package_id
       where p.id = ${source.package ?? null}::uuid or p.layout_id = ${source.layout ?? null}::uuid
     ), reached_device as (
-      select device_id from reached_set union select device_id from reached_image
-      union select device_id from reading where run_id in (select id from reached_run)
+      select device_id from reached_set union select device_id from reached_image union select device_id from measured
     ), shown as (
       select d.id, d.serial, d.lot_id, d.held, d.shipped from device d
       where d.id in (select device_id from reached_device) and d.serial > ${page.after ?? ""} order by d.serial limit ${page.limit}
@@ -153,18 +154,17 @@ export async function listImpact(
     select d.serial, l.code as lot, s.state as coefficients, s.role, d.held, d.shipped,
       coalesce((select array_agg(p.version order by p.version_major, p.version_minor, p.version_patch)
         from reached_image i join package p on p.id = i.package_id where i.device_id = d.id), '{}') as packages,
-      w.version as carries, w.outcome,
-      coalesce(w.outcome = 'verified' and exists (select 1 from reached_image i where i.device_id = d.id and i.package_id = w.package_id), false)
-        as carries_reached
+      case when known.yes then p.version end as carries, w.outcome,
+      known.yes and exists (select 1 from reached_image i where i.device_id = d.id and i.package_id = w.package_id) as carries_reached
     from shown d
     join lot l on l.id = d.lot_id
     left join lateral (select state, role from reached_set r where r.device_id = d.id order by created_at desc limit 1) s on true
-    left join lateral (
-      select newest.outcome, newest.package_id, p.version from (
-        select distinct on (r.station_id) r.* from write_record r
-        where r.device_id = d.id and r.outcome <> 'failed' order by r.station_id, r.counter desc
-      ) newest left join package p on p.id = newest.package_id order by newest.finished_at desc limit 1
-    ) w on true
+    left join lateral ${decidingWrite} w on true
+    left join package p on p.id = w.package_id
+    cross join lateral (
+      select coalesce(w.outcome = 'verified', false) and not exists (
+        select 1 from device_event e where e.device_id = d.id and e.kind = 'board-replaced' and e.at >= w.finished_at) as yes
+    ) known
     order by d.serial
   `.execute(db);
   return rows;

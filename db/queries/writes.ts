@@ -31,6 +31,11 @@ export interface WriteRow {
   receivedAt: Date;
 }
 
+/** Lets the uploads of one station go one after the other, until commit: two at once may hold the same records in another order. */
+export async function lockStationUploads(trx: Trx, stationId: string): Promise<void> {
+  await sql`select pg_advisory_xact_lock(hashtextextended(${`station-writes ${stationId}`}, 0))`.execute(trx);
+}
+
 /** Records among the ids that are there already. */
 export function listKnownWrites(
   db: Db,
@@ -61,6 +66,7 @@ export interface WriteTarget {
   familyId: string;
   hardwareId: string | null;
   held: boolean;
+  scrapped: boolean;
 }
 
 /** Devices among the serials with what a write is compared with. */
@@ -68,7 +74,8 @@ export function listWriteTargets(db: Db, serials: readonly string[]): Promise<Wr
   return db
     .selectFrom("device")
     .innerJoin("lot", "lot.id", "device.lotId")
-    .select(["device.id as deviceId", "device.serial", "lot.familyId", "device.hardwareId", "device.held"])
+    .select(["device.id as deviceId", "device.serial", "lot.familyId"])
+    .select(["device.hardwareId", "device.held", "device.scrapped"])
     .where(sql<boolean>`device.serial = any(${serials as string[]}::text[])`)
     .execute();
 }
@@ -135,6 +142,14 @@ export async function setFirstHardware(
   boards: readonly { deviceId: string; hardwareId: string }[],
 ): Promise<void> {
   if (boards.length === 0) return;
+  // Locked in one order for all, so that two stations at once cannot wait for each other in a ring.
+  await trx
+    .selectFrom("device")
+    .select("id")
+    .where(sql<boolean>`id = any(${boards.map((board) => board.deviceId)}::uuid[])`)
+    .orderBy("id")
+    .forUpdate()
+    .execute();
   await sql`
     update device set hardware_id = given.hardware_id
     from unnest(${boards.map((b) => b.deviceId)}::uuid[], ${boards.map((b) => b.hardwareId)}::text[]) as given (id, hardware_id)
@@ -182,21 +197,41 @@ export function listWritesOfSerial(db: Db, serial: string) {
     .execute();
 }
 
+/** What a list of write records is cut down to. */
+export interface WriteFilter {
+  limit: number;
+  /** Id of the last record of the page before. */
+  cursor?: string;
+  outcome?: string;
+  flagged?: boolean;
+  /** Part of the serial, any case. */
+  q?: string;
+}
+
 /** Write records of a lot's devices, newest received first. */
-export function listWritesOfLot(db: Db, lotId: string, page: { limit: number; cursor?: string; outcome?: string }) {
-  let query = selectWrites(db)
+export function listWritesOfLot(db: Db, lotId: string, filter: WriteFilter): Promise<ListedWrite[]> {
+  return newestWrites(db, filter)
     .innerJoin("device", "device.id", "writeRecord.deviceId")
     .where("device.lotId", "=", lotId)
-    .orderBy("writeRecord.receivedAt", "desc")
-    .orderBy("writeRecord.id", "desc")
-    .limit(page.limit);
-  if (page.outcome !== undefined) query = query.where("writeRecord.outcome", "=", page.outcome);
-  if (page.cursor !== undefined) {
+    .execute();
+}
+
+/** What a station reported, newest received first. */
+export function listWritesOfStation(db: Db, stationId: string, filter: WriteFilter): Promise<ListedWrite[]> {
+  return newestWrites(db, filter).where("writeRecord.stationId", "=", stationId).execute();
+}
+
+function newestWrites(db: Db, { limit, cursor, outcome, flagged, q }: WriteFilter) {
+  let query = selectWrites(db).orderBy("writeRecord.receivedAt", "desc").orderBy("writeRecord.id", "desc").limit(limit);
+  if (outcome !== undefined) query = query.where("writeRecord.outcome", "=", outcome);
+  if (flagged !== undefined) query = query.where(sql<boolean>`(write_record.flags <> '{}') = ${flagged}`);
+  if (q !== undefined) query = query.where(sql<boolean>`position(${q.toUpperCase()} in write_record.serial) > 0`);
+  if (cursor !== undefined) {
     query = query.where(
-      sql<boolean>`(write_record.received_at, write_record.id) < (select received_at, id from write_record where id = ${page.cursor}::uuid)`,
+      sql<boolean>`(write_record.received_at, write_record.id) < (select received_at, id from write_record where id = ${cursor}::uuid)`,
     );
   }
-  return query.execute();
+  return query;
 }
 
 export interface CarriedRow {
@@ -216,9 +251,18 @@ export interface CarriedRow {
 }
 
 /**
- * What each device of a lot carries by its deciding record: of each station the record with the highest counter that touched the
- * memory (not `failed`), of those the last finished.
+ * The deciding record of a device `d`: of each station the one with the highest counter that touched the memory (not `failed`),
+ * of those the last finished. Found by serial, so that what was reported before the serial was known counts too.
  */
+export const decidingWrite = sql`(
+  select newest.* from (
+    select distinct on (r.station_id) r.* from write_record r
+    where r.serial = d.serial and r.outcome <> 'failed'
+    order by r.station_id, r.counter desc, r.finished_at desc, r.received_at desc
+  ) newest order by newest.finished_at desc, newest.received_at desc limit 1
+)`;
+
+/** What each device of a lot carries by its deciding record. */
 export async function listCarried(
   db: Db,
   lotId: string,
@@ -230,12 +274,7 @@ export async function listCarried(
            w.image_sha256, w.finished_at, s.name as station,
            (select max(e.at) from device_event e where e.device_id = d.id and e.kind = 'board-replaced') as board_replaced_at
     from device d
-    left join lateral (
-      select newest.* from (
-        select distinct on (r.station_id) r.* from write_record r
-        where r.device_id = d.id and r.outcome <> 'failed' order by r.station_id, r.counter desc
-      ) newest order by newest.finished_at desc, newest.received_at desc limit 1
-    ) w on true
+    left join lateral ${decidingWrite} w on true
     left join package p on p.id = w.package_id
     left join station s on s.id = w.station_id
     where d.lot_id = ${lotId}::uuid and d.serial > ${after} and (${page.serial ?? null}::text is null or d.serial = ${page.serial ?? null})

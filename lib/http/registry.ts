@@ -2,13 +2,17 @@ import type { AnyCommand } from "./command";
 import { bundleCommands } from "./commands/bundles";
 import { coefficientCommands } from "./commands/coefficients";
 import { derivationCommands } from "./commands/derivations";
+import { deviceCommands } from "./commands/devices";
 import { equipmentCommands } from "./commands/equipment";
 import { familyCommands } from "./commands/families";
 import { imageCommands } from "./commands/images";
 import { layoutCommands } from "./commands/layouts";
+import { ledgerCommands } from "./commands/ledger";
 import { lotCommands } from "./commands/lots";
 import { runCommands } from "./commands/runs";
 import { signingKeyCommands } from "./commands/signing-keys";
+import { stationCommands } from "./commands/stations";
+import { todayCommands } from "./commands/today";
 
 /** Every command of the API, for the OpenAPI document and the tests. A route file without its command here fails a test. */
 export const commands: readonly AnyCommand[] = [
@@ -22,4 +26,8 @@ export const commands: readonly AnyCommand[] = [
   ...imageCommands,
   ...bundleCommands,
   ...signingKeyCommands,
+  ...stationCommands,
+  ...deviceCommands,
+  ...ledgerCommands,
+  ...todayCommands,
 ];

@@ -1,5 +1,5 @@
 import { z } from "zod";
-import { code, id, oneTimeCode, reason, sha256Hex, timestamp } from "./common";
+import { code, id, oneTimeCode, pageOf, pageQuery, reason, sha256Hex, timestamp } from "./common";
 
 export const deviceEventKinds = [
   "hold",
@@ -127,18 +127,24 @@ export const dumpResult = z.object({
   advice: z.string(),
 });
 
+export const rewritePage = pageOf(rewrite);
+
+/** Bytes of an uploaded dump at most: a memory of 64 KiB as Intel HEX, even with one byte a record. */
+export const DUMP_MAX_BYTES = 1024 * 1024;
+
+export const HEX_TYPES = ["text/x-intel-hex", "text/plain"] as const;
+export const RAW_TYPE = "application/octet-stream";
+
 export type DumpResult = z.output<typeof dumpResult>;
 
-export const impactQuery = z.object({
+export const impactQuery = pageQuery.extend({
   run: z.uuid().optional(),
   derivation: z.uuid().optional(),
   layout: z.uuid().optional(),
   package: z.uuid().optional(),
   equipment: code.optional(),
-  from: timestamp.optional(),
-  to: timestamp.optional(),
-  limit: z.coerce.number().int().min(1).max(1000).default(100),
-  cursor: z.string().max(64).optional(),
+  from: timestamp.optional().meta({ description: "With equipment: readings taken at or after" }),
+  to: timestamp.optional().meta({ description: "With equipment: readings taken at or before" }),
 });
 
 export const impactItem = z.object({
@@ -153,3 +159,5 @@ export const impactItem = z.object({
   held: z.boolean(),
   shipped: z.boolean(),
 });
+
+export const impactPage = pageOf(impactItem);

@@ -1,10 +1,25 @@
 import { z } from "zod";
-import { code, id, sha256Hex, timestamp } from "./common";
+import { code, id, idPageQuery, pageOf, sha256Hex, signed, timestamp } from "./common";
 
-export const newStation = z.object({
-  name: z.string().trim().min(1, "Give the station a name.").max(80),
-  families: z.array(code).min(1, "Name at least one family it may write.").max(100),
-});
+const stationName = z.string().trim().min(1, "Give the station a name.").max(80);
+const stationFamilies = z.array(code).min(1, "Name at least one family it may write.").max(100);
+
+export const newStation = z.strictObject({ name: stationName, families: stationFamilies });
+
+export const stationChange = z
+  .strictObject({
+    name: stationName.optional(),
+    families: stationFamilies.optional(),
+    active: z.boolean().optional().meta({ description: "False refuses all its keys at once" }),
+  })
+  .refine((change) => Object.values(change).some((value) => value !== undefined), "Name something to change.");
+
+export type StationChange = z.output<typeof stationChange>;
+
+/** Making a key is signed with the password again. */
+export const stationKeyRequest = z.strictObject({ ...signed });
+
+export const byStationKey = z.object({ id, key: id });
 
 export const station = z.object({
   id,
@@ -23,6 +38,8 @@ export const station = z.object({
     }),
   ),
 });
+
+export const stationPage = pageOf(station);
 
 export const newStationKey = z.object({
   id,
@@ -69,24 +86,27 @@ export const writeReport = z.object({
 
 export type WriteReport = z.output<typeof writeReport>;
 
+/** Records a station sends at once at most. */
+export const WRITES_MAX = 1000;
+
 export const writeReports = z.object({
-  writes: z.array(writeReport).min(1).max(1000, "At most 1,000 records at once."),
+  writes: z.array(writeReport).min(1).max(WRITES_MAX, "At most 1,000 records at once."),
 });
+
+export const writeOutcomes = [
+  "verified",
+  "mismatch",
+  "failed",
+  "interrupted",
+  "unknown-image",
+  "unknown-serial",
+] as const;
 
 export const writeResults = z.object({
   results: z.array(
     z.object({
       id,
-      outcome: z.enum([
-        "verified",
-        "mismatch",
-        "failed",
-        "interrupted",
-        "unknown-image",
-        "unknown-serial",
-        "duplicate",
-        "conflict",
-      ]),
+      outcome: z.enum([...writeOutcomes, "duplicate", "conflict"]),
       flags: z.array(z.string()),
     }),
   ),
@@ -110,3 +130,13 @@ export const listedWrite = z.object({
   finishedAt: timestamp,
   receivedAt: timestamp,
 });
+
+export const listedWritePage = pageOf(listedWrite);
+
+export const writeQuery = idPageQuery.extend({
+  outcome: z.enum(writeOutcomes).optional(),
+  flagged: z.stringbool().optional().meta({ description: "Only records with a flag, or only those without" }),
+  q: z.string().trim().min(1).max(32).optional().meta({ description: "Part of the serial" }),
+});
+
+export type WriteQuery = z.output<typeof writeQuery>;

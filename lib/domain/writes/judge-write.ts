@@ -1,9 +1,9 @@
-import { satisfies, valid } from "semver";
+import { compare, valid } from "semver";
 
 /** What is known about the device and the image that a station says it wrote. Digests as lower-case hex. */
 export interface KnownTarget {
   /** Undefined where no device has the serial. */
-  device?: { hardwareId: string | null; held: boolean; stationMayWrite: boolean };
+  device?: { hardwareId: string | null; held: boolean; scrapped: boolean; stationMayWrite: boolean };
   /** Undefined where the package has no image of the device. */
   image?: {
     sha256: string;
@@ -60,6 +60,7 @@ export function flagsOf(write: ReportedWrite, known: KnownTarget, receivedAt: Da
     ["late", receivedAt.getTime() - write.finishedAt.getTime() > LATE_AFTER_MS],
     ["clock-ahead", write.finishedAt.getTime() - receivedAt.getTime() > CLOCK_AHEAD_MS],
     ["held", device?.held === true],
+    ["scrapped", device?.scrapped === true],
     ["station-not-allowed", device !== undefined && !device.stationMayWrite],
     ["serial-differs", write.serialBefore != null && write.serialBefore !== write.serial],
     ["board-changed", write.hardwareId != null && board !== null && write.hardwareId !== board],
@@ -79,5 +80,5 @@ export function flagsOf(write: ReportedWrite, known: KnownTarget, receivedAt: Da
 }
 
 function sameFirmware(reported: string, ofLot: string): boolean {
-  return valid(reported) !== null && valid(ofLot) !== null ? satisfies(reported, ofLot) : reported === ofLot;
+  return valid(reported) !== null && valid(ofLot) !== null ? compare(reported, ofLot) === 0 : reported === ofLot;
 }

@@ -1,6 +1,8 @@
+import type { Trx } from "@/db/executor";
 import {
   type DeviceChange,
   type DeviceEventKind,
+  findHolder,
   insertDeviceEvent,
   lockDevice,
   updateDevice,
@@ -37,6 +39,7 @@ export async function recordDeviceEvent(ctx: PersonCtx, input: { serial: string;
   return ctx.db.transaction().execute(async (trx) => {
     const device = await lockDevice(trx, serial);
     assertPossible(device, event.kind);
+    if (event.kind === "resume") await assertSecondPerson(ctx, trx, device);
     const id = ctx.newId();
     const { kind, reason } = event;
     const facts = {
@@ -61,6 +64,15 @@ export async function recordDeviceEvent(ctx: PersonCtx, input: { serial: string;
       texts: { reason },
     });
     return { id, serial, kind, at: ctx.now().toISOString() };
+  });
+}
+
+/** Going on after a hold is another person's to say; the database refuses it too. @throws AppError `device.self_approval` */
+async function assertSecondPerson(ctx: PersonCtx, trx: Trx, device: { id: string; serial: string }): Promise<void> {
+  if ((await findHolder(trx, device.id)) !== ctx.actor.id) return;
+  throw new AppError("device.self_approval", {
+    serial: device.serial,
+    message: `You held ${device.serial}; a second person has to say that it may go on.`,
   });
 }
 

@@ -1,10 +1,10 @@
 import { getLot } from "@/db/queries/lots";
-import { type ListedWrite, listWritesOfLot } from "@/db/queries/writes";
+import { getStation } from "@/db/queries/stations";
+import { type ListedWrite, listWritesOfLot, listWritesOfStation, type WriteFilter } from "@/db/queries/writes";
 import type { Ctx } from "@/lib/services/context";
 import { type Page, pageOf } from "@/lib/services/page";
 
-/** A write record as people and machines read it. */
-export function writeView(row: ListedWrite) {
+function writeView(row: ListedWrite) {
   return {
     id: row.id,
     counter: Number(row.counter),
@@ -25,14 +25,20 @@ export function writeView(row: ListedWrite) {
   };
 }
 
+/** A write record as people and machines read it. */
 export type WriteView = ReturnType<typeof writeView>;
 
 /** Write records of a lot, newest received first. @throws AppError `lot.not_found` */
-export async function listLotWrites(
-  ctx: Ctx,
-  input: { lot: string; limit: number; cursor?: string; outcome?: string },
-): Promise<Page<WriteView>> {
+export async function listLotWrites(ctx: Ctx, input: WriteFilter & { lot: string }): Promise<Page<WriteView>> {
   const lot = await getLot(ctx.db, input.lot);
-  const rows = await listWritesOfLot(ctx.db, lot.id, { ...input, limit: input.limit + 1 });
-  return pageOf(rows.map(writeView), input.limit, (row) => row.id);
+  return pageOfWrites(await listWritesOfLot(ctx.db, lot.id, { ...input, limit: input.limit + 1 }), input.limit);
 }
+
+/** What a station reported, newest received first. @throws AppError `station.not_found` */
+export async function listStationWrites(ctx: Ctx, input: WriteFilter & { station: string }): Promise<Page<WriteView>> {
+  const station = await getStation(ctx.db, input.station);
+  return pageOfWrites(await listWritesOfStation(ctx.db, station.id, { ...input, limit: input.limit + 1 }), input.limit);
+}
+
+const pageOfWrites = (rows: readonly ListedWrite[], limit: number): Page<WriteView> =>
+  pageOf(rows.map(writeView), limit, (row) => row.id);

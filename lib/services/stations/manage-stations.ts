@@ -1,79 +1,100 @@
-import { createHash, randomBytes } from "node:crypto";
 import { getFamily } from "@/db/queries/families";
 import * as query from "@/db/queries/stations";
-import { STATION_KEY_PREFIX } from "@/lib/domain/credentials";
-import { AppError } from "@/lib/errors";
 import { assertRole, type Ctx, type PersonCtx } from "@/lib/services/context";
 import { appendEvent } from "@/lib/services/ledger/append-event";
 import { type Page, pageOf } from "@/lib/services/page";
+import type { StationChange } from "@/schemas/api/stations";
 
-export type StationView = query.StationRow & { keys: query.StationKeyRow[] };
+type StationKeyView = Omit<ReturnType<typeof keyView>, "stationId">;
+
+export interface StationView {
+  id: string;
+  name: string;
+  active: boolean;
+  families: string[];
+  createdAt: string;
+  lastSeenAt: string | null;
+  keys: StationKeyView[];
+}
+
+function keyView(row: query.StationKeyRow) {
+  return {
+    id: row.id,
+    prefix: row.prefix,
+    createdAt: row.createdAt.toISOString(),
+    lastUsedAt: row.lastUsedAt?.toISOString() ?? null,
+    revokedAt: row.revokedAt?.toISOString() ?? null,
+  };
+}
+
+function stationView(row: query.StationRow, keys: readonly query.StationKeyRow[]): StationView {
+  return {
+    ...row,
+    createdAt: row.createdAt.toISOString(),
+    lastSeenAt: row.lastSeenAt?.toISOString() ?? null,
+    keys: keys.filter((key) => key.stationId === row.id).map(keyView),
+  };
+}
 
 /** Stations with their keys, by name. */
 export async function listStations(ctx: Ctx, page: { limit: number; cursor?: string }): Promise<Page<StationView>> {
   const rows = await query.listStations(ctx.db, { ...page, limit: page.limit + 1 });
-  const cut = pageOf(rows, page.limit, (row) => row.name);
-  const items = await Promise.all(
-    cut.items.map(async (row) => ({ ...row, keys: await query.listStationKeys(ctx.db, row.id) })),
+  const { items, next } = pageOf(rows, page.limit, (row) => row.name);
+  const keys = await query.listStationKeys(
+    ctx.db,
+    items.map((row) => row.id),
   );
-  return { items, next: cut.next };
+  return { items: items.map((row) => stationView(row, keys)), next };
+}
+
+/** A station with its keys. @throws AppError `station.not_found` */
+export async function getStation(ctx: Ctx, id: string): Promise<StationView> {
+  const row = await query.getStation(ctx.db, id);
+  return stationView(row, await query.listStationKeys(ctx.db, [id]));
+}
+
+async function familiesOf(ctx: Ctx, codes: readonly string[]): Promise<{ ids: string[]; codes: string[] }> {
+  const families = await Promise.all([...new Set(codes)].map((code) => getFamily(ctx.db, code)));
+  return { ids: families.map((family) => family.id), codes: families.map((family) => family.code) };
 }
 
 /** Adds a station that may write lots of the named families. @throws AppError `station.exists`, `family.not_found`, `auth.forbidden` */
 export async function addStation(ctx: PersonCtx, input: { name: string; families: string[] }): Promise<StationView> {
   assertRole(ctx, "admin");
-  const families = await Promise.all(input.families.map((code) => getFamily(ctx.db, code)));
+  const families = await familiesOf(ctx, input.families);
   const id = ctx.newId();
   await ctx.db.transaction().execute(async (trx) => {
     const station = { id, name: input.name, createdAt: ctx.now(), createdBy: ctx.actor.id };
-    await query.insertStation(trx, station, [...new Set(families.map((family) => family.id))]);
+    await query.insertStation(trx, station, families.ids);
     await appendEvent(ctx, trx, {
       action: "station.added",
       subject: id,
-      data: { name: input.name, families: families.map((family) => family.code) },
+      data: { name: input.name, families: families.codes },
     });
   });
-  return { ...(await query.getStation(ctx.db, id)), keys: [] };
+  return getStation(ctx, id);
 }
 
-/** Makes a key for a station. The key is returned this once; what is stored is its SHA-256. @throws AppError `station.not_found` */
-export async function addStationKey(
+/**
+ * Renames a station, changes the families it may write, stops or reopens it. A stopped one is refused at its next call.
+ * @throws AppError `station.not_found`, `station.exists`, `family.not_found`, `auth.forbidden`
+ */
+export async function changeStation(
   ctx: PersonCtx,
-  stationId: string,
-): Promise<{ id: string; key: string; prefix: string }> {
+  input: { id: string; change: StationChange },
+): Promise<StationView> {
   assertRole(ctx, "admin");
-  const key = STATION_KEY_PREFIX + randomBytes(32).toString("base64url");
-  const id = ctx.newId();
-  const prefix = key.slice(0, STATION_KEY_PREFIX.length + 6);
-  await query.getStation(ctx.db, stationId);
+  const { families: codes, ...own } = input.change;
+  const families = codes && (await familiesOf(ctx, codes));
   await ctx.db.transaction().execute(async (trx) => {
-    const keyHash = createHash("sha256").update(key).digest();
-    await query.insertStationKey(trx, {
-      id,
-      stationId,
-      keyHash,
-      prefix,
-      createdAt: ctx.now(),
-      createdBy: ctx.actor.id,
+    await query.lockStation(trx, input.id);
+    await query.updateStation(trx, input.id, own);
+    if (families) await query.replaceStationFamilies(trx, input.id, families.ids);
+    await appendEvent(ctx, trx, {
+      action: "station.changed",
+      subject: input.id,
+      data: { ...own, ...(families && { families: families.codes }) },
     });
-    await appendEvent(ctx, trx, { action: "station-key.made", subject: stationId, data: { key: id, prefix } });
   });
-  return { id, key, prefix };
-}
-
-/** Revokes a station's key at once. @throws AppError `key.not_found` */
-export async function revokeStationKey(ctx: PersonCtx, input: { stationId: string; key: string }): Promise<void> {
-  assertRole(ctx, "admin");
-  await ctx.db.transaction().execute(async (trx) => {
-    const { stationId, key } = input;
-    const revoked = await query.revokeStationKey(trx, {
-      id: key,
-      stationId,
-      revokedAt: ctx.now(),
-      revokedBy: ctx.actor.id,
-    });
-    if (!revoked)
-      throw new AppError("key.not_found", { key, message: "The station has no such key, or it was revoked before." });
-    await appendEvent(ctx, trx, { action: "station-key.revoked", subject: stationId, data: { key } });
-  });
+  return getStation(ctx, input.id);
 }

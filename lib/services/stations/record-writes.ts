@@ -1,12 +1,11 @@
 import { createHash } from "node:crypto";
 import type { Trx } from "@/db/executor";
 import * as query from "@/db/queries/writes";
-import { canonicalJson } from "@/lib/domain/canonical-json";
-import { flagsOf, type KnownTarget, outcomeOf } from "@/lib/domain/writes/judge-write";
+import { writeContent } from "@/lib/domain/writes/write-content";
 import type { StationCtx } from "@/lib/services/context";
 import { appendEvent } from "@/lib/services/ledger/append-event";
-import type { FamilyDocument } from "@/schemas/api/families";
 import type { WriteReport } from "@/schemas/api/stations";
+import { type HashedReport, isFirstBoard, judgeWrites } from "./judge-writes";
 
 export interface WriteResult {
   id: string;
@@ -14,8 +13,8 @@ export interface WriteResult {
   flags: string[];
 }
 
-const UUID = /^[0-9a-f-]{36}$/;
-const isPackageId = (text: string) => UUID.test(text);
+/** Who stored an id first, and with what content. */
+type FirstOfId = Map<string, { stationId: string; contentSha256: Buffer }>;
 
 /**
  * Records what a station reports. Nothing is dropped: a write of a package that is not live, of an unknown serial or of other bytes
@@ -26,149 +25,88 @@ export async function recordWrites(
   ctx: StationCtx,
   writes: readonly WriteReport[],
 ): Promise<{ results: WriteResult[] }> {
+  const hashed = writes.map(hashReport);
   return ctx.db.transaction().execute(async (trx) => {
-    const hashed = writes.map((report) => ({
-      report,
-      contentSha256: createHash("sha256").update(canonicalJson(report)).digest(),
-    }));
-    const firstOfId = new Map<string, Buffer>();
-    for (const row of await query.listKnownWrites(
-      trx,
-      writes.map((report) => report.id),
-    ))
-      firstOfId.set(row.id, row.contentSha256);
-    const fresh = hashed.filter(({ report, contentSha256 }) => {
-      if (firstOfId.has(report.id)) return false;
-      firstOfId.set(report.id, contentSha256);
-      return true;
-    });
-    const rows = await judge(ctx, trx, fresh);
+    await query.lockStationUploads(trx, ctx.actor.id);
+    const first: FirstOfId = new Map();
+    await addKnown(trx, first, hashed);
+    const rows = await judgeWrites(ctx, trx, takeFresh(ctx, hashed, first));
     const stored = new Set(await query.insertWrites(trx, rows));
-    // Another request of the same station may have stored the same id between our look and our insert.
-    for (const row of await query.listKnownWrites(
+    // Another station may have stored one of these ids between our look and our insert.
+    await addKnown(
       trx,
-      rows.filter((row) => !stored.has(row.id)).map((row) => row.id),
-    )) {
-      firstOfId.set(row.id, row.contentSha256);
-    }
-    await query.setFirstHardware(
-      trx,
-      rows.flatMap(({ deviceId, hardwareId, outcome, flags }) =>
-        deviceId && hardwareId && outcome === "verified" && !flags.includes("board-changed")
-          ? [{ deviceId, hardwareId }]
-          : [],
-      ),
+      first,
+      hashed.filter(({ report }) => rows.some((row) => row.id === report.id) && !stored.has(report.id)),
     );
-    const results = resultsOf(hashed, rows, stored, firstOfId);
-    const conflicts = results.filter((result) => result.outcome === "conflict").map((result) => result.id);
-    if (stored.size > 0 || conflicts.length > 0) {
-      const root = createHash("sha256").update(
-        Buffer.concat(rows.filter((row) => stored.has(row.id)).map((row) => row.contentSha256)),
-      );
-      await appendEvent(ctx, trx, {
-        action: "writes.recorded",
-        subject: ctx.actor.id,
-        data: { count: stored.size, root: root.digest("hex"), ...(conflicts.length > 0 && { conflicts }) },
-      });
-    }
-    return { results };
+    const kept = rows.filter((row) => stored.has(row.id));
+    await query.setFirstHardware(trx, firstBoards(kept));
+    const results = resultsOf(ctx, hashed, kept, first);
+    await note(ctx, trx, kept, results);
+    return { results: results.map((result, i) => ({ ...result, id: writes[i]?.id ?? result.id })) };
   });
+}
+
+function hashReport(given: WriteReport): HashedReport {
+  const report = { ...given, id: given.id.toLowerCase() };
+  return { report, contentSha256: createHash("sha256").update(writeContent(report)).digest() };
+}
+
+async function addKnown(trx: Trx, first: FirstOfId, hashed: readonly HashedReport[]): Promise<void> {
+  const ids = hashed.map(({ report }) => report.id);
+  for (const row of await query.listKnownWrites(trx, ids)) first.set(row.id, row);
+}
+
+/** Reports whose id nobody used, the first of each in this upload; they count as known from here on. */
+function takeFresh(ctx: StationCtx, hashed: readonly HashedReport[], first: FirstOfId): HashedReport[] {
+  return hashed.filter(({ report, contentSha256 }) => {
+    if (first.has(report.id)) return false;
+    first.set(report.id, { stationId: ctx.actor.id, contentSha256 });
+    return true;
+  });
+}
+
+/** The board of each device as its first verified record of the upload tells it. */
+function firstBoards(rows: readonly query.WriteRow[]): { deviceId: string; hardwareId: string }[] {
+  const boards = new Map<string, string>();
+  for (const { deviceId, hardwareId, ...row } of rows) {
+    if (deviceId && hardwareId && isFirstBoard({ hardwareId, ...row }) && !boards.has(deviceId))
+      boards.set(deviceId, hardwareId);
+  }
+  return [...boards].map(([deviceId, hardwareId]) => ({ deviceId, hardwareId }));
 }
 
 function resultsOf(
-  hashed: readonly { report: WriteReport; contentSha256: Buffer }[],
-  rows: readonly query.WriteRow[],
-  stored: Set<string>,
-  firstOfId: Map<string, Buffer>,
+  ctx: StationCtx,
+  hashed: readonly HashedReport[],
+  kept: readonly query.WriteRow[],
+  first: FirstOfId,
 ): WriteResult[] {
-  const rowOfId = new Map(rows.map((row) => [row.id, row]));
-  const answered = new Set<string>();
+  const unanswered = new Map(kept.map((row) => [row.id, row]));
   return hashed.map(({ report: { id }, contentSha256 }) => {
-    const row = rowOfId.get(id);
-    if (row && stored.has(id) && !answered.has(id)) {
-      answered.add(id);
+    const row = unanswered.get(id);
+    if (row) {
+      unanswered.delete(id);
       return { id, outcome: row.outcome, flags: row.flags };
     }
-    return { id, outcome: firstOfId.get(id)?.equals(contentSha256) ? "duplicate" : "conflict", flags: [] };
+    const before = first.get(id);
+    const same = before?.stationId === ctx.actor.id && before.contentSha256.equals(contentSha256);
+    return { id, outcome: same ? "duplicate" : "conflict", flags: [] };
   });
 }
 
-async function judge(
+/** One event for the batch; an upload that brought nothing new leaves none. */
+async function note(
   ctx: StationCtx,
   trx: Trx,
-  fresh: readonly { report: WriteReport; contentSha256: Buffer }[],
-): Promise<query.WriteRow[]> {
-  const serials = [...new Set(fresh.map(({ report }) => report.serial))];
-  const packageIds = [...new Set(fresh.map(({ report }) => report.package).filter(isPackageId))];
-  const targets = new Map((await query.listWriteTargets(trx, serials)).map((target) => [target.serial, target]));
-  const images = new Map(
-    (await query.listWriteImages(trx, packageIds, serials)).map((image) => [
-      `${image.packageId} ${image.serial}`,
-      image,
-    ]),
-  );
-  const starts = await query.listLiveStarts(trx, [...new Set([...images.values()].map((image) => image.lotId))]);
-  const receivedAt = ctx.now();
-  return fresh.map(({ report, contentSha256 }) => {
-    const target = targets.get(report.serial);
-    const image = images.get(`${report.package} ${report.serial}`);
-    const write = { ...report, finishedAt: new Date(report.finishedAt) };
-    const known: KnownTarget = {
-      device: target && {
-        hardwareId: target.hardwareId,
-        held: target.held,
-        stationMayWrite: ctx.actor.familyIds.includes(target.familyId),
-      },
-      image: image && knownImage(image),
-      liveWhenFinished: image !== undefined && liveAt(starts, image.lotId, write.finishedAt) === report.package,
-    };
-    return {
-      id: report.id,
-      stationId: ctx.actor.id,
-      counter: report.counter,
-      serial: report.serial,
-      deviceId: target?.deviceId ?? null,
-      packageId: image ? report.package : null,
-      packageReported: report.package,
-      imageSha256: Buffer.from(report.imageSha256, "hex"),
-      result: report.result,
-      readbackSha256: report.readbackSha256 === null ? null : Buffer.from(report.readbackSha256, "hex"),
-      serialBefore: report.serialBefore ?? null,
-      hardwareId: report.hardwareId ?? null,
-      firmware: report.firmware ?? null,
-      zeroMvV: report.zeroMvV ?? null,
-      deviceTemp: report.deviceTemp ?? null,
-      startedAt: new Date(report.startedAt),
-      finishedAt: write.finishedAt,
-      operator: report.operator,
-      detail: report.detail ?? null,
-      outcome: outcomeOf(write, known),
-      flags: flagsOf(write, known, receivedAt),
-      contentSha256,
-      receivedAt,
-    };
+  kept: readonly query.WriteRow[],
+  results: readonly WriteResult[],
+): Promise<void> {
+  const conflicts = results.filter((result) => result.outcome === "conflict").map((result) => result.id);
+  if (kept.length === 0 && conflicts.length === 0) return;
+  const root = createHash("sha256").update(Buffer.concat(kept.map((row) => row.contentSha256)));
+  await appendEvent(ctx, trx, {
+    action: "writes.recorded",
+    subject: ctx.actor.id,
+    data: { count: kept.length, root: root.digest("hex"), ...(conflicts.length > 0 && { conflicts }) },
   });
-}
-
-function knownImage(image: query.WriteImage): NonNullable<KnownTarget["image"]> {
-  const family = image.familyDocument as FamilyDocument;
-  const { zero, zeroTc, zeroTc2, tempOffset, tempSlope } = image;
-  const known = zero !== null && zeroTc !== null && tempOffset !== null && tempSlope !== null;
-  const zeroMvV = (deviceTemp: number) => {
-    const d = (tempOffset as number) + (tempSlope as number) * deviceTemp - family.referenceC;
-    return (zero as number) + (zeroTc as number) * d + (zeroTc2 ?? 0) * d * d;
-  };
-  return {
-    sha256: image.sha256.toString("hex"),
-    hardwareId: image.hardwareId,
-    firmware: image.firmware,
-    nominalMvV: family.nominalMvV,
-    zeroMvV: known ? zeroMvV : null,
-  };
-}
-
-/** Id of the package that was live for the lot at that moment, null where none was. */
-function liveAt(starts: Awaited<ReturnType<typeof query.listLiveStarts>>, lotId: string, at: Date): string | null {
-  const last = starts.filter((start) => start.lotId === lotId && start.startedAt <= at).at(-1);
-  return last === undefined || last.kind === "withdrawal" ? null : last.packageId;
 }

@@ -14,14 +14,22 @@ import type { DumpResult } from "@/schemas/api/devices";
 type Dump = { raw: Buffer } | { hex: ReturnType<typeof readIntelHex> };
 type KnownImage = Awaited<ReturnType<typeof listImagesOfDevice>>[number];
 
+interface Candidate {
+  image: KnownImage;
+  layout: CompiledLayout;
+  bytes: Uint8Array;
+}
+
 /**
  * Says which image a memory dump is, or which bytes and parameters differ.
- * @param input serial as printed on the device, where it is known; bytes as Intel HEX or raw memory.
- * @throws AppError `hex.*` with the line, `dump.wrong_length`, `dump.incomplete`, `device.not_found`
+ * @param input serial as printed on the device, where it is known; bytes as Intel HEX or as raw memory from the base address on.
+ * @throws AppError `hex.*` with the line, `dump.empty`, `dump.wrong_length`, `dump.incomplete`, `device.not_found`
  */
-export async function checkDump(ctx: Ctx, input: { serial?: string; bytes: Buffer }): Promise<DumpResult> {
-  const dump: Dump =
-    input.bytes[0] === 0x3a ? { hex: readIntelHex(input.bytes.toString("latin1")) } : { raw: input.bytes };
+export async function checkDump(
+  ctx: Ctx,
+  input: { serial?: string; format: "hex" | "raw"; bytes: Buffer },
+): Promise<DumpResult> {
+  const dump = readDump(input);
   if (input.serial !== undefined) return checkAgainstDevice(ctx, input.serial, dump);
   const known = await findByDigest(ctx, dump);
   if (known) return checkAgainstDevice(ctx, known, dump);
@@ -38,6 +46,12 @@ export async function checkDump(ctx: Ctx, input: { serial?: string; bytes: Buffe
   );
 }
 
+/** @throws AppError `hex.*` with the line, `dump.empty` */
+function readDump({ format, bytes }: { format: "hex" | "raw"; bytes: Buffer }): Dump {
+  if (bytes.length === 0) throw new AppError("dump.empty", { message: "The file is empty. Read the memory again." });
+  return format === "hex" ? { hex: readIntelHex(bytes.toString("latin1")) } : { raw: bytes };
+}
+
 async function checkAgainstDevice(ctx: Ctx, serial: string, dump: Dump): Promise<DumpResult> {
   const [device] = await findDevicesBySerial(ctx.db, [serial]);
   if (!device) throw new AppError("device.not_found", { serial, message: `No device has the serial ${serial}.` });
@@ -46,25 +60,36 @@ async function checkAgainstDevice(ctx: Ctx, serial: string, dump: Dump): Promise
     ctx.db,
     images.map((image) => image.packageId),
   );
-  const fitting = images.flatMap((image) => {
+  const fitting = images.flatMap((image): Candidate[] => {
     const layout = layouts.get(image.packageId);
     const bytes = layout && findBytes(layout, dump);
     return layout && bytes ? [{ image, layout, bytes }] : [];
   });
-  const nearest = fitting.find(({ image, layout, bytes }) => isExact(image, layout, bytes)) ?? preferred(fitting);
-  if (!nearest) {
-    if (images.length === 0) return unknown(serial, `${serial} is in no package, so there is nothing to compare with.`);
-    throw wrongShape(layouts.values().next().value as CompiledLayout, dump);
-  }
-  const { image, layout, bytes } = nearest;
-  const facts = {
+  const exact = preferred(fitting.filter(isExact));
+  if (exact) return exactResult(serial, exact);
+  const nearest = nearestOf(fitting);
+  if (nearest) return differingResult(ctx, serial, nearest);
+  if (images.length === 0) return unknown(serial, `${serial} is in no package, so there is nothing to compare with.`);
+  throw wrongShape(layouts.values().next().value as CompiledLayout, dump);
+}
+
+function factsOf({ image, layout, bytes }: Candidate) {
+  return {
     package: image.packageId,
     version: image.version,
     live: image.state === "live",
     checksums: checksumsOf(layout, bytes),
   };
-  if (isExact(image, layout, bytes))
-    return { match: "exact", serial, ...facts, differences: [], advice: exactAdvice(image) };
+}
+
+function exactResult(serial: string, candidate: Candidate): DumpResult {
+  const advice = exactAdvice(candidate.image);
+  return { match: "exact", serial, ...factsOf(candidate), differences: [], advice };
+}
+
+async function differingResult(ctx: Ctx, serial: string, candidate: Candidate): Promise<DumpResult> {
+  const { image, layout, bytes } = candidate;
+  const facts = factsOf(candidate);
   const found = serialIn(layout, bytes);
   const other = found !== null && found !== serial ? await findDevicesBySerial(ctx.db, [found]) : [];
   const differences = differencesOf(layout, image.bytes, bytes);
@@ -72,22 +97,30 @@ async function checkAgainstDevice(ctx: Ctx, serial: string, dump: Dump): Promise
     const advice = `These bytes name ${found}, not ${serial}. Boards may have been swapped: hold both devices, compare the hardware ids, and do not write until it is clear which cell this is.`;
     return { match: "other-serial", serial: found, ...facts, differences, advice };
   }
-  return {
-    match: "differs",
-    serial,
-    ...facts,
-    differences,
-    advice: differsAdvice(facts.checksums, differences.length, image.version),
-  };
+  const advice = differsAdvice(facts.checksums, differences.length, image.version);
+  return { match: "differs", serial, ...facts, differences, advice };
 }
 
-const isExact = (image: KnownImage, layout: CompiledLayout, bytes: Uint8Array) =>
+const isExact = ({ image, layout, bytes }: Candidate) =>
   sha256Hex(imageDigestBytes(layout, bytes)) === image.sha256.toString("hex");
 
-/** The live image, else the newest that ever was live, else the newest. */
-function preferred<T extends { image: KnownImage }>(fitting: readonly T[]): T | undefined {
-  const rank = (state: string) => (state === "live" ? 0 : state === "superseded" ? 1 : 2);
-  return [...fitting].sort((a, b) => rank(a.image.state) - rank(b.image.state))[0];
+/** What was ever released goes before what never was, the live image before all. */
+const RANK: Record<string, number> = { live: 0, superseded: 1, withdrawn: 2 };
+const NEVER_RELEASED = 3;
+const rankOf = ({ image }: Candidate): number => RANK[image.state] ?? NEVER_RELEASED;
+
+function preferred(candidates: readonly Candidate[]): Candidate | undefined {
+  return [...candidates].sort((a, b) => rankOf(a) - rankOf(b))[0];
+}
+
+/** Of what was ever released the image that differs in the fewest bytes, on a tie the live one, then the newest. */
+function nearestOf(candidates: readonly Candidate[]): Candidate | undefined {
+  const released = candidates.filter((candidate) => rankOf(candidate) < NEVER_RELEASED);
+  const counted = (released.length > 0 ? released : candidates).map((candidate) => {
+    const digested = imageDigestBytes(candidate.layout, candidate.bytes);
+    return { candidate, count: candidate.image.bytes.reduce((n, byte, at) => n + (byte === digested[at] ? 0 : 1), 0) };
+  });
+  return counted.sort((a, b) => a.count - b.count || rankOf(a.candidate) - rankOf(b.candidate))[0]?.candidate;
 }
 
 async function findByDigest(ctx: Ctx, dump: Dump): Promise<string | null> {
@@ -107,13 +140,11 @@ function findBytes(layout: CompiledLayout, dump: Dump): Uint8Array | null {
   const bytes = new Uint8Array(layout.bytes).fill(layout.fill);
   const there = new Uint8Array(layout.bytes);
   for (const segment of dump.hex.segments) {
-    const offset = segment.address - layout.baseAddress;
-    for (let i = 0; i < segment.bytes.length; i++) {
-      const at = offset + i;
-      if (at < 0 || at >= layout.bytes) continue;
-      bytes[at] = segment.bytes[i] as number;
-      there[at] = 1;
-    }
+    const start = segment.address - layout.baseAddress;
+    const [from, to] = [Math.max(start, 0), Math.min(start + segment.bytes.length, layout.bytes)];
+    if (from >= to) continue;
+    bytes.set(segment.bytes.subarray(from - start, to - start), from);
+    there.fill(1, from, to);
   }
   for (const [from, to] of layout.kept) there.fill(1, from, to + 1);
   return there.includes(0) ? null : bytes;

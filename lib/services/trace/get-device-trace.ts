@@ -2,24 +2,25 @@ import { getDevice, listDeviceEvents } from "@/db/queries/device-events";
 import { listApprovalsOfDevice } from "@/db/queries/device-origin";
 import * as query from "@/db/queries/trace";
 import { type ListedWrite, listWritesOfSerial } from "@/db/queries/writes";
+import { READERS } from "@/lib/domain/roles";
 import type { Ctx } from "@/lib/services/context";
 import { type Carried, listCarriedImages } from "@/lib/services/devices/carried-image";
 import type { DeviceTrace, HistoryEntry } from "@/schemas/api/devices";
 
-/** What a serial carries, where that came from, and everything that happened to it. @throws AppError `device.not_found` */
+/**
+ * What a serial carries, where that came from, and everything that happened to it. Who is no reader, as an operator, sees what
+ * was written, what happened to the device and what was released, and no work in progress.
+ * @throws AppError `device.not_found`
+ */
 export async function getDeviceTrace(ctx: Ctx, serial: string): Promise<DeviceTrace> {
   const device = await getDevice(ctx.db, serial);
   const [carried] = await listCarriedImages(ctx, { lotId: device.lotId, serial, limit: 1 });
-  const [writes, events, runs, sets, approvals, periods] = await Promise.all([
-    listWritesOfSerial(ctx.db, serial),
-    listDeviceEvents(ctx.db, device.id),
-    query.listRunsOfDevice(ctx.db, device.id),
-    query.listSetsOfDevice(ctx.db, device.id),
-    listApprovalsOfDevice(ctx.db, device.id),
-    query.listLivePeriodsOfDevice(ctx.db, device.id),
-  ]);
+  const sets = await query.listSetsOfDevice(ctx.db, device.id);
+  const { actor } = ctx;
+  const readsAll = actor.kind === "person" && READERS.some((role) => actor.roles.includes(role));
   const newest = sets.find((set) => set.state !== null);
-  const last = carried?.last ?? null;
+  const history = await releasedHistory(ctx, device.id, serial);
+  if (readsAll) history.push(...(await workHistory(ctx, device.id, sets)));
   return {
     serial,
     lot: device.lot,
@@ -30,32 +31,43 @@ export async function getDeviceTrace(ctx: Ctx, serial: string): Promise<DeviceTr
     shipped: device.shipped,
     hardwareId: device.hardwareId,
     firmware: device.firmware ?? device.lotFirmware,
-    current:
-      carried && last
-        ? {
-            package: last.packageId,
-            version: last.version,
-            imageSha256: last.imageSha256,
-            writtenAt: last.finishedAt,
-            station: last.station,
-            outcome: last.outcome,
-            known: carried.known,
-            live: carried.live,
-            sameValuesAsLive: carried.sameValuesAsLive,
-          }
-        : null,
-    coefficients: newest
-      ? { derivation: newest.derivationId, state: newest.state as string, role: newest.role, values: valuesOf(newest) }
-      : null,
-    history: [
-      ...writes.map(writeEntry),
-      ...events.map(eventEntry),
-      ...runs.map(runEntry),
-      ...sets.filter((set) => set.state !== null).map(setEntry),
-      ...approvals.map(approvalEntry),
-      ...periods.map(periodEntry),
-    ].sort((a, b) => b.at.localeCompare(a.at)),
+    current: carried ? currentOf(carried) : null,
+    coefficients: newest && (readsAll || newest.state === "approved") ? coefficientsOf(newest) : null,
+    history: history.sort((a, b) => b.at.localeCompare(a.at)),
   };
+}
+
+async function releasedHistory(ctx: Ctx, deviceId: string, serial: string): Promise<HistoryEntry[]> {
+  const writes = await listWritesOfSerial(ctx.db, serial);
+  const events = await listDeviceEvents(ctx.db, deviceId);
+  const periods = await query.listLivePeriodsOfDevice(ctx.db, deviceId);
+  return [...writes.map(writeEntry), ...events.map(eventEntry), ...periods.map(periodEntry)];
+}
+
+async function workHistory(ctx: Ctx, deviceId: string, sets: readonly SetRow[]): Promise<HistoryEntry[]> {
+  const runs = await query.listRunsOfDevice(ctx.db, deviceId);
+  const approvals = await listApprovalsOfDevice(ctx.db, deviceId);
+  const derived = sets.filter((set) => set.state !== null).map(setEntry);
+  return [...runs.map(runEntry), ...derived, ...approvals.map(approvalEntry)];
+}
+
+function currentOf({ last, known, live, sameValuesAsLive }: Carried): DeviceTrace["current"] {
+  if (!last) return null;
+  return {
+    package: last.packageId,
+    version: last.version,
+    imageSha256: last.imageSha256,
+    writtenAt: last.finishedAt,
+    station: last.station,
+    outcome: last.outcome,
+    known,
+    live,
+    sameValuesAsLive,
+  };
+}
+
+function coefficientsOf(set: SetRow): DeviceTrace["coefficients"] {
+  return { derivation: set.derivationId, state: set.state as string, role: set.role, values: valuesOf(set) };
 }
 
 function stateOf(device: { held: boolean; scrapped: boolean }, carried: Carried | undefined): DeviceTrace["state"] {

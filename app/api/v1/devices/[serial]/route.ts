@@ -1,0 +1,4 @@
+import { getDevice } from "@/lib/http/commands/devices";
+import { route } from "@/lib/http/route";
+
+export const GET = route(getDevice);

@@ -1,0 +1,4 @@
+import { checkAnyDump } from "@/lib/http/commands/devices";
+import { route } from "@/lib/http/route";
+
+export const POST = route(checkAnyDump);

@@ -1,0 +1,4 @@
+import { listLedgerEntries } from "@/lib/http/commands/ledger";
+import { route } from "@/lib/http/route";
+
+export const GET = route(listLedgerEntries);

@@ -1,0 +1,4 @@
+import { listWritesOfLot } from "@/lib/http/commands/devices";
+import { route } from "@/lib/http/route";
+
+export const GET = route(listWritesOfLot);

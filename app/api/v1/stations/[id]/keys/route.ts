@@ -1,0 +1,4 @@
+import { createStationKey } from "@/lib/http/commands/stations";
+import { route } from "@/lib/http/route";
+
+export const POST = route(createStationKey);
