@@ -59,6 +59,8 @@ export async function up(db: Kysely<never>): Promise<void> {
     create index write_record_device on write_record (device_id, finished_at desc);
     create index write_record_package on write_record (package_id);
     create index write_record_station on write_record (station_id, counter desc);
+    create index write_record_received on write_record (received_at desc, id desc);
+    create index write_record_trouble on write_record (received_at desc) where outcome <> 'verified' or flags <> '{}';
   `.execute(db);
   await sql`
     select app_grant('select, insert, update', array['station','station_key']),

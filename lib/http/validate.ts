@@ -10,13 +10,49 @@ export function problemsOf(error: z.ZodError, root = ""): Problem[] {
   }));
 }
 
+const LONE_SURROGATE = /\p{Surrogate}/u;
+/** Nothing that we take is nested deeper. */
+const DEPTH_MAX = 64;
+
+/**
+ * Texts that neither the database nor canonical JSON can hold, though JSON can spell them: with NUL or half of a surrogate pair in
+ * them. Also what is nested so deep that reading it on would exhaust the stack.
+ */
+function unstorableTexts(value: unknown, root: string): Problem[] {
+  const problems: Problem[] = [];
+  const open = [{ value, path: root, depth: 0 }];
+  for (let next = open.pop(); next !== undefined; next = open.pop()) {
+    const { value, path, depth } = next;
+    if (typeof value === "string") {
+      if (value.includes("\0") || LONE_SURROGATE.test(value))
+        problems.push({
+          path,
+          code: "not_storable",
+          message: "Holds NUL or half of a character pair, which is no text.",
+        });
+    } else if (typeof value === "object" && value !== null) {
+      if (depth >= DEPTH_MAX) return [{ path: root, code: "too_deep", message: "Is nested too deep." }];
+      for (const [name, member] of Object.entries(value)) {
+        if (!Array.isArray(value)) open.push({ value: name, path, depth });
+        open.push({ value: member, path: `${path}/${name}`, depth: depth + 1 });
+      }
+    }
+  }
+  return problems;
+}
+
 /** The value as the schema gives it. @throws AppError `request.invalid` {errors} naming every field at once */
 export function validate<T>(schema: z.ZodType<T>, value: unknown, root = ""): T {
+  const unstorable = unstorableTexts(value, root);
+  if (unstorable.length > 0) throw invalid(unstorable);
   const result = schema.safeParse(value);
   if (result.success) return result.data;
-  const errors = problemsOf(result.error, root);
+  throw invalid(problemsOf(result.error, root));
+}
+
+function invalid(errors: readonly Problem[]): AppError {
   const first = errors[0];
-  throw new AppError("request.invalid", {
+  return new AppError("request.invalid", {
     errors,
     message: first ? `${first.path || "body"}: ${first.message}` : "Not valid.",
   });
