@@ -1,17 +1,6 @@
 import { sql } from "kysely";
 import type { Db } from "@/db/executor";
 
-/** Derivations whose sets a package holds, oldest first. */
-export async function listPackageDerivationIds(db: Db, packageId: string): Promise<string[]> {
-  const rows = await db
-    .selectFrom("packageDerivation")
-    .select("derivationId")
-    .where("packageId", "=", packageId)
-    .orderBy("derivationId")
-    .execute();
-  return rows.map((row) => row.derivationId);
-}
-
 /** Files stored beside the images of a package, by name, without their content. */
 export function listPackageFiles(
   db: Db,
