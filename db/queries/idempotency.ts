@@ -6,7 +6,8 @@ export interface ReplyKey {
   key: string;
 }
 
-const KEPT_MS = 24 * 60 * 60 * 1000;
+/** How long a stored reply answers a repeated request. */
+export const KEPT_MS = 24 * 60 * 60 * 1000;
 
 /** Claims a key; returns the earlier claim where there is one younger than 24 h. */
 export async function insertIdempotentReply(
@@ -54,4 +55,10 @@ export async function deleteIdempotentReply(db: Db, key: ReplyKey): Promise<void
     .where("route", "=", key.route)
     .where("key", "=", key.key)
     .execute();
+}
+
+/** Deletes replies older than their time. @returns how many */
+export async function deleteRepliesBefore(db: Db, before: Date): Promise<number> {
+  const result = await db.deleteFrom("idempotentReply").where("createdAt", "<", before).executeTakeFirst();
+  return Number(result.numDeletedRows);
 }

@@ -1,5 +1,5 @@
 /** Bearer keys as they are presented: found by their SHA-256, never by themselves. */
-import type { Db } from "@/db/executor";
+import type { Db, Trx } from "@/db/executor";
 import { type Holder, heldRoles } from "@/db/queries/people";
 
 /** The active person behind an access key that is neither expired nor revoked. */
@@ -28,6 +28,85 @@ export async function findAccessKeyHolder(
 
 export async function touchAccessKey(db: Db, keyId: string, now: Date): Promise<void> {
   await db.updateTable("accessKey").set({ lastUsedAt: now }).where("id", "=", keyId).execute();
+}
+
+export interface AccessKeyRow {
+  id: string;
+  name: string;
+  prefix: string;
+  createdAt: Date;
+  expiresAt: Date;
+  lastUsedAt: Date | null;
+  revokedAt: Date | null;
+}
+
+/** A person's access keys, newest first; `before` is the last id of the page before. */
+export async function listAccessKeys(
+  db: Db,
+  personId: string,
+  page: { limit: number; before?: string },
+): Promise<AccessKeyRow[]> {
+  let query = db
+    .selectFrom("accessKey")
+    .select(["id", "name", "prefix", "createdAt", "expiresAt", "lastUsedAt", "revokedAt"])
+    .where("personId", "=", personId)
+    .orderBy("id", "desc")
+    .limit(page.limit);
+  if (page.before !== undefined) query = query.where("id", "<", page.before);
+  return query.execute();
+}
+
+/** Keys of a person that work now. */
+export async function countWorkingAccessKeys(db: Db, personId: string, now: Date): Promise<number> {
+  const { count } = await db
+    .selectFrom("accessKey")
+    .select((eb) => eb.fn.countAll<string>().as("count"))
+    .where("personId", "=", personId)
+    .where("revokedAt", "is", null)
+    .where("expiresAt", ">", now)
+    .executeTakeFirstOrThrow();
+  return Number(count);
+}
+
+export interface NewAccessKey {
+  id: string;
+  personId: string;
+  name: string;
+  keyHash: Buffer;
+  prefix: string;
+  createdAt: Date;
+  expiresAt: Date;
+}
+
+export async function insertAccessKey(trx: Trx, key: NewAccessKey): Promise<void> {
+  await trx.insertInto("accessKey").values(key).execute();
+}
+
+/** Revokes a key of a person. @returns its name, undefined where the person has no such key or it was revoked before */
+export async function revokeAccessKey(
+  trx: Trx,
+  key: { id: string; personId: string; revokedAt: Date },
+): Promise<string | undefined> {
+  const row = await trx
+    .updateTable("accessKey")
+    .set({ revokedAt: key.revokedAt })
+    .where("id", "=", key.id)
+    .where("personId", "=", key.personId)
+    .where("revokedAt", "is", null)
+    .returning("name")
+    .executeTakeFirst();
+  return row?.name;
+}
+
+/** Revokes whatever keys a person has. @returns how many worked until now */
+export async function revokeAccessKeys(trx: Trx, personId: string, revokedAt: Date): Promise<number> {
+  const result = await trx
+    .updateTable("accessKey")
+    .set({ revokedAt })
+    .where("personId", "=", personId)
+    .where("revokedAt", "is", null)
+    .executeTakeFirst();
+  return Number(result.numUpdatedRows);
 }
 
 export interface StationKeyHolder {

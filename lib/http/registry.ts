@@ -1,4 +1,5 @@
 import type { AnyCommand } from "./command";
+import { accountCommands } from "./commands/account";
 import { bundleCommands } from "./commands/bundles";
 import { coefficientCommands } from "./commands/coefficients";
 import { derivationCommands } from "./commands/derivations";
@@ -9,6 +10,8 @@ import { imageCommands } from "./commands/images";
 import { layoutCommands } from "./commands/layouts";
 import { ledgerCommands } from "./commands/ledger";
 import { lotCommands } from "./commands/lots";
+import { mailCommands } from "./commands/mail";
+import { peopleCommands } from "./commands/people";
 import { runCommands } from "./commands/runs";
 import { signingKeyCommands } from "./commands/signing-keys";
 import { stationCommands } from "./commands/stations";
@@ -30,4 +33,7 @@ export const commands: readonly AnyCommand[] = [
   ...deviceCommands,
   ...ledgerCommands,
   ...todayCommands,
+  ...peopleCommands,
+  ...accountCommands,
+  ...mailCommands,
 ];

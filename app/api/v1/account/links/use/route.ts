@@ -1,0 +1,4 @@
+import { usePasswordLink } from "@/lib/http/commands/people";
+import { route } from "@/lib/http/route";
+
+export const POST = route(usePasswordLink);

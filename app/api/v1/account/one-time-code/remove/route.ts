@@ -1,0 +1,4 @@
+import { removeOneTimeCode } from "@/lib/http/commands/account";
+import { route } from "@/lib/http/route";
+
+export const POST = route(removeOneTimeCode);

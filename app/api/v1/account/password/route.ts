@@ -1,0 +1,4 @@
+import { changePassword } from "@/lib/http/commands/account";
+import { route } from "@/lib/http/route";
+
+export const PUT = route(changePassword);

@@ -1,0 +1,4 @@
+import { endSession } from "@/lib/http/commands/account";
+import { route } from "@/lib/http/route";
+
+export const DELETE = route(endSession);

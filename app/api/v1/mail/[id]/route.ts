@@ -1,0 +1,4 @@
+import { getMail } from "@/lib/http/commands/mail";
+import { route } from "@/lib/http/route";
+
+export const GET = route(getMail);
