@@ -28,6 +28,8 @@ export interface LotPlan {
   family: DemoFamily;
   firmware: string;
   devices: number;
+  /** Changes a device after it was drawn, by its place in the lot. */
+  adjust?: (device: ModelDevice, index: number) => ModelDevice;
 }
 
 /** Each lot draws from its own numbers, so that changing one lot leaves the others as they were. */
@@ -42,7 +44,8 @@ export async function makeLot(story: Story, plan: LotPlan): Promise<DemoLot> {
   const random = seededRandom(seedOf(plan.code));
   const devices = Array.from({ length: plan.devices }, (_, index) => {
     const serial = `${plan.code}-${String(index + 1).padStart(5, "0")}`;
-    return drawDevice(random, plan.family.parameters, serial);
+    const device = drawDevice(random, plan.family.parameters, serial);
+    return plan.adjust?.(device, index) ?? device;
   });
   const engineer = story.as("engineer");
   await addLot(engineer, { code: plan.code, family: plan.family.document.code, firmware: plan.firmware });

@@ -1,7 +1,7 @@
 /** The demo: an invented maker with two families and lots in every stage, made by going through the services. */
 import type { Db } from "@/db/executor";
 import { layGround } from "./ground";
-import { lotStories } from "./lot-stories";
+import { addDemoStations, lotStories } from "./lot-stories";
 import { addDemoPeople } from "./people";
 import { DemoClock, makeStory } from "./story";
 
@@ -17,8 +17,9 @@ export async function seedDemo(db: Db, say: (line: string) => void): Promise<voi
   const people = await addDemoPeople(db, clock);
   const story = makeStory(db, today, clock, people);
   await layGround(story);
+  const stations = await addDemoStations(story);
   for (const tell of lotStories) {
     say(`  ${tell.about}`);
-    await tell.happen(story);
+    await tell.happen(story, stations);
   }
 }
