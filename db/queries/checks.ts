@@ -1,3 +1,4 @@
+import { sql } from "kysely";
 import type { Db, Trx } from "@/db/executor";
 import type { Json } from "@/db/generated/types.generated";
 
@@ -31,6 +32,25 @@ export async function listChecks(db: Db, packageId: string): Promise<CheckRow[]>
     .orderBy("position")
     .execute();
   return rows.map((row) => ({ ...row, verdict: row.verdict as Verdict }));
+}
+
+/** How many checks of each package came to each verdict. */
+export async function countVerdicts(
+  db: Db,
+  packageIds: readonly string[],
+): Promise<Map<string, Partial<Record<Verdict, number>>>> {
+  const counts = new Map<string, Partial<Record<Verdict, number>>>();
+  if (packageIds.length === 0) return counts;
+  const rows = await db
+    .selectFrom("packageCheck")
+    .select(["packageId", "verdict", sql<number>`count(*)::int`.as("count")])
+    .where("packageId", "in", [...packageIds])
+    .groupBy(["packageId", "verdict"])
+    .execute();
+  for (const { packageId, verdict, count } of rows) {
+    counts.set(packageId, { ...counts.get(packageId), [verdict]: count });
+  }
+  return counts;
 }
 
 export interface WaiverRow {

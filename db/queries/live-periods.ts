@@ -1,3 +1,4 @@
+import { sql } from "kysely";
 import type { Db, Trx } from "@/db/executor";
 
 export type LiveKind = "release" | "reinstatement" | "withdrawal";
@@ -72,6 +73,18 @@ export async function findNewestPeriod(db: Db, packageId: string): Promise<LiveP
     .limit(1)
     .executeTakeFirst();
   return row && { ...row, kind: row.kind as LiveKind };
+}
+
+/** The newest sequence that names each package; packages that never went live are left out. */
+export async function listNewestSequences(db: Db, packageIds: readonly string[]): Promise<Map<string, number>> {
+  if (packageIds.length === 0) return new Map();
+  const rows = await db
+    .selectFrom("livePeriod")
+    .select(["packageId", sql<number>`max(sequence)`.as("sequence")])
+    .where("packageId", "in", [...packageIds])
+    .groupBy("packageId")
+    .execute();
+  return new Map(rows.map((row) => [row.packageId, row.sequence]));
 }
 
 /** Records a change of what is live and raises the lot's sequence. @throws `lot.sequence_falls` as raised by the database */

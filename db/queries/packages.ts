@@ -98,11 +98,11 @@ export async function listPackages(
   return (await query.execute()) as PackageRow[];
 }
 
-/** The lot's package with the highest version, whatever became of it; with `built`, the highest that has images. */
+/** The lot's package with the highest version, whatever became of it; with `except`, the highest in none of those states. */
 export async function findHighestPackage(
   db: Db,
   lotId: string,
-  options: { built?: boolean } = {},
+  options: { except?: readonly PackageState[] } = {},
 ): Promise<PackageRow | undefined> {
   let query = packagesWithNames(db)
     .where("package.lotId", "=", lotId)
@@ -110,7 +110,7 @@ export async function findHighestPackage(
     .orderBy("package.versionMinor", "desc")
     .orderBy("package.versionPatch", "desc")
     .limit(1);
-  if (options.built) query = query.where("package.state", "not in", ["building", "failed"]);
+  if (options.except) query = query.where("package.state", "not in", [...options.except]);
   return (await query.executeTakeFirst()) as PackageRow | undefined;
 }
 

@@ -48,14 +48,20 @@ export async function insertReinstatement(trx: Trx, row: NewReinstatement): Prom
     .execute();
 }
 
+const notFound = (id: string) => () =>
+  new AppError("reinstatement.not_found", { id, message: "There is no such request." });
+
+/** A reinstatement. @throws AppError `reinstatement.not_found` */
+export function getReinstatement(db: Db, id: string): Promise<ReinstatementRow> {
+  return withNames(db).where("reinstatement.id", "=", id).executeTakeFirstOrThrow(notFound(id));
+}
+
 /** A reinstatement, locked until commit. @throws AppError `reinstatement.not_found` */
 export function lockReinstatement(trx: Trx, id: string): Promise<ReinstatementRow> {
   return withNames(trx)
     .where("reinstatement.id", "=", id)
     .forUpdate(["reinstatement"])
-    .executeTakeFirstOrThrow(
-      () => new AppError("reinstatement.not_found", { id, message: "There is no such request." }),
-    );
+    .executeTakeFirstOrThrow(notFound(id));
 }
 
 /** Reinstatements of a lot, newest first, older than the cursor's id. */

@@ -3,13 +3,21 @@ import type { JobPayloads } from "@/lib/jobs/payloads";
 import type { QueueName } from "@/lib/jobs/queues";
 import type { Ctx } from "@/lib/services/context";
 import { runDerivation } from "@/lib/services/derivations/run-derivation";
+import { sendQueuedMail } from "@/lib/services/mail/send-mail";
 import { assembleBundle } from "@/lib/services/packages/assemble-bundle";
+import { buildPackage } from "@/lib/services/packages/build-package";
+import { tidy } from "@/lib/services/tidy/tidy";
 
 export type JobHandlers = { [Q in QueueName]?: (ctx: Ctx, payload: JobPayloads[Q]) => Promise<void> };
 
 /** Which service does the work of each queue. */
 export const jobHandlers: JobHandlers = {
   derive: runDerivation,
+  "send-mail": sendQueuedMail,
+  tidy: async (ctx) => {
+    await tidy(ctx);
+  },
+  "build-package": buildPackage,
   "assemble-bundle": async (ctx, { packageId }) => {
     await assembleBundle(ctx, packageId);
   },

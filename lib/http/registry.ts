@@ -11,7 +11,9 @@ import { layoutCommands } from "./commands/layouts";
 import { ledgerCommands } from "./commands/ledger";
 import { lotCommands } from "./commands/lots";
 import { mailCommands } from "./commands/mail";
+import { packageCommands } from "./commands/packages";
 import { peopleCommands } from "./commands/people";
+import { reinstatementCommands } from "./commands/reinstatements";
 import { runCommands } from "./commands/runs";
 import { signingKeyCommands } from "./commands/signing-keys";
 import { stationCommands } from "./commands/stations";
@@ -26,6 +28,8 @@ export const commands: readonly AnyCommand[] = [
   ...runCommands,
   ...derivationCommands,
   ...coefficientCommands,
+  ...packageCommands,
+  ...reinstatementCommands,
   ...imageCommands,
   ...bundleCommands,
   ...signingKeyCommands,

@@ -1,0 +1,4 @@
+import { withdrawPackage } from "@/lib/http/commands/packages";
+import { route } from "@/lib/http/route";
+
+export const POST = route(withdrawPackage);

@@ -1,0 +1,91 @@
+import { sql } from "kysely";
+import type { Db } from "@/db/executor";
+import { coefficientsOf } from "@/db/queries/coefficients";
+import type { Coefficients } from "@/lib/domain/compensation/types";
+
+/** A coefficient set as a package is composed from it. */
+export interface SetForImage {
+  id: string;
+  derivationId: string;
+  coefficients: Coefficients | null;
+  /** What stands beside the values, as the derivation stored it. */
+  detail: unknown;
+}
+
+/** Sets by id; ids without a set are left out. `withDetail` reads what stands beside the values too. */
+export async function listSetsById(
+  db: Db,
+  ids: readonly string[],
+  { withDetail = false }: { withDetail?: boolean } = {},
+): Promise<Map<string, SetForImage>> {
+  const rows = await db
+    .selectFrom("coefficientSet")
+    .select(["id", "derivationId", "tempOffset", "tempSlope", "zero", "zeroTc", "zeroTc2", "gain", "gainTc", "gainTc2"])
+    .$if(withDetail, (query) => query.select("detail"))
+    .where(sql<boolean>`id = any(${ids as string[]}::uuid[])`)
+    .execute();
+  return new Map(
+    rows.map((row) => [
+      row.id,
+      { id: row.id, derivationId: row.derivationId, coefficients: coefficientsOf(row), detail: row.detail ?? {} },
+    ]),
+  );
+}
+
+/** The board that the readings of each derivation name for each device, the latest reading deciding; where they name one. */
+export async function listMeasuredBoards(
+  db: Db,
+  derivationIds: readonly string[],
+): Promise<{ derivationId: string; deviceId: string; hardwareId: string }[]> {
+  if (derivationIds.length === 0) return [];
+  const { rows } = await sql<{ derivationId: string; deviceId: string; hardwareId: string }>`
+    select distinct on (used.derivation_id, reading.device_id)
+      used.derivation_id, reading.device_id, reading.hardware_id
+    from derivation_run used join reading on reading.run_id = used.run_id
+    where used.derivation_id = any(${derivationIds as string[]}::uuid[]) and reading.hardware_id is not null
+    order by used.derivation_id, reading.device_id, reading.taken_at desc, reading.row_number desc
+  `.execute(db);
+  return rows;
+}
+
+/** States of the sets that a package was built from, where they are no longer approved: serials by state, rising. */
+export async function listLapsedSets(db: Db, packageId: string): Promise<{ serial: string; state: string }[]> {
+  const rows = await db
+    .selectFrom("image")
+    .innerJoin("coefficientSet", "coefficientSet.id", "image.coefficientSetId")
+    .select(["image.serial", "coefficientSet.state"])
+    .where("image.packageId", "=", packageId)
+    .where("coefficientSet.state", "!=", "approved")
+    .orderBy("image.serial")
+    .execute();
+  return rows.map((row) => ({ serial: row.serial, state: row.state ?? "" }));
+}
+
+/** Firmware that devices of a package are known to run, where it is another than the lot's: by serial. */
+export async function listOtherFirmware(
+  db: Db,
+  packageId: string,
+  firmware: string,
+): Promise<{ serial: string; firmware: string }[]> {
+  const rows = await db
+    .selectFrom("image")
+    .innerJoin("device", "device.id", "image.deviceId")
+    .select(["image.serial", "device.firmware"])
+    .where("image.packageId", "=", packageId)
+    .where("device.firmware", "is not", null)
+    .where("device.firmware", "!=", firmware)
+    .orderBy("image.serial")
+    .execute();
+  return rows.map((row) => ({ serial: row.serial, firmware: row.firmware as string }));
+}
+
+/** Derivations whose sets a package holds. */
+export async function listPackageDerivationIds(db: Db, packageId: string): Promise<string[]> {
+  const rows = await db
+    .selectFrom("packageDerivation")
+    .select("derivationId")
+    .where("packageId", "=", packageId)
+    .orderBy("derivationId")
+    .execute();
+  return rows.map((row) => row.derivationId);
+}
