@@ -79,22 +79,46 @@ function finish(coefficients: number[], residuals: number[], unit: number[][], s
   };
 }
 
+/**
+ * Intercept and slope by the normal equations about the mean of x, solved by elimination: what rounding left of Σ(x − mean)
+ * is taken out by it. The order of the operations is part of the result: coefficients are stored as binary64 in images,
+ * whose bytes have to be those that any program gets that computes in this, the plainest way.
+ */
+function lineThrough(x: readonly number[], y: readonly number[]): [intercept: number, slope: number] {
+  const n = x.length;
+  let sumX = 0;
+  for (const value of x) sumX += value;
+  const meanX = sumX / n;
+  let s1 = 0;
+  let s2 = 0;
+  let sumY = 0;
+  let s1y = 0;
+  for (let i = 0; i < n; i++) {
+    const dx = (x[i] as number) - meanX;
+    s1 += dx;
+    s2 += dx * dx;
+    sumY += y[i] as number;
+    s1y += dx * (y[i] as number);
+  }
+  const share = s1 / n;
+  const slope = (s1y - share * sumY) / (s2 - share * s1);
+  return [(sumY - s1 * slope) / n - slope * meanX, slope];
+}
+
 /** As {@link fitLine}, undefined where the points do not fix a line. */
 export function findLine(x: readonly number[], y: readonly number[]): Fit | undefined {
   const centred = centre(x, y);
   if (!centred) return undefined;
   const { n, meanX, meanY } = centred;
   let sxx = 0;
-  let sxy = 0;
   let sst = 0;
   for (let i = 0; i < n; i++) {
     const dx = (x[i] as number) - meanX;
     const dy = (y[i] as number) - meanY;
     sxx += dx * dx;
-    sxy += dx * dy;
     sst += dy * dy;
   }
-  const slope = sxy / sxx;
+  const [intercept, slope] = lineThrough(x, y);
   const residuals = new Array<number>(n);
   for (let i = 0; i < n; i++) residuals[i] = (y[i] as number) - meanY - slope * ((x[i] as number) - meanX);
   const cross = -meanX / sxx;
@@ -102,7 +126,7 @@ export function findLine(x: readonly number[], y: readonly number[]): Fit | unde
     [1 / n + (meanX * meanX) / sxx, cross],
     [cross, 1 / sxx],
   ];
-  return finish([meanY - slope * meanX, slope], residuals, unit, sst);
+  return finish([intercept, slope], residuals, unit, sst);
 }
 
 /** As {@link fitQuadratic}, undefined where the points do not fix a parabola. */

@@ -13,9 +13,8 @@ interface PointSums {
   deviceTemp: number;
   unloaded: number;
   unloadedSignal: number;
-  loaded: number;
-  signalPerKg: number;
-  inverseKg: number;
+  /** Signal and load of each loaded row, in the order of the rows. */
+  loaded: number[];
 }
 
 /** The rows of one device in one run, gathered by point. */
@@ -43,9 +42,7 @@ export function gatherReadings(readings: readonly Reading[]): Map<string, Device
         deviceTemp: 0,
         unloaded: 0,
         unloadedSignal: 0,
-        loaded: 0,
-        signalPerKg: 0,
-        inverseKg: 0,
+        loaded: [],
       };
       device.points.set(reading.point, sums);
     }
@@ -56,9 +53,7 @@ export function gatherReadings(readings: readonly Reading[]): Map<string, Device
       sums.unloaded++;
       sums.unloadedSignal += reading.signalMvV;
     } else {
-      sums.loaded++;
-      sums.signalPerKg += reading.signalMvV / reading.loadKg;
-      sums.inverseKg += 1 / reading.loadKg;
+      sums.loaded.push(reading.signalMvV, reading.loadKg);
     }
   }
   return devices;
@@ -80,10 +75,20 @@ export function pointMeans(serial: string, rows: DeviceRows, purpose: Purpose, c
       chamberC: sums.chamberC / sums.rows,
       deviceTemp: sums.deviceTemp / sums.rows,
       zeroMvV,
-      spanMvV: sums.loaded > 0 ? (capacityKg * (sums.signalPerKg - zeroMvV * sums.inverseKg)) / sums.loaded : null,
+      spanMvV: meanSpan(sums.loaded, zeroMvV, capacityKg),
     });
   }
   return means.sort((a, b) => a.point - b.point);
+}
+
+/** Row by row as the contract writes it, so that the last digit is the one that anybody else gets. */
+function meanSpan(loaded: readonly number[], zeroMvV: number, capacityKg: number): number | null {
+  if (loaded.length === 0) return null;
+  let sum = 0;
+  for (let i = 0; i < loaded.length; i += 2) {
+    sum += (((loaded[i] as number) - zeroMvV) * capacityKg) / (loaded[i + 1] as number);
+  }
+  return sum / (loaded.length / 2);
 }
 
 /**

@@ -1,7 +1,7 @@
 import { studentQuantile } from "./distributions";
 import { poolingLimit } from "./envelope";
 import { findGrubbsStatistic, grubbsCritical } from "./grubbs";
-import { meanOf, standardDeviationOf } from "./sample-statistics";
+import { standardDeviationOf } from "./sample-statistics";
 import { toleranceFactor } from "./tolerance";
 import type { FamilyRules, GainCoefficients, PooledResult } from "./types";
 
@@ -11,6 +11,13 @@ export const SAMPLE_MIN = 5;
 /** Two-sided level of the outlier test on the sample's gainTc. */
 const OUTLIER_ALPHA = 0.05;
 
+/** Sum over count: these means are stored in images, whose bytes have to be those of any program that takes a mean. */
+function plainMean(values: readonly number[]): number {
+  let sum = 0;
+  for (const value of values) sum += value;
+  return sum / values.length;
+}
+
 /**
  * The lot's gainTc from the sample's individual trims: plain means, an exact two-sided normal tolerance interval
  * mean ± k·s and a confidence interval of the mean. Inside when k·s is at most the pooling limit.
@@ -19,16 +26,16 @@ const OUTLIER_ALPHA = 0.05;
 export function poolGain(trims: readonly GainCoefficients[], order: 1 | 2, family: FamilyRules): PooledResult | null {
   const slopes = trims.map((trim) => trim.gainTc);
   const gains = trims.map((trim) => trim.gain);
-  const gainTc = meanOf(slopes);
-  const meanGain = meanOf(gains);
-  if (gainTc === null || meanGain === null) return null;
+  if (trims.length === 0) return null;
+  const gainTc = plainMean(slopes);
+  const meanGain = plainMean(gains);
   const { coverage, confidence } = family;
   const n = trims.length;
   const sd = standardDeviationOf(slopes);
   const limit = poolingLimit(family);
   const pooled: PooledResult = {
     gainTc,
-    ...(order === 2 && { gainTc2: meanOf(trims.map((trim) => trim.gainTc2 ?? 0)) ?? 0 }),
+    ...(order === 2 && { gainTc2: plainMean(trims.map((trim) => trim.gainTc2 ?? 0)) }),
     sd,
     n,
     meanGain,
