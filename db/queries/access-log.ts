@@ -1,13 +1,22 @@
-/** The access log: sign-ins and their failures, kept for a time and apart from the ledger. */
+/** The access log: sign-ins and their failures, polls and downloads, kept for a time and apart from the ledger. */
 import { sql } from "kysely";
 import type { Db, Trx } from "@/db/executor";
 
-export type AccessKind = "sign-in" | "sign-in.failed" | "sign-out" | "confirm.failed" | "link.asked" | "link.used";
+export type AccessKind =
+  | "sign-in"
+  | "sign-in.failed"
+  | "sign-out"
+  | "confirm.failed"
+  | "link.asked"
+  | "link.used"
+  | "station.poll"
+  | "download";
 
 export interface NewAccess {
   at: Date;
   kind: AccessKind;
   personId: string | null;
+  stationId?: string | null;
   address: string;
   /** Facts such as the address of an unknown account's e-mail as a hash; never a password or code. */
   detail?: Record<string, string>;

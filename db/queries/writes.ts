@@ -69,14 +69,19 @@ export interface WriteTarget {
   scrapped: boolean;
 }
 
-/** Devices among the serials with what a write is compared with. */
-export function listWriteTargets(db: Db, serials: readonly string[]): Promise<WriteTarget[]> {
-  return db
+/**
+ * Devices among the serials with what a write is compared with, locked until commit, so that of two stations at once one tells the
+ * board. Always in one order, and so that records may still refer to the rows: else two could wait for each other in a ring.
+ */
+export function lockWriteTargets(trx: Trx, serials: readonly string[]): Promise<WriteTarget[]> {
+  return trx
     .selectFrom("device")
     .innerJoin("lot", "lot.id", "device.lotId")
     .select(["device.id as deviceId", "device.serial", "lot.familyId"])
     .select(["device.hardwareId", "device.held", "device.scrapped"])
     .where(sql<boolean>`device.serial = any(${serials as string[]}::text[])`)
+    .orderBy("device.id")
+    .forNoKeyUpdate("device")
     .execute();
 }
 
@@ -142,14 +147,6 @@ export async function setFirstHardware(
   boards: readonly { deviceId: string; hardwareId: string }[],
 ): Promise<void> {
   if (boards.length === 0) return;
-  // Locked in one order for all, so that two stations at once cannot wait for each other in a ring.
-  await trx
-    .selectFrom("device")
-    .select("id")
-    .where(sql<boolean>`id = any(${boards.map((board) => board.deviceId)}::uuid[])`)
-    .orderBy("id")
-    .forUpdate()
-    .execute();
   await sql`
     update device set hardware_id = given.hardware_id
     from unnest(${boards.map((b) => b.deviceId)}::uuid[], ${boards.map((b) => b.hardwareId)}::text[]) as given (id, hardware_id)

@@ -122,7 +122,7 @@ describe("GET /ledger", () => {
       { action: "%" },
       { order: "up" },
       { limit: 1001 },
-    ])
+    ] as Record<string, string | number>[])
       expect((await get("/ledger", query)).status).toBe(422);
   });
 });

@@ -52,6 +52,7 @@ export function outcomeOf(write: ReportedWrite, known: KnownTarget): Outcome {
 /** What a person should look at although the record stands; in a fixed order. */
 export function flagsOf(write: ReportedWrite, known: KnownTarget, receivedAt: Date): string[] {
   const { device, image } = known;
+  const before = write.serialBefore?.trim().toUpperCase() ?? "";
   const board = image?.hardwareId ?? device?.hardwareId ?? null;
   const zero =
     image?.zeroMvV && write.deviceTemp != null && write.zeroMvV != null ? image.zeroMvV(write.deviceTemp) : null;
@@ -62,7 +63,7 @@ export function flagsOf(write: ReportedWrite, known: KnownTarget, receivedAt: Da
     ["held", device?.held === true],
     ["scrapped", device?.scrapped === true],
     ["station-not-allowed", device !== undefined && !device.stationMayWrite],
-    ["serial-differs", write.serialBefore != null && write.serialBefore !== write.serial],
+    ["serial-differs", before !== "" && before !== write.serial],
     ["board-changed", write.hardwareId != null && board !== null && write.hardwareId !== board],
     [
       "firmware-differs",

@@ -57,7 +57,7 @@ export function isFirstBoard(row: Pick<query.WriteRow, "hardwareId" | "outcome" 
 async function lookUp(trx: Trx, reports: readonly HashedReport[]): Promise<Known> {
   const serials = [...new Set(reports.map(({ report }) => report.serial))];
   const packageIds = [...new Set(reports.map(({ report }) => packageIdOf(report)).filter((id) => UUID.test(id)))];
-  const targets = await query.listWriteTargets(trx, serials);
+  const targets = await query.lockWriteTargets(trx, serials);
   const images = await query.listWriteImages(trx, packageIds, serials);
   const lotIds = [...new Set(images.map((image) => image.lotId))];
   return {

@@ -1,4 +1,5 @@
 import { listStationLots } from "@/db/queries/stations";
+import { noteAccess } from "@/lib/services/access/note-access";
 import type { StationCtx } from "@/lib/services/context";
 
 /** A station that hears nothing newer for this long stops writing: one day, so that a night's lost line does not stop a shift. */
@@ -6,6 +7,7 @@ export const LIVE_VALID_MS = 24 * 60 * 60 * 1000;
 
 /** What a station may write now: for each lot of its families that ever had a release, the live package or null. */
 export async function listLive(ctx: StationCtx) {
+  await noteAccess(ctx, "station.poll");
   const rows = await listStationLots(ctx.db, ctx.actor.familyIds);
   const items = rows.map((row) => ({
     lot: row.lot,
