@@ -91,6 +91,7 @@ export async function up(db: Kysely<never>): Promise<void> {
     language plpgsql set search_path = pg_catalog, public, pg_temp as $$
     declare kind text := case tg_table_name when 'layout' then 'layout' else 'family-revision' end;
             noun text := case tg_table_name when 'layout' then 'layout' else 'family' end;
+            moving text[] := array['state','submitted_at','submitted_by','published_at','retired_at','updated_at','updated_by'];
     begin
       if tg_op = 'DELETE' then
         if old.state <> 'draft' then perform refuse(noun || '.wrong_state', old.state); end if;
@@ -100,7 +101,7 @@ export async function up(db: Kysely<never>): Promise<void> {
         if new.state <> 'draft' then perform refuse(noun || '.wrong_state', new.state); end if;
         return new;
       end if;
-      if old.state <> 'draft' and (new.document is distinct from old.document or new.sha256 is distinct from old.sha256) then
+      if old.state <> 'draft' and (to_jsonb(new) - moving) is distinct from (to_jsonb(old) - moving) then
         perform refuse(noun || '.wrong_state', old.state);
       end if;
       if new.state <> old.state then

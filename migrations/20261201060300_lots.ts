@@ -19,6 +19,7 @@ export async function up(db: Kysely<never>): Promise<void> {
     language plpgsql set search_path = pg_catalog, public, pg_temp as $$
     begin
       if new.sequence < old.sequence then perform refuse('lot.sequence_falls', old.code); end if;
+      if (to_jsonb(new) - 'sequence') is distinct from (to_jsonb(old) - 'sequence') then perform refuse('lot.immutable', old.code); end if;
       return new;
     end $$;
     create trigger lot_guard before update on lot for each row execute function guard_lot();
@@ -36,6 +37,17 @@ export async function up(db: Kysely<never>): Promise<void> {
       added_by uuid not null references person
     );
     create index device_lot on device (lot_id, serial);
+
+    create function guard_device() returns trigger
+    language plpgsql set search_path = pg_catalog, public, pg_temp as $$
+    begin
+      if (new.id, new.serial, new.lot_id, new.added_at, new.added_by)
+        is distinct from (old.id, old.serial, old.lot_id, old.added_at, old.added_by) then
+        perform refuse('device.immutable', old.serial);
+      end if;
+      return new;
+    end $$;
+    create trigger device_guard before update on device for each row execute function guard_device();
 
     create table device_event (
       id uuid primary key,

@@ -292,6 +292,15 @@ export async function up(db: Kysely<never>): Promise<void> {
       end if;
       return new;
     end $$;
+    create function guard_signing_key() returns trigger
+    language plpgsql set search_path = pg_catalog, public, pg_temp as $$
+    begin
+      if (to_jsonb(new) - 'until_at') is distinct from (to_jsonb(old) - 'until_at') then
+        perform refuse('signing_key.immutable', old.id);
+      end if;
+      return new;
+    end $$;
+    create trigger signing_key_guard before update on signing_key for each row execute function guard_signing_key();
     create trigger reinstatement_guard before update on reinstatement for each row execute function guard_reinstatement();
   `.execute(db);
   await sql`

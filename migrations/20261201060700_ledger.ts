@@ -37,6 +37,16 @@ export async function up(db: Kysely<never>): Promise<void> {
       return new;
     end $$;
     create trigger ledger_event_guard before insert on ledger_event for each row execute function guard_ledger();
+
+    create function guard_ledger_text() returns trigger
+    language plpgsql set search_path = pg_catalog, public, pg_temp as $$
+    begin
+      if new.content is not null or (to_jsonb(new) - 'content') is distinct from (to_jsonb(old) - 'content') then
+        perform refuse('ledger.text_immutable', old.seq::text);
+      end if;
+      return new;
+    end $$;
+    create trigger ledger_text_guard before update on ledger_text for each row execute function guard_ledger_text();
   `.execute(db);
   await sql`
     select make_append_only(array['ledger_event']),
