@@ -45,6 +45,7 @@ const STATUS_BY_CODE: Record<string, { status: number; title: string }> = {
   "package.sets_lapsed": { status: 409, title: "Coefficients were withdrawn meanwhile" },
   "package.not_released": { status: 409, title: "Not released" },
   "package.not_built": { status: 409, title: "Not built" },
+  "package.bytes_differ": { status: 500, title: "The package cannot be written as it was built" },
   "package.withdrawn": { status: 410, title: "Withdrawn" },
   "derivation.hard_finding": { status: 409, title: "A finding blocks approval" },
   "derivation.not_acknowledged": { status: 409, title: "A finding is not acknowledged" },

@@ -80,26 +80,19 @@ export function listImages(
   return query.execute();
 }
 
-/** Every image of a package by serial, some at a time, so that no package is held in memory whole. */
-export async function* eachImages(db: Db, packageId: string, size = CHUNK_ROWS): AsyncGenerator<ImageRow[]> {
-  let cursor: string | undefined;
+/** Every image of a package by serial, after one where it is given, some at a time, so that no package is held in memory whole. */
+export async function* eachImages(
+  db: Db,
+  packageId: string,
+  { after, size = CHUNK_ROWS }: { after?: string; size?: number } = {},
+): AsyncGenerator<ImageRow[]> {
+  let cursor = after;
   for (;;) {
     const rows = await listImages(db, packageId, { limit: size, cursor });
     if (rows.length > 0) yield rows;
     if (rows.length < size) return;
     cursor = rows.at(-1)?.serial;
   }
-}
-
-/** Derivation of each coefficient set that a package holds, by the set's id. */
-export async function listDerivationsOfImages(db: Db, packageId: string): Promise<Map<string, string>> {
-  const rows = await db
-    .selectFrom("image")
-    .innerJoin("coefficientSet", "coefficientSet.id", "image.coefficientSetId")
-    .select(["image.coefficientSetId", "coefficientSet.derivationId"])
-    .where("image.packageId", "=", packageId)
-    .execute();
-  return new Map(rows.map((row) => [row.coefficientSetId, row.derivationId]));
 }
 
 /** Derivation of each of some coefficient sets, by the set's id. */

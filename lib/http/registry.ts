@@ -2,6 +2,7 @@ import type { AnyCommand } from "./command";
 import { accountCommands } from "./commands/account";
 import { bundleCommands } from "./commands/bundles";
 import { coefficientCommands } from "./commands/coefficients";
+import { compareCommands } from "./commands/compare";
 import { derivationCommands } from "./commands/derivations";
 import { deviceCommands } from "./commands/devices";
 import { equipmentCommands } from "./commands/equipment";
@@ -32,6 +33,7 @@ export const commands: readonly AnyCommand[] = [
   ...reinstatementCommands,
   ...imageCommands,
   ...bundleCommands,
+  ...compareCommands,
   ...signingKeyCommands,
   ...stationCommands,
   ...deviceCommands,
