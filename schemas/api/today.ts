@@ -32,6 +32,7 @@ const items = z.array(todayItem);
 export const today = z.object({
   decide: items.meta({ description: "To be decided by this person" }),
   release: items.meta({ description: "Approved, to be made live" }),
+  awaited: items.meta({ description: "Made or asked for by this person, to be decided by somebody else" }),
   own: items.meta({ description: "Own drafts, and own work that was refused or failed" }),
   trouble: items.meta({
     description: "Newest records of serials of the last seven days that are not verified or carry a flag",

@@ -1,4 +1,5 @@
 import * as query from "@/db/queries/today";
+import { listAwaited } from "@/db/queries/today-awaited";
 import { READERS, type Role } from "@/lib/domain/roles";
 import type { PersonCtx } from "@/lib/services/context";
 import type { Today } from "@/schemas/api/today";
@@ -20,6 +21,7 @@ export async function listToday(ctx: PersonCtx): Promise<Today> {
   return {
     decide: holds("reviewer") ? (await query.listToDecide(db, actor.id, SHOWN_MAX)).map(item.decideItem) : [],
     release: holds("engineer", "reviewer") ? (await query.listToRelease(db, SHOWN_MAX)).map(item.releaseItem) : [],
+    awaited: holds("engineer", "reviewer") ? (await listAwaited(db, actor.id, SHOWN_MAX)).map(item.awaitedItem) : [],
     own: holds("engineer") ? (await query.listOwnWork(db, actor.id, SHOWN_MAX)).map(item.ownItem) : [],
     trouble: reads ? (await query.listTroubleWrites(db, since, SHOWN_MAX)).map(item.troubleItem) : [],
     held: reads ? (await query.listHeldDevices(db, SHOWN_MAX)).map((row) => item.heldItem(row, actor.id)) : [],

@@ -33,6 +33,13 @@ export function decideItem(row: WaitingRow): TodayItem {
   return waitingItem(row, joined(devices(row.count), "in review"), "wait");
 }
 
+/** Something that waits for another person's decision. */
+export function awaitedItem(row: WaitingRow): TodayItem {
+  const what =
+    row.kind === "reinstatement" ? "to be made live again" : row.kind === "derivation" ? "to be approved" : "in review";
+  return waitingItem(row, joined(devices(row.count), what), "wait");
+}
+
 /** An approved package that nobody made live yet. */
 export function releaseItem(row: WaitingRow): TodayItem {
   return waitingItem(row, joined(devices(row.count), "approved, not live yet"), "good");
