@@ -6,6 +6,7 @@ import { runDerivation } from "@/lib/services/derivations/run-derivation";
 import { sendQueuedMail } from "@/lib/services/mail/send-mail";
 import { assembleBundle } from "@/lib/services/packages/assemble-bundle";
 import { buildPackage } from "@/lib/services/packages/build-package";
+import { rebuildPackage } from "@/lib/services/packages/rebuild-package";
 import { tidy } from "@/lib/services/tidy/tidy";
 
 export type JobHandlers = { [Q in QueueName]?: (ctx: Ctx, payload: JobPayloads[Q]) => Promise<void> };
@@ -18,6 +19,7 @@ export const jobHandlers: JobHandlers = {
     await tidy(ctx);
   },
   "build-package": buildPackage,
+  "rebuild-package": rebuildPackage,
   "assemble-bundle": async (ctx, { packageId }) => {
     await assembleBundle(ctx, packageId);
   },

@@ -14,6 +14,7 @@ import { lotCommands } from "./commands/lots";
 import { mailCommands } from "./commands/mail";
 import { packageCommands } from "./commands/packages";
 import { peopleCommands } from "./commands/people";
+import { rebuildCommands } from "./commands/rebuilds";
 import { reinstatementCommands } from "./commands/reinstatements";
 import { runCommands } from "./commands/runs";
 import { signingKeyCommands } from "./commands/signing-keys";
@@ -30,6 +31,7 @@ export const commands: readonly AnyCommand[] = [
   ...derivationCommands,
   ...coefficientCommands,
   ...packageCommands,
+  ...rebuildCommands,
   ...reinstatementCommands,
   ...imageCommands,
   ...bundleCommands,
