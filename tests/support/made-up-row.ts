@@ -41,12 +41,16 @@ const VALUE_BY_TYPE: Record<string, string> = {
  * Puts one row into a table as its owner, past foreign keys and triggers.
  * @param given SQL of columns whose value matters here.
  */
-export async function insertMadeUpRow(owner: Db, table: string, given: Record<string, string> = {}): Promise<void> {
+export async function insertMadeUpRow(
+  owner: Db,
+  table: string,
+  given: Record<string, string | undefined> = {},
+): Promise<void> {
   const { rows } = await sql<{ name: string; type: string; needed: boolean }>`
     select attname as "name", format_type(atttypid, null) as "type", attnotnull and not atthasdef as "needed"
     from pg_attribute where attrelid = ${`public.${table}`}::regclass and attnum > 0 and not attisdropped
   `.execute(owner);
-  const columns = rows.filter(({ name, needed }) => needed || name in given);
+  const columns = rows.filter(({ name, needed }) => needed || given[name] !== undefined);
   const values = columns.map(({ name, type }) => given[name] ?? VALUES[name] ?? VALUE_BY_TYPE[type] ?? "null");
   await owner.transaction().execute(async (trx) => {
     await sql`set local session_replication_role = replica`.execute(trx);
