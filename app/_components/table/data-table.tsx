@@ -163,11 +163,15 @@ function useTable(
       (!wanted.text || columns.some((column) => textOf(column, row.original).toLowerCase().includes(wanted.text))),
     [columns],
   );
+  const { key, descending } = sort ?? {};
+  const sorting = useMemo(() => (key === undefined ? [] : [{ id: key, desc: descending === true }]), [key, descending]);
   return useReactTable({
     data: rows as Row[],
     columns: definitions,
+    // There are no pages to go back to; the reset would render anew, sort anew and so reset again, for ever.
+    autoResetPageIndex: false,
     state: {
-      sorting: sort ? [{ id: sort.key, desc: sort.descending }] : [],
+      sorting,
       globalFilter: filter.chip || filter.text ? filter : undefined,
     },
     globalFilterFn,
