@@ -3,11 +3,13 @@
 import { ChevronDown, Menu } from "lucide-react";
 import Link from "next/link";
 import { usePathname } from "next/navigation";
-import { signOut } from "next-auth/react";
 import { DropdownMenu } from "radix-ui";
+import { problemOf } from "@/app/_components/api-client";
+import { signOut } from "@/app/_components/auth-client";
 import { showKeysEvent } from "@/app/_components/frame/keys";
 import { isInPlace, places } from "@/app/_components/frame/places";
 import { useTheme } from "@/app/_components/frame/use-theme";
+import { useToast } from "@/app/_components/toast";
 
 export interface FramePerson {
   name: string;
@@ -21,6 +23,18 @@ const itemLook =
 export function PersonMenu({ person }: { person: FramePerson }) {
   const path = usePathname();
   const links = linksFor(person.roles);
+  const tell = useToast();
+
+  async function leave() {
+    try {
+      await signOut();
+      window.location.assign("/sign-in?out=1"); // a new page load: nothing of this person stays in memory
+    } catch (error) {
+      const { title, detail } = problemOf(error);
+      tell({ tone: "bad", title: "You are still signed in", text: detail ?? title });
+    }
+  }
+
   return (
     <DropdownMenu.Root>
       <DropdownMenu.Trigger
@@ -71,7 +85,7 @@ export function PersonMenu({ person }: { person: FramePerson }) {
             Keys
             <kbd className="ml-auto rounded border border-rule px-1.5 font-mono text-xs text-ink-soft">?</kbd>
           </DropdownMenu.Item>
-          <DropdownMenu.Item className={itemLook} onSelect={() => void signOut({ callbackUrl: "/sign-in" })}>
+          <DropdownMenu.Item className={itemLook} onSelect={() => void leave()}>
             Sign out
           </DropdownMenu.Item>
         </DropdownMenu.Content>
