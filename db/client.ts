@@ -14,6 +14,8 @@ export interface ConnectionOptions {
   maxConnections?: number;
   /** Longest statement in milliseconds; 0 for none. */
   statementTimeoutMs?: number;
+  /** Longest wait for a connection, new or given back, in milliseconds. */
+  connectTimeoutMs?: number;
 }
 
 /**
@@ -26,7 +28,7 @@ export function openPool(url: string, options: ConnectionOptions): pg.Pool {
     connectionString: url,
     application_name: options.applicationName,
     max: options.maxConnections ?? 10,
-    connectionTimeoutMillis: 10_000,
+    connectionTimeoutMillis: options.connectTimeoutMs ?? 10_000,
     statement_timeout: statementTimeoutMs,
     idle_in_transaction_session_timeout: 60_000,
     options: "-c timezone=UTC",

@@ -7,18 +7,20 @@ import { assertAppRoleIsWeak } from "@/db/roles";
 import { jobHandlers } from "@/lib/commands/job-handlers";
 import { env } from "@/lib/env";
 import type { JobPayloads } from "@/lib/jobs/payloads";
-import { QUEUES, type QueueName } from "@/lib/jobs/queues";
+import { QUEUES, type QueueName, WORKER_NAME } from "@/lib/jobs/queues";
 import type { Ctx } from "@/lib/services/context";
 
 /** Time for running jobs at a stop; one that needs longer is taken up again by the next worker. */
 const FINISH_WITHIN_MS = 10_000;
 const POLL_SECONDS = 0.5;
+/** At seven minutes past every hour. */
+const TIDY_AT = "7 * * * *";
 
 export default async function worker(_args: string[], signal: AbortSignal): Promise<number> {
   await assertAppRoleIsWeak(getDb());
   const boss = new PgBoss({
     connectionString: env().databaseUrl,
-    application_name: "trimwright-worker",
+    application_name: WORKER_NAME,
     schema: "pgboss",
     migrate: false,
     max: 4,
@@ -27,6 +29,7 @@ export default async function worker(_args: string[], signal: AbortSignal): Prom
   await boss.start();
   try {
     for (const queue of QUEUES) await serveQueue(boss, queue);
+    await boss.schedule("tidy" satisfies QueueName, TIDY_AT);
     console.log("worker ready");
     if (!signal.aborted) await once(signal, "abort");
   } finally {

@@ -1,0 +1,3 @@
+import { answerHealth } from "@/lib/http/health";
+
+export const GET = answerHealth;
