@@ -1,6 +1,7 @@
 import { sha256Hex } from "@/builders/bundle/sha256";
 import { type CompiledLayout, compileLayout } from "@/builders/codec/compile-layout";
 import { compareImages } from "@/builders/codec/difference";
+import { assembleImage } from "@/builders/codec/hex-image";
 import { checkChecksums, type DecodedField, decodeImage, imageDigestBytes } from "@/builders/codec/image";
 import { readIntelHex } from "@/builders/codec/intel-hex-read";
 import { findDevicesBySerial } from "@/db/queries/devices";
@@ -137,17 +138,8 @@ async function findByDigest(ctx: Ctx, dump: Dump): Promise<string | null> {
 /** The layout's memory out of a dump, null where the dump does not hold all of it; kept bytes may be missing. */
 function findBytes(layout: CompiledLayout, dump: Dump): Uint8Array | null {
   if ("raw" in dump) return dump.raw.length === layout.bytes ? dump.raw : null;
-  const bytes = new Uint8Array(layout.bytes).fill(layout.fill);
-  const there = new Uint8Array(layout.bytes);
-  for (const segment of dump.hex.segments) {
-    const start = segment.address - layout.baseAddress;
-    const [from, to] = [Math.max(start, 0), Math.min(start + segment.bytes.length, layout.bytes)];
-    if (from >= to) continue;
-    bytes.set(segment.bytes.subarray(from - start, to - start), from);
-    there.fill(1, from, to);
-  }
-  for (const [from, to] of layout.kept) there.fill(1, from, to + 1);
-  return there.includes(0) ? null : bytes;
+  const { bytes, missing } = assembleImage(layout, dump.hex.segments);
+  return missing.length === 0 ? bytes : null;
 }
 
 function wrongShape(layout: CompiledLayout, dump: Dump): AppError {
@@ -158,11 +150,11 @@ function wrongShape(layout: CompiledLayout, dump: Dump): AppError {
       message: `A raw dump of this device has ${facts.expected} bytes; this one has ${facts.actual}. Read the whole memory, or send Intel HEX.`,
     });
   }
-  const base = `0x${layout.baseAddress.toString(16).toUpperCase().padStart(4, "0")}`;
+  const { missing } = assembleImage(layout, dump.hex.segments);
+  const address = (offset: number) => `0x${(layout.baseAddress + offset).toString(16).toUpperCase().padStart(4, "0")}`;
   return new AppError("dump.incomplete", {
-    base,
-    bytes: layout.bytes,
-    message: `The dump does not hold all ${layout.bytes} bytes from ${base}. Read the whole memory.`,
+    missing: missing.map(([from, to]) => ({ from: address(from), to: address(to) })),
+    message: `The dump does not hold all ${layout.bytes} bytes from ${address(0)}: the first one missing is at ${address(missing[0]?.[0] ?? 0)}. Read the whole memory.`,
   });
 }
 
