@@ -74,6 +74,11 @@ export function isRunByNpm(): boolean {
   return process.env.npm_lifecycle_event !== undefined;
 }
 
+/** Folder that a command was called from; npm runs its scripts in the checkout. */
+export function callerFolder(): string {
+  return process.env.INIT_CWD || process.cwd();
+}
+
 /** Folders that programs are looked for in. */
 export function searchPath(): string {
   return process.env.PATH ?? "/usr/bin:/bin";

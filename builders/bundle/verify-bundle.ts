@@ -22,8 +22,8 @@ export interface VerifyResult {
 }
 
 export interface VerifyOptions {
-  /** Keys as the installation lists them; without any, the key id has to be compared by a person. */
-  trustedKeys?: readonly { keyId: string; pem: string }[];
+  /** Keys as the installation lists them, or their ids alone; without any, the key id has to be compared by a person. */
+  trustedKeys?: readonly { keyId: string; pem?: string }[];
 }
 
 /** Verifies a whole bundle offline, every step told in words; a step that fails doesn't hide the others. Never throws for what is in the bundle. */
@@ -164,7 +164,7 @@ class OpenBundle {
       refuse(`release.json names the key ${this.#release().keyId}, the bundle holds ${keyId}`);
     if (!trusted) return `The key is ${keyId}: compare it with the installation's list of signing keys`;
     // The id is recomputed, so that a list with a wrong id for a key doesn't lend it trust.
-    if (!trusted.some((key) => key.keyId === keyId && keyIdOf(key.pem) === keyId))
+    if (!trusted.some((key) => key.keyId === keyId && (key.pem === undefined || keyIdOf(key.pem) === keyId)))
       refuse(`The key ${keyId} is not one of the trusted keys`);
     return `The key ${keyId} is one of the trusted keys`;
   }

@@ -1,0 +1,41 @@
+/**
+ * `npm run rebuild -- package-id …`: composes packages again from the database and compares every byte with what was built.
+ * Writes nothing. Ends with 1 where one differs.
+ */
+import { closeDb, getDb } from "@/db/client";
+import type { Db } from "@/db/executor";
+import { isUuid } from "@/db/queries/code-or-id";
+import { getPackage } from "@/db/queries/packages";
+import { AppError } from "@/lib/errors";
+import { type RepeatDifference, repeatBuild } from "@/lib/services/packages/repeat-build";
+
+const USAGE = "Usage: npm run rebuild -- package-id …; set DATABASE_URL to the database";
+
+export default async function rebuild(args: string[]): Promise<number> {
+  if (args.length === 0 || !args.every(isUuid)) throw new AppError("command.usage", { message: USAGE });
+  try {
+    let differing = 0;
+    for (const id of args) if (!(await rebuildOne(getDb(), id))) differing++;
+    return differing === 0 ? 0 : 1;
+  } finally {
+    await closeDb();
+  }
+}
+
+/** @returns whether every byte came out as it was built. */
+async function rebuildOne(db: Db, id: string): Promise<boolean> {
+  const pkg = await getPackage(db, id);
+  console.log(`${pkg.lotCode} ${pkg.version} (${pkg.state}): built as ${pkg.digest?.toString("hex") ?? "nothing"}`);
+  const { same, differs } = await repeatBuild(db, pkg);
+  for (const line of differs ? linesOf(differs) : []) console.log(line);
+  console.log(same ? "The same bytes." : "DIFFERS.");
+  return same;
+}
+
+function linesOf({ repeated, files, images, serials, failure }: RepeatDifference): string[] {
+  const lines = [repeated === null ? "Nothing came out." : `Came out as ${repeated}`];
+  if (failure) lines.push(`${failure.code}: ${failure.message}`);
+  if (files.length > 0) lines.push(`Files that differ: ${files.join(", ")}`);
+  if (images > 0) lines.push(`Images that differ: ${images}, ${serials.join(", ")} among them`);
+  return lines;
+}
