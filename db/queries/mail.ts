@@ -1,4 +1,5 @@
 import type { Db, Trx } from "@/db/executor";
+import { isUuid } from "@/db/queries/code-or-id";
 import { AppError } from "@/lib/errors";
 
 const summaryColumns = [
@@ -40,6 +41,10 @@ export interface NewMail {
   createdAt: Date;
 }
 
+function noSuchMail(id: string): AppError {
+  return new AppError("mail.not_found", { id, message: "There is no such message." });
+}
+
 export async function insertMail(trx: Trx, mail: NewMail): Promise<void> {
   await trx.insertInto("mail").values(mail).execute();
 }
@@ -51,13 +56,14 @@ export async function listMail(db: Db, page: { limit: number; before?: string })
   return query.execute();
 }
 
-/** A message. @throws AppError `mail.not_found` */
+/** A message; an id that is none names none. @throws AppError `mail.not_found` */
 export async function getMail(db: Db, id: string): Promise<MailRow> {
+  if (!isUuid(id)) throw noSuchMail(id);
   return db
     .selectFrom("mail")
     .select([...summaryColumns, "body"])
     .where("id", "=", id)
-    .executeTakeFirstOrThrow(() => new AppError("mail.not_found", { id, message: "There is no such message." }));
+    .executeTakeFirstOrThrow(() => noSuchMail(id));
 }
 
 /** The message, locked until commit. @throws AppError `mail.not_found` */
@@ -67,7 +73,7 @@ export async function lockMail(trx: Trx, id: string): Promise<MailRow> {
     .select([...summaryColumns, "body"])
     .where("id", "=", id)
     .forUpdate()
-    .executeTakeFirstOrThrow(() => new AppError("mail.not_found", { id, message: "There is no such message." }));
+    .executeTakeFirstOrThrow(() => noSuchMail(id));
 }
 
 export type MailChange = Partial<Pick<MailRow, "sentAt" | "keptAt" | "attempts" | "lastError" | "body">>;

@@ -1,5 +1,6 @@
 import { sql } from "kysely";
 import type { Db, Trx } from "@/db/executor";
+import { isUuid } from "@/db/queries/code-or-id";
 import type { Role } from "@/lib/domain/roles";
 import { AppError } from "@/lib/errors";
 
@@ -116,8 +117,9 @@ function noSuchPerson(id: string): AppError {
   return new AppError("person.not_found", { id, message: "There is no such person." });
 }
 
-/** A person. @throws AppError `person.not_found` */
-export function getPerson(db: Db, id: string): Promise<PersonRow> {
+/** A person; an id that is none is nobody's. @throws AppError `person.not_found` */
+export async function getPerson(db: Db, id: string): Promise<PersonRow> {
+  if (!isUuid(id)) throw noSuchPerson(id);
   return selectPeople(db)
     .where("id", "=", id)
     .executeTakeFirstOrThrow(() => noSuchPerson(id));

@@ -121,6 +121,22 @@ const states = {
     duplicate: { tone: "idle", word: "known already" },
     conflict: { tone: "bad", word: "conflict", title: "The same record arrived with other content" },
   },
+  person: {
+    active: { tone: "good", word: "active" },
+    waiting: { tone: "wait", word: "no password yet", title: "Has a link to choose a password and has not used it" },
+    deactivated: { tone: "bad", shape: "bar", word: "deactivated", title: "Can't sign in; sessions and keys ended" },
+  },
+  "access-key": {
+    working: { tone: "good", word: "works" },
+    expired: { tone: "idle", word: "ran out" },
+    revoked: { tone: "bad", shape: "bar", word: "revoked" },
+  },
+  mail: {
+    waiting: { tone: "wait", word: "waiting", title: "The worker sends it in a moment" },
+    sent: { tone: "good", word: "sent", title: "The mail server took it" },
+    kept: { tone: "idle", word: "kept here", title: "No mail server is set; this is what would have been sent" },
+    failed: { tone: "bad", word: "failed", title: "The mail server refused it or does not answer" },
+  },
   dump: {
     exact: { tone: "good", word: "equal to the image" },
     differs: { tone: "bad", word: "differs" },

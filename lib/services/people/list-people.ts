@@ -30,7 +30,7 @@ export function getPerson(ctx: PersonCtx, id: string): Promise<PersonView> {
   return getPersonView(ctx, ctx.db, id);
 }
 
-export interface GrantView {
+export type GrantView = {
   id: string;
   role: Role;
   askedBy: string | null;
@@ -39,7 +39,7 @@ export interface GrantView {
   confirmedAt: string | null;
   endedBy: string | null;
   endedAt: string | null;
-}
+};
 
 /** Every role that a person ever held or was to hold, newest first. */
 export async function listRoleHistory(ctx: PersonCtx, personId: string): Promise<GrantView[]> {
