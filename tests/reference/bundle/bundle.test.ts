@@ -8,7 +8,7 @@ import { sumsText } from "@/builders/bundle/sums";
 import { VERIFY_COMMANDS, verifyText } from "@/builders/bundle/verify-text";
 import { writeZip } from "@/builders/bundle/zip";
 import { examplePackage, exampleRelease } from "@/tests/reference/bundle/example";
-import { inFolder, PYTHON, runTool } from "@/tests/reference/codec/tools";
+import { inFolder, PYTHON, runTool } from "@/tests/support/programs";
 
 const { content, manifest } = examplePackage();
 const files = releasedFiles(content, exampleRelease(content, manifest));

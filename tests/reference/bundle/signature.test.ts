@@ -5,7 +5,7 @@ import { describe, expect, it } from "vitest";
 import { isReleaseSignature, keyIdOf, publicKeyPem, signRelease } from "@/builders/bundle/release";
 import { sha256Hex } from "@/builders/bundle/sha256";
 import { toHex } from "@/builders/codec/hex-text";
-import { inFolder, runTool } from "@/tests/reference/codec/tools";
+import { inFolder, runTool } from "@/tests/support/programs";
 
 const vectors = JSON.parse(
   readFileSync(join(import.meta.dirname, "../../fixtures/published/vectors.json"), "utf8"),

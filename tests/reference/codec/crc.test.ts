@@ -2,7 +2,7 @@ import { readFileSync } from "node:fs";
 import { join } from "node:path";
 import { describe, expect, it } from "vitest";
 import { CRC_CATALOGUE, type CrcParameters, getCrc, makeCrc } from "@/builders/codec/crc";
-import { PYTHON, runTool } from "@/tests/reference/codec/tools";
+import { PYTHON, runTool } from "@/tests/support/programs";
 
 interface CatalogueEntry {
   name: string;

@@ -4,7 +4,7 @@ import { describe, expect, it } from "vitest";
 import { readIndependently } from "@/builders/bundle/independent-read";
 import { readIntelHex } from "@/builders/codec/intel-hex-read";
 import { upperAddressRecord, writeIntelHex } from "@/builders/codec/intel-hex-write";
-import { inFolder, PYTHON, runTool } from "@/tests/reference/codec/tools";
+import { inFolder, PYTHON, runTool } from "@/tests/support/programs";
 
 const vectors = JSON.parse(
   readFileSync(join(import.meta.dirname, "../../fixtures/published/vectors.json"), "utf8"),
