@@ -4,6 +4,7 @@ import { afterAll, beforeAll, describe, expect, it } from "vitest";
 import { canonicalJson } from "@/lib/domain/canonical-json";
 import { appendEvent } from "@/lib/services/ledger/append-event";
 import { openTestApi, type TestApi } from "../support/api";
+import { insertMadeUpRow } from "../support/made-up-row";
 
 let api: TestApi;
 
@@ -142,7 +143,10 @@ describe("GET /ledger/export", () => {
   });
 
   it("goes over more than one page, and so does the check", async () => {
-    for (let i = 0; i < 1_100; i++) await append(`MANY-${i}`);
+    const ctx = api.ctx("engineer");
+    await ctx.db.transaction().execute(async (trx) => {
+      for (let i = 0; i < 1_100; i++) await appendEvent(ctx, trx, { action: "thing.noted", subject: `MANY-${i}` });
+    });
     const exported = await get("/ledger/export");
     expect((exported.body as Buffer).toString("utf8").split("\n")).toHaveLength(1_104);
     expect((await get("/ledger/verify")).body).toMatchObject({ ok: true, events: 1_103 });
@@ -224,5 +228,23 @@ describe("GET /ledger/verify after somebody with the owner's rights changed rows
       { name: "detail", content: null },
       { name: "reason", content: null },
     ]);
+  });
+});
+
+describe("a ledger that ends before the head that a signed release names", () => {
+  it("is told as cut off", async () => {
+    const { hash, seq } = (await get("/ledger/head")).body;
+    const releaseNaming = (head: string) =>
+      insertMadeUpRow(api.owner, "live_period", {
+        kind: "'release'",
+        sequence: String(Number.parseInt(head.slice(0, 6), 16)),
+        release_document: `convert_to('{"ledgerHead":"${head}"}', 'UTF8')`,
+        signature: "decode(repeat('00', 64), 'hex')",
+        key_id: "'0000000000000000'",
+      });
+    await releaseNaming(hash);
+    expect((await get("/ledger/verify")).body).toMatchObject({ ok: true });
+    await releaseNaming("ab".repeat(32));
+    expect((await get("/ledger/verify")).body).toMatchObject({ ok: false, brokenAt: seq + 1, reason: "cut-off" });
   });
 });
