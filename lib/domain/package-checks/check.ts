@@ -26,6 +26,9 @@ export interface PackageCheck {
 /** Most names that evidence lists; counts beside a list are whole. */
 export const EVIDENCE_MAX = 200;
 
+/** Most serials that a sentence names. */
+const SENTENCE_MAX = 3;
+
 /** Serials as evidence: their number and the first of them. */
 export function serialEvidence(serials: readonly string[]): { count: number; serials: string[] } {
   return { count: serials.length, serials: serials.slice(0, EVIDENCE_MAX) };
@@ -36,8 +39,9 @@ export function devices(count: number): string {
   return count === 1 ? "1 device" : `${formatCount(count)} devices`;
 }
 
-/** The first few serials of a list, for a sentence. */
-export function someSerials(serials: readonly string[], most = 3): string {
-  const more = serials.length - most;
-  return serials.slice(0, most).join(", ") + (more > 0 ? ` and ${formatCount(more)} more` : "");
+/** The first few serials of a list, for a sentence; `count` is the number of all where the list is cut. */
+export function someSerials(serials: readonly string[], count = serials.length): string {
+  const shown = serials.slice(0, SENTENCE_MAX);
+  const more = count - shown.length;
+  return shown.join(", ") + (more > 0 ? ` and ${formatCount(more)} more` : "");
 }

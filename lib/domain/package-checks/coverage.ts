@@ -36,7 +36,9 @@ export function checkCoverage(facts: CoverageFacts): PackageCheck {
     leftOut.length === 0
       ? `All ${devices(lotDevices)} of the lot are packed.`
       : `${formatCount(packed)} of ${devices(lotDevices)} are packed. Left out: ${byReason
-          .map(({ reason, count, serials }) => `${formatCount(count)} ${WORDS[reason]} (${someSerials(serials)})`)
+          .map(
+            ({ reason, count, serials }) => `${formatCount(count)} ${WORDS[reason]} (${someSerials(serials, count)})`,
+          )
           .join("; ")}.`,
   ];
   if (newerUndecided.length > 0)

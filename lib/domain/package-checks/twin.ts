@@ -14,58 +14,71 @@ export interface TwinPrediction {
   independent: boolean;
 }
 
-const worstOf = ({ spanRatio, zeroShiftRatio }: TwinPrediction) => Math.max(spanRatio ?? 0, zeroShiftRatio ?? 0);
-
 /**
  * Whether every device will stay inside the temperature envelope at the readings of its lot, computed with its decoded values.
+ * A device counts as judged only by what its values were not fitted through.
  * @param packed how many devices the package has; those without readings are in no prediction.
  */
 export function checkTwin(packed: number, predictions: readonly TwinPrediction[]): PackageCheck {
-  const judged = predictions.filter((one) => one.spanRatio !== null || one.zeroShiftRatio !== null);
-  const outside = judged.filter((one) => worstOf(one) > 1).map((one) => one.serial);
+  const judged = predictions.filter(isJudged);
+  const outside = predictions.filter((one) => worstOf(one) > 1).map((one) => one.serial);
   const neverLoaded = predictions.filter((one) => one.spanRatio === null).map((one) => one.serial);
-  const atTrimPoint = predictions.filter((one) => one.spanRatio !== null && !one.independent);
-  const worst = [...judged].sort((a, b) => worstOf(b) - worstOf(a));
-  const [span] = [...judged].sort((a, b) => (b.spanRatio ?? -1) - (a.spanRatio ?? -1));
-  const [zero] = [...judged].sort((a, b) => (b.zeroShiftRatio ?? -1) - (a.zeroShiftRatio ?? -1));
+  const fittedOnly = predictions.filter((one) => one.spanRatio !== null && !one.independent).length;
   const withoutReadings = packed - predictions.length;
-  const sentences: string[] = [];
-  if (judged.length === 0)
-    sentences.push("No reading of the lot speaks on a device of this package: nothing is predicted.");
-  else if (outside.length > 0)
+  const sentences = [verdictSentence(predictions.length, judged.length, outside), ...largestOf(judged)];
+  if (fittedOnly > 0)
     sentences.push(
-      `${formatCount(outside.length)} of ${devices(judged.length)} are predicted outside the envelope (${someSerials(outside)}).`,
-    );
-  else sentences.push(`Computed with its decoded values, each of ${devices(judged.length)} stays inside the envelope.`);
-  if (span && span.spanRatio !== null)
-    sentences.push(
-      `Largest span error ${formatFigure(span.spanErrorPpm, { digits: 0, sign: "always" })} ppm, ${formatFigure(span.spanRatio)} of the limit (${span.serial}).`,
-    );
-  if (zero && zero.zeroShiftRatio !== null)
-    sentences.push(`Largest zero shift ${formatFigure(zero.zeroShiftRatio)} of the limit (${zero.serial}).`);
-  if (atTrimPoint.length > 0)
-    sentences.push(
-      `${devices(atTrimPoint.length)} ${atTrimPoint.length === 1 ? "was" : "were"} loaded only where the gain was taken from: no statement on span over temperature.`,
+      `${devices(fittedOnly)} ${fittedOnly === 1 ? "was" : "were"} loaded only where the gain was taken from: no statement on span over temperature.`,
     );
   if (neverLoaded.length > 0)
     sentences.push(
       `${devices(neverLoaded.length)} ${neverLoaded.length === 1 ? "was" : "were"} never loaded (${someSerials(neverLoaded)}): no statement on span.`,
     );
-  if (withoutReadings > 0) sentences.push(`${devices(withoutReadings)} without readings.`);
+  if (withoutReadings > 0 && predictions.length > 0)
+    sentences.push(`Of ${devices(withoutReadings)} there are no readings.`);
   return {
     code: "twin",
-    verdict: judged.length === 0 || outside.length > 0 ? "warn" : "pass",
+    verdict: predictions.length === 0 || outside.length > 0 ? "warn" : "pass",
     message: sentences.join(" "),
     evidence: {
       devices: packed,
       judged: judged.length,
       spanJudged: predictions.filter((one) => one.spanRatio !== null && one.independent).length,
-      atTrimPointOnly: atTrimPoint.length,
+      atTrimPointOnly: fittedOnly,
       zeroJudged: predictions.filter((one) => one.zeroShiftRatio !== null).length,
       neverLoaded: serialEvidence(neverLoaded),
       withoutReadings,
       outside: serialEvidence(outside),
-      worst: worst.slice(0, EVIDENCE_MAX),
+      worst: [...predictions].sort((a, b) => worstOf(b) - worstOf(a)).slice(0, EVIDENCE_MAX),
     },
   };
+}
+
+const worstOf = ({ spanRatio, zeroShiftRatio }: TwinPrediction) => Math.max(spanRatio ?? 0, zeroShiftRatio ?? 0);
+
+const isJudged = ({ spanRatio, zeroShiftRatio, independent }: TwinPrediction) =>
+  (spanRatio !== null && independent) || zeroShiftRatio !== null;
+
+function verdictSentence(withReadings: number, judged: number, outside: readonly string[]): string {
+  if (withReadings === 0) return "The lot has no readings of these devices: nothing is predicted.";
+  if (outside.length > 0)
+    return `${formatCount(outside.length)} of ${devices(withReadings)} are predicted outside the envelope (${someSerials(outside)}).`;
+  if (judged === 0) return "The values pass through all readings: none is left to judge them.";
+  return `Computed with its decoded values, each of ${devices(judged)} with readings to judge it stays inside the envelope.`;
+}
+
+function largestOf(judged: readonly TwinPrediction[]): string[] {
+  const sentences: string[] = [];
+  const [span] = judged
+    .filter((one) => one.spanRatio !== null && one.independent)
+    .sort((a, b) => (b.spanRatio as number) - (a.spanRatio as number));
+  const [zero] = judged
+    .filter((one) => one.zeroShiftRatio !== null)
+    .sort((a, b) => (b.zeroShiftRatio as number) - (a.zeroShiftRatio as number));
+  if (span)
+    sentences.push(
+      `Largest span error ${formatFigure(span.spanErrorPpm, { digits: 0, sign: "always" })} ppm, ${formatFigure(span.spanRatio)} of the limit (${span.serial}).`,
+    );
+  if (zero) sentences.push(`Largest zero shift ${formatFigure(zero.zeroShiftRatio)} of the limit (${zero.serial}).`);
+  return sentences;
 }

@@ -25,7 +25,7 @@ function judge({ method, verification }: VerifiedDerivation, confidence: number)
       words: `${failed.length} of ${count} verification devices are outside the envelope (${someSerials(failed)}).`,
     };
   if (count > 0) {
-    const share = formatPercent(Math.floor(shareShown(count, confidence) * 100) / 100);
+    const share = formatPercent(shareShown(count, confidence), 1);
     const words = `${count} of ${count} verification devices passed: by itself that shows, with ${formatPercent(confidence)} confidence, only that at least ${share} of the lot would.`;
     return { good: true, words };
   }
