@@ -19,7 +19,7 @@ export function Select({ label, help, error, options, placeholder, ...select }: 
   return (
     <Field label={label} help={help} error={error}>
       {(control) => (
-        <select {...select} {...control} className={`${inputLook} h-[38px]`}>
+        <select {...select} {...control} className={`${inputLook} enabled:read-only:bg-paper h-[38px]`}>
           {placeholder !== undefined ? <option value="">{placeholder}</option> : null}
           {options.map((option) => (
             <option key={option.value} value={option.value} disabled={option.disabled}>

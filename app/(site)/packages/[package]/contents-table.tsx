@@ -1,0 +1,65 @@
+"use client";
+
+import { useMemo } from "react";
+import { type DataColumn, type Row, valueAt } from "@/app/_components/table/column";
+import { DataTable } from "@/app/_components/table/data-table";
+import { formatField } from "@/lib/domain/format/field-value";
+import { toEngineering } from "@/lib/domain/format/quantity";
+
+/** A field of the layout with a column of its own. */
+export interface ContentField {
+  name: string;
+  /** In the engineering unit. */
+  unit: string;
+  shown: boolean;
+}
+
+interface DecodedRow {
+  fields?: { name: string; value: number | string | null; unit: string | null }[];
+}
+
+/** Every image of a package with its decoded values. */
+export function ContentsTable({ id, fields }: { id: string; fields: readonly ContentField[] }) {
+  const columns = useMemo<DataColumn[]>(
+    () => [
+      { key: "serial", header: "Serial", format: { as: "code" } },
+      ...fields.map(
+        (field): DataColumn => ({
+          key: `values.${field.name}`,
+          header: field.name,
+          unit: field.unit,
+          align: "right",
+          format: { as: "code" },
+          hidden: !field.shown,
+          cell: (row) => String(valueAt(row, `shown.${field.name}`) ?? ""),
+        }),
+      ),
+      { key: "hardwareId", header: "Board", format: { as: "code" }, hidden: true },
+      { key: "sha256", header: "SHA-256", format: { as: "digest" } },
+    ],
+    [fields],
+  );
+  return (
+    <DataTable
+      name="images"
+      urlName="images"
+      endpoint={`/api/v1/packages/${id}/images?values=true`}
+      rowKey="serial"
+      rowHref={`/packages/${id}/images/{serial}`}
+      toRow={decodedRow}
+      columns={columns}
+      empty={{ title: "No image", text: "The package holds no device." }}
+    />
+  );
+}
+
+/** Values in engineering units at full precision, for sorting and CSV, and beside them the texts that are shown. */
+function decodedRow(row: Row): Row {
+  const values: Row = {};
+  const shown: Row = {};
+  for (const { name, value, unit } of (row as DecodedRow).fields ?? []) {
+    values[name] = typeof value === "number" ? toEngineering(value, unit).value : value;
+    shown[name] = formatField(value, unit).text;
+  }
+  return { ...row, values, shown };
+}
