@@ -95,6 +95,10 @@ const states = {
     held: { tone: "bad", shape: "bar", word: "held", title: "Stopped by one person; going on takes two" },
     scrapped: { tone: "bad", word: "scrapped" },
   },
+  station: {
+    active: { tone: "good", word: "active" },
+    stopped: { tone: "bad", shape: "bar", word: "stopped", title: "All its keys are refused" },
+  },
   rewrite: {
     "never-written": { tone: "idle", word: "never written" },
     unknown: { tone: "bad", shape: "half", word: "unknown", title: "The last write was not verified" },
