@@ -25,7 +25,7 @@ export function Frame({ person, children }: { person: FramePerson; children: Rea
             <MakerMark />
             Trimwright
           </Link>
-          <PlaceLinks />
+          <PlaceLinks roles={person.roles} />
           <SerialSearch />
           <PersonMenu person={person} />
         </div>
@@ -33,7 +33,7 @@ export function Frame({ person, children }: { person: FramePerson; children: Rea
       <main id="content" className="mx-auto max-w-[1500px] px-4 pt-3.5 pb-9 md:px-7 md:pt-5 print:max-w-none print:p-0">
         {children}
       </main>
-      <Keys />
+      <Keys roles={person.roles} />
     </>
   );
 }

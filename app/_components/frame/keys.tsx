@@ -1,9 +1,9 @@
 "use client";
 
 import { useRouter } from "next/navigation";
-import { useEffect, useRef, useState } from "react";
+import { useEffect, useMemo, useRef, useState } from "react";
 import { Dialog } from "@/app/_components/dialog";
-import { places } from "@/app/_components/frame/places";
+import { placesOf } from "@/app/_components/frame/places";
 import { searchId } from "@/app/_components/frame/serial-search";
 
 /** Event that opens the list of keys from elsewhere, as from the person's menu. */
@@ -15,7 +15,8 @@ const scanGapMs = 35;
 const scanStart = 4;
 
 /** Keyboard of the whole frame: `/` searches, `g` and a letter goes, `?` lists the keys; a scan lands in the search. */
-export function Keys() {
+export function Keys({ roles }: { roles: readonly string[] }) {
+  const places = useMemo(() => placesOf(roles), [roles]);
   const [open, setOpen] = useState(false);
   const router = useRouter();
   const goAt = useRef(0);
@@ -46,7 +47,7 @@ export function Keys() {
       window.removeEventListener("keydown", onKey);
       window.removeEventListener(showKeysEvent, show);
     };
-  }, [router]);
+  }, [router, places]);
 
   return (
     <Dialog open={open} onOpenChange={setOpen} title="Keys">

@@ -7,7 +7,7 @@ import { DropdownMenu } from "radix-ui";
 import { problemOf } from "@/app/_components/api-client";
 import { signOut } from "@/app/_components/auth-client";
 import { showKeysEvent } from "@/app/_components/frame/keys";
-import { isInPlace, places } from "@/app/_components/frame/places";
+import { isInPlace, placesOf } from "@/app/_components/frame/places";
 import { useTheme } from "@/app/_components/frame/use-theme";
 import { useToast } from "@/app/_components/toast";
 
@@ -60,7 +60,7 @@ export function PersonMenu({ person }: { person: FramePerson }) {
             <div className="text-xs text-ink-soft">{person.roles.join(", ")}</div>
           </div>
           <div className="border-b border-rule pb-1.5 mb-1.5 md:hidden">
-            {places.map((place) => (
+            {placesOf(person.roles).map((place) => (
               <DropdownMenu.Item key={place.href} asChild>
                 <Link href={place.href} className={`${itemLook} ${isInPlace(place, path) ? "font-semibold" : ""}`}>
                   {place.name}
@@ -122,7 +122,8 @@ function linksFor(roles: readonly string[]): { name: string; href: string }[] {
   const has = (role: string) => roles.includes(role);
   const onlyOperator = roles.every((role) => role === "operator");
   return [
-    ...(has("operator") ? [{ name: "Bench", href: "/stations/bench" }] : []),
+    ...(has("operator") && !onlyOperator ? [{ name: "Bench", href: "/stations/bench" }] : []),
+    ...(onlyOperator ? [] : [{ name: "Equipment", href: "/equipment" }]),
     ...(onlyOperator ? [] : [{ name: "Compare", href: "/compare" }]),
     ...(onlyOperator ? [] : [{ name: "Ledger", href: "/ledger" }]),
     ...(has("admin") ? [{ name: "People", href: "/people" }] : []),

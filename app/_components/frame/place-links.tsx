@@ -2,14 +2,14 @@
 
 import Link from "next/link";
 import { usePathname } from "next/navigation";
-import { isInPlace, places } from "@/app/_components/frame/places";
+import { isInPlace, placesOf } from "@/app/_components/frame/places";
 
-/** The five places as a row, for screens wide enough. */
-export function PlaceLinks() {
+/** The places as a row, for screens wide enough. */
+export function PlaceLinks({ roles }: { roles: readonly string[] }) {
   const path = usePathname();
   return (
     <nav aria-label="Places" className="hidden h-full gap-[22px] md:flex">
-      {places.map((place) => {
+      {placesOf(roles).map((place) => {
         const here = isInPlace(place, path);
         return (
           <Link

@@ -6,13 +6,24 @@ export interface Place {
   covers: readonly string[];
 }
 
-export const places: readonly Place[] = [
+const places: readonly Place[] = [
   { name: "Today", href: "/today", key: "t", covers: ["/today"] },
   { name: "Lots", href: "/lots", key: "l", covers: ["/lots", "/packages", "/derivations", "/runs"] },
   { name: "Layouts", href: "/families", key: "f", covers: ["/families"] },
   { name: "Trace", href: "/trace", key: "r", covers: ["/trace", "/compare"] },
   { name: "Stations", href: "/stations", key: "s", covers: ["/stations"] },
 ];
+
+/** Operators write devices and look them up; the rest is not theirs. */
+const operatorPlaces: readonly Place[] = [
+  { name: "Bench", href: "/stations/bench", key: "b", covers: ["/stations/bench"] },
+  { name: "Trace", href: "/trace", key: "r", covers: ["/trace"] },
+];
+
+/** The places of a person with these roles. */
+export function placesOf(roles: readonly string[]): readonly Place[] {
+  return roles.every((role) => role === "operator") ? operatorPlaces : places;
+}
 
 /** True where the path lies in the place. */
 export function isInPlace(place: Place, path: string): boolean {
