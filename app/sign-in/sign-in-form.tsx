@@ -1,5 +1,6 @@
 "use client";
 
+import Link from "next/link";
 import { type FormEvent, useEffect, useRef, useState } from "react";
 import { type ProblemDetails, problemOf } from "@/app/_components/api-client";
 import { signIn } from "@/app/_components/auth-client";
@@ -109,7 +110,7 @@ export function SignInForm({ goTo, refused, accounts }: SignInFormProps) {
           </Button>
         </form>
         <p className="mt-3 text-sm text-ink-soft">
-          Accounts are made by an admin. Password forgotten? An admin can mail you a link to choose a new one.
+          <Link href="/forgot">Choose a new password</Link> by a mailed link. Accounts are made by an admin.
         </p>
       </Card>
       {accounts.length > 0 ? <DemoAccounts accounts={accounts} onChoose={fillIn} /> : null}
