@@ -1,9 +1,12 @@
+import { availableParallelism } from "node:os";
 import { defineConfig } from "vitest/config";
 
 /** Projects by what they need: `unit` runs without a database; the others get a template database from the test command. */
 export default defineConfig({
   resolve: { alias: { "@": import.meta.dirname } },
   test: {
+    // Tests wait for a database and for programs as much as they compute: two at once even on two cores.
+    maxWorkers: Math.max(2, availableParallelism() - 1),
     testTimeout: 20_000,
     hookTimeout: 60_000,
     projects: [
@@ -20,13 +23,21 @@ export default defineConfig({
       },
       {
         extends: true,
-        test: { name: "faults", include: ["tests/faults/**/*.test.ts"], testTimeout: 120_000, pool: "forks" },
+        test: {
+          name: "faults",
+          include: ["tests/faults/**/*.test.ts"],
+          globalSetup: ["tests/support/built-app.ts", "tests/support/database-template.ts"],
+          testTimeout: 120_000,
+          hookTimeout: 120_000,
+          pool: "forks",
+        },
       },
       {
         extends: true,
         test: {
           name: "e2e",
           include: ["tests/e2e/**/*.test.ts"],
+          globalSetup: ["tests/support/built-app.ts"],
           testTimeout: 600_000,
           hookTimeout: 300_000,
           pool: "forks",

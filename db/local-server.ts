@@ -15,10 +15,11 @@ import {
   statSync,
   writeFileSync,
 } from "node:fs";
-import { connect, createServer } from "node:net";
+import { connect } from "node:net";
 import { dirname, join } from "node:path";
 import { setTimeout as delay } from "node:timers/promises";
 import { promisify } from "node:util";
+import { findFreePort } from "@/db/free-port";
 import { clearStalePidFile, findRunningServer } from "@/db/pid-file";
 import { listPostgres, type PostgresBinaries } from "@/db/postgres-binaries";
 import { OWNER_ROLE } from "@/db/roles";
@@ -233,18 +234,6 @@ async function choosePort({ home, port }: LocalServerOptions): Promise<number> {
 async function insistOnPort(port: number): Promise<number> {
   if ((await findFreePort(port)) !== undefined) return port;
   throw new AppError("database.start_failed", { port, message: `Port ${port} of the database is taken` });
-}
-
-/** The port if nobody listens on it; for 0, any free one. */
-export function findFreePort(port: number, host = "127.0.0.1"): Promise<number | undefined> {
-  return new Promise((resolve) => {
-    const server = createServer();
-    server.once("error", () => resolve(undefined));
-    server.listen(port, host, () => {
-      const address = server.address();
-      server.close(() => resolve(typeof address === "object" && address !== null ? address.port : undefined));
-    });
-  });
 }
 
 /** Only what the programs need: nothing of ours, above all no PG… variable, changes what they do. */

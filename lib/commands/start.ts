@@ -2,7 +2,7 @@
 import { mkdirSync, statfsSync } from "node:fs";
 import { join } from "node:path";
 import { setTimeout as delay } from "node:timers/promises";
-import { findFreePort } from "@/db/local-server";
+import { findFreePort } from "@/db/free-port";
 import { ensureBuild } from "@/lib/commands/build-app";
 import { PROGRAMS } from "@/lib/commands/checkout";
 import { plainMessage } from "@/lib/commands/command-line";

@@ -23,10 +23,12 @@ export default async function test(_args: string[], signal: AbortSignal): Promis
   const total: Count = { passed: 0, failed: 0 };
   const step = async (title: string, work: () => Promise<Count>) => {
     if (signal.aborted) return false;
+    const startedAt = Date.now();
     const count = await work().catch((error: unknown) => {
       console.error(`${title}: ${plainMessage(error)}`);
       return FAILED_STEP;
     });
+    console.log(`  ${title}: ${Math.round((Date.now() - startedAt) / 1000)} s`);
     total.passed += count.passed;
     total.failed += count.failed;
     return count.failed === 0;
@@ -43,12 +45,6 @@ export default async function test(_args: string[], signal: AbortSignal): Promis
   await step("unit tests", () => runProject("unit", signal));
   await step("reference tests", () => runProject("reference", signal));
   await step("tests with a database", () => runWithDatabase(step, signal));
-  await step("fault tests", () => runProject("faults", signal));
-  const built = await step("build", async () => {
-    await ensureBuild({ signal, say: console.log });
-    return PASSED_STEP;
-  });
-  if (built) await step("browser tests", () => runProject("e2e", signal));
 
   if (signal.aborted) total.failed += 1;
   console.log(`${total.passed} passed, ${total.failed} failed`);
@@ -57,7 +53,7 @@ export default async function test(_args: string[], signal: AbortSignal): Promis
 
 type Step = (title: string, work: () => Promise<Count>) => Promise<boolean>;
 
-/** One server for the generated types' check and the database tests; it stays up between them. */
+/** One server, and one build of the app, for all that follows; what a project needs of them it finds there. */
 async function runWithDatabase(step: Step, signal: AbortSignal): Promise<Count> {
   const server = await joinTestServer();
   try {
@@ -66,7 +62,16 @@ async function runWithDatabase(step: Step, signal: AbortSignal): Promise<Count> 
       const verify = { title: "generated types", args: [PROGRAMS.bootstrap, "codegen", "--verify"] };
       return (await passes(verify, signal)) ? PASSED_STEP : FAILED_STEP;
     });
-    return await runProject("db", signal);
+    await step("database and API tests", () => runProject("db", signal));
+    const built = await step("build", async () => {
+      await ensureBuild({ signal, say: console.log });
+      return PASSED_STEP;
+    });
+    if (built) {
+      await step("fault tests", () => runProject("faults", signal));
+      await step("browser tests", () => runProject("e2e", signal));
+    }
+    return PASSED_STEP;
   } finally {
     await server.release();
   }
