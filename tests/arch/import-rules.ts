@@ -92,6 +92,7 @@ export const RULES: readonly Rule[] = [
       "schemas",
       "db/client",
       "db/constraint-codes",
+      "package.json", // the version that health and OpenAPI tell
     ],
     types: ["db"],
     never: ["db/queries"],
