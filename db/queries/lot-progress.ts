@@ -1,5 +1,6 @@
 import { sql } from "kysely";
 import type { Db } from "@/db/executor";
+import { decidingWrite } from "@/db/queries/writes";
 
 export interface LotProgressRow {
   devices: number;
@@ -10,10 +11,14 @@ export interface LotProgressRow {
   /** Devices whose newest coefficient set is approved, and is not yet decided. */
   devicesApproved: number;
   devicesProposed: number;
-  /** Devices of the live package, 0 where nothing is live. */
+  /** Devices of the live package that are not scrapped, 0 where nothing is live. */
   devicesLive: number;
-  /** Devices whose last write record was verified, of all that have one. */
+  /**
+   * Devices that are known to carry what is live: the same coefficients in the same layout, be it under an earlier version number.
+   * Where nothing is live, devices that are known to carry an image.
+   */
   devicesVerified: number;
+  /** Devices with a record of a write that touched their memory. */
   devicesWritten: number;
 }
 
@@ -27,10 +32,17 @@ export async function getLotProgress(db: Db, lotId: string): Promise<LotProgress
         select c.state from coefficient_set c where c.device_id = member.id and c.state is not null
         order by c.created_at desc, c.id desc limit 1) s),
     last_write as (
-      select w.outcome from member
-      cross join lateral (
-        select r.outcome from write_record r where r.device_id = member.id
-        order by r.finished_at desc, r.counter desc limit 1) w)
+      select d.id, w.outcome, w.package_id, w.finished_at
+      from device d cross join lateral ${decidingWrite} w where d.lot_id = ${lotId}::uuid),
+    carried as (
+      select w.id, i.coefficient_set_id, p.layout_id
+      from last_write w join image i on i.package_id = w.package_id and i.device_id = w.id join package p on p.id = i.package_id
+      where w.outcome = 'verified' and not exists (
+        select 1 from device_event e where e.device_id = w.id and e.kind = 'board-replaced' and e.at >= w.finished_at)),
+    target as (
+      select i.device_id as id, i.coefficient_set_id, p.layout_id
+      from package p join image i on i.package_id = p.id join device d on d.id = i.device_id
+      where p.lot_id = ${lotId}::uuid and p.state = 'live' and not d.scrapped)
     select
       (select count(*)::int from member) as devices,
       (select count(*)::int from run r where r.lot_id = ${lotId}::uuid
@@ -38,9 +50,9 @@ export async function getLotProgress(db: Db, lotId: string): Promise<LotProgress
       (select count(*)::int from member where exists (select 1 from reading g where g.device_id = member.id)) as devices_read,
       (select count(*)::int from newest where state = 'approved') as devices_approved,
       (select count(*)::int from newest where state = 'proposed') as devices_proposed,
-      (select count(*)::int from image i join package p on p.id = i.package_id
-        where p.lot_id = ${lotId}::uuid and p.state = 'live') as devices_live,
-      (select count(*)::int from last_write where outcome = 'verified') as devices_verified,
+      (select count(*)::int from target) as devices_live,
+      case when exists (select 1 from target) then (select count(*)::int from carried join target using (id, coefficient_set_id, layout_id))
+        else (select count(*)::int from carried) end as devices_verified,
       (select count(*)::int from last_write) as devices_written
   `.execute(db);
   return rows[0] as LotProgressRow;

@@ -1,4 +1,5 @@
 import { afterAll, beforeAll, describe, expect, it } from "vitest";
+import { getLotThread } from "@/lib/services/lots/get-lot-thread";
 import { openTestApi, type TestApi } from "../support/api";
 import { PASSWORD, type PersonName } from "../support/people";
 import { approveDerivation, arrangeDerived, type DerivedLot } from "../support/scenario/derived";
@@ -174,6 +175,13 @@ describe("after another release", () => {
     for (const n of [11, 12]) expect(rows.map((row) => row.serial)).not.toContain(serial(n));
     await write(10, { of: otherValues });
     expect(await whyOf(10)).toBeUndefined();
+  });
+
+  it("the lot's thread counts who carries what is live, under whatever version number", async () => {
+    const thread = await getLotThread(api.ctx("auditor"), LOT);
+    const missing = (await rewrites()).length;
+    expect(missing).toBeGreaterThan(5);
+    expect(thread.written).toEqual({ tone: "wait", count: `${28 - missing} of 28 verified` });
   });
 
   it("the list is paged by serial and names no scrapped device", async () => {

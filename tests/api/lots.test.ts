@@ -151,7 +151,7 @@ describe("POST /lots/{code}/devices", () => {
     const { status, body } = await add("FULL", ["FULL-X"]);
     expect([status, body.code]).toEqual([422, "lot.too_many_devices"]);
     expect((await add("FULL", serials)).body).toEqual({ added: 0, known: 60_000 });
-  });
+  }, 120_000);
 });
 
 describe("GET /lots/{code}/devices", () => {
