@@ -11,6 +11,8 @@ export function problemsOf(error: z.ZodError, root = ""): Problem[] {
 }
 
 const LONE_SURROGATE = /\p{Surrogate}/u;
+/** Problems of this kind that are named at most. */
+const SHOWN_MAX = 20;
 /** Nothing that we take is nested deeper. */
 const DEPTH_MAX = 64;
 
@@ -20,24 +22,25 @@ const DEPTH_MAX = 64;
  */
 function unstorableTexts(value: unknown, root: string): Problem[] {
   const problems: Problem[] = [];
-  const open = [{ value, path: root, depth: 0 }];
-  for (let next = open.pop(); next !== undefined; next = open.pop()) {
-    const { value, path, depth } = next;
-    if (typeof value === "string") {
-      if (value.includes("\0") || LONE_SURROGATE.test(value))
-        problems.push({
-          path,
-          code: "not_storable",
-          message: "Holds NUL or half of a character pair, which is no text.",
-        });
-    } else if (typeof value === "object" && value !== null) {
-      if (depth >= DEPTH_MAX) return [{ path: root, code: "too_deep", message: "Is nested too deep." }];
-      for (const [name, member] of Object.entries(value)) {
-        if (!Array.isArray(value)) open.push({ value: name, path, depth });
-        open.push({ value: member, path: `${path}/${name}`, depth: depth + 1 });
+  const look = (member: unknown, path: () => string, depth: number): void => {
+    if (problems.length >= SHOWN_MAX) return;
+    if (typeof member === "string") {
+      if (member.includes("\0") || LONE_SURROGATE.test(member))
+        problems.push({ path: path(), code: "not_storable", message: "Holds NUL or half of a character pair." });
+    } else if (depth > DEPTH_MAX) {
+      problems.push({ path: root, code: "too_deep", message: "Is nested too deep." });
+    } else if (Array.isArray(member)) {
+      member.forEach((item, i) => {
+        look(item, () => `${path()}/${i}`, depth + 1);
+      });
+    } else if (typeof member === "object" && member !== null) {
+      for (const [name, item] of Object.entries(member)) {
+        look(name, path, depth);
+        look(item, () => `${path()}/${name}`, depth + 1);
       }
     }
-  }
+  };
+  look(value, () => root, 0);
   return problems;
 }
 

@@ -40,6 +40,10 @@ describe("validate", () => {
     expect(validate(anything, { text })).toEqual({ text });
   });
 
+  it("names twenty of a thousand such texts", () => {
+    expect(problemsOf(Array.from({ length: 1_000 }, () => "\0"))?.errors).toHaveLength(20);
+  });
+
   it("refuses what is nested a hundred thousand deep without running out of stack", () => {
     const deep = JSON.parse(`${"[".repeat(100_000)}${"]".repeat(100_000)}`);
     expect(problemsOf(deep)?.errors).toEqual([{ path: "/body", code: "too_deep", message: "Is nested too deep." }]);
