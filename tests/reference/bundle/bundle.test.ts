@@ -9,43 +9,12 @@ import { VERIFY_COMMANDS, verifyText } from "@/builders/bundle/verify-text";
 import { writeZip } from "@/builders/bundle/zip";
 import { examplePackage, exampleRelease } from "@/tests/reference/bundle/example";
 import { inFolder, PYTHON, runTool } from "@/tests/support/programs";
+import { commandsOf, failingCommands, unpacked } from "@/tests/support/unpacked-bundle";
 
 const { content, manifest } = examplePackage();
 const files = releasedFiles(content, exampleRelease(content, manifest));
 const zip = await writeZip(files);
 const FIRST = "images/MW20-2609-00001.hex";
-
-async function unpacked<T>(use: (folder: string) => T): Promise<T> {
-  return inFolder((folder) => {
-    writeFileSync(join(folder, "bundle.zip"), zip);
-    mkdirSync(join(folder, "bundle"));
-    runTool("unzip", ["-q", "../bundle.zip"], undefined, join(folder, "bundle"));
-    return use(join(folder, "bundle"));
-  });
-}
-
-/** Commands of VERIFY.txt, taken from its text as a person would: the indented lines. */
-function commandsOf(text: string): string[] {
-  return text
-    .split("\n")
-    .filter((line) => line.startsWith("     "))
-    .map((line) => line.trim());
-}
-
-/** The commands that fail, each run by sh on its own. */
-function failing(folder: string): string[] {
-  return commandsOf(readFileSync(join(folder, "VERIFY.txt"), "utf8")).filter((command) => !passes(command, folder));
-}
-
-function passes(command: string, folder: string): boolean {
-  try {
-    execFileSync("/bin/sh", ["-c", command], { cwd: folder, stdio: "pipe" });
-    return true;
-  } catch (error) {
-    if (typeof (error as { status?: unknown }).status === "number") return false;
-    throw error;
-  }
-}
 
 describe("a bundle as outside programs read it", () => {
   it("is whole for unzip", async () => {
@@ -130,11 +99,11 @@ describe("VERIFY.txt run by sh", () => {
   });
 
   it("passes on an unpacked bundle", async () => {
-    await unpacked((folder) => expect(failing(folder)).toEqual([]));
+    await unpacked(zip, (folder) => expect(failingCommands(folder)).toEqual([]));
   });
 
   it("prints the key id", async () => {
-    await unpacked((folder) => {
+    await unpacked(zip, (folder) => {
       const [show = ""] = commandsOf(verifyText());
       const said = execFileSync("/bin/sh", ["-c", show], { cwd: folder }).toString().trim();
       expect(readFileSync(join(folder, "release.json"), "utf8")).toContain(`"keyId":"${said}"`);
@@ -142,14 +111,14 @@ describe("VERIFY.txt run by sh", () => {
   });
 
   it("refuses an image that was changed", async () => {
-    await unpacked((folder) => {
+    await unpacked(zip, (folder) => {
       writeFileSync(join(folder, FIRST), readFileSync(join(folder, "images/MW20-2609-00002.hex")));
-      expect(failing(folder)).toEqual([VERIFY_COMMANDS.files]);
+      expect(failingCommands(folder)).toEqual([VERIFY_COMMANDS.files]);
     });
   });
 
   it("refuses an image, SHA256SUMS and manifest.json changed together", async () => {
-    await unpacked((folder) => {
+    await unpacked(zip, (folder) => {
       const hex = readFileSync(join(folder, "images/MW20-2609-00002.hex"), "utf8");
       const old = sha256Hex(readFileSync(join(folder, FIRST)));
       writeFileSync(join(folder, FIRST), hex);
@@ -164,33 +133,33 @@ describe("VERIFY.txt run by sh", () => {
         join(folder, "SHA256SUMS"),
         sumsText(new Map(listed.map((path) => [path, readFileSync(join(folder, path))]))),
       );
-      expect(failing(folder)).toEqual([VERIFY_COMMANDS.sums]);
+      expect(failingCommands(folder)).toEqual([VERIFY_COMMANDS.sums]);
     });
   });
 
   it("refuses a release.json that was changed along with them", async () => {
-    await unpacked((folder) => {
+    await unpacked(zip, (folder) => {
       const text = readFileSync(join(folder, "release.json"), "utf8").replace('"sequence":1', '"sequence":9');
       writeFileSync(join(folder, "release.json"), text);
-      expect(failing(folder)).toEqual([VERIFY_COMMANDS.signature]);
+      expect(failingCommands(folder)).toEqual([VERIFY_COMMANDS.signature]);
     });
   });
 
   it.each(["notes.txt", "images/MW20-2609-99999.hex", "SHA256SUMSx"])(
     "refuses the file %s that is not listed",
     async (path) => {
-      await unpacked((folder) => {
+      await unpacked(zip, (folder) => {
         mkdirSync(dirname(join(folder, path)), { recursive: true });
         writeFileSync(join(folder, path), "x");
-        expect(failing(folder)).toEqual([VERIFY_COMMANDS.unlisted]);
+        expect(failingCommands(folder)).toEqual([VERIFY_COMMANDS.unlisted]);
       });
     },
   );
 
   it("refuses a bundle that lacks an image", async () => {
-    await unpacked((folder) => {
+    await unpacked(zip, (folder) => {
       rmSync(join(folder, FIRST));
-      expect(failing(folder)).toEqual([VERIFY_COMMANDS.files, VERIFY_COMMANDS.unlisted]);
+      expect(failingCommands(folder)).toEqual([VERIFY_COMMANDS.files, VERIFY_COMMANDS.unlisted]);
     });
   });
 
@@ -201,7 +170,7 @@ describe("VERIFY.txt run by sh", () => {
       runTool("unzip", ["-q", "p.zip", "-d", "p"], undefined, folder);
       expect(readFileSync(join(folder, "p/NOT-RELEASED.txt"), "utf8")).toContain("is not released");
       expect(readdirSync(join(folder, "p"))).not.toContain("release.json");
-      expect(failing(join(folder, "p"))).toEqual([]);
+      expect(failingCommands(join(folder, "p"))).toEqual([]);
     });
   });
 });
