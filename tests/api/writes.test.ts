@@ -76,14 +76,19 @@ describe("GET /station/live", () => {
     expect(await judged(28)).toEqual(["verified", "held"]);
   });
 
-  it("is noted in the access log", async () => {
+  it("is noted in the access log, as every download is, and not in the ledger", async () => {
+    const head = async () => (await api.call("GET", "/ledger/head", { as: "auditor" })).body.seq;
+    const before = await head();
     await api.call("GET", "/station/live", { as: { bearer: station.key } });
-    const rows = await api.owner
-      .selectFrom("accessLog")
-      .select(["kind", "stationId"])
-      .where("kind", "=", "station.poll")
-      .execute();
-    expect(rows).toContainEqual({ kind: "station.poll", stationId: station.id });
+    const bundle = await api.call("GET", `/station/packages/${live}/bundle`, { as: { bearer: station.key } });
+    expect(bundle.status).toBe(200);
+    await api.call("GET", `/packages/${live}/manifest`, { as: "auditor" });
+    const rows = await api.owner.selectFrom("accessLog").select(["kind", "stationId", "personId", "detail"]).execute();
+    expect(rows).toContainEqual({ kind: "station.poll", stationId: station.id, personId: null, detail: {} });
+    const of = (what: string) => ({ kind: "download", detail: { what, package: live } });
+    expect(rows).toContainEqual({ ...of("bundle"), stationId: station.id, personId: null });
+    expect(rows).toContainEqual({ ...of("manifest"), stationId: null, personId: api.people.auditor.id });
+    expect(await head()).toBe(before);
   });
 });
 

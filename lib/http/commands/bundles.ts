@@ -1,4 +1,5 @@
 import { READERS } from "@/lib/domain/roles";
+import { noteAccess } from "@/lib/services/access/note-access";
 import { getBundle, getManifest } from "@/lib/services/packages/read-bundle";
 import { getStationBundle } from "@/lib/services/stations/get-station-bundle";
 import { byId } from "@/schemas/api/common";
@@ -16,7 +17,11 @@ export const packageManifest = command({
   params: byId,
   reply: { status: 200, mediaTypes: ["application/json"], description: "Exact bytes; ETag, Repr-Digest, one range" },
   errors: ["package.not_found", "package.not_built", "request.range_invalid"],
-  handle: async (ctx, { params, headers }) => bytesResponse(headers, await getManifest(ctx, params.id)),
+  handle: async (ctx, { params, headers }) => {
+    const manifest = await getManifest(ctx, params.id);
+    await noteAccess(ctx, "download", { what: "manifest", package: params.id });
+    return bytesResponse(headers, manifest);
+  },
 });
 
 export const packageBundle = command({
@@ -29,7 +34,11 @@ export const packageBundle = command({
   params: byId,
   reply: { status: 200, mediaTypes: ["application/zip"], description: "Exact bytes; ETag, Repr-Digest, one range" },
   errors: ["package.not_found", "package.not_built", "package.withdrawn", "request.range_invalid"],
-  handle: async (ctx, { params, headers }) => bytesResponse(headers, await getBundle(ctx, params.id)),
+  handle: async (ctx, { params, headers }) => {
+    const bundle = await getBundle(ctx, params.id);
+    await noteAccess(ctx, "download", { what: "bundle", package: params.id });
+    return bytesResponse(headers, bundle);
+  },
 });
 
 export const stationBundle = command({
@@ -41,7 +50,11 @@ export const stationBundle = command({
   params: byId,
   reply: { status: 200, mediaTypes: ["application/zip"], description: "Exact bytes; ETag, Repr-Digest, one range" },
   errors: ["package.not_found", "station.family_not_allowed", "station.package_not_live", "request.range_invalid"],
-  handle: async (ctx, { params, headers }) => bytesResponse(headers, await getStationBundle(ctx, params.id)),
+  handle: async (ctx, { params, headers }) => {
+    const bundle = await getStationBundle(ctx, params.id);
+    await noteAccess(ctx, "download", { what: "bundle", package: params.id });
+    return bytesResponse(headers, bundle);
+  },
 });
 
 export const bundleCommands = [packageManifest, packageBundle, stationBundle];
