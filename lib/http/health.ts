@@ -4,6 +4,7 @@ import { env } from "@/lib/env";
 import { log } from "@/lib/log";
 import { checkHealth, type Health } from "@/lib/services/health/check-health";
 import packageJson from "@/package.json";
+import type { HealthReply } from "@/schemas/api/health";
 
 /** A part that has not answered by then is down. */
 const ANSWER_WITHIN_MS = 2_500;
@@ -21,7 +22,7 @@ export async function answerHealth(): Promise<Response> {
   const { database, queue, reasons } = await looking;
   const ok = database === "ok" && queue === "ok";
   if (!ok) log.warn({ reasons }, "not healthy");
-  const body = { status: ok ? "ok" : "down", database, queue, version: packageJson.version };
+  const body: HealthReply = { status: ok ? "ok" : "down", database, queue, version: packageJson.version };
   return Response.json(body, { status: ok ? 200 : 503, headers: { "cache-control": "no-store" } });
 }
 

@@ -12,6 +12,7 @@ import { layoutCommands } from "./commands/layouts";
 import { ledgerCommands } from "./commands/ledger";
 import { lotCommands } from "./commands/lots";
 import { mailCommands } from "./commands/mail";
+import { openApiCommands } from "./commands/openapi";
 import { packageCommands } from "./commands/packages";
 import { peopleCommands } from "./commands/people";
 import { rebuildCommands } from "./commands/rebuilds";
@@ -44,4 +45,5 @@ export const commands: readonly AnyCommand[] = [
   ...peopleCommands,
   ...accountCommands,
   ...mailCommands,
+  ...openApiCommands,
 ];

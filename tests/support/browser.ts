@@ -21,7 +21,7 @@ export function openBrowser(api: TestApi, headers: Record<string, string> = {}):
     received: [],
     async call(method, path, options = {}) {
       const cookie = [...browser.cookies].map(([name, value]) => `${name}=${value}`).join("; ");
-      const origin = method === "GET" ? {} : { origin: env().origin };
+      const origin: Record<string, string> = method === "GET" ? {} : { origin: env().origin };
       const reply = await api.call(method, path, {
         ...options,
         headers: { ...headers, ...origin, cookie, ...options.headers },
