@@ -4,13 +4,13 @@ import { Card } from "@/app/_components/card";
 import { Digest } from "@/app/_components/digest";
 import { Facts } from "@/app/_components/facts";
 import { formatCount } from "@/lib/domain/format/figure";
-import { toEngineering } from "@/lib/domain/format/quantity";
 import { pageContext } from "@/lib/http/page-context";
 import { getLayout } from "@/lib/services/layouts/get-layout";
 import type { PackageView } from "@/schemas/api/packages";
 import type { LayoutDocument } from "@/schemas/documents/layout";
 import { leftOutWords } from "../left-out-words";
-import { type ContentField, ContentsTable } from "./contents-table";
+import { contentFields } from "./content-fields";
+import { ContentsTable } from "./contents-table";
 import { loadPackage, type PackageParams } from "./load-package";
 import { PackageShell } from "./package-shell";
 
@@ -24,19 +24,10 @@ export default async function PackagePage({ params }: PackageParams) {
     <PackageShell ctx={ctx} view={view} tab="contents">
       <Summary view={view} />
       <Card title="Images" note="Values as decoded from the bytes; open one for its memory map">
-        <ContentsTable id={view.id} fields={fieldsOf(layout.document as unknown as LayoutDocument)} />
+        <ContentsTable id={view.id} fields={contentFields(layout.document as unknown as LayoutDocument)} />
       </Card>
     </PackageShell>
   );
-}
-
-/** Fields in the layout's order; those that hold coefficients are shown at once. */
-function fieldsOf(layout: LayoutDocument): ContentField[] {
-  return layout.fields.map(({ name, unit, value }) => ({
-    name,
-    unit: toEngineering(0, unit === "1" ? null : unit).unit,
-    shown: "from" in value && value.from.startsWith("coefficients."),
-  }));
 }
 
 function Summary({ view }: { view: PackageView }) {
