@@ -25,11 +25,9 @@ export function warningsOf(
   return WATCHED_ROLES.filter((role) => eligible[role] < ELIGIBLE_MIN).map((role) => ({
     role,
     count: eligible[role],
-    message: `${COUNT[eligible[role]] ?? "No"} active ${role} who has chosen a password. ${LACKING[role]}`,
+    message: `${eligible[role] === 0 ? "Nobody" : "Only one person"} can act as ${role} now. ${LACKING[role]}`,
   }));
 }
-
-const COUNT = ["No", "Only one"];
 
 /** Roles to ask for and roles to end so that somebody holds, or waits for, exactly the wanted ones. */
 export function stepsToRoles(open: readonly Role[], wanted: readonly Role[]): { ask: Role[]; end: Role[] } {

@@ -22,7 +22,7 @@ describe("roles", () => {
       ["engineer", 0],
       ["reviewer", 1],
     ]);
-    expect(warnings[0]?.message).toMatch(/^No active engineer /);
-    expect(warnings[1]?.message).toMatch(/^Only one active reviewer /);
+    expect(warnings[0]?.message).toMatch(/^Nobody can act as engineer /);
+    expect(warnings[1]?.message).toMatch(/^Only one person can act as reviewer /);
   });
 });

@@ -66,11 +66,11 @@ export default async function PersonPage({ params }: { params: Promise<{ person:
               columns={[
                 { key: "role", header: "Role" },
                 { key: "askedAt", header: "Asked", format: { as: "time" } },
-                { key: "askedBy", header: "by" },
+                { key: "askedBy", header: "Asked by" },
                 { key: "confirmedAt", header: "Held from", format: { as: "time" } },
-                { key: "confirmedBy", header: "confirmed by" },
+                { key: "confirmedBy", header: "Confirmed by" },
                 { key: "endedAt", header: "Ended", format: { as: "time" } },
-                { key: "endedBy", header: "by" },
+                { key: "endedBy", header: "Ended by" },
               ]}
               empty={{ title: "No role yet", text: "An admin gives roles here; reviewer and admin take a second one." }}
             />
