@@ -1,5 +1,6 @@
 import { afterAll, beforeAll, describe, expect, it } from "vitest";
 import { getLotThread } from "@/lib/services/lots/get-lot-thread";
+import { insertAccessKey } from "../support/access-key";
 import { openTestApi, type TestApi } from "../support/api";
 import { PASSWORD, type PersonName } from "../support/people";
 import { approveDerivation, arrangeDerived, type DerivedLot } from "../support/scenario/derived";
@@ -241,6 +242,10 @@ describe("POST /devices/{serial}/events", () => {
     expect((await event(22, { kind: "hold", reason: "x" }, "engineer")).status).toBe(422);
     const wrong = await hold(22, "engineer", "not it");
     expect([wrong.status, wrong.body.code]).toEqual([403, "auth.password_wrong"]);
+    const key = await insertAccessKey(api.owner, api.people.engineer.id);
+    const body = { kind: "hold", reason: "x", password: PASSWORD };
+    const byKey = await api.call("POST", `/devices/${serial(22)}/events`, { as: { bearer: key }, body });
+    expect([byKey.status, byKey.body.code]).toEqual([403, "auth.session_required"]);
     expect(await trace(22)).toMatchObject({ held: false });
   });
 

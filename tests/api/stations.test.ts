@@ -1,4 +1,5 @@
 import { afterAll, beforeAll, describe, expect, it } from "vitest";
+import { insertAccessKey } from "../support/access-key";
 import { openTestApi, type TestApi } from "../support/api";
 import { PASSWORD, type PersonName } from "../support/people";
 import { arrangeFamilyLot, arrangeSecondFamilyLot } from "../support/scenario/family-lot";
@@ -60,6 +61,10 @@ describe("POST /stations", () => {
     expect((await api.call("POST", "/stations", { body })).status).toBe(401);
     for (const as of ["engineer", "reviewer", "auditor", "operator"] as const)
       expect((await api.call("POST", "/stations", { as, body })).body.code).toBe("auth.forbidden");
+    const key = await insertAccessKey(api.owner, api.people.admin.id);
+    expect((await api.call("POST", "/stations", { as: { bearer: key }, body })).body.code).toBe(
+      "auth.session_required",
+    );
   });
 });
 

@@ -321,3 +321,33 @@ describe("GET /lots/{code}/writes", () => {
     expect((await api.call("GET", path, { as: "auditor", query: { cursor: "x" } })).status).toBe(422);
   });
 });
+
+describe("after the live package was withdrawn", () => {
+  it("stations hear of it at once, and what is written from then on is flagged, not what was written before", async () => {
+    const before = await report(10);
+    const body = { reason: "zero drifts", password: PASSWORD };
+    const withdrawn = await api.call("POST", `/packages/${live}/withdraw`, { as: "reviewer", body });
+    expect(withdrawn.status).toBe(200);
+    const polled = await api.call("GET", "/station/live", { as: { bearer: station.key } });
+    expect(polled.body.items).toEqual([
+      {
+        lot: LOT,
+        family: "MW-20",
+        package: null,
+        version: null,
+        digest: null,
+        sequence: 2,
+        devices: 0,
+        held: [serial(28)],
+      },
+    ]);
+    expect((await send([before])).body.results[0]).toMatchObject({ outcome: "verified", flags: [] });
+    expect(await judged(11)).toEqual(["verified", "not-live"]);
+    expect(await traceOf(serial(11))).toMatchObject({
+      state: "carries-unreleased",
+      current: { package: live, known: true, live: false, sameValuesAsLive: null },
+    });
+    const { status } = await api.call("GET", `/station/packages/${live}/bundle`, { as: { bearer: station.key } });
+    expect(status).toBe(409);
+  });
+});
