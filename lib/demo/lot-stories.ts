@@ -1,8 +1,12 @@
 /** What happened to each lot of the demo, in the order of time: the clock never goes back. */
+import { recordDeviceEvent } from "@/lib/services/devices/record-device-event";
+import { withdrawPackage } from "@/lib/services/packages/release-package";
+import { askReinstatement } from "@/lib/services/reinstatements/ask-reinstatement";
 import { benchFamily, floorFamily } from "./families";
 import { askForLayout, publishLayout } from "./ground";
 import { benchLayouts } from "./layouts";
 import { approveSets, type DemoLot, deriveLot, makeLot, readPooledRuns, readRun, refuseSets } from "./lot";
+import { DEMO_PASSWORD } from "./people";
 import { approvePackage, askForReview, buildLot, release } from "./release";
 import { addDemoStation, type DemoStation, type Mishaps, writeDevices } from "./stations";
 import type { Story } from "./story";
@@ -122,13 +126,72 @@ const rederived: LotStory = {
   },
 };
 
-const quadraticLot: LotStory = {
-  about: "MW300-2601: quadratic, live and written",
+const againLot: LotStory = {
+  about: "MW300-2601: quadratic, derived once more, and the earlier release asked for",
   async happen(story, stations) {
+    const { clock, today } = story;
     const lot = await floorLotTo(story, 26, "MW300-2601", 24);
-    const id = await buildAndRelease(story, lot, 23, "1.0.0");
-    story.clock.to(story.today, 22, 11);
-    await writeDevices(story, stations.floor, lot, { package: id, devices: [0] });
+    const first = await buildAndRelease(story, lot, 23, "1.0.0");
+    clock.to(today, 22, 11);
+    await writeDevices(story, stations.floor, lot, { package: first, devices: [0] });
+    clock.to(today, 18, 10);
+    await approveSets(story, await deriveLot(story, lot, { method: "pooled-gain", order: 2 }));
+    const second = await buildAndRelease(story, lot, 17, "1.0.0");
+    clock.to(today, 16, 10);
+    await writeDevices(story, stations.floor, lot, { package: second, devices: [0, 3] });
+    await askReinstatement(story.as("engineer2"), {
+      lot: lot.code,
+      package: first,
+      reason:
+        "Three devices written with 1.0.1 show a jump of zero on the scale; stay with 1.0.0 until it is understood",
+      password: DEMO_PASSWORD,
+    });
+  },
+};
+
+const withdrawn: LotStory = {
+  about: "MW300-2603: withdrawn by one person",
+  async happen(story, stations) {
+    const { clock, today } = story;
+    const lot = await floorLotTo(story, 15, "MW300-2603", 20);
+    const id = await buildAndRelease(story, lot, 12, "1.0.0");
+    clock.to(today, 11, 10);
+    await writeDevices(story, stations.floor, lot, { package: id, devices: [0, 6] });
+    clock.to(today, 11, 12);
+    const reason =
+      "Firmware 4.1.0 was loaded with a wrong filter on this lot; nothing more is written until it is replaced";
+    await withdrawPackage(story.as("engineer2"), { id, reason, password: DEMO_PASSWORD });
+  },
+};
+
+const fieldEvents: LotStory = {
+  about: "MW20-2601 in the field: shipped, returned, held, one board replaced",
+  async happen(story) {
+    const { clock, today } = story;
+    const report = (
+      by: "service" | "engineer",
+      number: number,
+      event: Parameters<typeof recordDeviceEvent>[1]["event"],
+    ) => recordDeviceEvent(story.as(by), { serial: `MW20-2601-${String(number).padStart(5, "0")}`, event });
+    clock.to(today, 14, 9);
+    for (const number of [3, 7, 11, 19]) {
+      await report("service", number, { kind: "shipped", reason: "Shipped in platform scales", reference: "DN-5512" });
+    }
+    clock.to(today, 13, 9);
+    await report("service", 19, { kind: "returned", reason: "Scale shows 0.2 % high at 5 kg", reference: "RMA-0107" });
+    await report("service", 19, {
+      kind: "board-replaced",
+      reason: "Connector torn off the board",
+      hardwareId: "B-00C0FFEE",
+    });
+    clock.to(today, 12, 20);
+    const password = DEMO_PASSWORD;
+    await report("engineer", 212, { kind: "hold", reason: "Readback differed; look at the board first", password });
+    await report("engineer", 1377, { kind: "hold", reason: "Readback differed twice", password });
+    await recordDeviceEvent(story.as("service"), {
+      serial: "MW20-2601-00212",
+      event: { kind: "resume", reason: "Cold joint found and mended; verified on the bench", password },
+    });
   },
 };
 
@@ -195,7 +258,11 @@ const proposed: LotStory = {
     clock.to(today, 4, 20);
     const lot = await makeLot(story, { ...bench, code: "MW20-2604", devices: 36 });
     clock.to(today, 3, 21);
-    await readPooledRuns(story, lot, 12, 6);
+    const temperaturesC = [10, 21.5, 40];
+    await readRun(story, lot, { purpose: "sample", devices: [0, 12], temperaturesC, soakMinutes: 82 });
+    await readRun(story, lot, { purpose: "zero", devices: [12, -6], temperaturesC });
+    await readRun(story, lot, { purpose: "span", devices: [12, -6], temperaturesC: [21.5] });
+    await readRun(story, lot, { purpose: "verification", devices: [-6], temperaturesC });
     clock.to(today, 2, 9);
     const exclude = [
       { serial: "MW20-2604-00004", reason: "Cable was pinched by the chamber door; see the run's note" },
@@ -246,7 +313,9 @@ const planned: LotStory = {
 export const lotStories: readonly LotStory[] = [
   written,
   rederived,
-  quadraticLot,
+  againLot,
+  withdrawn,
+  fieldEvents,
   inReview,
   approved,
   draft,
