@@ -32,6 +32,18 @@ export async function listSetsById(
   );
 }
 
+/** Devices of a lot that a derivation left out by name. */
+export async function listExcludedDeviceIds(db: Db, lotId: string): Promise<Set<string>> {
+  const rows = await db
+    .selectFrom("derivationExclusion")
+    .innerJoin("derivation", "derivation.id", "derivationExclusion.derivationId")
+    .select("derivationExclusion.deviceId")
+    .distinct()
+    .where("derivation.lotId", "=", lotId)
+    .execute();
+  return new Set(rows.map((row) => row.deviceId));
+}
+
 /** The board that the readings of each derivation name for each device, the latest reading deciding; where they name one. */
 export async function listMeasuredBoards(
   db: Db,

@@ -3,6 +3,7 @@
 export const LEFT_OUT_REASONS = [
   "scrapped",
   "held",
+  "excluded",
   "no-coefficients",
   "undecided",
   "refused",
@@ -17,6 +18,8 @@ export type LeftOutReason = (typeof LEFT_OUT_REASONS)[number];
 export interface DeviceForPackage {
   held: boolean;
   scrapped: boolean;
+  /** Whether a derivation left it out by name. */
+  excluded: boolean;
 }
 
 /** A set as the choice sees it. */
@@ -49,7 +52,7 @@ export function chooseSet<S extends SetForPackage>(
 ): { set: S; newerUndecided: boolean } | { leftOut: LeftOutReason } {
   if (device.scrapped) return { leftOut: "scrapped" };
   if (device.held) return { leftOut: "held" };
-  if (!newest) return { leftOut: "no-coefficients" };
+  if (!newest) return { leftOut: device.excluded ? "excluded" : "no-coefficients" };
   if (!decided) return { leftOut: newest.state === "refused" ? "refused" : "undecided" };
   if (decided.state === "stale" || decided.state === "revoked") {
     return { leftOut: newest.state === "proposed" ? "undecided" : decided.state };

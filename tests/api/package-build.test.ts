@@ -1,18 +1,11 @@
 import { createHash } from "node:crypto";
 import { beforeAll, describe, expect, it } from "vitest";
-import { listNewestSets } from "@/db/queries/coefficients";
 import { buildPackage } from "@/lib/services/packages/build-package";
 import { insertAccessKey } from "../support/access-key";
 import { openTestApi, type TestApi } from "../support/api";
 import { systemContext } from "../support/jobs";
 import { PASSWORD } from "../support/people";
-import {
-  approveDerivation,
-  arrangeDerived,
-  arrangeSecondDerived,
-  type DerivedLot,
-  deriveGolden,
-} from "../support/scenario/derived";
+import { arrangeDerived, arrangeSecondDerived, type DerivedLot } from "../support/scenario/derived";
 import { publishLayout, type ScenarioPeople } from "../support/scenario/family-lot";
 import { buildGolden } from "../support/scenario/packaged";
 
@@ -32,6 +25,8 @@ const ask = (lot: string, body: object, as: "engineer" | "engineer2" = "engineer
   api.call("POST", `/lots/${lot}/packages`, { as, body });
 const get = async (id: string) => (await api.call("GET", `/packages/${id}`, { as: "engineer" })).body;
 const countPackages = async () => (await api.db.selectFrom("package").select("id").execute()).length;
+const hold = (serial: string, held: boolean) =>
+  api.db.updateTable("device").set({ held }).where("serial", "=", serial).execute();
 const sha256 = (bytes: Buffer | undefined) =>
   createHash("sha256")
     .update(bytes ?? "")
@@ -133,75 +128,6 @@ describe("building a golden lot", () => {
     expect((await get(exclusion.id)).makers).toContainEqual(expect.objectContaining({ act: "excluded" }));
   });
 });
-
-describe("version numbers", () => {
-  it("rise by a patch, or by what is asked for", async () => {
-    const [a, b, c] = [
-      await buildGolden(people, first),
-      await buildGolden(people, first, { step: "minor" }),
-      await buildGolden(people, first, { step: "major" }),
-    ];
-    const [major, minor, patch] = a.version.split(".").map(Number) as [number, number, number];
-    expect(patch).toBeGreaterThan(0);
-    expect(b.version).toBe(`${major}.${minor + 1}.0`);
-    expect(c.version).toBe(`${major + 1}.0.0`);
-  });
-
-  it("are two for two builds at once", async () => {
-    const [a, b] = await Promise.all([
-      ask(first.lot, { layout: "1.0.0" }),
-      ask(first.lot, { layout: "1.0.0" }, "engineer2"),
-    ]);
-    expect([a.status, b.status]).toEqual([202, 202]);
-    expect(a.body.version).not.toBe(b.body.version);
-    await api.runJobs();
-    expect((await get(a.body.id)).state).toBe("draft");
-    expect((await get(b.body.id)).state).toBe("draft");
-  });
-
-  it("rise by a minor where the devices changed", async () => {
-    const before = await buildGolden(people, first);
-    await hold("MW20-2609-00005", true);
-    const held = await buildGolden(people, first);
-    const [major, minor] = before.version.split(".").map(Number) as [number, number];
-    expect(held.version).toBe(`${major}.${minor + 1}.0`);
-    const body = await get(held.id);
-    expect(body.counts).toMatchObject({ devices: 27, lotDevices: 28, leftOut: { held: 1 } });
-    expect(body.checks[0]).toMatchObject({
-      code: "coverage",
-      verdict: "warn",
-      message: "27 of 28 devices are packed. Left out: 1 held (MW20-2609-00005).",
-    });
-    await hold("MW20-2609-00005", false);
-  });
-
-  it("rise by a major where the layout's major changed, and a failed build's number is not used again", async () => {
-    const source = JSON.parse(first.layout);
-    // A gain beyond this limit can't be stored: the build fails and names device and field.
-    source.fields.find((field: { name: string }) => field.name === "gain").max = 1.0001;
-    source.version = "2.0.0";
-    await publishLayout(people, JSON.stringify(source));
-    const failed = await buildGolden(people, first, { layout: "2.0.0", step: "major" });
-    const body = await get(failed.id);
-    expect(body).toMatchObject({
-      state: "failed",
-      digest: null,
-      checks: [],
-      failure: { code: "image.limit_exceeded", field: "gain", serial: expect.stringMatching(/^MW20-2609-/) },
-    });
-    for (const table of ["image", "packageFile", "packageCheck", "packageDerivation"] as const) {
-      expect(await api.db.selectFrom(table).select("packageId").where("packageId", "=", failed.id).execute()).toEqual(
-        [],
-      );
-    }
-    const next = await buildGolden(people, first, { layout: "2.0.0" });
-    const [major] = failed.version.split(".").map(Number) as [number];
-    expect(next.version).toBe(`${major}.0.1`);
-  });
-});
-
-const hold = (serial: string, held: boolean) =>
-  api.db.updateTable("device").set({ held }).where("serial", "=", serial).execute();
 
 describe("the job", () => {
   it("does nothing where the package has ended", async () => {
@@ -341,37 +267,4 @@ it("lists a lot's packages by pages, newest first, with their verdicts", async (
   expect(pages).toEqual(all.items.map((item: { id: string }) => item.id));
   expect(all.items.at(-1)).toMatchObject({ version: "1.0.0", state: "draft", checks: { pass: 8, warn: 0, fail: 0 } });
   expect((await api.call("GET", "/lots/NO-LOT/packages", { as: "auditor" })).status).toBe(404);
-});
-
-describe("what a package takes", () => {
-  it("keeps the approved set while a newer one waits, and says so; takes the newer once it is approved", async () => {
-    const newer = await deriveGolden(people, first);
-    const waiting = await buildGolden(people, first);
-    const body = await get(waiting.id);
-    expect(body.derivations).toEqual([first.derivation]);
-    expect(body.checks[0]).toMatchObject({
-      code: "coverage",
-      verdict: "warn",
-      evidence: { newerUndecided: { count: 28 } },
-    });
-    await approveDerivation(people, newer.derivation);
-    const taken = await buildGolden(people, first);
-    expect(await get(taken.id)).toMatchObject({ derivations: [newer.derivation], counts: { devices: 28 } });
-  });
-
-  it("leaves out revoked and scrapped devices", async () => {
-    const lot = await api.db.selectFrom("lot").select("id").where("code", "=", first.lot).executeTakeFirstOrThrow();
-    const [newest] = await listNewestSets(api.db, lot.id, { serial: "MW20-2609-00009" });
-    await api.call("POST", `/derivations/${newest?.derivationId}/decisions`, {
-      as: "reviewer",
-      body: { decision: "revoke", serials: ["MW20-2609-00009"], reason: "Reader was off", password: PASSWORD },
-    });
-    await api.db.updateTable("device").set({ scrapped: true }).where("serial", "=", "MW20-2609-00010").execute();
-    const { id } = await buildGolden(people, first);
-    const body = await get(id);
-    expect(body.counts.leftOut).toEqual({ revoked: 1, scrapped: 1 });
-    expect(body.checks[0].message).toBe(
-      "26 of 28 devices are packed. Left out: 1 scrapped (MW20-2609-00010); 1 with revoked coefficients (MW20-2609-00009).",
-    );
-  });
 });

@@ -2,6 +2,7 @@
 export const leftOutWords: Record<string, string> = {
   scrapped: "scrapped",
   held: "held",
+  excluded: "excluded from the derivation",
   "no-coefficients": "without coefficients",
   undecided: "coefficients still to be decided",
   refused: "coefficients refused",

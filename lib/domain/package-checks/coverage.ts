@@ -16,6 +16,7 @@ export interface CoverageFacts {
 const WORDS: Record<LeftOutReason, string> = {
   scrapped: "scrapped",
   held: "held",
+  excluded: "excluded from the derivation",
   "no-coefficients": "without coefficients",
   undecided: "with coefficients still to be decided",
   refused: "with refused coefficients only",

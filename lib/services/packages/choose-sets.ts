@@ -3,7 +3,7 @@ import { byCodeUnits } from "@/builders/bundle/manifest";
 import type { Db } from "@/db/executor";
 import { listNewestSets, type NewestSetRow } from "@/db/queries/coefficients";
 import { type DeviceRow, listAllDevices } from "@/db/queries/devices";
-import { listMeasuredBoards } from "@/db/queries/package-inputs";
+import { listExcludedDeviceIds, listMeasuredBoards } from "@/db/queries/package-inputs";
 import { chooseSet, type LeftOutReason, type PackageRequirements } from "@/lib/domain/package-selection";
 
 /** One device of a package and the set that it carries: everything that a build repeats from. */
@@ -31,6 +31,7 @@ export async function chooseSets(db: Db, lotId: string, needs: PackageRequiremen
   const devices = await listAllDevices(db, lotId);
   const newest = bySerial(await listNewestSets(db, lotId));
   const decided = bySerial(await listNewestSets(db, lotId, { states: ["approved", "stale", "revoked"] }));
+  const excludedIds = await listExcludedDeviceIds(db, lotId);
   const selection: Selection = {
     lotDevices: devices.length,
     packed: [],
@@ -41,7 +42,8 @@ export async function chooseSets(db: Db, lotId: string, needs: PackageRequiremen
   const taken: { device: DeviceRow; set: NewestSetRow }[] = [];
   for (const device of devices.sort((a, b) => byCodeUnits(a.serial, b.serial))) {
     const { serial } = device;
-    const choice = chooseSet(device, newest.get(serial), decided.get(serial), needs);
+    const excluded = excludedIds.has(device.id);
+    const choice = chooseSet({ ...device, excluded }, newest.get(serial), decided.get(serial), needs);
     if ("leftOut" in choice) selection.leftOut.push({ serial, reason: choice.leftOut });
     else {
       taken.push({ device, set: choice.set });

@@ -18,7 +18,7 @@ export interface BuiltPackage {
 export interface BuildChange {
   /** Version of the layout; the golden lot's own where left out. */
   layout?: string;
-  step?: "major" | "minor" | "patch";
+  step?: "major" | "minor" | "patch" | undefined;
   /** Who builds; the scenario's engineer where left out. */
   by?: PersonCtx;
 }

@@ -1,7 +1,7 @@
 import { describe, expect, it } from "vitest";
 import { chooseSet, type SetForPackage } from "@/lib/domain/package-selection";
 
-const active = { held: false, scrapped: false };
+const active = { held: false, scrapped: false, excluded: false };
 const needs = { order: 1 as const, familyRevisionId: "rev" };
 const set = (change: Partial<SetForPackage> = {}): SetForPackage => ({
   state: "approved",
@@ -43,9 +43,10 @@ describe("which set a package takes of a device", () => {
     const revision2 = set({ familyRevisionId: "other" });
     expect(chooseSet(active, order2, order2, needs)).toEqual({ leftOut: "other-order" });
     expect(chooseSet(active, revision2, revision2, needs)).toEqual({ leftOut: "other-revision" });
-    expect(chooseSet({ held: true, scrapped: false }, set(), set(), needs)).toEqual({ leftOut: "held" });
-    expect(chooseSet({ held: true, scrapped: true }, set(), set(), needs)).toEqual({ leftOut: "scrapped" });
+    expect(chooseSet({ ...active, held: true }, set(), set(), needs)).toEqual({ leftOut: "held" });
+    expect(chooseSet({ ...active, held: true, scrapped: true }, set(), set(), needs)).toEqual({ leftOut: "scrapped" });
     expect(chooseSet(active, undefined, undefined, needs)).toEqual({ leftOut: "no-coefficients" });
+    expect(chooseSet({ ...active, excluded: true }, undefined, undefined, needs)).toEqual({ leftOut: "excluded" });
     expect(chooseSet(active, set({ state: "proposed" }), undefined, needs)).toEqual({ leftOut: "undecided" });
     expect(chooseSet(active, set({ state: "refused" }), undefined, needs)).toEqual({ leftOut: "refused" });
   });
