@@ -35,7 +35,9 @@ export function CheckList({ checks, waivers }: { checks: readonly ShownCheck[]; 
             key={check.code}
             className="grid grid-cols-[4.75rem_1fr] gap-x-3 border-b border-rule/55 py-1.5 text-sm last:border-0"
           >
-            <StateMark {...stateOf("check", verdictOf(check, waivers))} />
+            <span>
+              <StateMark {...stateOf("check", verdictOf(check, waivers))} />
+            </span>
             <span className="min-w-0">
               {checkName(check.code)}
               <span className="block text-xs text-ink-soft">{check.message}</span>

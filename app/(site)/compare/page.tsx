@@ -1,0 +1,41 @@
+import type { Metadata } from "next";
+import { TabLinks } from "@/app/_components/tab-links";
+import { TitleRow } from "@/app/_components/title-row";
+import { pageContext } from "@/lib/http/page-context";
+import { type Chosen, kindOf } from "./chosen";
+import { CompareImages } from "./compare-images";
+import { CompareLayouts } from "./compare-layouts";
+import { ComparePackages } from "./compare-packages";
+
+export const metadata: Metadata = { title: "Compare" };
+
+const notes = {
+  packages: "Two packages, serial by serial: values old → new, and the bytes",
+  images: "Two images side by side, of one serial in two packages or of two serials",
+  layouts: "Two layouts of a family, and the version step that their differences ask for",
+} as const;
+
+export default async function ComparePage({ searchParams }: { searchParams: Promise<Chosen> }) {
+  const ctx = await pageContext();
+  const chosen = await searchParams;
+  const kind = kindOf(chosen);
+  return (
+    <>
+      <TitleRow title="Compare" note={notes[kind]} />
+      <TabLinks
+        label="What to compare"
+        current={`/compare?kind=${kind}`}
+        links={[
+          { href: "/compare?kind=packages", name: "Packages" },
+          { href: "/compare?kind=images", name: "Images" },
+          { href: "/compare?kind=layouts", name: "Layouts" },
+        ]}
+      />
+      <div className="flex flex-col gap-[18px]">
+        {kind === "packages" ? <ComparePackages ctx={ctx} chosen={chosen} /> : null}
+        {kind === "images" ? <CompareImages ctx={ctx} chosen={chosen} /> : null}
+        {kind === "layouts" ? <CompareLayouts ctx={ctx} chosen={chosen} /> : null}
+      </div>
+    </>
+  );
+}
