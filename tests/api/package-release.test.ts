@@ -5,7 +5,7 @@ import { canonicalJson } from "@/lib/domain/canonical-json";
 import { insertAccessKey } from "../support/access-key";
 import { openTestApi, type TestApi } from "../support/api";
 import { PASSWORD, type PersonName } from "../support/people";
-import { arrangeDerived, arrangeSecondDerived, type DerivedLot } from "../support/scenario/derived";
+import { approveDerivation, arrangeDerived, arrangeSecondDerived, type DerivedLot } from "../support/scenario/derived";
 import type { ScenarioPeople } from "../support/scenario/family-lot";
 import { approveSubmitted, arrangeApproved, arrangeReleased, submitBuilt } from "../support/scenario/packaged";
 
@@ -87,6 +87,58 @@ describe("release", () => {
       .executeTakeFirstOrThrow();
     return { rows: { released, data: JSON.parse(released.canonical).data } };
   }
+
+  it("names the equipment behind the readings; the manifest names the board that was measured", async () => {
+    const chamber = {
+      code: "CH-1",
+      kind: "chamber",
+      certificate: "C-77",
+      calibratedUntil: "2031-01-01",
+      uncertainty: 0.2,
+    };
+    expect((await api.call("POST", "/equipment", { as: "engineer", body: chamber })).status).toBe(201);
+    await api.call("POST", "/lots", { as: "engineer", body: { code: "BOARDS", family: "MW-20", firmware: "2.3.0" } });
+    const [header, ...rows] = first
+      .read("readings-sample.csv")
+      .toString()
+      .trim()
+      .replaceAll("2609", "26HW")
+      .split("\n");
+    const csv = [`${header},hardware_id`, ...rows.map((row) => `${row},B-${row.split(",")[0]}`)].join("\n");
+    const run = await api.call("POST", "/lots/BOARDS/runs", {
+      as: "engineer",
+      body: csv,
+      headers: { "content-type": "text/csv" },
+      query: { purpose: "sample", equipment: "CH-1", addDevices: true },
+    });
+    expect(run.status).toBe(201);
+    const options = { method: "individual", order: 1, runs: [run.body.id] };
+    const derivation = await api.call("POST", "/lots/BOARDS/derivations", { as: "engineer", body: options });
+    await api.runJobs();
+    await approveDerivation(people, derivation.body.id);
+    // A board was changed after the measurement: the device is packed, and the check says so.
+    await api.db.updateTable("device").set({ hardwareId: "OTHER" }).where("serial", "=", "MW20-26HW-00002").execute();
+    const released = await arrangeReleased(people, { ...first, lot: "BOARDS", derivation: derivation.body.id });
+    const manifest = await api.db
+      .selectFrom("packageFile")
+      .select("content")
+      .where("packageId", "=", released.id)
+      .where("name", "=", "manifest.json")
+      .executeTakeFirstOrThrow();
+    const { images, provenRange } = JSON.parse(manifest.content.toString("utf8"));
+    expect(images).toHaveLength(10);
+    for (const image of images) expect(image.hardwareId).toBe(`B-${image.serial}`);
+    expect(provenRange).not.toBeNull();
+    const { checks } = await get(released.id);
+    expect(checks[0]).toMatchObject({
+      code: "coverage",
+      verdict: "warn",
+      evidence: { otherBoard: { serials: ["MW20-26HW-00002"] } },
+    });
+    const [period] = await periodsOf(released.id);
+    const { code, ...facts } = chamber;
+    expect(JSON.parse(String(period?.releaseDocument)).equipment).toEqual([{ run: run.body.id, code, ...facts }]);
+  });
 
   it("supersedes what was live and raises the lot's sequence", async () => {
     const one = await arrangeReleased(people, first);

@@ -49,7 +49,7 @@ export class PackageChecker {
   #faultCount = 0;
   readonly #hexFaults: HexFault[] = [];
   readonly #predictions: TwinPrediction[] = [];
-  /** Derivation of each device that was looked at, to count those of imports. */
+  /** How many devices each derivation gave the values of. */
   readonly #devicesOf = new Map<string, number>();
   #devices = 0;
 

@@ -10,7 +10,7 @@ import type { PersonCtx } from "@/lib/services/context";
 import { appendEvent } from "@/lib/services/ledger/append-event";
 import { ensureSigningKey } from "@/lib/services/signing-keys/current-signing-key";
 import { packageEventData } from "./package-event";
-import { makeReleaseRecord } from "./release-document";
+import { readReleaseFacts } from "./release-document";
 
 export interface GoLive {
   kind: "release" | "reinstatement";
@@ -35,15 +35,17 @@ export async function goLive(ctx: PersonCtx, trx: Trx, pkg: PackageRow, input: G
   await movePackage(trx, pkg.id, { state: "live" });
   const key = await ensureSigningKey(trx, at);
   await enqueue(trx, "assemble-bundle", { packageId: pkg.id });
-  // From here to commit the ledger stands still, so that the head named in the release is the newest event before its own.
-  const head = await lockLedgerHead(trx);
-  const ledgerHead = head?.hash.toString("hex") ?? FIRST_PREVIOUS;
-  const facts = { sequence, kind, reason, releasedAt: at, ledgerHead, keyId: key.id };
-  const record = await makeReleaseRecord(trx, pkg, {
-    ...facts,
+  const facts = await readReleaseFacts(trx, pkg, {
+    sequence,
+    kind,
+    reason,
+    releasedAt: at,
+    keyId: key.id,
     ...(reinstatementId !== undefined && { reinstatementId }),
   });
-  const document = Buffer.from(releaseBytes(record));
+  // From here to commit the ledger stands still, so that the head named in the release is the newest event before its own.
+  const head = await lockLedgerHead(trx);
+  const document = Buffer.from(releaseBytes({ ...facts, ledgerHead: head?.hash.toString("hex") ?? FIRST_PREVIOUS }));
   const signature = Buffer.from(signRelease(document, key.privatePem));
   await insertLivePeriod(trx, {
     id: ctx.newId(),

@@ -17,15 +17,20 @@ export interface ReleaseFacts {
   kind: ReleaseRecord["kind"];
   reason: string | null;
   releasedAt: Date;
-  /** Hash of the ledger's newest event, lower-case hex. */
-  ledgerHead: string;
   keyId: string;
   /** Given where an earlier release goes live again. */
   reinstatementId?: string;
 }
 
-/** Everything that `release.json` says about a package that goes live (contract, section 5). */
-export async function makeReleaseRecord(db: Db, pkg: PackageRow, facts: ReleaseFacts): Promise<ReleaseRecord> {
+/**
+ * Everything that `release.json` says about a package that goes live (contract, section 5) but the ledger's head, which is
+ * known only once nobody else can append.
+ */
+export async function readReleaseFacts(
+  db: Db,
+  pkg: PackageRow,
+  facts: ReleaseFacts,
+): Promise<Omit<ReleaseRecord, "ledgerHead">> {
   const derivationIds = await listPackageDerivationIds(db, pkg.id);
   const sums = await getPackageFile(db, pkg.id, "SHA256SUMS");
   const waivers = await listWaivers(db, pkg.id);
@@ -64,7 +69,6 @@ export async function makeReleaseRecord(db: Db, pkg: PackageRow, facts: ReleaseF
     ),
     acknowledgements: await perDerivation(derivationIds, (derivation) => acknowledgementsOf(db, derivation)),
     equipment: await equipmentOf(db, derivationIds),
-    ledgerHead: facts.ledgerHead,
     keyId: facts.keyId,
   };
 }
