@@ -26,7 +26,7 @@ const words = { good: "done", wait: "due", idle: "not begun", bad: "blocked" };
 /** A lot's thread: progress and navigation in one line of six stitches. */
 export function Thread({ stitches, current }: ThreadProps) {
   return (
-    <nav aria-label="Thread of the lot" className="mb-5 overflow-x-auto border-y border-rule">
+    <nav aria-label="Thread of the lot" className="relative mb-5 overflow-x-auto border-y border-rule">
       <ol className="grid min-w-[680px] grid-cols-6 bg-[linear-gradient(var(--rule),var(--rule))] bg-size-[100%_1px] bg-position-[0_19px] bg-no-repeat">
         {stitches.map((stitch, index) => (
           <li key={stitchNames[index]} className={index === current ? "shadow-[inset_0_-2px_var(--copper)]" : ""}>

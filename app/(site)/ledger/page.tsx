@@ -56,7 +56,7 @@ export default async function LedgerPage({ searchParams }: PageProps) {
         }
       />
       <div className="flex flex-col gap-[18px]">
-        <div className="grid items-start gap-[18px] lg:grid-cols-2">
+        <div className="grid grid-cols-1 items-start gap-[18px] lg:grid-cols-2">
           <Card title="The chain">
             <Facts
               facts={[
@@ -81,7 +81,7 @@ export default async function LedgerPage({ searchParams }: PageProps) {
               <TextInput label="Serial, code or id" name="subject" defaultValue={subject} code maxLength={200} />
             </div>
             <TextInput label="From" name="from" type="date" defaultValue={from} />
-            <TextInput label="to" name="to" type="date" defaultValue={to} />
+            <TextInput label="To" name="to" type="date" defaultValue={to} />
             <Button type="submit" look="outline">
               Show
             </Button>
@@ -94,7 +94,7 @@ export default async function LedgerPage({ searchParams }: PageProps) {
             rowKey="seq"
             rowHref="/ledger/{seq}"
             columns={[
-              { key: "seq", header: "Place", format: { as: "count" } },
+              { key: "seq", header: "Place", format: { as: "count" }, align: "left" },
               { key: "at", header: "When", unit: "UTC", format: { as: "time" } },
               { key: "action", header: "What" },
               { key: "subject", header: "To what", format: { as: "code" } },

@@ -27,7 +27,7 @@ export default async function TodayPage() {
         title="Today"
         note={`${formatDate(ctx.now())} · ${mine === 0 ? "nothing waits for you" : `${formatNumberOf(mine, "thing waits", "things wait")} for you`}`}
       />
-      <div className="grid items-start gap-[18px] lg:grid-cols-2">
+      <div className="grid grid-cols-1 items-start gap-[18px] lg:grid-cols-2">
         <div className="flex min-w-0 flex-col gap-[18px]">
           <Card title="Waits for you">
             {mine === 0 ? (

@@ -42,7 +42,7 @@ export default async function TracePage({ searchParams }: PageProps) {
           ) : undefined
         }
       />
-      <div className="grid items-start gap-[18px] lg:grid-cols-2">
+      <div className="grid grid-cols-1 items-start gap-[18px] lg:grid-cols-2">
         <div className="flex min-w-0 flex-col gap-[18px]">
           <Card>
             <SerialField asked={asked} />

@@ -46,7 +46,7 @@ export default async function EventPage({ params }: PageProps) {
           </span>
         }
       />
-      <div className="grid items-start gap-[18px] lg:grid-cols-2">
+      <div className="grid grid-cols-1 items-start gap-[18px] lg:grid-cols-2">
         <Card title="What happened">
           <dl className="grid grid-cols-[auto_1fr] gap-x-5 gap-y-1.5 text-sm">
             <dt className="text-ink-soft">To what</dt>

@@ -46,7 +46,7 @@ export default async function StationPage({ params }: PageProps) {
         actions={admin ? <StationActions station={station} families={families} /> : undefined}
       />
       <div className="flex flex-col gap-[18px]">
-        <div className="grid items-start gap-[18px] lg:grid-cols-[minmax(240px,1fr)_minmax(0,2fr)]">
+        <div className="grid grid-cols-1 items-start gap-[18px] lg:grid-cols-[minmax(240px,1fr)_minmax(0,2fr)]">
           <Card title="May write">
             <ul className="flex flex-wrap gap-x-4 gap-y-1">
               {station.families.map((code) => (

@@ -13,7 +13,7 @@ export function DriftCard({ curves }: { curves: Curves }) {
   const loaded = curves.spanPpm.after.length > 0;
   return (
     <Card title="Drift, before and after" note="from its own readings">
-      <div className={`grid gap-5 ${loaded ? "xl:grid-cols-2" : ""}`}>
+      <div className={`grid grid-cols-1 gap-5 ${loaded ? "xl:grid-cols-2" : ""}`}>
         <LineChart
           label="Drift of the unloaded output before and after compensation"
           xTitle="chamber, °C"

@@ -14,7 +14,7 @@ export function limitsOf({ trace, origin, derived }: LimitsInput): string[] {
   const range = origin?.derivation.provenRange;
   const proof = origin?.runs.some((run) => run.purpose === "proof" && run.own);
   return [
-    "It tells what a station read back when it wrote, not what the memory holds today. A dump read from the device does.",
+    "What the memory holds today: it tells what a station read back when it wrote. A dump read from the device tells the rest.",
     trace.hardwareId
       ? "That this board still sits on the cell that was measured. The hardware id tells the board, not the cell under it."
       : "That this board sits on the cell that was measured: no hardware id was ever reported, so a swapped board would not show.",

@@ -45,7 +45,7 @@ export default async function SerialPage({ params }: PageProps) {
         note={<Whose trace={trace} linked={reader} />}
       />
       <RememberSerial serial={trace.serial} />
-      <div className="grid items-start gap-[18px] lg:grid-cols-[minmax(0,1fr)_minmax(340px,420px)] lg:grid-rows-[auto_1fr]">
+      <div className="grid grid-cols-1 items-start gap-[18px] lg:grid-cols-[minmax(0,1fr)_minmax(340px,420px)] lg:grid-rows-[auto_1fr]">
         <div className="flex min-w-0 flex-col gap-[18px]">
           {trace.held ? (
             <Notice tone="bad" title="Held">

@@ -33,7 +33,7 @@ export function SourceForm({ kind, name, choices, value, from, to }: SourceFormP
       {kind === "equipment" ? (
         <>
           <TextInput label="Readings from" name="from" type="date" defaultValue={from} />
-          <TextInput label="to" name="to" type="date" defaultValue={to} />
+          <TextInput label="To" name="to" type="date" defaultValue={to} />
         </>
       ) : null}
       <Button type="submit" look="primary">

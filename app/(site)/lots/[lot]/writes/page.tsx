@@ -43,7 +43,7 @@ export default async function WritesPage({ params }: PageProps) {
       />
       <LotThread thread={thread} current="written" />
       <div className="flex flex-col gap-[18px]">
-        <div className="grid items-start gap-[18px] lg:grid-cols-[minmax(0,2fr)_minmax(300px,1fr)]">
+        <div className="grid grid-cols-1 items-start gap-[18px] lg:grid-cols-[minmax(0,2fr)_minmax(300px,1fr)]">
           <Card title="Devices verified over time">
             {progress.anyPackage.length > 0 ? (
               <ProgressChart progress={progress} />

@@ -17,8 +17,10 @@ export function ProgressChart({ progress }: { progress: WriteProgress }) {
   const unitMs = inDays ? 24 * hourMs : hourMs;
   const points = (curve: readonly ProgressPoint[]) =>
     curve.map(({ at, devices }) => [(new Date(at).getTime() - start) / unitMs, devices] as const);
+  const onlyLive =
+    live !== null && livePackage.length === anyPackage.length && livePackage[0]?.at === anyPackage[0]?.at;
   const series: LineSeries[] = [
-    { name: "with any release", tone: "ink", dashed: true, points: points(anyPackage) },
+    ...(onlyLive ? [] : [{ name: "with any release", tone: "ink" as const, dashed: true, points: points(anyPackage) }]),
     ...(live && livePackage.length > 0
       ? [{ name: `with ${live.version}, live`, tone: "verdigris" as const, points: points(livePackage) }]
       : []),

@@ -183,7 +183,7 @@ function Happened({ trace }: { trace: DeviceTrace }) {
           {shown.map((entry, index) => (
             // biome-ignore lint/suspicious/noArrayIndexKey: two things may happen in one moment
             <tr key={index} className="border-b border-rule/55 align-top">
-              <td className="py-0.5 pr-4 whitespace-nowrap text-ink-soft">{formatDateTime(entry.at)}</td>
+              <td className="w-px py-0.5 pr-4 whitespace-nowrap text-ink-soft">{formatDateTime(entry.at)}</td>
               <td className="py-0.5">
                 {entry.what}
                 {entry.who ? <span className="text-ink-soft">, {entry.who}</span> : null}
