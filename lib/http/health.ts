@@ -7,7 +7,7 @@ import packageJson from "@/package.json";
 import type { HealthReply } from "@/schemas/api/health";
 
 /** A part that has not answered by then is down. */
-const ANSWER_WITHIN_MS = 2_500;
+const ANSWER_WITHIN_MS = 4_000;
 
 let looking: Promise<Health> | undefined;
 
