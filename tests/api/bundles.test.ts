@@ -295,6 +295,31 @@ describe("a withdrawn package", () => {
   });
 });
 
+describe("a reinstated package", () => {
+  it("has a bundle of its own with the sequence of its going live again, over the same images", async () => {
+    const before = readZip((await bundleOf(first.id)).body);
+    const asked = await api.call("POST", `/lots/${lot.lot}/reinstatements`, {
+      as: "engineer",
+      body: { package: first.id, reason: "1.0.1 was withdrawn", password: PASSWORD },
+    });
+    const decided = await api.call("POST", `/reinstatements/${asked.body.id}/decisions`, {
+      as: "reviewer",
+      body: { decision: "approve", password: PASSWORD },
+    });
+    expect([asked.status, decided.status]).toEqual([201, 200]);
+    const live = await stationBundle(first.id);
+    expect(live.status).toBe(200);
+    const after = readZip(live.body);
+    const record = JSON.parse(Buffer.from(after.get("release.json") as Uint8Array).toString());
+    expect(record).toMatchObject({ sequence: 4, kind: "reinstatement", version: "1.0.0" });
+    expect(verifyBundle(live.body).ok).toBe(true);
+    for (const [path, content] of before) {
+      if (path.startsWith("release.")) continue;
+      expect(Buffer.from(after.get(path) as Uint8Array).equals(content), path).toBe(true);
+    }
+  });
+});
+
 describe("POST /packages/{id}/rebuild", () => {
   const rebuildOf = async (id: string) => (await api.call("GET", `/packages/${id}`, { as: "engineer" })).body.rebuild;
 
