@@ -14,6 +14,7 @@ import {
   type StartDatabase,
 } from "@/lib/commands/start-database";
 import { type SupervisedProcess, supervise } from "@/lib/commands/supervised-process";
+import { DEMO_PASSWORD } from "@/lib/domain/demo-accounts";
 import { actionsKey, authSecret, childEnv, type Env, env, setEnv, signingKeyFile } from "@/lib/env";
 import { AppError } from "@/lib/errors";
 
@@ -21,7 +22,6 @@ const FREE_BYTES_NEEDED = 300_000_000;
 const READY_WITHIN_MS = 60_000;
 const CRASHES_BEFORE_GIVING_UP = 3;
 const DATABASE_LOOK_MS = 2_000;
-const DEMO_PASSWORD = "trim-demo-2026";
 
 export default async function start(_args: string[], signal: AbortSignal): Promise<number> {
   const settings = env();

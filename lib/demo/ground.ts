@@ -1,4 +1,6 @@
 /** What every lot of the demo stands on: families, layouts and equipment. */
+
+import { DEMO_PASSWORD } from "@/lib/domain/demo-accounts";
 import { addEquipment } from "@/lib/services/equipment/keep-equipment";
 import { addFamily } from "@/lib/services/families/add-family";
 import { decideFamilyRevision, submitFamilyRevision } from "@/lib/services/families/decide-family-revision";
@@ -8,7 +10,6 @@ import type { FamilyDocument } from "@/schemas/api/families";
 import type { LayoutDocument } from "@/schemas/documents/layout";
 import { benchFamily, floorFamily } from "./families";
 import { benchLayouts, floorLayout } from "./layouts";
-import { DEMO_PASSWORD } from "./people";
 import type { Story } from "./story";
 
 const approve = { decision: "approve", password: DEMO_PASSWORD } as const;

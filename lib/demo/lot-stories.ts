@@ -1,4 +1,6 @@
 /** What happened to each lot of the demo, in the order of time: the clock never goes back. */
+
+import { DEMO_PASSWORD } from "@/lib/domain/demo-accounts";
 import { recordDeviceEvent } from "@/lib/services/devices/record-device-event";
 import { withdrawPackage } from "@/lib/services/packages/release-package";
 import { askReinstatement } from "@/lib/services/reinstatements/ask-reinstatement";
@@ -6,7 +8,6 @@ import { benchFamily, floorFamily } from "./families";
 import { askForLayout, publishLayout } from "./ground";
 import { benchLayouts } from "./layouts";
 import { approveSets, type DemoLot, deriveLot, makeLot, readPooledRuns, readRun, refuseSets } from "./lot";
-import { DEMO_PASSWORD } from "./people";
 import { approvePackage, askForReview, buildLot, release } from "./release";
 import { addDemoStation, type DemoStation, type Mishaps, writeDevices } from "./stations";
 import type { Story } from "./story";

@@ -1,5 +1,6 @@
 /** A lot of the demo, taken step by step through the services as its people would. */
 import type { Purpose } from "@/lib/domain/compensation/types";
+import { DEMO_PASSWORD } from "@/lib/domain/demo-accounts";
 import { decideDerivation } from "@/lib/services/derivations/decide-derivation";
 import { getDerivationView } from "@/lib/services/derivations/get-derivation";
 import { startDerivation } from "@/lib/services/derivations/start-derivation";
@@ -9,7 +10,7 @@ import { uploadRun } from "@/lib/services/runs/upload-run";
 import { drawDevice, type ModelDevice } from "./device-model";
 import { DEMO_SEED, type DemoFamily } from "./families";
 import { EQUIPMENT_OF } from "./ground";
-import { DEMO_PASSWORD, type DemoPersonName } from "./people";
+import type { DemoPersonName } from "./people";
 import { type Random, seededRandom } from "./random";
 import { type RunPlan, writeRunCsv } from "./readings-csv";
 import type { Story } from "./story";

@@ -1,11 +1,10 @@
 import { v7 } from "uuid";
 import type { Db } from "@/db/executor";
+import { DEMO_DOMAIN, DEMO_PASSWORD } from "@/lib/domain/demo-accounts";
 import type { Role } from "@/lib/domain/roles";
 import { appendEvent } from "@/lib/services/ledger/append-event";
 import { hashPassword } from "@/lib/services/people/password";
 import type { DemoClock } from "./story";
-
-export const DEMO_PASSWORD = "trim-demo-2026";
 
 /** Accounts at marram.example with their names and roles, in the order in which a start prints them. */
 const ACCOUNTS = {
@@ -34,7 +33,7 @@ export async function addDemoPeople(db: Db, clock: DemoClock): Promise<DemoPeopl
     const id = clock.newId();
     await db.transaction().execute(async (trx) => {
       const at = clock.now();
-      const email = `${account}@marram.example`;
+      const email = `${account}@${DEMO_DOMAIN}`;
       await trx.insertInto("person").values({ id, email, name, passwordHash, createdAt: at }).execute();
       await trx
         .insertInto("roleGrant")

@@ -1,13 +1,13 @@
 /** Packages of the demo: built, waived, submitted, approved and released by the people whose work each is. */
 import { listChecks, listWaivers } from "@/db/queries/checks";
 import { getPackage } from "@/db/queries/packages";
+import { DEMO_PASSWORD } from "@/lib/domain/demo-accounts";
 import { decidePackage } from "@/lib/services/packages/decide-package";
 import { releasePackage } from "@/lib/services/packages/release-package";
 import { startBuild } from "@/lib/services/packages/start-build";
 import { submitPackage } from "@/lib/services/packages/submit-package";
 import { waiveCheck } from "@/lib/services/packages/waive-check";
 import type { DemoLot } from "./lot";
-import { DEMO_PASSWORD } from "./people";
 import type { Story } from "./story";
 
 const password = DEMO_PASSWORD;
