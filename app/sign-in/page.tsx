@@ -1,6 +1,6 @@
 import type { Metadata } from "next";
 import { redirect } from "next/navigation";
-import { MakerMark } from "@/app/_components/frame/maker-mark";
+import { SignedOutFrame } from "@/app/_components/frame/signed-out-frame";
 import { Notice } from "@/app/_components/notice";
 import { findCurrentPerson } from "@/lib/auth/current-person";
 import { localPath } from "@/lib/domain/local-path";
@@ -22,22 +22,16 @@ export default async function SignInPage({ searchParams }: { searchParams: Promi
   if (await findCurrentPerson()) redirect(goTo);
   const accounts = await listDemoAccounts(newContext({ kind: "public" }));
   return (
-    <main className="mx-auto flex max-w-[880px] flex-col gap-6 px-4 py-8 md:py-16">
-      <div>
-        <p className="flex items-center gap-2.5 text-lg font-bold tracking-[0.01em]">
-          <MakerMark size={30} />
-          Trimwright
-        </p>
-        <p className="mt-1.5 max-w-[60ch] text-ink-soft">
-          Coefficients, parameter images and releases of digital load cells, traced for every serial.
-        </p>
-      </div>
+    <SignedOutFrame wide={accounts.length > 0}>
+      <p className="-mt-4 max-w-[60ch] text-ink-soft">
+        Coefficients, parameter images and releases of digital load cells, traced for every serial.
+      </p>
       {out ? (
         <Notice tone="good" title="Signed out">
           <p>This browser's session has ended.</p>
         </Notice>
       ) : null}
       <SignInForm goTo={goTo} refused={refusalOf(first(error))} accounts={accounts} />
-    </main>
+    </SignedOutFrame>
   );
 }

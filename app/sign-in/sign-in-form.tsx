@@ -63,7 +63,7 @@ export function SignInForm({ goTo, refused, accounts }: SignInFormProps) {
   const wordsInField = problem?.code === "auth.code_wrong" ? problem.detail : undefined;
   return (
     <div
-      className={`grid items-start gap-[18px] ${accounts.length > 0 ? "md:grid-cols-[minmax(0,400px)_minmax(0,1fr)]" : "max-w-[400px]"}`}
+      className={`grid items-start gap-[18px] ${accounts.length > 0 ? "md:grid-cols-[minmax(0,400px)_minmax(0,1fr)]" : ""}`}
     >
       <Card>
         <h1 className="mb-3 text-lg">Sign in</h1>
