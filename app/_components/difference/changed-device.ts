@@ -20,6 +20,8 @@ export interface ComparedField {
   unit: string | null;
   /** Shown at once; the others can be chosen. */
   shown: boolean;
+  /** A difference, in `unit`, whose decimals the column's figures have; each its own where it is left out. */
+  least?: number;
 }
 
 export const changeMarks: Record<ChangeKind, StateMarkProps> = {
@@ -30,11 +32,11 @@ export const changeMarks: Record<ChangeKind, StateMarkProps> = {
 };
 
 /** The row of a serial: beside the answer's members, each field by its name, at full precision and as text. */
-export function rowOfChange(item: Row): Row {
+export function rowOfChange(item: Row, least: ReadonlyMap<string, number>): Row {
   const { fields, bytes } = item as unknown as ChangedDevice;
   const values: Row = {};
   for (const { name, ...change } of fields) {
-    const text = formatFieldChange(change);
+    const text = formatFieldChange(change, least.get(name));
     values[name] = { ...change, shown: `${text.from ?? "none"} → ${text.to ?? "none"}`, text, step: stepOf(change) };
   }
   return { ...item, values, bytesChanged: bytes.length };

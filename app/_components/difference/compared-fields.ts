@@ -27,7 +27,9 @@ export function changedParameters(
 
 /** Columns of the table: the changed parameters at once, everything else of the layout on demand. */
 export function comparedFields(summary: readonly FieldSummary[], layout: LayoutDocument): ComparedField[] {
-  const changed = changedParameters(summary, layout).map((field) => field.name);
+  const parameters = changedParameters(summary, layout);
+  const changed = parameters.map((field) => field.name);
+  const least = new Map(parameters.map((field) => [field.name, leastOf(field)]));
   const names = new Map<string, string | null>(layout.fields.map((field) => [field.name, field.unit ?? null]));
   for (const field of summary) if (!names.has(field.name)) names.set(field.name, field.unit);
   const order = [...changed, ...[...names.keys()].filter((name) => !changed.includes(name))];
@@ -35,5 +37,13 @@ export function comparedFields(summary: readonly FieldSummary[], layout: LayoutD
     name,
     unit: names.get(name) ?? null,
     shown: changed.indexOf(name) >= 0 && changed.indexOf(name) < SHOWN_AT_ONCE,
+    least: least.get(name),
   }));
+}
+
+/** The lesser of the extreme steps, in the field's unit; undefined where steps say nothing. */
+function leastOf({ stepsMin, stepsMax, scale }: FieldSummary & { scale: number | null }): number | undefined {
+  if (stepsMin === null || stepsMax === null || scale === null) return undefined;
+  const sizes = [Math.abs(stepsMin), Math.abs(stepsMax)].filter((size) => size > 0);
+  return sizes.length > 0 ? Math.min(...sizes) * scale : undefined;
 }

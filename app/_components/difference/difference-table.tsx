@@ -36,13 +36,19 @@ export function DifferenceTable({ endpoint, fields, opened, onOpen }: Difference
     ],
     [fields],
   );
+  const toRow = useMemo(() => {
+    const least = new Map(
+      fields.flatMap((field) => (field.least === undefined ? [] : [[field.name, field.least] as const])),
+    );
+    return (item: Row) => rowOfChange(item, least);
+  }, [fields]);
   return (
     <DataTable
       name="changed serials"
       urlName="changes"
       endpoint={endpoint}
       rowKey="serial"
-      toRow={rowOfChange}
+      toRow={toRow}
       columns={columns}
       opened={opened}
       onOpen={onOpen}

@@ -55,17 +55,21 @@ export interface FieldChangeText {
   lsb?: string;
 }
 
-/** A change of one field in words and figures, with as many decimals as it takes to see it. */
-export function formatFieldChange({ from, to, unit, steps }: FieldChange): FieldChangeText {
+/**
+ * A change of one field in words and figures, with as many decimals as it takes to see it.
+ * @param least a difference in the field's unit whose decimals are used instead, so that a column of them lines up.
+ */
+export function formatFieldChange({ from, to, unit, steps }: FieldChange, least?: number): FieldChangeText {
   const difference = typeof from === "number" && typeof to === "number" ? to - from : null;
-  const digits = difference === null ? 0 : digitsToSee(toEngineering(difference, unit).value);
+  const seen = least ?? difference;
+  const digits = seen === null ? 0 : digitsToSee(toEngineering(seen, unit).value);
   const text = (value: number | string | null) => (value === null ? null : formatField(value, unit, digits).text);
   const known = typeof to === "number" ? to : from;
   return {
     from: text(from),
     to: text(to),
     unit: formatField(known, unit).unit,
-    step: difference === null ? undefined : stepText(difference, unit),
+    step: difference === null ? undefined : stepText(difference, unit, seen ?? difference),
     lsb: steps === null ? undefined : formatFigure(steps, { digits: 0, sign: "always", group: true }),
   };
 }
@@ -76,11 +80,12 @@ function digitsToSee(difference: number): number {
   return Math.min(MOST_DIGITS, Math.max(0, 1 - Math.floor(Math.log10(Math.abs(difference)))));
 }
 
-function stepText(difference: number, unit: string | null): string | undefined {
+function stepText(difference: number, unit: string | null, seen: number): string | undefined {
   if (unit === null) return undefined;
-  const shown = unit === "1" ? { value: difference * 1e6, unit: "ppm" } : toEngineering(difference, unit);
-  const figure = formatFigure(shown.value, { digits: Math.max(2, digitsToSee(shown.value)), sign: "always" });
-  return `${figure} ${shown.unit}`;
+  const inUnit = (value: number) => (unit === "1" ? { value: value * 1e6, unit: "ppm" } : toEngineering(value, unit));
+  const shown = inUnit(difference);
+  const digits = Math.max(2, digitsToSee(inUnit(seen).value));
+  return `${formatFigure(shown.value, { digits, sign: "always" })} ${shown.unit}`;
 }
 
 function plain(value: number): string {

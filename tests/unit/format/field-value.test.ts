@@ -36,6 +36,15 @@ describe("a change of a field", () => {
     expect(change).toEqual({ from: "1", to: "2", unit: "", step: undefined, lsb: "+1" });
   });
 
+  it("lines up with others by the decimals of the least of them", () => {
+    const change = { from: 0.99609263, to: 0.99609296, unit: "1", steps: 1398 };
+    expect(formatFieldChange(change, -5e-8)).toMatchObject({
+      from: "0.996092630",
+      to: "0.996092960",
+      step: "+0.330 ppm",
+    });
+  });
+
   it("from or to nothing has no step", () => {
     const change = formatFieldChange({ from: null, to: 20, unit: "°C", steps: null });
     expect(change).toMatchObject({ from: null, to: "20.000", step: undefined, lsb: undefined });
