@@ -88,9 +88,9 @@ export async function askBench(
   const empty = { serial, lot: null, imageSha256: null, hardwareId: null, carries: null };
   const [device] = await findDevicesBySerial(ctx.db, [serial]);
   if (!device) return { ...empty, verdict: "unknown-serial" };
-  if (device.lotCode !== lot.lot) return { ...empty, verdict: "other-lot", lot: device.lotCode };
   const [carried] = await listCarriedImages(ctx, { lotId: device.lotId, serial, limit: 1 });
   const carries = carried ? carriesOf(carried) : null;
+  if (device.lotCode !== lot.lot) return { ...empty, verdict: "other-lot", lot: device.lotCode, carries };
   if (!lot.live) return { ...empty, verdict: "nothing-live", carries };
   if (lot.live.package !== chosen) return { ...empty, verdict: "live-changed", carries };
   if (device.scrapped) return { ...empty, verdict: "scrapped", carries };

@@ -32,7 +32,7 @@ export function ChooseLot({ lots, person, onlyOperator }: ChooseLotProps) {
         </p>
       ) : (
         <ul className="flex flex-col gap-3">
-          {ready.map(({ lot, family, live, held }) =>
+          {ready.map(({ lot, family, live, held, sequence }) =>
             live ? (
               <li key={lot}>
                 <Link
@@ -43,7 +43,7 @@ export function ChooseLot({ lots, person, onlyOperator }: ChooseLotProps) {
                   <span className="min-w-0 flex-1">
                     <span className="block font-mono text-[26px] leading-tight font-semibold wrap-anywhere">{lot}</span>
                     <span className="block text-ink-soft">
-                      {family} · release {live.version}
+                      {family} · release {live.version} · sequence {sequence}
                     </span>
                     <span className="block font-semibold">{sealOf(live.digest).words.join(" ")}</span>
                     <span className="block text-ink-soft">

@@ -19,7 +19,7 @@ export function DoneSound({ good, answered }: { good: boolean; answered: string 
     if (next) play(good);
   };
   return (
-    <label className="mx-auto mt-auto flex w-full max-w-[1000px] items-center gap-3 px-4 pb-5 text-[18px] text-ink-soft md:px-8">
+    <label className="mx-auto mt-auto flex w-full max-w-[1000px] items-center gap-3 px-4 pb-5 text-ink-soft md:px-8">
       <input
         type="checkbox"
         checked={on}

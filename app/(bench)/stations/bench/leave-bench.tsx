@@ -4,8 +4,7 @@ import Link from "next/link";
 import { useState } from "react";
 import { signOut } from "@/app/_components/auth-client";
 
-const look =
-  "rounded border border-rule px-4 py-2 text-[18px] text-ink-soft no-underline hover:border-copper hover:text-ink";
+const look = "rounded border border-rule px-4 py-2 text-ink-soft no-underline hover:border-copper hover:text-ink";
 
 /** The way out of the full screen: signing out for operators, the rest of the product for others. */
 export function LeaveBench({ person, onlyOperator }: { person: string; onlyOperator: boolean }) {

@@ -34,12 +34,12 @@ export function ScanTask({ lot, chosen, answer, at }: ScanTaskProps) {
     <main className="flex flex-1 flex-col">
       <header className="flex flex-wrap items-center gap-x-5 gap-y-2 border-b border-rule bg-raised px-4 py-3 md:px-8">
         {lot.live ? <SealRosette digest={lot.live.digest} size={64} /> : null}
-        <div className="min-w-0 flex-1">
+        <div className="min-w-0 flex-1 basis-[230px]">
           <h1 className="font-mono text-[24px] leading-tight font-semibold wrap-anywhere">{lot.lot}</h1>
           {lot.live ? (
             <>
               <p className="font-semibold">{sealOf(lot.live.digest).words.join(" ")}</p>
-              <p className="text-[18px] text-ink-soft">
+              <p className="text-ink-soft">
                 {lot.family} · release {lot.live.version} · sequence {lot.sequence} · {formatCount(lot.live.devices)}{" "}
                 devices
               </p>
@@ -50,7 +50,7 @@ export function ScanTask({ lot, chosen, answer, at }: ScanTaskProps) {
         </div>
         <Link
           href="/stations/bench"
-          className="rounded border border-rule px-4 py-2 text-[18px] text-ink-soft no-underline hover:border-copper hover:text-ink"
+          className="rounded border border-rule px-4 py-2 text-ink-soft no-underline hover:border-copper hover:text-ink"
         >
           Another lot
         </Link>
@@ -105,21 +105,21 @@ function AnswerFacts({ answer, text, at }: { answer: BenchAnswer; text: string; 
       <dl className="grid gap-x-8 gap-y-3 md:grid-cols-2">
         {imageSha256 ? (
           <div className="min-w-0">
-            <dt className="text-[18px] text-ink-soft">Image, sha256</dt>
+            <dt className="text-ink-soft">Image, sha256</dt>
             <dd className="font-mono text-[22px] leading-snug wrap-anywhere">
               {groupDigest(imageSha256.slice(0, 16)).join(" ")}
-              <span className="block text-[16px] leading-normal text-ink-soft">
-                {groupDigest(imageSha256.slice(16)).join(" ")}
-              </span>
+              <span className="block leading-snug text-ink-soft">{groupDigest(imageSha256.slice(16)).join(" ")}</span>
             </dd>
           </div>
         ) : null}
-        <div className="min-w-0">
-          <dt className="text-[18px] text-ink-soft">It carries, by record</dt>
-          <dd>{carriesText(carries)}</dd>
-        </div>
+        {answer.verdict === "unknown-serial" ? null : (
+          <div className="min-w-0">
+            <dt className="text-ink-soft">It carries, by record</dt>
+            <dd>{carriesText(carries)}</dd>
+          </div>
+        )}
       </dl>
-      <p className="text-[18px] text-ink-soft">
+      <p className="text-ink-soft">
         Answered {formatDateTime(at)}. EEPROM cells wear: leave bytes alone that already match. A reply here does not
         replace the station's own comparison of serial, board and bytes.
       </p>

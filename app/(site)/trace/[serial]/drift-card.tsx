@@ -10,7 +10,8 @@ type Curve = Curves["spanPpm"];
 
 /** The device's own drift as measured, before and after compensation by the decoded values. */
 export function DriftCard({ curves }: { curves: Curves }) {
-  const loaded = curves.spanPpm.after.length > 0;
+  // A single point is the one that the gain was taken from: it says nothing.
+  const loaded = curves.spanPpm.after.length > 1;
   return (
     <Card title="Drift, before and after" note="from its own readings">
       <div className={`grid grid-cols-1 gap-5 ${loaded ? "xl:grid-cols-2" : ""}`}>
