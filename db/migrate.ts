@@ -36,6 +36,7 @@ export async function migrateDatabase(input: MigrateInput): Promise<string[]> {
         const applied = await runMigrations(owner);
         await setUpQueues(input.ownerUrl);
         await grantQueues(session, input.appRole);
+        await grantMigrationNotes(session, input.appRole);
         return applied;
       } finally {
         await sql`select pg_advisory_unlock(${MIGRATION_LOCK})`.execute(session);
@@ -46,9 +47,12 @@ export async function migrateDatabase(input: MigrateInput): Promise<string[]> {
   }
 }
 
-/** Names of migrations that the database has not seen yet, oldest first. */
-export async function listPendingMigrations(ownerUrl: string): Promise<string[]> {
-  const owner = openOwner(ownerUrl, "");
+/**
+ * Names of migrations that the database has not seen yet, oldest first.
+ * @param url connection of the app's role or the owner.
+ */
+export async function listPendingMigrations(url: string): Promise<string[]> {
+  const owner = openOwner(url, "");
   try {
     const known = await migratorOf(owner).getMigrations();
     return known.filter((migration) => migration.executedAt === undefined).map((migration) => migration.name);
@@ -113,6 +117,11 @@ async function setUpQueues(ownerUrl: string): Promise<void> {
   } finally {
     await boss.stop({ graceful: false });
   }
+}
+
+/** A start without the owner's address can then say what was not migrated yet. */
+async function grantMigrationNotes(owner: Kysely<never>, appRole: string): Promise<void> {
+  await sql`grant select on table kysely_migration, kysely_migration_lock to ${sql.id(appRole)}`.execute(owner);
 }
 
 async function grantQueues(owner: Kysely<never>, appRole: string): Promise<void> {

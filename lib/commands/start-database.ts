@@ -64,6 +64,7 @@ async function openGiven(appUrl: string, { settings, say }: StartDatabaseOptions
     const applied = await migrateDatabase({ ownerUrl: settings.ownerUrl, appRole: credentialsOf(appUrl).name });
     if (applied.length > 0) say(`Migrated the database (${applied.length} steps).`);
   } else {
+    await withApp(appUrl, assertAppRoleIsWeak); // before its rights are needed to read what was migrated
     const pending = await listPendingMigrations(appUrl);
     if (pending.length > 0) {
       throw new AppError("database.not_migrated", {

@@ -1,7 +1,16 @@
 /** A real `npm start` in a home of its own, seen from outside: what it prints, which processes it has, how it ends. */
 import { type ChildProcess, spawn } from "node:child_process";
 import { once } from "node:events";
-import { existsSync, mkdtempSync, readdirSync, readFileSync, readlinkSync, rmSync, symlinkSync } from "node:fs";
+import {
+  chmodSync,
+  existsSync,
+  mkdtempSync,
+  readdirSync,
+  readFileSync,
+  readlinkSync,
+  rmSync,
+  symlinkSync,
+} from "node:fs";
 import { tmpdir } from "node:os";
 import { join } from "node:path";
 import { setTimeout as delay } from "node:timers/promises";
@@ -44,7 +53,7 @@ const starts = new Set<ChildProcess>();
 afterAll(async () => {
   for (const child of starts) if (child.exitCode === null) child.kill("SIGKILL");
   for (const home of homes) {
-    for (const pid of processesOf(home)) process.kill(pid, "SIGKILL");
+    for (const pid of processesOf(home)) killOutright(pid);
     await eventually(() => processesOf(home).length === 0);
     rmSync(home, { recursive: true, force: true });
   }
@@ -53,6 +62,7 @@ afterAll(async () => {
 /** An empty folder that the database's user can reach too. Everything that still works in it at the end is ended. */
 export function makeHome(): string {
   const home = mkdtempSync(join(tmpdir(), "trimwright-start-"));
+  chmodSync(home, 0o755);
   homes.add(home);
   // Where PostgreSQL was unpacked for the tests, a new home need not fetch it again.
   const unpacked = privatePackagesFolder(TEST_HOME);
@@ -89,7 +99,9 @@ export async function beginStart(options: StartOptions): Promise<RunningStart> {
       if (!printed()) throw new Error(`nothing printed like ${line}:\n${text}`);
     },
     kill: (signal) => void child.kill(signal),
-    interrupt: () => void process.kill(-(child.pid ?? 0), "SIGINT"),
+    interrupt: () => {
+      if (child.pid !== undefined) process.kill(-child.pid, "SIGINT");
+    },
     ended: () => end,
   };
 }
@@ -126,6 +138,12 @@ export function processesOf(home: string): number[] {
   return living().filter(
     (pid) => workingFolder(pid) === database || settingsOf(pid).includes(`TRIMWRIGHT_HOME=${home}`),
   );
+}
+
+/** Kills a process outright. @throws Error without a process: number 0 would mean all of our own. */
+export function killOutright(pid: number | undefined): void {
+  if (pid === undefined) throw new Error("no process to kill");
+  process.kill(pid, "SIGKILL");
 }
 
 /** The app's or the worker's process of a home. */
