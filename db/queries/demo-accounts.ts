@@ -9,12 +9,13 @@ export interface DemoAccount {
   roles: Role[];
 }
 
-/** Active people of an e-mail domain with what they may do, the first added first. */
+/** Active people of an e-mail domain that no person added, with what they may do, the first added first. */
 export function listAccountsOfDomain(db: Db, domain: string): Promise<DemoAccount[]> {
   return db
     .selectFrom("person")
     .select(["email", "name", heldRoles.as("roles")])
     .where("active", "=", true)
+    .where("createdBy", "is", null)
     .where(sql<string>`split_part(email, '@', 2)`, "=", domain)
     .orderBy("createdAt")
     .orderBy("id")

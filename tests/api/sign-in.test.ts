@@ -1,8 +1,11 @@
+import { sql } from "kysely";
 import { decode } from "next-auth/jwt";
+import { v7 as uuidv7 } from "uuid";
 import { afterEach, beforeAll, describe, expect, it } from "vitest";
 import { sessionCookieName, sessionToken } from "@/lib/auth/session-token";
 import { FAILURES_MAX, noteFailedSignIn } from "@/lib/auth/sign-in-rate";
 import { authSecret, setEnv } from "@/lib/env";
+import { listDemoAccounts } from "@/lib/services/account/list-demo-accounts";
 import { newOneTimeSecret, oneTimeOf } from "@/lib/services/people/one-time-code";
 import { insertAccessKey } from "../support/access-key";
 import { openTestApi, type TestApi } from "../support/api";
@@ -218,6 +221,24 @@ describe("a one-time code", () => {
     expect((await browser.signIn({ email, password: "wrong", oneTimeCode: code() })).body.code).toBe(
       "auth.sign_in_failed",
     );
+  });
+});
+
+describe("the demo's accounts", () => {
+  const anyone = () => ({ ...api.ctx("engineer"), actor: { kind: "public" } }) as const;
+
+  it("are listed where the database holds them, without people that an admin added", async () => {
+    const before = await listDemoAccounts(anyone());
+    expect(before[0]).toEqual({ email: "engineer@marram.example", name: "engineer", roles: ["engineer"] });
+    const added = { id: uuidv7(), email: "new@marram.example", name: "New", createdAt: new Date() };
+    await api.owner
+      .insertInto("person")
+      .values({ ...added, createdBy: api.people.admin.id })
+      .execute();
+    expect(await listDemoAccounts(anyone())).toEqual(before);
+    await api.owner.updateTable("person").set({ email: sql`replace(email, 'marram', 'maker')` }).execute();
+    expect(await listDemoAccounts(anyone())).toEqual([]);
+    await api.owner.updateTable("person").set({ email: sql`replace(email, 'maker', 'marram')` }).execute();
   });
 });
 
