@@ -2,10 +2,13 @@ import type { z } from "zod";
 import type { Role } from "@/lib/domain/roles";
 import type { Ctx, PersonCtx, StationCtx } from "@/lib/services/context";
 
-/** Who may call. `session: true` refuses bearer keys: decisions are made by a person in a browser. */
+/**
+ * Who may call. A person's bearer key reads and does an engineer's work; `session: true` refuses even that, because decisions
+ * are made by a person in a browser. `reads: true` marks a call that changes nothing although its method could.
+ */
 export type Access =
   | { who: "public" }
-  | { who: "person"; roles: readonly Role[]; session?: boolean }
+  | { who: "person"; roles: readonly Role[]; session?: boolean; reads?: boolean }
   | { who: "station" };
 
 type CtxOf<A extends Access> = A extends { who: "person" }

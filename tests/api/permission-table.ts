@@ -45,7 +45,7 @@ layouts.delete                 401    yes  role role role role role role    yes 
 layouts.submit                 401    yes  role role role role role role    yes      role     role
 layouts.take-back              401    yes  role role role role role role    yes      role     role
 layouts.decide                 401    role yes  role role role role role    role     session  role
-layouts.retire                 401    yes  yes  role role role role role    yes      yes      role
+layouts.retire                 401    yes  yes  role role role role role    yes      session  role
 
 equipment.list                 401    yes  yes  role yes  yes  yes  role    yes      yes      yes
 equipment.add                  401    yes  role role role role role role    yes      role     role
@@ -85,7 +85,7 @@ images.get                     401    yes  yes  role yes  yes  yes  role    yes 
 packages.build                 401    yes  role role role role role role    yes      role     role
 packages.submit                401    yes  role role role role role role    yes      role     role
 packages.take-back             401    yes  role role role role role role    yes      role     role
-packages.rebuild               401    yes  yes  role role role role role    yes      yes      role
+packages.rebuild               401    yes  yes  role role role role role    yes      session  role
 packages.waive                 401    role yes  role role role role role    role     session  role
 packages.decide                401    role yes  role role role role role    role     session  role
 packages.release               401    yes  yes  role role role role role    session  session  role

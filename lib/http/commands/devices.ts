@@ -23,7 +23,7 @@ import {
 import { listedWritePage, writeQuery } from "@/schemas/api/stations";
 
 const readers = { who: "person", roles: READERS } as const;
-const dumpers = { who: "person", roles: ["engineer", "reviewer", "service"] } as const;
+const dumpers = { who: "person", roles: ["engineer", "reviewer", "service"], reads: true } as const;
 const dump = { upload: { contentTypes: [...HEX_TYPES, RAW_TYPE], maxBytes: DUMP_MAX_BYTES } };
 const dumpErrors = ["dump.empty", "dump.wrong_length", "dump.incomplete", "hex.bad_checksum", "hex.overlap"];
 const dumpOf = ({ bytes, contentType }: Upload) => ({

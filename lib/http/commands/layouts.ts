@@ -54,7 +54,7 @@ export const lintLayout = command({
   method: "POST",
   path: "/families/{code}/layouts/lint",
   summary: "Judges a layout document without storing it",
-  access: { who: "person", roles: ["engineer", "reviewer"] },
+  access: { who: "person", roles: ["engineer", "reviewer"], reads: true },
   params: byCodeOrId,
   body: documentBody,
   reply: { status: 200, schema: lintReply },
