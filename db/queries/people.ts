@@ -146,6 +146,14 @@ export interface NewPerson {
   createdBy: string | null;
 }
 
+/** Refuses an address that somebody else signs in with. @throws AppError `person.exists` */
+export async function assertEmailFree(trx: Trx, email: string, personId: string): Promise<void> {
+  const query = trx.selectFrom("person").select("id").where("email", "=", email).where("id", "<>", personId);
+  if ((await query.executeTakeFirst()) === undefined) return;
+  const message = "Somebody has this address already; an address is one person's.";
+  throw new AppError("person.exists", { errors: [{ path: "/email", code: "person.exists", message }], message });
+}
+
 /** @throws constraint `person_email_unique` → `person.exists` */
 export async function insertPerson(trx: Trx, person: NewPerson): Promise<void> {
   await trx.insertInto("person").values(person).execute();

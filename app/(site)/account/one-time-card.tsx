@@ -91,12 +91,11 @@ function Enrol({ secret, onDone, onLeave }: { secret: OneTimeSecret; onDone: () 
   return (
     <form onSubmit={send} className="flex flex-col gap-3">
       <p className="text-sm text-ink-soft">Scan this with your authenticator app, or type the secret into it.</p>
-      {/* A code is read as dark on light, whatever the theme. */}
       {/** biome-ignore lint/performance/noImgElement: an inline drawing needs no image service */}
       <img
         src={`data:image/svg+xml;utf8,${encodeURIComponent(secret.qrSvg)}`}
         alt="QR code of the secret"
-        className="size-[190px] self-center rounded border border-rule bg-white p-1"
+        className="size-[190px] self-center rounded border border-rule"
       />
       <p className="flex items-start gap-2 rounded border border-rule bg-sunk p-2.5">
         <code className="min-w-0 flex-1 font-mono text-sm break-all select-all">{spaced(secret.secret)}</code>

@@ -11,8 +11,6 @@ import { useToast } from "@/app/_components/toast";
 import { addPersonAction } from "./actions";
 import { RoleChoice, rolesOf } from "./role-choice";
 
-const taken = "Somebody has this address already.";
-
 /** The button that adds a person, and its form. */
 export function AddPerson({ oneTimeCode }: { oneTimeCode: boolean }) {
   const router = useRouter();
@@ -65,7 +63,7 @@ export function AddPerson({ oneTimeCode }: { oneTimeCode: boolean }) {
           maxLength={254}
           autoComplete="off"
           help="They sign in with it."
-          error={problem?.code === "person.exists" ? taken : errorAt(problem, "/email")}
+          error={errorAt(problem, "/email")}
         />
         <RoleChoice error={errorAt(problem, "/roles")} />
       </ConfirmDialog>

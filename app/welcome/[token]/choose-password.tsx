@@ -58,9 +58,7 @@ export function ChoosePassword({ token, firstAdmin, email }: ChoosePasswordProps
             required
             maxLength={254}
             help="You sign in with it."
-            error={
-              problem?.code === "person.exists" ? "Somebody has this address already." : errorAt(problem, "/email")
-            }
+            error={errorAt(problem, "/email")}
           />
         </>
       ) : (

@@ -24,7 +24,7 @@ export async function beginOneTimeCode(ctx: PersonCtx, signed: { password: strin
     return person.email;
   });
   const uri = oneTimeOf(secret, email).toString();
-  return { secret, uri, qrSvg: toSVG({ bcid: "qrcode", text: uri, scale: 3, padding: 4 }) };
+  return { secret, uri, qrSvg: toSVG({ bcid: "qrcode", text: uri, scale: 3, padding: 4, backgroundcolor: "FFFFFF" }) };
 }
 
 /**

@@ -1,4 +1,4 @@
-import { insertPerson } from "@/db/queries/people";
+import { assertEmailFree, insertPerson } from "@/db/queries/people";
 import type { Role } from "@/lib/domain/roles";
 import { welcomeMessage } from "@/lib/mail/people-messages";
 import { assertRole, type PersonCtx } from "@/lib/services/context";
@@ -22,6 +22,7 @@ export async function addPerson(ctx: PersonCtx, input: NewPerson): Promise<Perso
   const roles = [...new Set<Role>(input.roles)];
   return ctx.db.transaction().execute(async (trx) => {
     await lockRolesAsAdmin(ctx, trx);
+    await assertEmailFree(trx, email, id);
     await insertPerson(trx, { id, name, email, createdAt: ctx.now(), createdBy: ctx.actor.id });
     const asked = await askForRoles(ctx, trx, { id, name }, roles);
     const link = await makeLink(ctx, trx, id, "invite");

@@ -1,7 +1,7 @@
 import type { Trx } from "@/db/executor";
 import { revokeAccessKeys } from "@/db/queries/keys";
 import { spendLinks } from "@/db/queries/password-links";
-import { type LockedPerson, lockPerson, updatePerson } from "@/db/queries/people";
+import { assertEmailFree, type LockedPerson, lockPerson, updatePerson } from "@/db/queries/people";
 import { endGrants, listOpenGrants } from "@/db/queries/role-grants";
 import { endSessionsOf } from "@/db/queries/sessions";
 import { needsSecondAdmin, stepsToRoles, TWO_ADMIN_ROLES } from "@/lib/domain/people-rules";
@@ -72,6 +72,7 @@ async function applyNames(
         "This person signs in with that address already. Add them anew under the other one and deactivate this account.",
     });
   }
+  if (email !== undefined) await assertEmailFree(trx, email, before.id);
   await updatePerson(trx, before.id, change);
   if (email !== undefined && email !== before.email && before.active) {
     const link = await makeLink(ctx, trx, before.id, "invite");

@@ -1,7 +1,7 @@
 import type { Trx } from "@/db/executor";
 import { insertAccess } from "@/db/queries/access-log";
 import { findLink, type LinkRow, spendLinks } from "@/db/queries/password-links";
-import { lockPerson, type PersonChange, updatePerson } from "@/db/queries/people";
+import { assertEmailFree, lockPerson, type PersonChange, updatePerson } from "@/db/queries/people";
 import { confirmGrant, isAnyAdmin, lockPendingGrant, lockRoles } from "@/db/queries/role-grants";
 import { endSessionsOf } from "@/db/queries/sessions";
 import { AppError } from "@/lib/errors";
@@ -58,6 +58,7 @@ export async function choosePassword(ctx: Ctx, use: LinkUse): Promise<{ email: s
       oneTimeLastStep: null,
     };
     const change: PersonChange = { passwordHash, ...first, ...codeGoes };
+    if (first) await assertEmailFree(trx, first.email, person.id);
     await updatePerson(trx, person.id, change);
     if (first) await confirmFirst(ctx, trx, person.id);
     await endSessionsOf(trx, person.id, ctx.now());

@@ -75,7 +75,7 @@ export function PersonForm({ person, isSelf, oneTimeCode }: PersonFormProps) {
         readOnly={!mayMend}
         required
         help={mayMend ? "Mending it mails a new link there." : "Stays: the person signs in with it."}
-        error={problem?.code === "person.exists" ? "Somebody has this address already." : errorAt(problem, "/email")}
+        error={errorAt(problem, "/email")}
       />
       {isSelf ? (
         <p className="text-sm text-ink-soft">Nobody changes their own roles; another admin does.</p>
