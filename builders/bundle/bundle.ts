@@ -48,7 +48,7 @@ export function packageSums(content: PackageContent): string {
   return sumsTextOf(digests);
 }
 
-/** Files of a released bundle by path; {@link writeZip} makes them one. @throws AppError `bundle.too_many_devices` */
+/** Files of a released bundle by path; {@link zipPieces} makes them one. @throws AppError `bundle.too_many_devices` */
 export function releasedFiles(content: PackageContent, release: ReleaseFiles): Map<string, Uint8Array | string> {
   return contentFiles(content)
     .set("VERIFY.txt", verifyText())

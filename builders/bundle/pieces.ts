@@ -2,10 +2,10 @@
  * Cuts a stream of bytes anew, into pieces of one length; only the last may be shorter.
  * @param size bytes of a piece, at least 1.
  */
-export async function* cutPieces(stream: AsyncIterable<Uint8Array>, size: number): AsyncGenerator<Uint8Array> {
+export function* cutPieces(stream: Iterable<Uint8Array>, size: number): Generator<Uint8Array> {
   let piece = new Uint8Array(size);
   let filled = 0;
-  for await (const part of stream) {
+  for (const part of stream) {
     for (let at = 0; at < part.length; ) {
       const taken = part.subarray(at, at + size - filled);
       piece.set(taken, filled);

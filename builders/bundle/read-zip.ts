@@ -12,7 +12,7 @@ const END_BYTES = 22;
 const ZIP_EPOCH_DOS_DATE = 0x0021;
 
 /**
- * Reads the kind of zip that {@link writeZip} makes and no other (record layout: PKWARE APPNOTE 6.3). Being strict keeps
+ * Reads the kind of zip that {@link zipPieces} makes and no other (record layout: PKWARE APPNOTE 6.3). Being strict keeps
  * out what readers disagree on: entries twice, hidden bytes between entries, directories that tell other than the
  * entries, paths that leave the folder, compressed entries that unpack to more than they take.
  * @returns content by path, in the order of the file; the contents are views into `bytes`.

@@ -1,84 +1,121 @@
-import JSZip from "jszip";
 import { byCodeUnits } from "@/builders/bundle/manifest";
+import { getCrc } from "@/builders/codec/crc";
 import { AppError } from "@/lib/errors";
 
-/** Largest count of entries: the library writes no Zip64, whose need begins at 65,535. */
+/** Largest count of entries and of bytes that a zip without the Zip64 records can tell. */
 const ENTRIES_MAX = 65_534;
+const BYTES_MAX = 0xffff_ffff;
 
-/** The first moment that a zip entry can be dated. */
-const ZIP_EPOCH = new Date(Date.UTC(1980, 0, 1));
+const LOCAL = 0x04034b50;
+const CENTRAL = 0x02014b50;
+const END = 0x06054b50;
+const LOCAL_BYTES = 30;
+const CENTRAL_BYTES = 46;
+const END_BYTES = 22;
+/** Features of version 1.0, told by a maker of version 3.0 on UNIX. */
+const VERSION_NEEDED = 10;
+const MADE_BY = (3 << 8) | 30;
+/** 1980-01-01, the first day that an entry can be dated; midnight is 0. */
+const DATE = 0x0021;
+/** A plain file that its owner may write and all may read, in the upper half. */
+const ATTRIBUTES = (0o100644 << 16) >>> 0;
 
-/** So much of a zip waits at most for whoever reads it. */
-const HELD_BYTES = 1024 * 1024;
+const crc32 = getCrc("CRC-32/ISO-HDLC");
+const encoder = new TextEncoder();
 
-/** Texts as UTF-8, no entries for folders, a plain file that its owner may write and all may read. */
-const ENTRY = { createFolders: false, date: ZIP_EPOCH, binary: false, unixPermissions: 0o100644 } as const;
+interface Entry {
+  name: Uint8Array;
+  crc: number;
+  size: number;
+  /** Of its local head, from the start of the zip. */
+  offset: number;
+}
 
 /**
  * A plain zip: method stored, entries sorted by name (UTF-16 code units), dated 1980-01-01, no folders, no extra
- * fields, no comments. The same files give the same bytes on every machine and in every time zone.
- * Takes about 0.1 ms an entry: for the worker rather than for a request.
- * @param files content by path; paths are ASCII, without a leading slash.
+ * fields, no comments (record layout: PKWARE APPNOTE 6.3). The same files give the same bytes on every machine and in every
+ * time zone. Made as it is read, so that a lot of 60,000 devices takes no more memory than its files.
+ * @param files content by path; texts as UTF-8, paths ASCII without a leading slash.
  * @returns the zip in pieces of any size.
- * @throws AppError `bundle.too_many_files` {files, limit}, `bundle.bad_path` {path}
+ * @throws AppError `bundle.too_many_files` {files, limit}, `bundle.bad_path` {path}; while read, `bundle.too_large`
  */
-export function zipPieces(files: ReadonlyMap<string, Uint8Array | string>): AsyncIterable<Uint8Array> {
+export function zipPieces(files: ReadonlyMap<string, Uint8Array | string>): Generator<Uint8Array> {
   if (files.size > ENTRIES_MAX) throw new AppError("bundle.too_many_files", { files: files.size, limit: ENTRIES_MAX });
-  const zip = new JSZip();
-  for (const path of [...files.keys()].sort(byCodeUnits)) {
-    if (!isPlainPath(path)) throw new AppError("bundle.bad_path", { path });
-    zip.file(path, files.get(path) as Uint8Array | string, ENTRY);
-  }
-  return drain(zip.generateInternalStream({ type: "uint8array", compression: "STORE", platform: "UNIX" }));
+  const paths = [...files.keys()].sort(byCodeUnits);
+  for (const path of paths) if (!isPlainPath(path)) throw new AppError("bundle.bad_path", { path });
+  return writeEntries(paths, files);
 }
 
-/** What the library pushes, held back while the reader is slower. */
-async function* drain(stream: JSZip.JSZipStreamHelper<Uint8Array>): AsyncGenerator<Uint8Array> {
-  let waiting: Uint8Array[] = [];
-  let held = 0;
-  let outcome: { failure?: Error } | undefined;
-  let wake = () => {};
-  stream.on("data", (piece) => {
-    waiting.push(piece);
-    held += piece.length;
-    if (held < HELD_BYTES) return;
-    stream.pause();
-    wake();
-  });
-  stream.on("end", () => {
-    outcome = {};
-    wake();
-  });
-  stream.on("error", (failure) => {
-    outcome = { failure };
-    wake();
-  });
-  while (outcome === undefined || waiting.length > 0) {
-    if (outcome === undefined) {
-      await new Promise<void>((resolve) => {
-        wake = resolve;
-        stream.resume();
-      });
-    }
-    const pieces = waiting;
-    waiting = [];
-    held = 0;
-    yield* pieces;
+function* writeEntries(
+  paths: readonly string[],
+  files: ReadonlyMap<string, Uint8Array | string>,
+): Generator<Uint8Array> {
+  const entries: Entry[] = [];
+  let offset = 0;
+  for (const path of paths) {
+    const given = files.get(path) as Uint8Array | string;
+    const content = typeof given === "string" ? encoder.encode(given) : given;
+    const name = encoder.encode(path);
+    const entry = { name, crc: crc32(content, 0, content.length), size: content.length, offset };
+    entries.push(entry);
+    offset += LOCAL_BYTES + name.length + content.length;
+    assertFits(offset);
+    yield localHead(entry);
+    yield content;
   }
-  if (outcome.failure) throw outcome.failure;
+  let directory = 0;
+  for (const entry of entries) {
+    directory += CENTRAL_BYTES + entry.name.length;
+    yield centralHead(entry);
+  }
+  assertFits(offset + directory);
+  yield endRecord(entries.length, directory, offset);
 }
 
-/** The zip of {@link zipPieces} whole, for few files. */
-export async function writeZip(files: ReadonlyMap<string, Uint8Array | string>): Promise<Uint8Array> {
-  const pieces: Uint8Array[] = [];
-  for await (const piece of zipPieces(files)) pieces.push(piece);
-  const zip = new Uint8Array(pieces.reduce((total, piece) => total + piece.length, 0));
-  let at = 0;
-  for (const piece of pieces) {
-    zip.set(piece, at);
-    at += piece.length;
-  }
-  return zip;
+/** What stands in front of an entry's content and, two bytes later, in the directory: from the version needed to the length of the name. */
+function writeHead(view: DataView, at: number, { name, crc, size }: Entry): void {
+  view.setUint16(at, VERSION_NEEDED, true);
+  view.setUint16(at + 8, DATE, true);
+  view.setUint32(at + 10, crc, true);
+  view.setUint32(at + 14, size, true);
+  view.setUint32(at + 18, size, true);
+  view.setUint16(at + 22, name.length, true);
+}
+
+function localHead(entry: Entry): Uint8Array {
+  const head = new Uint8Array(LOCAL_BYTES + entry.name.length);
+  const view = new DataView(head.buffer);
+  view.setUint32(0, LOCAL, true);
+  writeHead(view, 4, entry);
+  head.set(entry.name, LOCAL_BYTES);
+  return head;
+}
+
+function centralHead(entry: Entry): Uint8Array {
+  const head = new Uint8Array(CENTRAL_BYTES + entry.name.length);
+  const view = new DataView(head.buffer);
+  view.setUint32(0, CENTRAL, true);
+  view.setUint16(4, MADE_BY, true);
+  writeHead(view, 6, entry);
+  view.setUint32(38, ATTRIBUTES, true);
+  view.setUint32(42, entry.offset, true);
+  head.set(entry.name, CENTRAL_BYTES);
+  return head;
+}
+
+function endRecord(entries: number, bytes: number, offset: number): Uint8Array {
+  const record = new Uint8Array(END_BYTES);
+  const view = new DataView(record.buffer);
+  view.setUint32(0, END, true);
+  view.setUint16(8, entries, true);
+  view.setUint16(10, entries, true);
+  view.setUint32(12, bytes, true);
+  view.setUint32(16, offset, true);
+  return record;
+}
+
+function assertFits(bytes: number): void {
+  if (bytes > BYTES_MAX) throw new AppError("bundle.too_large", { limit: BYTES_MAX });
 }
 
 /** True for a path of letters, digits and . _ - in steps that stay inside the folder. */

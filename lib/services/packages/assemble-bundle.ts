@@ -41,7 +41,7 @@ async function makeBundle(
   const digest = createHash("sha256");
   let byteCount = 0;
   let position = 0;
-  for await (const piece of cutPieces(zipPieces(files), query.BUNDLE_CHUNK_BYTES)) {
+  for (const piece of cutPieces(zipPieces(files), query.BUNDLE_CHUNK_BYTES)) {
     digest.update(piece);
     byteCount += piece.length;
     await query.insertBundleChunk(trx, {
