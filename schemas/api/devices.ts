@@ -122,6 +122,7 @@ export const dumpResult = z.object({
       actual: z.string(),
       expectedValue: z.union([z.number(), z.string()]).nullable(),
       actualValue: z.union([z.number(), z.string()]).nullable(),
+      unit: z.string().nullable().meta({ description: "Of both values, as the layout stores them" }),
     }),
   ),
   advice: z.string(),

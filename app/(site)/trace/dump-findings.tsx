@@ -5,6 +5,7 @@ import { StateMark, ToneShape } from "@/app/_components/state/state-mark";
 import { stateOf } from "@/app/_components/state/state-of";
 import { toneText } from "@/app/_components/state/tone";
 import { formatAddress } from "@/lib/domain/format/digest";
+import { formatFieldChange } from "@/lib/domain/format/field-value";
 import type { DumpResult } from "@/schemas/api/devices";
 
 const TITLES: Record<DumpResult["match"], string> = {
@@ -71,6 +72,7 @@ interface FieldDifference {
   field: string | null;
   expectedValue: number | string | null;
   actualValue: number | string | null;
+  unit: string | null;
   bytes: DumpResult["differences"];
 }
 
@@ -79,60 +81,58 @@ function byField(differences: DumpResult["differences"]): FieldDifference[] {
   const groups: FieldDifference[] = [];
   for (const one of differences) {
     const last = groups.at(-1);
-    const { field, expectedValue, actualValue } = one;
-    if (last && last.field === field && field !== null) last.bytes.push(one);
-    else groups.push({ field, expectedValue, actualValue, bytes: [one] });
+    const { field, expectedValue, actualValue, unit } = one;
+    if (last && last.field === field) last.bytes.push(one);
+    else groups.push({ field, expectedValue, actualValue, unit, bytes: [one] });
   }
   return groups;
 }
 
-/** What is shown at most; a dump of another memory differs nearly everywhere. */
-const SHOWN_MAX = 60;
+/** Bytes of one field, or of unused memory, shown at most; a dump of another memory differs nearly everywhere. */
+const BYTES_SHOWN_MAX = 32;
 
 function Differences({ fields }: { fields: readonly FieldDifference[] }) {
   return (
-    <div className="mt-4 overflow-x-auto">
-      <table className="w-full text-sm">
-        <caption className="sr-only">Differences by field and byte</caption>
-        <thead>
-          <tr className="text-left text-xs text-ink-soft">
-            {["Field", "Should be", "Is", "Bytes: at, should be → is"].map((head) => (
-              <th key={head} scope="col" className="py-1 pr-4 font-semibold">
-                {head}
-              </th>
-            ))}
-          </tr>
-        </thead>
-        <tbody>
-          {fields.slice(0, SHOWN_MAX).map((group) => (
-            <tr key={`${group.field}${group.bytes[0]?.at}`} className="border-t border-rule/55 align-top">
-              <th scope="row" className="py-1.5 pr-4 text-left font-semibold">
-                {group.field ?? <span className="font-normal text-ink-soft">unused memory</span>}
-              </th>
-              <td className="py-1.5 pr-4 font-mono">{valueText(group.expectedValue)}</td>
-              <td className="py-1.5 pr-4 font-mono text-oxide">{valueText(group.actualValue)}</td>
-              <td className="py-1.5 font-mono text-xs">
-                {group.bytes.map(({ at, expected, actual }) => (
-                  <span key={at} className="mr-3 inline-block whitespace-nowrap">
-                    <span className="text-ink-soft">{formatAddress(at)}</span> {expected.toUpperCase()} →{" "}
-                    {actual.toUpperCase()}
-                  </span>
-                ))}
-              </td>
-            </tr>
-          ))}
-        </tbody>
-      </table>
-      {fields.length > SHOWN_MAX ? (
-        <p className="mt-2 text-sm text-ink-soft">
-          {fields.length - SHOWN_MAX} more differences are not shown: this is another memory altogether.
-        </p>
-      ) : null}
-    </div>
+    <ul className="mt-4 border-t border-rule/55 text-sm" aria-label="Differences by field and byte">
+      {fields.map((group) => {
+        const left = group.bytes.length - BYTES_SHOWN_MAX;
+        return (
+          <li key={`${group.field}${group.bytes[0]?.at}`} className="border-b border-rule/55 py-2">
+            <div className="flex flex-wrap items-baseline gap-x-4">
+              <span className="font-semibold">{group.field ?? "unused memory"}</span>
+              {group.field ? <Values {...group} /> : null}
+            </div>
+            <div className="mt-0.5 flex flex-wrap gap-x-3 font-mono text-xs">
+              {group.bytes.slice(0, BYTES_SHOWN_MAX).map(({ at, expected, actual }) => (
+                <span key={at} className="whitespace-nowrap">
+                  <span className="text-ink-soft">{formatAddress(at)}</span> {expected.toUpperCase()} →{" "}
+                  <span className="text-oxide">{actual.toUpperCase()}</span>
+                </span>
+              ))}
+              {left > 0 ? <span className="text-ink-soft">and {left} more bytes</span> : null}
+            </div>
+          </li>
+        );
+      })}
+    </ul>
   );
 }
 
-function valueText(value: number | string | null): string {
-  if (value === null) return "—";
-  return typeof value === "number" ? String(Number(value.toPrecision(9))).replace("-", "−") : value;
+/** What should be there, and what is. */
+function Values({ expectedValue, actualValue, unit }: FieldDifference) {
+  const {
+    from,
+    to,
+    unit: shown,
+    step,
+  } = formatFieldChange({ from: expectedValue, to: actualValue, unit, steps: null });
+  return (
+    <span className="min-w-0 font-mono wrap-anywhere">
+      {from ?? "none"} → <span className="text-oxide">{to ?? "none"}</span>
+      <span className="font-sans text-ink-soft">
+        {shown ? ` ${shown}` : ""}
+        {step ? `, off by ${step}` : ""}
+      </span>
+    </span>
+  );
 }

@@ -182,6 +182,7 @@ function differencesOf(layout: CompiledLayout, expected: Uint8Array, actual: Uin
       actual: hex(to),
       expectedValue: field?.value ?? null,
       actualValue: found?.value ?? null,
+      unit: field?.unit ?? null,
     };
   });
 }
