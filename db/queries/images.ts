@@ -80,15 +80,31 @@ export function listImages(
   return query.execute();
 }
 
-/** Every image of a package by serial, after one where it is given, some at a time, so that no package is held in memory whole. */
-export async function* eachImages(
-  db: Db,
-  packageId: string,
-  { after, size = CHUNK_ROWS }: { after?: string; size?: number } = {},
-): AsyncGenerator<ImageRow[]> {
-  let cursor = after;
+/** Every image of a package by serial, some at a time, so that no package is held in memory whole. */
+export async function* eachImages(db: Db, packageId: string, size = CHUNK_ROWS): AsyncGenerator<ImageRow[]> {
+  let cursor: string | undefined;
   for (;;) {
     const rows = await listImages(db, packageId, { limit: size, cursor });
+    if (rows.length > 0) yield rows;
+    if (rows.length < size) return;
+    cursor = rows.at(-1)?.serial;
+  }
+}
+
+/** What comparing needs of an image. */
+export type ImageBytesRow = Pick<ImageRow, "serial" | "bytes">;
+
+/** Serial and bytes of every image of a package by serial, after one where it is given, some at a time. */
+export async function* eachImageBytes(
+  db: Db,
+  packageId: string,
+  { after, size = 4 * CHUNK_ROWS }: { after?: string; size?: number } = {},
+): AsyncGenerator<ImageBytesRow[]> {
+  let cursor = after;
+  for (;;) {
+    let query = db.selectFrom("image").select(["serial", "bytes"]).where("packageId", "=", packageId);
+    if (cursor !== undefined) query = query.where("serial", ">", cursor);
+    const rows = await query.orderBy("serial").limit(size).execute();
     if (rows.length > 0) yield rows;
     if (rows.length < size) return;
     cursor = rows.at(-1)?.serial;

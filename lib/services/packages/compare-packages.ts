@@ -1,7 +1,7 @@
 import type { CompiledLayout } from "@/builders/codec/compile-layout";
 import { compareImages } from "@/builders/codec/difference";
 import { decodeImage } from "@/builders/codec/image";
-import type { ImageRow } from "@/db/queries/images";
+import type { ImageBytesRow } from "@/db/queries/images";
 import type { PackageRow } from "@/db/queries/packages";
 import type { Ctx } from "@/lib/services/context";
 import { layoutsOfPackages } from "@/lib/services/devices/layouts-of-packages";
@@ -70,14 +70,14 @@ async function* eachDevice(ctx: Ctx, from: Side, to: Side, after?: string): Asyn
 
 function compareDevice(from: Side, to: Side, pair: PairedImages): Device {
   const { serial } = pair;
-  if (!pair.from) return { serial, change: "added", fields: fieldsOf(to, pair.to as ImageRow, "to"), bytes: [] };
+  if (!pair.from) return { serial, change: "added", fields: fieldsOf(to, pair.to as ImageBytesRow, "to"), bytes: [] };
   if (!pair.to) return { serial, change: "removed", fields: fieldsOf(from, pair.from, "from"), bytes: [] };
   const older = { layout: from.layout, bytes: pair.from.bytes };
   return { serial, ...compareImages(older, { layout: to.layout, bytes: pair.to.bytes }) };
 }
 
 /** All fields of an image whose serial the other package lacks. */
-function fieldsOf({ layout }: Side, image: ImageRow, side: "from" | "to"): ComparedDevice["fields"] {
+function fieldsOf({ layout }: Side, image: ImageBytesRow, side: "from" | "to"): ComparedDevice["fields"] {
   const none = { from: null, to: null, steps: null };
   return decodeImage(layout, image.bytes).map(({ name, unit, value }) => ({ name, unit, ...none, [side]: value }));
 }

@@ -1,11 +1,11 @@
 import type { Db } from "@/db/executor";
-import { eachImages, type ImageRow } from "@/db/queries/images";
+import { eachImageBytes, type ImageBytesRow } from "@/db/queries/images";
 
 /** The images of one serial in two packages; one of them may be missing, never both. */
 export interface PairedImages {
   serial: string;
-  from: ImageRow | undefined;
-  to: ImageRow | undefined;
+  from: ImageBytesRow | undefined;
+  to: ImageBytesRow | undefined;
 }
 
 /**
@@ -13,8 +13,8 @@ export interface PairedImages {
  * @param after serial after which to begin.
  */
 export async function* pairImages(db: Db, fromId: string, toId: string, after?: string): AsyncGenerator<PairedImages> {
-  const olds = rowsOf(eachImages(db, fromId, { after }));
-  const news = rowsOf(eachImages(db, toId, { after }));
+  const olds = rowsOf(eachImageBytes(db, fromId, { after }));
+  const news = rowsOf(eachImageBytes(db, toId, { after }));
   let from = (await olds.next()).value;
   let to = (await news.next()).value;
   while (from || to) {
@@ -36,7 +36,7 @@ function lesser(a: string | undefined, b: string | undefined): string {
   return a < b ? a : b;
 }
 
-async function* rowsOf(pages: AsyncIterable<ImageRow[]>): AsyncGenerator<ImageRow, undefined> {
+async function* rowsOf(pages: AsyncIterable<ImageBytesRow[]>): AsyncGenerator<ImageBytesRow, undefined> {
   for await (const page of pages) yield* page;
   return undefined;
 }
