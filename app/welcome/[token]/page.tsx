@@ -19,7 +19,7 @@ export default async function WelcomePage({ params }: { params: Promise<{ token:
           <h1 className="mb-1 text-lg">{link.firstAdmin ? "Set up the first admin" : "Choose a password"}</h1>
           <p className="mb-4 text-sm text-ink-soft">
             {link.firstAdmin
-              ? "You look after people and roles. Name a second admin next: reviewers and admins take two."
+              ? "You look after people and roles. Name a second admin next: until they have chosen a password you give roles alone, afterwards reviewer and admin take two."
               : `For ${link.name}. You sign in with it and ${link.email}.`}
           </p>
           <ChoosePassword token={token} firstAdmin={link.firstAdmin} email={link.email} />
