@@ -10,8 +10,11 @@ import { searchId } from "@/app/_components/frame/serial-search";
 export const showKeysEvent = "trimwright:show-keys";
 
 const goWaitMs = 1_200;
-/** A wedge scanner leaves less than this between two characters; nobody types that fast. */
-const scanGapMs = 35;
+/**
+ * A wedge scanner leaves a few milliseconds between two characters, some cordless ones far more; people who type outside a field
+ * leave more than this, and lose nothing if what they typed lands in the search.
+ */
+const scanGapMs = 120;
 const scanStart = 4;
 
 /** Keyboard of the whole frame: `/` searches, `g` and a letter goes, `?` lists the keys; a scan lands in the search. */
