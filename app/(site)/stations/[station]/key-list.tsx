@@ -67,7 +67,7 @@ export function KeyList({ station, admin, oneTimeCode }: KeyListProps) {
           </Notice>
         </div>
       ) : null}
-      {station.keys.length === 0 ? (
+      {station.keys.length === 0 && !made ? (
         <p className="text-sm text-ink-soft">
           No key yet: without one the station can neither ask what is live nor report.
         </p>
