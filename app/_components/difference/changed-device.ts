@@ -39,7 +39,8 @@ export function rowOfChange(item: Row, least: ReadonlyMap<string, number>): Row 
     const text = formatFieldChange(change, least.get(name));
     values[name] = { ...change, shown: `${text.from ?? "none"} → ${text.to ?? "none"}`, text, step: stepOf(change) };
   }
-  return { ...item, values, bytesChanged: bytes.length };
+  // A serial that only one of the two holds has no bytes to compare.
+  return { ...item, values, bytesChanged: bytes.length > 0 ? bytes.length : null };
 }
 
 /** The step in the engineering unit; a ratio's in ppm. */

@@ -53,8 +53,8 @@ export function hindranceOf({ checks, waivers }: Pick<PackageView, "checks" | "w
   const open = openWarnings({ checks, waivers });
   if (open.length === 0) return undefined;
   return open.length === 1
-    ? "One warning has no waiver yet: a reviewer who had no hand in the package waives it under Checks."
-    : `${open.length} warnings have no waiver yet: a reviewer who had no hand in the package waives them under Checks.`;
+    ? "One warning has no waiver yet: a reviewer who had no hand in the package waives it, or mend it and build again."
+    : `${open.length} warnings have no waiver yet: a reviewer who had no hand in the package waives them, or mend them and build again.`;
 }
 
 /** Warnings that nobody has waived. */

@@ -142,8 +142,12 @@ function WhatIsDue({ view, engineer }: { view: PackageView; engineer: boolean })
   if (hindrance) {
     return (
       <Notice tone="caution" title="Not ready for review">
-        {hindrance} <Link href={`/packages/${view.id}/checks`}>Checks</Link>
-        {view.reviewers.length > 0 ? `. Who may: ${view.reviewers.join(", ")}.` : ". Nobody is left who may."}
+        <p>
+          {hindrance} {view.reviewers.length > 0 ? `Who may: ${view.reviewers.join(", ")}.` : "Nobody is left who may."}
+        </p>
+        <p>
+          <Link href={`/packages/${view.id}/checks`}>What the checks say</Link>
+        </p>
       </Notice>
     );
   }

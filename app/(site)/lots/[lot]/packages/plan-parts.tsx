@@ -3,6 +3,7 @@ import { StateMark } from "@/app/_components/state/state-mark";
 import { formatCount, formatNumberOf } from "@/lib/domain/format/figure";
 import type { PlannedContent, Signer } from "@/lib/services/packages/plan-package";
 import { leftOutWords } from "../../../packages/left-out-words";
+import { actWords } from "../../../packages/maker-acts";
 
 /** Which devices a package would hold if it were built now, and why the others are left out. */
 export function WouldPack({ content, devices, lot }: { content: PlannedContent; devices: number; lot: string }) {
@@ -47,14 +48,6 @@ export function WouldPack({ content, devices, lot }: { content: PlannedContent; 
   );
 }
 
-const acts: Record<string, string> = {
-  uploaded: "uploaded readings",
-  derived: "derived the coefficients",
-  excluded: "left devices out",
-  imported: "imported the coefficients",
-  "builds it": "builds it",
-};
-
 /** Who could still sign the package: reviewers who had no hand in what it is made of. */
 export function Signers({ signers }: { signers: readonly Signer[] }) {
   const free = signers.filter((signer) => signer.acts.length === 0);
@@ -80,7 +73,7 @@ export function Signers({ signers }: { signers: readonly Signer[] }) {
         <ul className="mt-1 text-ink-soft">
           {bound.map((signer) => (
             <li key={signer.name}>
-              {signer.name} can't: {signer.acts.map((act) => acts[act] ?? act).join(", ")}
+              {signer.name} can't: {signer.acts.map(actWords).join(", ")}
             </li>
           ))}
         </ul>

@@ -5,6 +5,7 @@ import { TimeText } from "@/app/_components/time-text";
 import { holds, pageContext } from "@/lib/http/page-context";
 import { getPackageProvenance, verifyCommands } from "@/lib/services/packages/get-provenance";
 import type { PackageView } from "@/schemas/api/packages";
+import { actWords } from "../../maker-acts";
 import { loadPackage, type PackageParams } from "../load-package";
 import { PackageShell } from "../package-shell";
 import { Decisions, DerivationCard, DocumentsCard } from "./provenance-cards";
@@ -74,22 +75,13 @@ function Downloads({ view, auditor }: { view: PackageView; auditor: boolean }) {
   );
 }
 
-const acts: Record<string, string> = {
-  uploaded: "uploaded readings",
-  derived: "derived coefficients",
-  excluded: "left devices out",
-  imported: "imported coefficients",
-  built: "built it",
-  submitted: "asked for review",
-};
-
 function PeopleCard({ view }: { view: PackageView }) {
   return (
     <Card title="Who made it, who decided">
       <ul className="text-sm">
         {view.makers.map((maker) => (
           <li key={`${maker.name}${maker.act}${maker.at}`} className="py-0.5">
-            {maker.name} {acts[maker.act] ?? maker.act}, <TimeText at={maker.at} />
+            {maker.name} {actWords(maker.act)}, <TimeText at={maker.at} />
           </li>
         ))}
       </ul>

@@ -107,52 +107,48 @@ export function DerivationCard({ derivation }: { derivation: Derivation }) {
   );
 }
 
+/** The runs that were read, each by the digest of its very bytes. */
 function Runs({ runs }: { runs: Derivation["runs"] }) {
   if (runs.length === 0) return <p className="text-ink-soft">Imported: no readings stand behind these coefficients.</p>;
   return (
-    <div className="overflow-x-auto">
-      <table className="w-full min-w-[640px] text-sm">
-        <thead>
-          <tr className="text-left text-xs text-ink-soft">
-            {["Run", "Readings", "SHA-256 of the bytes uploaded", "Uploaded", "Equipment"].map((name) => (
-              <th key={name} scope="col" className="border-b border-rule py-1 pr-4 font-semibold">
-                {name}
-              </th>
-            ))}
-          </tr>
-        </thead>
-        <tbody>
-          {runs.map((run) => (
-            <tr key={run.id} className="align-top">
-              <th scope="row" className="border-b border-rule/55 py-1.5 pr-4 text-left font-normal">
-                <Link href={`/runs/${run.id}`}>{run.purpose}</Link>
-                {run.supersededBy ? <span className="block text-xs text-ochre">superseded since</span> : null}
-              </th>
-              <td className="border-b border-rule/55 py-1.5 pr-4 whitespace-nowrap">
-                {formatNumberOf(run.rows, "row")}, {formatNumberOf(run.devices, "device")}
-              </td>
-              <td className="border-b border-rule/55 py-1.5 pr-4">
-                <Digest value={run.sha256} name={`digest of the ${run.purpose} run`} />
-              </td>
-              <td className="border-b border-rule/55 py-1.5 pr-4 whitespace-nowrap">
-                {run.uploadedBy}
-                <span className="block text-xs text-ink-soft">
-                  <TimeText at={run.uploadedAt} />
-                </span>
-              </td>
-              <td className="border-b border-rule/55 py-1.5">
-                {run.equipment.length === 0 ? <span className="text-ink-soft">none named</span> : null}
-                {run.equipment.map((one) => (
-                  <span key={one.code} className="block">
-                    {one.kind} <span className="font-mono">{one.code}</span>, {one.certificate}, due{" "}
-                    {one.calibratedUntil}
-                  </span>
-                ))}
-              </td>
-            </tr>
-          ))}
-        </tbody>
-      </table>
-    </div>
+    <ul className="border-t border-rule">
+      {runs.map((run) => (
+        <li
+          key={run.id}
+          className="grid gap-x-5 gap-y-0.5 border-b border-rule/55 py-2 md:grid-cols-[11rem_minmax(0,1fr)_12rem]"
+        >
+          <div>
+            <Link href={`/runs/${run.id}`} className="font-semibold">
+              {run.purpose} run
+            </Link>
+            <span className="block text-xs text-ink-soft">
+              {formatNumberOf(run.rows, "row")}, {formatNumberOf(run.devices, "device")}
+            </span>
+            {run.supersededBy ? <span className="block text-xs text-ochre">superseded since</span> : null}
+          </div>
+          <div className="min-w-0">
+            <Digest value={run.sha256} name={`digest of the ${run.purpose} run`} />
+            <span className="block text-xs text-ink-soft">
+              {run.equipment.length === 0 ? "no equipment named" : run.equipment.map(equipmentText).join("; ")}
+            </span>
+          </div>
+          <div>
+            {run.uploadedBy}
+            <span className="block text-xs text-ink-soft">
+              <TimeText at={run.uploadedAt} />
+            </span>
+          </div>
+        </li>
+      ))}
+    </ul>
   );
+}
+
+function equipmentText({
+  kind,
+  code,
+  certificate,
+  calibratedUntil,
+}: Derivation["runs"][number]["equipment"][number]): string {
+  return `${kind} ${code}, ${certificate}, due ${calibratedUntil}`;
 }

@@ -5,6 +5,7 @@ import { pageContext } from "@/lib/http/page-context";
 import { hasOneTimeCode } from "@/lib/services/account/has-one-time-code";
 import { meaningOfDecision } from "@/lib/services/packages/decide-package";
 import type { PackageView } from "@/schemas/api/packages";
+import { actWords } from "../../maker-acts";
 import { CheckList } from "../check-list";
 import { loadPackage, type PackageParams } from "../load-package";
 import { PackageShell } from "../package-shell";
@@ -69,9 +70,9 @@ export interface MakerActs {
   acts: string[];
 }
 
-/** Everybody who had a hand in the package, each with what they did. */
+/** Everybody who had a hand in the package, each with what they did, in words. */
 function makersOf({ makers }: PackageView): MakerActs[] {
   const byName = new Map<string, Set<string>>();
-  for (const { name, act } of makers) byName.set(name, (byName.get(name) ?? new Set()).add(act));
+  for (const { name, act } of makers) byName.set(name, (byName.get(name) ?? new Set()).add(actWords(act)));
   return [...byName].map(([name, acts]) => ({ name, acts: [...acts] }));
 }

@@ -25,13 +25,15 @@ export function WhoMaySign({ view, me, makers }: WhoMaySignProps) {
             <Link href="/people">People</Link>.
           </Notice>
         ) : null}
-        {mine ? <p className="text-ochre">You can't: you {mine.acts.join(", ")} for it.</p> : null}
+        {mine ? <p className="text-ochre">You can't: you {mine.acts.join(", ")}.</p> : null}
         <ul className="text-ink-soft">
-          {makers.map((maker) => (
-            <li key={maker.name}>
-              {maker.name}: {maker.acts.join(", ")}
-            </li>
-          ))}
+          {makers
+            .filter((maker) => maker !== mine)
+            .map((maker) => (
+              <li key={maker.name}>
+                {maker.name}: {maker.acts.join(", ")}
+              </li>
+            ))}
         </ul>
         {view.submittedBy && view.state === "in-review" ? (
           <p className="text-ink-soft">Asked for by {view.submittedBy}, who can take it back.</p>
