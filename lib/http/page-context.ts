@@ -9,9 +9,9 @@ import { newContext } from "./route";
 /**
  * The context of a page: a signed-in person, else the sign-in page and back.
  * Most pages are for readers; who holds none of the roles, as an operator, is taken to the bench.
- * @param roles who may see the page; `ROLES` for a page of everybody signed in.
+ * @param roles who may see the page; `anybody` for what everybody signed in has, with or without a role.
  */
-export async function pageContext(roles: readonly Role[] = READERS): Promise<PersonCtx> {
+export async function pageContext(roles: readonly Role[] | "anybody" = READERS): Promise<PersonCtx> {
   const requestHeaders = await headers();
   const actor = await resolveActor(requestHeaders);
   if (actor.kind !== "person") {
@@ -19,7 +19,8 @@ export async function pageContext(roles: readonly Role[] = READERS): Promise<Per
     redirect(`/sign-in?back=${encodeURIComponent(back)}`);
   }
   const ctx = newContext(actor) as PersonCtx;
-  if (!holds(ctx, ...roles)) redirect(actor.roles.includes("operator") ? "/stations/bench" : "/account");
+  if (roles !== "anybody" && !holds(ctx, ...roles))
+    redirect(actor.roles.includes("operator") ? "/stations/bench" : "/account");
   return ctx;
 }
 

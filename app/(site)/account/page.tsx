@@ -13,7 +13,7 @@ import { SessionsCard } from "./sessions-card";
 export const metadata: Metadata = { title: "Account" };
 
 export default async function AccountPage() {
-  const ctx = await pageContext();
+  const ctx = await pageContext("anybody");
   const account = await getAccount(ctx);
   const keys = await listKeys(ctx, { limit: 1_000 });
   const sessions = await listSessions(ctx, { limit: 1_000 });
