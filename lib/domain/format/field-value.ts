@@ -90,5 +90,8 @@ function stepText(difference: number, unit: string | null, seen: number): string
 
 function plain(value: number): string {
   if (Number.isInteger(value)) return formatFigure(value, { digits: 0 });
-  return String(Number(value.toPrecision(SIGNIFICANT))).replace("-", "−");
+  const size = Math.abs(value);
+  if (size < 1e-6 || size >= 1e9) return value.toExponential(SIGNIFICANT - 1).replaceAll("-", "−");
+  // As many decimals for all values of a size, so that a column of them lines up.
+  return formatFigure(value, { digits: Math.max(0, SIGNIFICANT - 1 - Math.floor(Math.log10(size))) });
 }
