@@ -41,7 +41,7 @@ export function ValuesCard({ origin, derived }: ValuesCardProps) {
     >
       <Facts small facts={facts} />
       <p className="mt-3 text-sm text-ink-soft">{measuredSentence(origin, derived)}</p>
-      <details className="mt-3 text-sm">
+      <details className="mt-3 text-sm print:hidden">
         <summary className="w-max text-slate hover:text-copper-strong">All fields and bytes</summary>
         <div className="mt-3 overflow-x-auto">
           <table className="w-full text-sm">

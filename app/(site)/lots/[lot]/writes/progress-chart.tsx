@@ -12,11 +12,15 @@ const hoursMax = 72;
 export function ProgressChart({ progress }: { progress: WriteProgress }) {
   const { anyPackage, livePackage, live } = progress;
   const start = new Date(anyPackage[0]?.at ?? 0).getTime();
-  const end = new Date(anyPackage.at(-1)?.at ?? 0).getTime();
+  const end = Math.max(...[anyPackage, livePackage].map((curve) => new Date(curve.at(-1)?.at ?? 0).getTime()));
   const inDays = end - start > hoursMax * hourMs;
   const unitMs = inDays ? 24 * hourMs : hourMs;
-  const points = (curve: readonly ProgressPoint[]) =>
-    curve.map(({ at, devices }) => [(new Date(at).getTime() - start) / unitMs, devices] as const);
+  const x = (at: number) => (at - start) / unitMs;
+  // A curve that ends early stays where it is, up to the newest write.
+  const points = (curve: readonly ProgressPoint[]) => [
+    ...curve.map(({ at, devices }) => [x(new Date(at).getTime()), devices] as const),
+    [x(end), curve.at(-1)?.devices ?? 0] as const,
+  ];
   const onlyLive =
     live !== null && livePackage.length === anyPackage.length && livePackage[0]?.at === anyPackage[0]?.at;
   const series: LineSeries[] = [
