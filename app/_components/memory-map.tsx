@@ -32,7 +32,7 @@ export function MemoryMap({ bytes, pageBytes, parts, hex, label }: MemoryMapProp
   const [covering, setCovering] = useState<MapPart>();
   const over = covering?.over;
   return (
-    <div className="overflow-x-auto">
+    <div className="relative overflow-x-auto">
       <table
         aria-label={label}
         className="w-full min-w-[560px] border-separate border-spacing-[3px] table-fixed text-xs"

@@ -52,7 +52,7 @@ function StitchBody({ stitch, name, current }: { stitch: Stitch; name: string; c
       <span className="mt-0.5 block text-xs text-ink-soft">{stitch.count}</span>
       {stitch.blocked ? (
         <span className="mt-0.5 block">
-          <StateMark tone="bad" word={stitch.blocked} />
+          <StateMark tone={stitch.tone === "bad" ? "bad" : "wait"} word={stitch.blocked} />
         </span>
       ) : null}
     </>

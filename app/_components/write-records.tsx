@@ -30,7 +30,7 @@ export function WriteRecords({ endpoint, name, urlName, ofOneStation, empty }: W
           { key: "outcome", header: "Outcome", format: { as: "state", kind: "write-outcome" } },
           { key: "flags", header: "Flags" },
           { key: "version", header: "Package" },
-          { key: "finishedAt", header: "Finished", unit: "UTC", format: { as: "time" } },
+          { key: "finishedAt", header: "Finished", format: { as: "time" } },
           ...(ofOneStation ? [] : [{ key: "station", header: "Station" }]),
           { key: "operator", header: "Operator" },
           { key: "detail", header: "Detail" },
@@ -38,8 +38,8 @@ export function WriteRecords({ endpoint, name, urlName, ofOneStation, empty }: W
           { key: "imageSha256", header: "Image", format: { as: "digest" }, hidden: true },
           { key: "readbackSha256", header: "Read back", format: { as: "digest" }, hidden: true },
           { key: "hardwareId", header: "Board", format: { as: "code" }, hidden: true },
-          { key: "startedAt", header: "Started", unit: "UTC", format: { as: "time" }, hidden: true },
-          { key: "receivedAt", header: "Received", unit: "UTC", format: { as: "time" }, hidden: true },
+          { key: "startedAt", header: "Started", format: { as: "time" }, hidden: true },
+          { key: "receivedAt", header: "Received", format: { as: "time" }, hidden: true },
         ]}
         chips={[
           {

@@ -154,7 +154,11 @@ function sharedFirmware(layout: LayoutDocument, published: readonly LayoutDocume
     (one) => one.version !== layout.version && mayShareFirmware(one.firmware, layout.firmware),
   );
   if (others.length === 0) return [];
-  const message = `Layout ${others.map((one) => one.version).join(", ")} is for some of the same firmware`;
+  const versions = others.map((one) => one.version).join(", ");
+  const message =
+    others.length === 1
+      ? `Layout ${versions} is for some of the same firmware`
+      : `Layouts ${versions} are for some of the same firmware`;
   return [{ path: "/firmware", code: "firmware.shared", message }];
 }
 

@@ -95,7 +95,7 @@ export default async function LedgerPage({ searchParams }: PageProps) {
             rowHref="/ledger/{seq}"
             columns={[
               { key: "seq", header: "Place", format: { as: "count" }, align: "left" },
-              { key: "at", header: "When", unit: "UTC", format: { as: "time" } },
+              { key: "at", header: "When", format: { as: "time" } },
               { key: "action", header: "What" },
               { key: "subject", header: "To what", format: { as: "code" } },
               { key: "actorName", header: "By" },

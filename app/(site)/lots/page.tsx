@@ -39,7 +39,7 @@ export default async function LotsPage({ searchParams }: { searchParams: Promise
             { key: "firmware", header: "Firmware", format: { as: "code" } },
             { key: "revision", header: "Family values", unit: "revision", format: { as: "count" } },
             { key: "createdBy", header: "Made by" },
-            { key: "createdAt", header: "Made", unit: "UTC", format: { as: "time" } },
+            { key: "createdAt", header: "Made", format: { as: "time" } },
           ]}
           chips={[
             { id: "live", name: "Live", key: "state", in: ["live"] },

@@ -38,7 +38,7 @@ export function StationList({ stations, families, admin }: StationListProps) {
           { key: "name", header: "Name" },
           { key: "state", header: "State", format: { as: "state", kind: "station" } },
           { key: "families", header: "May write" },
-          { key: "lastSeenAt", header: "Last seen", unit: "UTC", format: { as: "time" } },
+          { key: "lastSeenAt", header: "Last seen", format: { as: "time" } },
           { key: "goodKeys", header: "Keys in use", format: { as: "count" } },
           { key: "createdAt", header: "Added", unit: "UTC", format: { as: "date" }, hidden: true },
         ]}

@@ -39,7 +39,7 @@ export function ChartFrame({ label, table, height = 290, legend, children }: Cha
     observer.observe(box.current);
     return () => observer.disconnect();
   }, []);
-  const area = { width, height, left: 54, right: width - 14, top: 26, bottom: height - 46 };
+  const area = { width, height, left: 54, right: width - 22, top: 26, bottom: height - 46 };
 
   return (
     <figure className="m-0">

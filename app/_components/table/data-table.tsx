@@ -212,5 +212,6 @@ function statusOf(visible: number, loaded: { rows: readonly Row[]; complete: boo
   const all = formatCount(loaded.rows.length);
   if (loaded.loading) return loaded.rows.length ? `${all} loaded, loading` : "loading";
   if (visible !== loaded.rows.length) return `${formatCount(visible)} of ${all}`;
-  return loaded.complete ? `${all} rows` : `${all} loaded`;
+  if (!loaded.complete) return `${all} loaded`;
+  return loaded.rows.length === 1 ? "1 row" : `${all} rows`;
 }

@@ -129,6 +129,12 @@ function Widths({
   );
 }
 
+/** Text right after figures would run into them: its column begins a little later. */
+function roomBefore(columns: readonly DataColumn[], at: number): string {
+  const [before, column] = [columns[at - 1], columns[at]];
+  return before && column && isRight(before) && !isRight(column) ? "pl-4" : "";
+}
+
 const headLook =
   "sticky top-0 border-b border-rule bg-raised py-1.5 pr-3 text-xs font-semibold text-ink-soft whitespace-nowrap";
 
@@ -152,7 +158,7 @@ function TableHead({ columns, rows, keyOf, sort, onSort, selected, onSelected }:
         {columns.map((column, index) => {
           const unit = unitOf(column);
           const direction = sort?.key === column.key ? (sort.descending ? "descending" : "ascending") : undefined;
-          const place = index === 0 ? "left-0 z-20 pl-1.5" : "z-10";
+          const place = index === 0 ? "left-0 z-20 pl-1.5" : `z-10 ${roomBefore(columns, index)}`;
           return (
             <th
               key={column.key}
@@ -245,7 +251,7 @@ function BodyRow(props: BodyRowProps) {
         </td>
       ) : null}
       {columns.map((column, at) => {
-        const place = at === 0 ? "sticky left-0 z-[5] pl-1.5" : "";
+        const place = at === 0 ? "sticky left-0 z-[5] pl-1.5" : roomBefore(columns, at);
         const type = `${isRight(column) ? "text-right" : ""} ${isMono(column) ? "font-mono" : ""}`;
         return (
           <td key={column.key} className={`${look} ${place} ${type} overflow-hidden text-ellipsis`}>

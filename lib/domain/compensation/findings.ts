@@ -75,7 +75,8 @@ const KINDS = {
   },
   "point.no_return": {
     severity: "note",
-    words: () => "No point returns to an earlier temperature: a lasting shift can't be told from drift.",
+    words: (f) =>
+      `No point of the ${show(f.purpose)} run returns to an earlier temperature: a lasting shift can't be told from drift.`,
   },
   "repeats.scatter": {
     severity: "soft",

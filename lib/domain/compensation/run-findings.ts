@@ -258,6 +258,6 @@ export function listRunFindings(family: FamilyRules, purpose: Purpose, readings:
     for (const point of usual) if (!rowsByPoint.has(point)) found.add("point.missing", serial, point, 0, {});
   }
   checkOutliers(manyRepeats, found);
-  const notes = severalTemperatures && !returned ? [makeFinding("point.no_return")] : [];
+  const notes = severalTemperatures && !returned ? [makeFinding("point.no_return", { data: { purpose } })] : [];
   return [...found.list(), ...checkCopies(devices), ...notes];
 }

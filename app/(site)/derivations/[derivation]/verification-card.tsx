@@ -2,6 +2,8 @@ import { Card } from "@/app/_components/card";
 import { DataTable } from "@/app/_components/table/data-table";
 import type { DerivationView } from "@/schemas/api/derivations";
 
+const JUDGED_BY: Record<string, string> = { spanRatio: "span error", zeroShiftRatio: "zero shift" };
+
 /** Devices that never fed the gain coefficient, judged with it. Nothing where there is none. */
 export function VerificationCard({ results }: { results: DerivationView["verification"] }) {
   if (results.length === 0) return null;
@@ -15,7 +17,10 @@ export function VerificationCard({ results }: { results: DerivationView["verific
       <DataTable
         name="verification devices"
         urlName="verification"
-        rows={results}
+        rows={results.map((one) => ({
+          ...one,
+          judged: one.judged.map((ratio) => JUDGED_BY[ratio] ?? ratio).join(", "),
+        }))}
         rowKey="serial"
         columns={[
           { key: "serial", header: "Serial", format: { as: "code" } },

@@ -102,7 +102,7 @@ export default async function FamilyPage({ params, searchParams }: PageProps) {
                 title: "Computed from the differences to the newest published lower version",
               },
               { key: "updatedBy", header: "Last written by" },
-              { key: "updatedAt", header: "Last written", unit: "UTC", format: { as: "time" } },
+              { key: "updatedAt", header: "Last written", format: { as: "time" } },
             ]}
             empty={{
               title: "No layout yet",

@@ -71,7 +71,7 @@ export default async function LotPage({ params }: PageProps) {
                 format: { as: "code" },
                 title: "Hardware id of the board in it, as last reported",
               },
-              { key: "addedAt", header: "Added", unit: "UTC", format: { as: "time" } },
+              { key: "addedAt", header: "Added", format: { as: "time" } },
             ]}
             chips={[
               { id: "held", name: "Held", key: "state", in: ["held"] },

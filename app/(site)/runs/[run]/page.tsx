@@ -11,7 +11,7 @@ import { TitleRow } from "@/app/_components/title-row";
 import { formatCount, formatNumberOf } from "@/lib/domain/format/figure";
 import { formatQuantity } from "@/lib/domain/format/quantity";
 import { formatSize } from "@/lib/domain/format/size";
-import { formatDateTime } from "@/lib/domain/format/time";
+import { formatDate, formatDateTime } from "@/lib/domain/format/time";
 import { orNotFound, pageContext } from "@/lib/http/page-context";
 import { listRunUses } from "@/lib/services/derivations/get-derivation";
 import { getRunView } from "@/lib/services/runs/get-run";
@@ -77,7 +77,7 @@ export default async function RunPage({ params }: { params: Promise<{ run: strin
               {run.equipment.map((one) => (
                 <li key={one.code}>
                   <span className="font-mono">{one.code}</span>, {one.kind}, certificate {one.certificate}, due{" "}
-                  {one.calibratedUntil}
+                  {formatDate(one.calibratedUntil)}
                 </li>
               ))}
             </ul>

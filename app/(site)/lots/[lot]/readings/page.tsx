@@ -32,6 +32,7 @@ export default async function ReadingsPage({ params }: { params: Promise<{ lot: 
   const runs = items.map(rowOf);
   const isEngineer = holds(ctx, "engineer");
   const equipment = isEngineer ? (await listEquipment(ctx, { limit: 1_000 })).items : [];
+  const today = ctx.now().toISOString().slice(0, 10);
   return (
     <>
       <TitleRow
@@ -87,7 +88,12 @@ export default async function ReadingsPage({ params }: { params: Promise<{ lot: 
           <>
             <UploadPanel
               lot={thread.lot}
-              equipment={equipment.map(({ code, kind, calibratedUntil }) => ({ code, kind, calibratedUntil }))}
+              equipment={equipment.map(({ code, kind, calibratedUntil }) => ({
+                code,
+                kind,
+                calibratedUntil,
+                overdue: calibratedUntil < today,
+              }))}
               runs={runs
                 .filter((run) => run.counted)
                 .map(({ id, purpose, createdAt, devices }) => ({ id, purpose, createdAt, devices }))}

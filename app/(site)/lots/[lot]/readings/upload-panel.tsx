@@ -12,7 +12,7 @@ import { Select } from "@/app/_components/form/select";
 import { TextArea } from "@/app/_components/form/text-area";
 import { Notice } from "@/app/_components/notice";
 import { formatNumberOf } from "@/lib/domain/format/figure";
-import { formatDateTime } from "@/lib/domain/format/time";
+import { formatDate, formatDateTime } from "@/lib/domain/format/time";
 import type { FindingView } from "@/schemas/api/runs";
 import { ColumnMapping } from "./column-mapping";
 import { type GivenTable, isReadingsCsv, readTable } from "./read-table";
@@ -30,7 +30,7 @@ const MAX_BYTES = 64 * 1024 * 1024;
 
 export interface UploadPanelProps {
   lot: string;
-  equipment: readonly { code: string; kind: string; calibratedUntil: string }[];
+  equipment: readonly { code: string; kind: string; calibratedUntil: string; overdue: boolean }[];
   /** Runs that count and so may be replaced. */
   runs: readonly { id: string; purpose: string; createdAt: string; devices: number }[];
 }
@@ -191,14 +191,14 @@ function EquipmentChoice({
     <fieldset className="m-0 min-w-0">
       <legend className="mb-1 text-sm font-semibold">Equipment used</legend>
       <div className="flex flex-wrap gap-x-6 gap-y-1.5">
-        {equipment.map(({ code, kind, calibratedUntil }) => (
+        {equipment.map(({ code, kind, calibratedUntil, overdue }) => (
           <Checkbox
             key={code}
             label={
               <>
                 <span className="font-mono">{code}</span>{" "}
-                <span className="text-ink-soft">
-                  {kind}, due {calibratedUntil}
+                <span className={overdue ? "text-ochre" : "text-ink-soft"}>
+                  {kind}, {overdue ? "past its date of" : "due"} {formatDate(calibratedUntil)}
                 </span>
               </>
             }

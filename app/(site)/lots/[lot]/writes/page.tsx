@@ -116,7 +116,7 @@ function Rewrites({ path, lot, version }: { path: string; lot: string; version: 
           { key: "why", header: "Why", format: { as: "state", kind: "rewrite" } },
           { key: "carries", header: "Carries" },
           { key: "lastOutcome", header: "Last write", format: { as: "state", kind: "write-outcome" } },
-          { key: "writtenAt", header: "At", unit: "UTC", format: { as: "time" } },
+          { key: "writtenAt", header: "At", format: { as: "time" } },
           { key: "station", header: "Station" },
           { key: "held", header: "Held", format: { as: "yes-no", yes: "held", no: "" } },
           { key: "shipped", header: "Shipped", format: { as: "yes-no", yes: "shipped", no: "" } },
