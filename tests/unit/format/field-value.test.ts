@@ -11,7 +11,7 @@ describe("a decoded field", () => {
   it("without a unit stands as it is", () => {
     expect(formatField(2, null)).toEqual({ text: "2", unit: "" });
     expect(formatField(44177, null)).toEqual({ text: "44177", unit: "" });
-    expect(formatField(0.06185567014687729, "°C/1")).toEqual({ text: "0.06185567006", unit: "°C/1" });
+    expect(formatField(0.061855670064687729, "°C/1")).toEqual({ text: "0.0618556701", unit: "°C/1" });
     expect(formatField(-0.125, null).text).toBe("−0.125000000");
     expect(formatField(2.5e-9, null).text).toBe("2.50000000e−9");
   });
