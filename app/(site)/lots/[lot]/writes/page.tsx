@@ -59,7 +59,11 @@ export default async function WritesPage({ params }: PageProps) {
             <Counts progress={progress} />
           </Card>
         </div>
-        {progress.live ? <Rewrites path={path} lot={thread.lot} version={progress.live.version} /> : null}
+        {progress.live ? (
+          <div id="rewrites" className="scroll-mt-16">
+            <Rewrites path={path} lot={thread.lot} version={progress.live.version} />
+          </div>
+        ) : null}
         <Card title="Records">
           <WriteRecords
             endpoint={`${path}/writes`}

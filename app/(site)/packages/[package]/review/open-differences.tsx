@@ -19,12 +19,13 @@ export interface OpenDifferencesProps {
 /** The differences, shut until they are opened by hand: a signature rests on their having been looked at. */
 export function OpenDifferences({ reviewDigest, words, comparison, children }: OpenDifferencesProps) {
   const seen = useSeen(reviewDigest ?? "");
-  const [opened, setOpened] = useState(false);
+  // What is decided over may change under an open page: then they are shut again.
+  const [openedFor, setOpenedFor] = useState<string | null>();
   const open = () => {
-    setOpened(true);
+    setOpenedFor(reviewDigest);
     if (reviewDigest !== null) markSeen(reviewDigest);
   };
-  if (!opened && !seen) {
+  if (openedFor !== reviewDigest && !seen) {
     return (
       <Card title="Differences">
         <p className="mb-3 text-sm text-ink-soft">Serial by serial: values old → new, and the bytes.</p>
