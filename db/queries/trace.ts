@@ -147,18 +147,23 @@ export async function listImpact(
       where p.id = ${source.package ?? null}::uuid or p.layout_id = ${source.layout ?? null}::uuid
     ), reached_device as (
       select device_id from reached_set union select device_id from reached_image union select device_id from measured
+    ), newest_set as (
+      select distinct on (device_id) device_id, state, role from reached_set order by device_id, created_at desc
+    ), packed as (
+      select i.device_id, array_agg(p.id) as ids,
+        array_agg(p.version order by p.version_major, p.version_minor, p.version_patch) as versions
+      from reached_image i join package p on p.id = i.package_id group by i.device_id
     ), shown as (
       select d.id, d.serial, d.lot_id, d.held, d.shipped from device d
       where d.id in (select device_id from reached_device) and d.serial > ${page.after ?? ""} order by d.serial limit ${page.limit}
     )
-    select d.serial, l.code as lot, s.state as coefficients, s.role, d.held, d.shipped,
-      coalesce((select array_agg(p.version order by p.version_major, p.version_minor, p.version_patch)
-        from reached_image i join package p on p.id = i.package_id where i.device_id = d.id), '{}') as packages,
+    select d.serial, l.code as lot, s.state as coefficients, s.role, d.held, d.shipped, coalesce(k.versions, '{}') as packages,
       case when known.yes then p.version end as carries, w.outcome,
-      known.yes and exists (select 1 from reached_image i where i.device_id = d.id and i.package_id = w.package_id) as carries_reached
+      known.yes and coalesce(w.package_id = any(k.ids), false) as carries_reached
     from shown d
     join lot l on l.id = d.lot_id
-    left join lateral (select state, role from reached_set r where r.device_id = d.id order by created_at desc limit 1) s on true
+    left join newest_set s on s.device_id = d.id
+    left join packed k on k.device_id = d.id
     left join lateral ${decidingWrite} w on true
     left join package p on p.id = w.package_id
     cross join lateral (
