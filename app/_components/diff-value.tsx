@@ -12,15 +12,17 @@ export interface DiffValueProps {
 /** old → new, with the step in the value's unit and in stored steps. */
 export function DiffValue({ from, to, unit, step, lsb }: DiffValueProps) {
   return (
-    <span className="font-mono text-sm whitespace-nowrap">
-      <span className="sr-only">was </span>
-      <span className="text-ink-soft">{from ?? "none"}</span>
-      <span aria-hidden="true"> → </span>
-      <span className="sr-only">, is </span>
-      <span>{to ?? "none"}</span>
-      {unit ? <span className="font-sans text-ink-soft"> {unit}</span> : null}
+    <span className="inline-flex flex-wrap gap-x-2 font-mono text-sm">
+      <span className="whitespace-nowrap">
+        <span className="sr-only">was </span>
+        <span className="text-ink-soft">{from ?? "none"}</span>
+        <span aria-hidden="true"> → </span>
+        <span className="sr-only">, is </span>
+        <span>{to ?? "none"}</span>
+        {unit ? <span className="font-sans text-ink-soft"> {unit}</span> : null}
+      </span>
       {step || lsb ? (
-        <span className="ml-2 text-xs text-ink-soft">
+        <span className="text-xs leading-[1.7] whitespace-nowrap text-ink-soft">
           {[step, lsb ? `${lsb} steps` : ""].filter(Boolean).join(" · ")}
         </span>
       ) : null}

@@ -28,7 +28,7 @@ export async function getPackageProvenance(ctx: Ctx, id: string) {
     family: await familyOf(ctx, row),
     layout: await layoutOf(ctx, row),
     derivations,
-    releases: await releasesOf(ctx, row),
+    releases: await listReleases(ctx, row),
     files: (await listPackageFiles(ctx.db, row.id)).map((file) => ({ ...file, sha256: file.sha256.toString("hex") })),
     events: (await listEventsOfSubjects(ctx.db, [row.id])).map((event) => ({
       ...event,
@@ -89,8 +89,14 @@ async function derivationOf(ctx: Ctx, id: string) {
   };
 }
 
+/** The withdrawal of a package; undefined where it was not withdrawn. @throws AppError `package.not_found` */
+export async function findWithdrawal(ctx: Ctx, id: string) {
+  const releases = await listReleases(ctx, await getPackage(ctx.db, id));
+  return releases.find((one) => one.kind === "withdrawal");
+}
+
 /** Every change of what is live that names the package, oldest first. */
-async function releasesOf(ctx: Ctx, row: PackageRow) {
+async function listReleases(ctx: Ctx, row: { id: string; lotId: string }) {
   const periods = await listLivePeriods(ctx.db, row.lotId);
   return periods
     .filter((period) => period.packageId === row.id)

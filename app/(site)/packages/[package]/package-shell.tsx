@@ -12,6 +12,7 @@ import { TitleRow } from "@/app/_components/title-row";
 import { hasOneTimeCode } from "@/lib/services/account/has-one-time-code";
 import type { PersonCtx } from "@/lib/services/context";
 import { getLotThread } from "@/lib/services/lots/get-lot-thread";
+import { findWithdrawal } from "@/lib/services/packages/get-provenance";
 import { listLotReinstatements } from "@/lib/services/reinstatements/get-reinstatement";
 import type { PackageView } from "@/schemas/api/packages";
 import { PackageActions } from "./package-actions";
@@ -71,6 +72,7 @@ export async function PackageShell({ ctx, view, tab, title, children }: PackageS
       {built ? <PackageTabs view={view} tab={tab} /> : null}
       <div className="flex flex-col gap-[18px]">
         <BuildState view={view} />
+        {view.state === "withdrawn" ? <Withdrawn withdrawal={await findWithdrawal(ctx, view.id)} /> : null}
         <WhatIsDue view={view} engineer={ctx.actor.roles.includes("engineer")} />
         {built ? children : null}
       </div>
@@ -124,6 +126,16 @@ function BuildState({ view }: { view: PackageView }) {
         Nothing was stored. Mend it, then <Link href={`/lots/${view.lot}/packages#build`}>build again</Link>; the number{" "}
         {view.version} is not used twice.
       </p>
+    </Notice>
+  );
+}
+
+function Withdrawn({ withdrawal }: { withdrawal: Awaited<ReturnType<typeof findWithdrawal>> }) {
+  if (!withdrawal) return null;
+  return (
+    <Notice tone="bad" title={`Withdrawn by ${withdrawal.by}`}>
+      <TimeText at={withdrawal.at} />
+      {withdrawal.reason ? `: “${withdrawal.reason}”` : ""} No station may write it, and it is never live again.
     </Notice>
   );
 }

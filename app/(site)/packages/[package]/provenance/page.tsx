@@ -9,6 +9,7 @@ import { actWords } from "../../maker-acts";
 import { loadPackage, type PackageParams } from "../load-package";
 import { PackageShell } from "../package-shell";
 import { Decisions, DerivationCard, DocumentsCard } from "./provenance-cards";
+import { RebuildCard } from "./rebuild-card";
 import { EventsCard, FilesCard, ReleasesCard, VerifyCard } from "./release-cards";
 
 export const metadata: Metadata = { title: "Provenance of a package" };
@@ -32,6 +33,7 @@ export default async function ProvenancePage({ params }: PackageParams) {
           <Downloads view={view} auditor={holds(ctx, "auditor")} />
           <PeopleCard view={view} />
           <ReleasesCard releases={provenance.releases} />
+          <RebuildCard id={view.id} rebuild={view.rebuild} mayAsk={holds(ctx, "engineer", "reviewer")} />
           <FilesCard files={provenance.files} />
           {released ? (
             <VerifyCard
