@@ -42,10 +42,13 @@ export function HexGrid({ hex, fields = [], changed = [], kept = [], fill = 0xff
   return (
     <div>
       {/* biome-ignore lint/a11y/noStaticElementInteractions: leaving clears the tie; the list below works by keyboard */}
-      <div className="font-mono text-[13px] leading-[1.2] font-medium" onMouseLeave={() => setActive(undefined)}>
+      <div
+        className="overflow-x-auto font-mono text-[13px] leading-[1.2] font-medium"
+        onMouseLeave={() => setActive(undefined)}
+      >
         <table
           aria-label={label}
-          className="w-full table-fixed border-separate border-spacing-x-0 border-spacing-y-0.5"
+          className="w-full min-w-[430px] table-fixed border-separate border-spacing-x-0 border-spacing-y-0.5"
         >
           <tbody>
             {rows.map((row) => (

@@ -24,6 +24,7 @@ export function ComparisonFacts({ counts, fields }: ComparisonFactsProps) {
           },
           { value: formatCount(counts["version-only"]), label: "differ in version numbers only" },
           { value: formatCount(counts.added + counts.removed), label: addedText(counts) },
+          ...(counts.same > 0 ? [{ value: formatCount(counts.same), label: "have the same bytes" }] : []),
         ]}
       />
       {fields.length > 0 ? (

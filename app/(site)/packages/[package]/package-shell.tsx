@@ -135,7 +135,7 @@ function Withdrawn({ withdrawal }: { withdrawal: Awaited<ReturnType<typeof findW
   return (
     <Notice tone="bad" title={`Withdrawn by ${withdrawal.by}`}>
       <TimeText at={withdrawal.at} />
-      {withdrawal.reason ? `: “${withdrawal.reason}”` : ""} No station may write it, and it is never live again.
+      {withdrawal.reason ? `: “${withdrawal.reason}”` : ""}. No station may write it, and it is never live again.
     </Notice>
   );
 }

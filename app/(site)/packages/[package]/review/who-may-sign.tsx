@@ -13,7 +13,7 @@ export interface WhoMaySignProps {
 /** Who may sign a package and who may not, with what stands against it. */
 export function WhoMaySign({ view, me, makers }: WhoMaySignProps) {
   const waits = view.state === "draft" || view.state === "in-review";
-  const mine = view.isMaker ? makers.find((maker) => maker.name === me) : undefined;
+  const mine = waits && view.isMaker ? makers.find((maker) => maker.name === me) : undefined;
   return (
     <Card title={waits ? "Who may sign it" : "Who had a hand in it"}>
       <div className="flex flex-col gap-2 text-sm">
