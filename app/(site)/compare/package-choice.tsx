@@ -18,6 +18,17 @@ export async function lotsOf(ctx: PersonCtx, chosen: Chosen): Promise<[string | 
   return [from ?? to, to];
 }
 
+/** Without packages of another lot than the one that is named beside them: the lot was changed in the form. */
+export async function settledChoice(ctx: PersonCtx, chosen: Chosen): Promise<Chosen> {
+  const fits = async (lot: string | undefined, id: string | undefined) =>
+    lot === undefined || (await lotOfPackage(ctx, id)) === lot.toUpperCase();
+  return {
+    ...chosen,
+    from: (await fits(chosen.lot, chosen.from)) ? chosen.from : undefined,
+    to: (await fits(chosen.toLot, chosen.to)) ? chosen.to : undefined,
+  };
+}
+
 async function lotOfPackage(ctx: PersonCtx, text: string | undefined): Promise<string | undefined> {
   const id = packageIdOf(text);
   if (id === undefined) return undefined;

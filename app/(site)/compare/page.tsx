@@ -6,6 +6,7 @@ import { type Chosen, kindOf } from "./chosen";
 import { CompareImages } from "./compare-images";
 import { CompareLayouts } from "./compare-layouts";
 import { ComparePackages } from "./compare-packages";
+import { settledChoice } from "./package-choice";
 
 export const metadata: Metadata = { title: "Compare" };
 
@@ -17,8 +18,9 @@ const notes = {
 
 export default async function ComparePage({ searchParams }: { searchParams: Promise<Chosen> }) {
   const ctx = await pageContext();
-  const chosen = await searchParams;
-  const kind = kindOf(chosen);
+  const asked = await searchParams;
+  const kind = kindOf(asked);
+  const chosen = kind === "layouts" ? asked : await settledChoice(ctx, asked);
   return (
     <>
       <TitleRow title="Compare" note={notes[kind]} />

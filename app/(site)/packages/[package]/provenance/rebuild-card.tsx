@@ -22,10 +22,12 @@ export interface RebuildCardProps {
 export function RebuildCard({ id, rebuild, mayAsk }: RebuildCardProps) {
   const router = useRouter();
   const [asked, setAsked] = useState(false);
+  // Each asking is followed by itself: what came of an earlier one says nothing.
+  const [times, setTimes] = useState(0);
   const [problem, setProblem] = useState<ProblemDetails | null>(null);
   const endpoint = `/api/v1/packages/${id}`;
   const { data } = useQuery({
-    queryKey: ["rebuild", id],
+    queryKey: ["rebuild", id, times],
     enabled: asked,
     queryFn: ({ signal }) => callApi<PackageView>(endpoint, { signal }),
     refetchInterval: ({ state }) => (state.data?.rebuild ? false : 1_500),
@@ -43,6 +45,7 @@ export function RebuildCard({ id, rebuild, mayAsk }: RebuildCardProps) {
     setProblem(null);
     try {
       await callApi(`${endpoint}/rebuild`, { method: "POST" });
+      setTimes(times + 1);
       setAsked(true);
     } catch (error) {
       setProblem(problemOf(error));
