@@ -95,7 +95,7 @@ function encodeSample(layout: LayoutDocument, { family }: LintOptions): Sample |
       const steps =
         typeof value === "number" && typeof readBack === "number" && findNumberType(field.type)?.kind === "integer";
       const roundingSteps = steps ? ((value as number) - (readBack as number)) / field.scale : null;
-      return { name: field.name, value, unit: field.unit, raw, readBack, roundingSteps };
+      return { name: field.name, value: shownAs(field.type, value), unit: field.unit, raw, readBack, roundingSteps };
     });
     return { serial: sources.device.serial, hex: toHex(image), rows };
   } catch (error) {
@@ -103,6 +103,11 @@ function encodeSample(layout: LayoutDocument, { family }: LintOptions): Sample |
     if (error instanceof AppError) return null;
     throw error;
   }
+}
+
+/** Constant bytes may be written in capitals; what is read back is not. */
+function shownAs(type: string, value: number | string | null): number | string | null {
+  return type === "bytes" && typeof value === "string" ? value.toLowerCase() : value;
 }
 
 function markersOf(text: string, errors: readonly Problem[], warnings: readonly Problem[]): JsonMarker[] {

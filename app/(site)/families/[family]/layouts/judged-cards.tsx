@@ -99,7 +99,7 @@ export function SampleCard({ judged: { sample } }: { judged: Judged }) {
     <Card title="Sample, encoded and read back" note="an invented device; its values are typical, not measured">
       {sample ? (
         <div className="overflow-x-auto">
-          <table className="w-full min-w-[520px] text-sm">
+          <table className="w-full min-w-[480px] text-sm whitespace-nowrap">
             <thead>
               <tr className="border-b border-rule text-left">
                 <th scope="col" className="py-1.5 pr-3">
@@ -118,7 +118,8 @@ export function SampleCard({ judged: { sample } }: { judged: Judged }) {
                   read back
                 </th>
                 <th scope="col" className="pl-3 text-right">
-                  rounding, steps
+                  rounding
+                  <span className="block font-normal text-ink-soft">steps</span>
                 </th>
               </tr>
             </thead>
@@ -128,12 +129,12 @@ export function SampleCard({ judged: { sample } }: { judged: Judged }) {
                   <th scope="row" className="py-1.5 pr-3 text-left font-mono font-normal">
                     {row.name}
                   </th>
-                  <td className="px-3 text-right font-mono">{valueText(row.value)}</td>
+                  <td className="max-w-[160px] truncate px-3 text-right font-mono">{valueText(row.value)}</td>
                   <td className="px-3 text-ink-soft">{row.unit ?? ""}</td>
-                  <td className="max-w-[180px] truncate px-3 font-mono" title={row.raw}>
+                  <td className="max-w-[132px] truncate px-3 font-mono" title={row.raw}>
                     {row.raw.toUpperCase()}
                   </td>
-                  <td className="px-3 text-right font-mono">{valueText(row.readBack)}</td>
+                  <td className="max-w-[160px] truncate px-3 text-right font-mono">{valueText(row.readBack)}</td>
                   <td className="pl-3 text-right font-mono">{roundingText(row)}</td>
                 </tr>
               ))}

@@ -13,7 +13,7 @@ import { useToast } from "@/app/_components/toast";
 import type { LayoutView } from "@/lib/services/layouts/get-layout";
 import type { LintBasis } from "@/lib/services/layouts/lint-document";
 import layoutSchema from "@/schemas/documents/layout.schema.json";
-import { judgeText } from "./judge-text";
+import { type Judged, judgeText } from "./judge-text";
 import { Differences, LintList, MemoryCard, SampleCard } from "./judged-cards";
 import { moveLayoutAction } from "./layout-actions";
 import { LayoutEnd } from "./layout-end";
@@ -90,7 +90,7 @@ export function LayoutEditor({ family, basis, layout, source, mayWrite, asked, a
         ]}
         title={title}
         state={stateOf("layout", state)}
-        note={noteOf(layout, dirty, shown.step, shown.previous)}
+        note={noteOf(layout, dirty, shown)}
         actions={
           <>
             {writable ? (
@@ -162,12 +162,13 @@ export function LayoutEditor({ family, basis, layout, source, mayWrite, asked, a
 function noteOf(
   layout: LayoutView | undefined,
   dirty: boolean,
-  step: string | null,
-  previous: string | null,
+  { step, previous, errors }: Pick<Judged, "step" | "previous" | "errors">,
 ): ReactNode {
+  const first =
+    errors.length > 0 ? "the step is told once nothing is left to mend" : "nothing published to compare with";
   const parts = [
     dirty ? "not saved" : layout ? `draft ${layout.draft} by ${layout.updatedBy}` : "not saved yet",
-    step && previous ? `step ${step} against ${previous}` : "nothing published to compare with",
+    step && previous ? `step ${step} against ${previous}` : first,
   ];
   return layout?.state === "published" || layout?.state === "retired"
     ? `written by ${layout.makers.join(", ")}`
