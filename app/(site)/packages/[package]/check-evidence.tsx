@@ -1,19 +1,19 @@
 import Link from "next/link";
 import type { ReactNode } from "react";
 import { Facts } from "@/app/_components/facts";
-import { LegalNote } from "@/app/_components/legal-note";
 import { DataTable } from "@/app/_components/table/data-table";
-import { formatField } from "@/lib/domain/format/field-value";
-import { formatCount, formatNumberOf, formatPercent } from "@/lib/domain/format/figure";
+import { formatField, formatFieldChange } from "@/lib/domain/format/field-value";
+import { formatCount, formatFigure } from "@/lib/domain/format/figure";
 import { formatQuantity } from "@/lib/domain/format/quantity";
 import { leftOutWords } from "../left-out-words";
 import { Evidence } from "./evidence";
-
-/** Serials of a finding: their number is whole, the list may be cut. */
-interface Named {
-  count: number;
-  serials: string[];
-}
+import { type Named, NamedSerials } from "./named-serials";
+import {
+  PredictionEvidence,
+  type TwinEvidence,
+  VerificationEvidence,
+  type VerificationFacts,
+} from "./prediction-evidence";
 
 interface CoverageEvidence {
   lotDevices: number;
@@ -42,6 +42,19 @@ interface RoundTripEvidence {
   largestErrors: { field: string; unit: string | null; error: number; serial: string }[];
 }
 
+interface HexReadingEvidence {
+  devices: number;
+  reader: string;
+  faults: { count: number; items: Record<string, unknown>[] };
+}
+
+interface ProvenRangeEvidence {
+  family: [number, number];
+  provenRange: [number, number] | null;
+  gaps: [number, number][];
+  unprovenDevices: number;
+}
+
 interface PoolingEvidence {
   derivations: {
     derivation: string;
@@ -52,26 +65,6 @@ interface PoolingEvidence {
     limit: number;
     verdict: string;
   }[];
-}
-
-interface VerificationEvidence {
-  confidence: number;
-  derivations: {
-    derivation: string;
-    judged: number;
-    passed: number;
-    shareShown: number | null;
-    devices: Record<string, unknown>[];
-  }[];
-}
-
-interface TwinEvidence {
-  judged: number;
-  spanJudged: number;
-  zeroJudged: number;
-  neverLoaded: Named;
-  outside: Named;
-  worst: Record<string, unknown>[];
 }
 
 /** What a check saw, drawn for each kind; a check that is not known here shows its facts as they are. */
@@ -86,33 +79,16 @@ export function CheckEvidence({ code, evidence }: { code: string; evidence: unkn
     case "pooling":
       return <Pooling {...(evidence as PoolingEvidence)} />;
     case "verification":
-      return <Verification {...(evidence as VerificationEvidence)} />;
+      return <VerificationEvidence {...(evidence as VerificationFacts)} />;
     case "twin":
-      return <Twin {...(evidence as TwinEvidence)} />;
+      return <PredictionEvidence {...(evidence as TwinEvidence)} />;
+    case "hex-reading":
+      return <HexReading {...(evidence as HexReadingEvidence)} />;
+    case "proven-range":
+      return <ProvenRange {...(evidence as ProvenRangeEvidence)} />;
     default:
       return <Evidence value={evidence} />;
   }
-}
-
-function Serials({ words, count, serials }: Named & { words: string }) {
-  if (count === 0) return null;
-  return (
-    <div className="text-sm">
-      <p className="font-semibold">
-        {formatCount(count)} {words}
-      </p>
-      <p className="flex flex-wrap gap-x-3 gap-y-0.5">
-        {serials.map((serial) => (
-          <Link key={serial} href={`/trace/${encodeURIComponent(serial)}`} prefetch={false} className="font-mono">
-            {serial}
-          </Link>
-        ))}
-        {count > serials.length ? (
-          <span className="text-ink-soft">and {formatCount(count - serials.length)} more</span>
-        ) : null}
-      </p>
-    </div>
-  );
 }
 
 function Coverage({ lotDevices, packed, leftOut, newerUndecided, otherBoard }: CoverageEvidence) {
@@ -127,10 +103,10 @@ function Coverage({ lotDevices, packed, leftOut, newerUndecided, otherBoard }: C
         ]}
       />
       {leftOut.map(({ reason, ...named }) => (
-        <Serials key={reason} words={`left out: ${leftOutWords[reason] ?? reason}`} {...named} />
+        <NamedSerials key={reason} words={`left out: ${leftOutWords[reason] ?? reason}`} {...named} />
       ))}
-      <Serials words="packed while newer coefficients wait for a decision" {...newerUndecided} />
-      <Serials words="with another board than the one that was measured" {...otherBoard} />
+      <NamedSerials words="packed while newer coefficients wait for a decision" {...newerUndecided} />
+      <NamedSerials words="with another board than the one that was measured" {...otherBoard} />
     </div>
   );
 }
@@ -166,12 +142,17 @@ function Limits({ fields }: LimitsEvidence) {
   );
 }
 
+/** A difference without its sign, with as many decimals as it takes to see it. */
+function sizeText(difference: number, unit: string | null): string {
+  const { step } = formatFieldChange({ from: 0, to: Math.abs(difference), unit, steps: null });
+  return step?.replace("+", "") ?? formatField(Math.abs(difference), unit).text;
+}
+
 function RoundTrip({ devices, values, checksums, faults, largestErrors }: RoundTripEvidence) {
   const rows = largestErrors.map(({ field, unit, error, serial }) => ({
     field,
     serial,
-    error: formatField(error, unit, 6).text,
-    unit: formatField(error, unit).unit,
+    error: sizeText(error, unit),
   }));
   return (
     <div className="flex flex-col gap-3">
@@ -189,11 +170,10 @@ function RoundTrip({ devices, values, checksums, faults, largestErrors }: RoundT
           name="rounding"
           urlName="rounding"
           rows={rows}
-          note="Largest rounding of each field"
+          note="What was read back against what was put in"
           columns={[
             { key: "field", header: "Field", format: { as: "code" } },
-            { key: "error", header: "Read back less put in", align: "right", format: { as: "code" } },
-            { key: "unit", header: "Unit" },
+            { key: "error", header: "Largest difference", align: "right", format: { as: "code" } },
             { key: "serial", header: "Serial", format: { as: "code" } },
           ]}
           empty={{ title: "No numbers" }}
@@ -228,81 +208,35 @@ function Pooling({ derivations }: PoolingEvidence) {
   ));
 }
 
-function Verification({ confidence, derivations }: VerificationEvidence) {
-  return derivations.map((one) => (
-    <div key={one.derivation} className="flex flex-col gap-2">
-      <p className="text-sm">
-        {one.passed} of {formatNumberOf(one.judged, "device")} passed
-        {one.shareShown === null
-          ? ""
-          : `: by itself that shows, with ${formatPercent(confidence)} confidence, that at least ${formatPercent(Math.floor(one.shareShown * 100) / 100)} of the lot would`}
-        . <Link href={`/derivations/${one.derivation}`}>The derivation</Link>
-      </p>
-      {one.devices.length > 0 ? (
-        <DataTable
-          name="verification devices"
-          urlName={`verification${one.derivation.slice(-4)}`}
-          rows={one.devices}
-          columns={[
-            { key: "serial", header: "Serial", format: { as: "code" } },
-            ...errorColumns,
-            { key: "passed", header: "Verdict", format: { as: "yes-no", yes: "inside", no: "outside" } },
-          ]}
-          empty={{ title: "No verification device" }}
-        />
-      ) : null}
-    </div>
-  ));
-}
-
-const errorColumns = [
-  { key: "spanErrorPpm", header: "span error", format: { as: "quantity", name: "spanErrorPpm", sign: "always" } },
-  {
-    key: "spanRatio",
-    header: "span",
-    title: "Share of the envelope; up to 1 is inside",
-    format: { as: "quantity", name: "ratio" },
-  },
-  {
-    key: "zeroShiftRatio",
-    header: "zero shift",
-    title: "Share of the limit; up to 1 is inside",
-    format: { as: "quantity", name: "ratio" },
-  },
-] as const;
-
-function Twin({ judged, spanJudged, zeroJudged, neverLoaded, outside, worst }: TwinEvidence) {
+function HexReading({ devices, reader, faults }: HexReadingEvidence) {
   return (
     <div className="flex flex-col gap-3">
       <Facts
         small
         facts={[
-          { label: "devices with readings", value: formatCount(judged) },
-          { label: "judged on span", value: formatCount(spanJudged) },
-          { label: "judged on zero", value: formatCount(zeroJudged) },
-          { label: "never loaded", value: formatCount(neverLoaded.count) },
+          { label: "HEX files", value: formatCount(devices) },
+          { label: "reader", value: reader },
+          { label: "read otherwise", value: formatCount(faults.count) },
         ]}
       />
-      <Serials words="predicted outside the envelope" {...outside} />
-      <DataTable
-        name="predictions"
-        urlName="twin"
-        rows={worst}
-        rowHref="/trace/{serial}"
-        note="The decoded values applied to the lot's own readings, worst first"
-        columns={[
-          { key: "serial", header: "Serial", format: { as: "code" } },
-          ...errorColumns,
-          {
-            key: "independent",
-            header: "Span judged",
-            title: "On a loaded point that the gain was not taken from",
-            format: { as: "yes-no", yes: "yes", no: "at its trim point only" },
-          },
-        ]}
-        empty={{ title: "No readings of packed devices" }}
-      />
-      <LegalNote />
+      {faults.count > 0 ? <Evidence value={{ faults: faults.items }} /> : null}
     </div>
+  );
+}
+
+const rangeText = (range: readonly [number, number]) =>
+  range.map((end) => formatFigure(end, { digits: 2 })).join(" to ");
+
+function ProvenRange({ family, provenRange, gaps, unprovenDevices }: ProvenRangeEvidence) {
+  return (
+    <Facts
+      small
+      facts={[
+        { label: "the family works at, °C", value: rangeText(family) },
+        { label: "proven, °C", value: provenRange ? rangeText(provenRange) : "nothing" },
+        ...(gaps.length > 0 ? [{ label: "nothing is claimed at, °C", value: gaps.map(rangeText).join(", ") }] : []),
+        ...(unprovenDevices > 0 ? [{ label: "devices on imported values", value: formatCount(unprovenDevices) }] : []),
+      ]}
+    />
   );
 }
