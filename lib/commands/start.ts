@@ -3,7 +3,7 @@ import { mkdirSync, statfsSync } from "node:fs";
 import { join } from "node:path";
 import { setTimeout as delay } from "node:timers/promises";
 import { findFreePort } from "@/db/free-port";
-import { ensureBuild } from "@/lib/commands/build-app";
+import { ensureBuild, markServed } from "@/lib/commands/build-app";
 import { PROGRAMS } from "@/lib/commands/checkout";
 import { plainMessage } from "@/lib/commands/command-line";
 import { type ProcessLock, tryLock } from "@/lib/commands/process-lock";
@@ -33,7 +33,12 @@ export default async function start(_args: string[], signal: AbortSignal): Promi
     try {
       setEnv({ DATABASE_URL: database.appUrl });
       await ensureBuild({ signal, say });
-      await serve(settings, database, signal);
+      const served = markServed();
+      try {
+        await serve(settings, database, signal);
+      } finally {
+        served.release();
+      }
     } finally {
       await database.stop();
       say("Stopped.");

@@ -2,7 +2,7 @@ import { cpSync, mkdirSync, mkdtempSync, rmSync, writeFileSync } from "node:fs";
 import { tmpdir } from "node:os";
 import { dirname, join } from "node:path";
 import { afterAll, beforeEach, describe, expect, it } from "vitest";
-import { ensureBuild, sourceHash } from "@/lib/commands/build-app";
+import { ensureBuild, markServed, sourceHash } from "@/lib/commands/build-app";
 import { CHECKOUT } from "@/lib/commands/checkout";
 import { setEnv } from "@/lib/env";
 
@@ -69,6 +69,22 @@ describe("the hash of what is built", () => {
 });
 
 describe("a build", () => {
+  it("of changed files is refused while a process serves the one before", async () => {
+    const dist = `.local-test/unit-served-${process.pid}`;
+    setEnv({ TRIMWRIGHT_DIST_DIR: dist });
+    const served = markServed();
+    try {
+      await expect(ensureBuild({ say: () => undefined })).rejects.toMatchObject({
+        code: "app.build_served",
+        details: { pid: process.pid },
+        message: `The sources changed, but process ${process.pid} still serves the app built before; stop it first`,
+      });
+    } finally {
+      served.release();
+      rmSync(join(CHECKOUT, ".local", `served-${dist.replaceAll("/", "-")}`), { recursive: true });
+    }
+  });
+
   it("is not repeated for the files that it was made from", async () => {
     const dist = `.local-test/unit-build-${process.pid}`;
     setEnv({ TRIMWRIGHT_DIST_DIR: dist });
