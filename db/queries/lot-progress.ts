@@ -66,7 +66,10 @@ export interface NewestPackageRow {
   failed: number;
 }
 
-/** The lot's package with the highest number, whatever became of it. */
+/**
+ * The package that tells where a lot stands: the one with the highest number, but one that gave way to another (superseded, or
+ * withdrawn before an earlier release went live again) only where there is no other.
+ */
 export async function findNewestPackage(db: Db, lotId: string): Promise<NewestPackageRow | undefined> {
   return db
     .selectFrom("package")
@@ -81,6 +84,7 @@ export async function findNewestPackage(db: Db, lotId: string): Promise<NewestPa
         .as("failed"),
     )
     .where("package.lotId", "=", lotId)
+    .orderBy(sql`case package.state when 'superseded' then 2 when 'withdrawn' then 1 else 0 end`)
     .orderBy("package.versionMajor", "desc")
     .orderBy("package.versionMinor", "desc")
     .orderBy("package.versionPatch", "desc")

@@ -1,5 +1,6 @@
 import { verify } from "node:crypto";
 import { beforeAll, describe, expect, it } from "vitest";
+import { getLotThread } from "@/lib/services/lots/get-lot-thread";
 import { openTestApi, type TestApi } from "../support/api";
 import { PASSWORD, type PersonName } from "../support/people";
 import { arrangeDerived, type DerivedLot } from "../support/scenario/derived";
@@ -142,6 +143,8 @@ describe("deciding", () => {
     const key = await api.db.selectFrom("signingKey").select("publicPem").executeTakeFirstOrThrow();
     expect(verify(null, bytes, key.publicPem, periods[1]?.signature as Buffer)).toBe(true);
     expect(await decide(asked.id)).toMatchObject({ status: 409, body: { code: "reinstatement.wrong_state" } });
+    const thread = await getLotThread(api.ctx("engineer"), lot.lot);
+    expect([thread.newestPackageId, thread.review.count]).toEqual([older.id, "live"]);
   });
 
   it("is in vain for a release that was withdrawn", async () => {

@@ -14,6 +14,9 @@ export interface FieldExtremes {
   highest: { value: number; serial: string };
 }
 
+/** Digits of a value in the message; the evidence has all of them. */
+const TOLD_DIGITS = 7;
+
 interface Approach {
   field: FieldExtremes;
   serial: string;
@@ -46,7 +49,7 @@ export function checkLimits(packed: number, fields: readonly FieldExtremes[]): P
     fields: limited.map(({ name, unit, min, max, lowest, highest }) => ({ name, unit, min, max, lowest, highest })),
   };
   const told = ({ field, serial, value, limit }: Approach) =>
-    `${field.name} of ${serial}: ${value}${field.unit ? ` ${field.unit}` : ""}, limit ${limit}`;
+    `${field.name} of ${serial}: ${Number(value.toPrecision(TOLD_DIGITS))}${field.unit ? ` ${field.unit}` : ""}, limit ${limit}`;
   const [nearest] = approaches;
   if (outside[0])
     return {
