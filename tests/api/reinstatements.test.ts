@@ -3,7 +3,7 @@ import { beforeAll, describe, expect, it } from "vitest";
 import { getLotThread } from "@/lib/services/lots/get-lot-thread";
 import { openTestApi, type TestApi } from "../support/api";
 import { PASSWORD, type PersonName } from "../support/people";
-import { arrangeDerived, type DerivedLot } from "../support/scenario/derived";
+import { arrangeDerived, arrangeSecondDerived, type DerivedLot } from "../support/scenario/derived";
 import type { ScenarioPeople } from "../support/scenario/family-lot";
 import { arrangeReleased, type BuiltPackage, buildGolden } from "../support/scenario/packaged";
 
@@ -143,8 +143,6 @@ describe("deciding", () => {
     const key = await api.db.selectFrom("signingKey").select("publicPem").executeTakeFirstOrThrow();
     expect(verify(null, bytes, key.publicPem, periods[1]?.signature as Buffer)).toBe(true);
     expect(await decide(asked.id)).toMatchObject({ status: 409, body: { code: "reinstatement.wrong_state" } });
-    const thread = await getLotThread(api.ctx("engineer"), lot.lot);
-    expect([thread.newestPackageId, thread.review.count]).toEqual([older.id, "live"]);
   });
 
   it("is in vain for a release that was withdrawn", async () => {
@@ -175,4 +173,17 @@ it("lists a lot's requests, newest first, to every reader", async () => {
   expect(body.items[0]).toMatchObject({ state: "asked", package: live.id, mayDecide: false });
   expect((await api.call("GET", `/lots/${lot.lot}/reinstatements`, { as: "operator" })).status).toBe(403);
   expect((await api.call("GET", "/lots/NO-LOT/reinstatements", { as: "auditor" })).status).toBe(404);
+});
+
+it("leads a lot's thread to the earlier release that is live again", async () => {
+  const second = await arrangeSecondDerived(people);
+  const first = await arrangeReleased(people, second);
+  await arrangeReleased(people, second);
+  const { body: asked } = await api.call("POST", `/lots/${second.lot}/reinstatements`, {
+    as: "engineer",
+    body: { package: first.id, reason: "The new one drifts", password: PASSWORD },
+  });
+  expect((await decide(asked.id)).status).toBe(200);
+  const thread = await getLotThread(api.ctx("engineer"), second.lot);
+  expect([thread.newestPackageId, thread.review.count]).toEqual([first.id, "live"]);
 });
