@@ -74,8 +74,7 @@ export async function startLocalServer(options: LocalServerOptions): Promise<Loc
   return {
     port,
     dataDir,
-    urlOf: (database, role = OWNER_ROLE) =>
-      `postgresql://${role}:${databasePassword(role, options.home)}@127.0.0.1:${port}/${database}`,
+    urlOf: (database, role = OWNER_ROLE) => localUrl(options.home, port, database, role),
     stop: () => stopServer(binaries, dataDir, owner),
   };
 
@@ -85,6 +84,17 @@ export async function startLocalServer(options: LocalServerOptions): Promise<Loc
     launch(binaries, dataDir, free, options, owner);
     return free;
   }
+}
+
+function localUrl(home: string, port: number, database: string, role: string): string {
+  return `postgresql://${role}:${databasePassword(role, home)}@127.0.0.1:${port}/${database}`;
+}
+
+/** Connection to a database of the home's server while that runs; undefined while it doesn't. */
+export async function findLocalUrl(home: string, database: string, role: string): Promise<string | undefined> {
+  if (!existsSync(home)) return undefined;
+  const running = findRunningServer(await chooseDataDir(home, await findServerAccount()));
+  return running && localUrl(home, running.port, database, role);
 }
 
 /** Stops the server of a data folder if one runs, ending its sessions; returns when it is gone. */

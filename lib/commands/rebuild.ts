@@ -6,13 +6,16 @@ import { closeDb, getDb } from "@/db/client";
 import type { Db } from "@/db/executor";
 import { isUuid } from "@/db/queries/code-or-id";
 import { getPackage } from "@/db/queries/packages";
+import { findStartedDatabase } from "@/lib/commands/start-database";
+import { env, setEnv } from "@/lib/env";
 import { AppError } from "@/lib/errors";
 import { type RepeatDifference, repeatBuild } from "@/lib/services/packages/repeat-build";
 
-const USAGE = "Usage: npm run rebuild -- package-id …; set DATABASE_URL to the database";
+const USAGE = "Usage: npm run rebuild -- package-id …";
 
 export default async function rebuild(args: string[]): Promise<number> {
   if (args.length === 0 || !args.every(isUuid)) throw new AppError("command.usage", { message: USAGE });
+  await chooseDatabase();
   try {
     let differing = 0;
     for (const id of args) if (!(await rebuildOne(getDb(), id))) differing++;
@@ -20,6 +23,18 @@ export default async function rebuild(args: string[]): Promise<number> {
   } finally {
     await closeDb();
   }
+}
+
+/** The database of DATABASE_URL, else that of the start that runs with this home. @throws AppError `settings.invalid` */
+async function chooseDatabase(): Promise<void> {
+  const { databaseUrl, home } = env();
+  if (databaseUrl !== undefined) return;
+  const started = await findStartedDatabase(home);
+  if (started === undefined) {
+    const message = `No database: run npm start beside this (none runs with ${home}), or set DATABASE_URL`;
+    throw new AppError("settings.invalid", { message });
+  }
+  setEnv({ DATABASE_URL: started });
 }
 
 /** @returns whether every byte came out as it was built. */

@@ -13,7 +13,7 @@ import {
   renameDatabase,
 } from "@/db/databases";
 import type { Db } from "@/db/executor";
-import { type LocalServer, startLocalServer } from "@/db/local-server";
+import { findLocalUrl, type LocalServer, startLocalServer } from "@/db/local-server";
 import { listPendingMigrations, migrateDatabase } from "@/db/migrate";
 import { findRunningServer } from "@/db/pid-file";
 import { APP_ROLE, assertAppRoleIsWeak, ensureAppRole } from "@/db/roles";
@@ -35,6 +35,11 @@ export interface StartDatabase {
   /** Starts our own server again if it is gone; nothing for a server of someone else's. */
   revive(): Promise<boolean>;
   stop(): Promise<void>;
+}
+
+/** Connection of the app's role to the database of the `npm start` that runs with this home; undefined where none runs. */
+export function findStartedDatabase(home: string): Promise<string | undefined> {
+  return findLocalUrl(home, DATABASE, APP_ROLE);
 }
 
 export interface StartDatabaseOptions {

@@ -10,7 +10,7 @@ import { beforeAll, describe, expect, it, vi } from "vitest";
 import { type Command, plainMessage } from "@/lib/commands/command-line";
 import rebuild from "@/lib/commands/rebuild";
 import verify from "@/lib/commands/verify";
-import { childEnv, setEnv } from "@/lib/env";
+import { childEnv, env, setEnv } from "@/lib/env";
 import { openTestApi, type TestApi } from "../support/api";
 import { PASSWORD } from "../support/people";
 import { inFolder } from "../support/programs";
@@ -196,5 +196,18 @@ describe("rebuild", () => {
       stderr: expect.stringMatching(/^Usage: /),
     });
     expect((await run(CHECKOUT, rebuild, uuidv7())).stderr).toBe("There is no such package.");
+  });
+
+  it("asks for a database where no start runs with the home", async () => {
+    const databaseUrl = env().databaseUrl ?? "";
+    await inFolder(async (home) => {
+      setEnv({ DATABASE_URL: "", TRIMWRIGHT_HOME: home });
+      const { status, stderr } = await run(CHECKOUT, rebuild, draft.id);
+      setEnv({ DATABASE_URL: databaseUrl });
+      expect({ status, stderr }).toMatchObject({
+        status: 1,
+        stderr: expect.stringMatching(/^No database: run npm start/),
+      });
+    });
   });
 });
