@@ -114,12 +114,11 @@ function BuildState({ view }: { view: PackageView }) {
   }
   if (!view.failure) return null;
   const { code, message, serial, field } = view.failure;
+  const named = serial !== undefined && message.includes(serial);
   return (
     <Notice tone="bad" title="The build did not finish">
       <p>
-        {serial ? <span className="font-mono">{serial}</span> : null}
-        {field ? <span className="font-mono"> {field}</span> : null}
-        {serial || field ? ": " : null}
+        {named ? null : <span className="font-mono">{[serial, field].filter(Boolean).join(" ")} </span>}
         {message} <span className="font-mono text-xs text-ink-soft">{code}</span>
       </p>
       <p>
