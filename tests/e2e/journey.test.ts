@@ -242,7 +242,7 @@ describe("from readings to a traced device", () => {
     await admin.waitForURL("**/stations/*");
     await admin.getByRole("button", { name: "Make a key" }).first().click();
     await confirm("admin", "Make the key");
-    made.key = (await admin.getByText(/^tws_/).textContent())?.trim() ?? "";
+    made.key = (await admin.locator("code", { hasText: /^tws_/ }).textContent())?.trim() ?? "";
     expect(made.key).toMatch(/^tws_/);
 
     const live = await (await asStation("/station/live")).json();
