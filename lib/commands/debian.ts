@@ -1,13 +1,16 @@
 /** Debian's packages: installed as root, or unpacked into a private folder by anybody else. */
 import { existsSync, mkdirSync, readFileSync, renameSync, rmSync, writeFileSync } from "node:fs";
 import { join } from "node:path";
+import { setTimeout as delay } from "node:timers/promises";
 import { privatePackagesFolder } from "@/db/postgres-binaries";
-import { runTool } from "@/lib/commands/run-tool";
+import { runTool, type ToolOptions } from "@/lib/commands/run-tool";
 import { childEnv } from "@/lib/env";
 import { AppError } from "@/lib/errors";
 
 const CLUSTER_SETTINGS = "/etc/postgresql-common/createcluster.conf";
 const APT_GET = "/usr/bin/apt-get";
+const LOCK_WAIT_MS = 300_000;
+const LOCK_LOOK_MS = 1_000;
 
 export interface InstallOptions {
   home: string;
@@ -31,15 +34,31 @@ export function mayInstall(): boolean {
  * @throws AppError `packages.not_installed` {packages} with apt-get's reason.
  */
 export async function installPackages(packages: string[], options: InstallOptions): Promise<void> {
-  if (packages.some((name) => name.startsWith("postgresql"))) keepDebianFromMakingCluster();
   const env = childEnv({ DEBIAN_FRONTEND: "noninteractive" });
   const { aptGet = APT_GET, signal } = options;
+  const isDebians = aptGet === APT_GET; // a test's apt-get installs nothing, so nothing of the machine is set for it
+  if (isDebians && packages.some((name) => name.startsWith("postgresql"))) keepDebianFromMakingCluster();
   const flags = ["-y", "-qq", "--no-install-recommends", "-o", "Dpkg::Options::=--force-confold"];
   try {
-    await runTool(aptGet, ["update", "-qq"], { env, signal });
-    await runTool(aptGet, ["install", ...flags, ...packages], { env, signal });
+    await runAptGet(aptGet, ["update", "-qq"], { env, signal });
+    await runAptGet(aptGet, ["install", ...flags, ...packages], { env, signal });
   } catch (error) {
     throw notInstalled(packages, error);
+  }
+}
+
+/** Waits while another apt-get works: a fresh machine often brings itself up to date first. */
+async function runAptGet(aptGet: string, args: string[], options: ToolOptions): Promise<void> {
+  const deadline = Date.now() + LOCK_WAIT_MS;
+  for (;;) {
+    try {
+      await runTool(aptGet, args, options);
+      return;
+    } catch (error) {
+      const isLocked = error instanceof AppError && /Could not get lock/.test(error.message);
+      if (!isLocked || Date.now() > deadline) throw error;
+      await delay(LOCK_LOOK_MS, undefined, { signal: options.signal });
+    }
   }
 }
 

@@ -1,4 +1,4 @@
-import { mkdirSync, mkdtempSync, rmSync, writeFileSync } from "node:fs";
+import { mkdirSync, mkdtempSync, readFileSync, rmSync, writeFileSync } from "node:fs";
 import { tmpdir } from "node:os";
 import { join } from "node:path";
 import { afterAll, beforeEach, describe, expect, it } from "vitest";
@@ -81,6 +81,16 @@ describe("a machine without PostgreSQL", () => {
       message: expect.stringMatching(/^Debian's postgresql could not be had: .*E: Unable to fetch some archives$/),
     });
     expect(said).toEqual(["Installing PostgreSQL from Debian …"]);
+  });
+
+  // Only root installs, and so meets the lock of the whole machine.
+  it.runIf(process.getuid?.() === 0)("waits for an apt-get that is at work", async () => {
+    const aptGet = join(folder, "busy-apt-get");
+    const lock = "E: Could not get lock /var/lib/dpkg/lock-frontend. It is held by process 7 (apt-get)";
+    const script = `echo >> '${home}/calls'; [ $(wc -l < '${home}/calls') -gt 2 ] || { echo '${lock}' >&2; exit 100; }`;
+    writeFileSync(aptGet, `#!/bin/sh\n${script}\n`, { mode: 0o755 });
+    await expect(ensurePostgres({ home, system, aptGet })).resolves.toBeUndefined();
+    expect(readFileSync(join(home, "calls"), "utf8")).toBe("\n".repeat(4));
   });
 
   it("is left alone when there is one", async () => {
