@@ -48,7 +48,9 @@ export function EquipmentList({ items, today, mayWrite }: EquipmentListProps) {
             key: "uncertainty",
             header: "Uncertainty",
             unit: "°C, kg or mV/V",
-            format: { as: "figure", digits: 4 },
+            // Kilograms of a mass and degrees of a chamber share the column: each stands with the digits of its certificate.
+            format: { as: "code" },
+            align: "right",
             title: "Expanded, as the certificate gives it: °C for sensor and chamber, kg for load, mV/V for reader",
           },
           ...(mayWrite
