@@ -12,17 +12,12 @@ export interface ImageValues {
 }
 
 /**
- * One line of `images.jsonl`, RFC 8785, without its line end. Members are written in canonical order and texts of an
+ * One line of `images.jsonl`, RFC 8785, with the LF that ends it; the file is all lines. Members are written in canonical order and texts of an
  * image are ASCII, so that JSON.stringify gives the canonical form at ten times the speed of sorting.
  */
 export function imageLine({ serial, derivation, sha256, fields }: ImageValues): string {
   const ordered = fields.map(({ at, name, raw, unit, value }) => ({ at, name, raw, unit, value }));
-  return JSON.stringify({ derivation, fields: ordered, serial, sha256 });
-}
-
-/** `images.jsonl`: one line a device in the order given, each ended by LF. */
-export function imagesJsonl(lines: readonly string[]): Uint8Array {
-  return new TextEncoder().encode(lines.map((line) => `${line}\n`).join(""));
+  return `${JSON.stringify({ derivation, fields: ordered, serial, sha256 })}\n`;
 }
 
 /** Reads `images.jsonl`. @throws AppError `bundle.values_malformed` {line} */

@@ -71,11 +71,6 @@ export function manifestBytes(manifest: Manifest): Uint8Array {
   return encoder.encode(canonicalJson(manifest));
 }
 
-/** The package digest: SHA-256 of `manifest.json`, lower-case hex. */
-export function packageDigest(manifest: Manifest): string {
-  return sha256Hex(manifestBytes(manifest));
-}
-
 /** What a derivation was computed from; the digest tells whether two were computed alike. */
 export interface DerivationInputs {
   method: ManifestDerivation["method"];

@@ -1,15 +1,15 @@
 import { isPlainPath } from "@/builders/bundle/zip";
+import {
+  CENTRAL,
+  CENTRAL_BYTES,
+  END,
+  END_BYTES,
+  LOCAL,
+  LOCAL_BYTES,
+  ZIP_EPOCH_DOS_DATE,
+} from "@/builders/bundle/zip-records";
 import { getCrc } from "@/builders/codec/crc";
 import { AppError } from "@/lib/errors";
-
-const LOCAL = 0x04034b50;
-const CENTRAL = 0x02014b50;
-const END = 0x06054b50;
-const LOCAL_BYTES = 30;
-const CENTRAL_BYTES = 46;
-const END_BYTES = 22;
-/** 1980-01-01 as a DOS date; midnight is 0. */
-const ZIP_EPOCH_DOS_DATE = 0x0021;
 
 /**
  * Reads the kind of zip that {@link zipPieces} makes and no other (record layout: PKWARE APPNOTE 6.3). Being strict keeps

@@ -20,11 +20,33 @@ export interface ReleaseRecord {
   /** RFC 3339, UTC, milliseconds. */
   releasedAt: string;
   approvals: { name: string; role: string; meaning: string; at: string }[];
-  coefficientApprovals: readonly unknown[];
-  waivers: readonly unknown[];
-  exclusions: readonly unknown[];
-  acknowledgements: readonly unknown[];
-  equipment: readonly unknown[];
+  /** `devices` is null where all of a derivation were approved at once. */
+  coefficientApprovals: {
+    derivation: string;
+    name: string;
+    role: string;
+    meaning: string;
+    at: string;
+    devices: number | null;
+  }[];
+  waivers: { check: string; name: string; reason: string; at: string }[];
+  exclusions: { derivation: string; serial: string; reason: string; name: string }[];
+  acknowledgements: {
+    derivation: string;
+    finding: string;
+    serial: string | null;
+    name: string;
+    reason: string;
+    at: string;
+  }[];
+  equipment: {
+    run: string;
+    code: string;
+    kind: string;
+    certificate: string;
+    calibratedUntil: string;
+    uncertainty: number;
+  }[];
   /** Hash of the ledger's newest event. */
   ledgerHead: string;
   keyId: string;

@@ -1,4 +1,13 @@
 import { byCodeUnits } from "@/builders/bundle/manifest";
+import {
+  CENTRAL,
+  CENTRAL_BYTES,
+  END,
+  END_BYTES,
+  LOCAL,
+  LOCAL_BYTES,
+  ZIP_EPOCH_DOS_DATE,
+} from "@/builders/bundle/zip-records";
 import { getCrc } from "@/builders/codec/crc";
 import { AppError } from "@/lib/errors";
 
@@ -6,17 +15,9 @@ import { AppError } from "@/lib/errors";
 const ENTRIES_MAX = 65_534;
 const BYTES_MAX = 0xffff_ffff;
 
-const LOCAL = 0x04034b50;
-const CENTRAL = 0x02014b50;
-const END = 0x06054b50;
-const LOCAL_BYTES = 30;
-const CENTRAL_BYTES = 46;
-const END_BYTES = 22;
 /** Features of version 1.0, told by a maker of version 3.0 on UNIX. */
 const VERSION_NEEDED = 10;
 const MADE_BY = (3 << 8) | 30;
-/** 1980-01-01, the first day that an entry can be dated; midnight is 0. */
-const DATE = 0x0021;
 /** A plain file that its owner may write and all may read, in the upper half. */
 const ATTRIBUTES = (0o100644 << 16) >>> 0;
 
@@ -75,7 +76,7 @@ function* writeEntries(
 /** What stands in front of an entry's content and, two bytes later, in the directory: from the version needed to the length of the name. */
 function writeHead(view: DataView, at: number, { name, crc, size }: Entry): void {
   view.setUint16(at, VERSION_NEEDED, true);
-  view.setUint16(at + 8, DATE, true);
+  view.setUint16(at + 8, ZIP_EPOCH_DOS_DATE, true);
   view.setUint32(at + 10, crc, true);
   view.setUint32(at + 14, size, true);
   view.setUint32(at + 18, size, true);

@@ -114,7 +114,7 @@ export async function composePackage(
       images.push(row);
       const { serial } = device;
       const sha256 = row.sha256.toString("hex");
-      lines += `${imageLine({ serial, derivation: image.set.derivationId, sha256, fields: image.decoded })}\n`;
+      lines += imageLine({ serial, derivation: image.set.derivationId, sha256, fields: image.decoded });
     }
     values.push(Buffer.from(lines));
     await options.onProgress?.(from + part.length);

@@ -1,32 +1,15 @@
+import type { ReleaseRecord } from "@/builders/bundle/release";
 import { sha256Hex } from "@/builders/bundle/sha256";
 import { findNewestRelease } from "@/db/queries/live-periods";
 import { AppError } from "@/lib/errors";
 import type { Ctx } from "@/lib/services/context";
 
-/** `release.json` as it was signed; lists have the members that `makeReleaseRecord` gives them. */
-export interface ReleaseDocument {
-  lot: string;
-  version: string;
-  package: string;
-  sums: string;
-  reviewDigest: string;
-  sequence: number;
-  kind: "release" | "reinstatement";
-  reason: string | null;
-  releasedAt: string;
-  approvals: { name: string; role: string; meaning: string; at: string }[];
-  coefficientApprovals: { derivation: string; name: string; meaning: string; at: string; devices: number | null }[];
-  waivers: { check: string; name: string; reason: string; at: string }[];
-  exclusions: { derivation: string; serial: string; reason: string; name: string }[];
-  acknowledgements: { finding: string; serial: string | null; name: string; reason: string; at: string }[];
-  equipment: { run: string; code: string; kind: string; certificate: string; calibratedUntil: string }[];
-  ledgerHead: string;
-  keyId: string;
-}
+export type { ReleaseRecord };
 
 /** The signed record of the newest time that a package went live. */
 export interface ReleaseRecordView {
-  document: ReleaseDocument;
+  /** `release.json` as it was signed. */
+  document: ReleaseRecord;
   /** SHA-256 of `release.json`. */
   sha256: string;
   /** Ed25519 over it, lower-case hex. */
@@ -40,7 +23,7 @@ export async function getReleaseRecord(ctx: Ctx, packageId: string): Promise<Rel
     throw new AppError("release.not_found", { message: "This package has never been live: there is no record of it." });
   }
   return {
-    document: JSON.parse(period.releaseDocument.toString("utf8")) as ReleaseDocument,
+    document: JSON.parse(period.releaseDocument.toString("utf8")) as ReleaseRecord,
     sha256: sha256Hex(period.releaseDocument),
     signature: period.signature.toString("hex"),
   };

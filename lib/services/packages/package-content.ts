@@ -39,7 +39,7 @@ async function linesOf(db: Db, layout: CompiledLayout, images: readonly ImageRow
   for (const { serial, sha256, bytes, coefficientSetId } of images) {
     const derivation = derivations.get(coefficientSetId) as string;
     const fields = decodeImage(layout, bytes);
-    lines += `${imageLine({ serial, derivation, sha256: sha256.toString("hex"), fields })}\n`;
+    lines += imageLine({ serial, derivation, sha256: sha256.toString("hex"), fields });
   }
   return Buffer.from(lines);
 }

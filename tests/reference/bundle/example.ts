@@ -1,7 +1,7 @@
 import { generateKeyPairSync } from "node:crypto";
 import { hexPath, type PackageContent, packageSums, type ReleaseFiles } from "@/builders/bundle/bundle";
-import { imageLine, imagesJsonl } from "@/builders/bundle/images-jsonl";
-import { buildManifest, documentDigest, type Manifest, manifestBytes, packageDigest } from "@/builders/bundle/manifest";
+import { imageLine } from "@/builders/bundle/images-jsonl";
+import { buildManifest, documentDigest, type Manifest, manifestBytes } from "@/builders/bundle/manifest";
 import { keyIdOf, publicKeyPem, type ReleaseRecord, releaseBytes, signRelease } from "@/builders/bundle/release";
 import { sha256Hex } from "@/builders/bundle/sha256";
 import { decodeImage, encodeImage } from "@/builders/codec/image";
@@ -28,7 +28,7 @@ export function examplePackage(): { content: PackageContent; manifest: Manifest 
       hex: { path: hexPath(serial), sha256: sha256Hex(hex) },
     };
   });
-  const values = imagesJsonl(lines);
+  const values = new TextEncoder().encode(lines.join(""));
   const manifest = buildManifest({
     lot: "MW20-2609",
     family: { code: "MW-20", revision: 1, sha256: "a".repeat(64) },
@@ -51,7 +51,7 @@ export function exampleRelease(content: PackageContent, manifest: Manifest, key 
     format: "trimwright/release@1",
     lot: manifest.lot,
     version: manifest.version,
-    package: packageDigest(manifest),
+    package: sha256Hex(manifestBytes(manifest)),
     sums: sha256Hex(packageSums(content)),
     reviewDigest: "c".repeat(64),
     sequence: 1,

@@ -10,7 +10,7 @@ import { formatCount } from "@/lib/domain/format/figure";
 import { formatDateTime } from "@/lib/domain/format/time";
 import { orNotFound, pageContext } from "@/lib/http/page-context";
 import { getPackageProvenance } from "@/lib/services/packages/get-provenance";
-import { getReleaseRecord, type ReleaseDocument } from "@/lib/services/packages/get-release-record";
+import { getReleaseRecord, type ReleaseRecord } from "@/lib/services/packages/get-release-record";
 import { verdictOf } from "../check-list";
 import { checkName } from "../check-names";
 import { loadPackage, type PackageParams } from "../load-package";
@@ -143,13 +143,13 @@ function Row({ name, children }: { name: string; children: React.ReactNode }) {
   );
 }
 
-function CoefficientApprovals({ record }: { record: ReleaseDocument }) {
+function CoefficientApprovals({ record }: { record: ReleaseRecord }) {
   return record.coefficientApprovals.map((one) => (
     <Signature key={`${one.derivation}${one.at}`} name={one.name} as="coefficients" meaning={one.meaning} at={one.at} />
   ));
 }
 
-function LeftOut({ record }: { record: ReleaseDocument }) {
+function LeftOut({ record }: { record: ReleaseRecord }) {
   if (record.exclusions.length === 0) return null;
   return (
     <Section title="Left out of the sample">

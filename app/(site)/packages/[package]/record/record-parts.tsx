@@ -2,7 +2,7 @@ import type { ReactNode } from "react";
 import { groupDigest } from "@/lib/domain/format/digest";
 import { formatNumberOf } from "@/lib/domain/format/figure";
 import { formatDateTime } from "@/lib/domain/format/time";
-import type { ReleaseDocument } from "@/lib/services/packages/get-release-record";
+import type { ReleaseRecord } from "@/lib/services/packages/get-release-record";
 
 export function Section({ title, children }: { title: string; children: ReactNode }) {
   return (
@@ -33,9 +33,9 @@ export function HexLine({ name, value }: { name: string; value: string }) {
 }
 
 /** Findings that were accepted, those with the same reason together. */
-export function AcceptedFindings({ findings }: { findings: ReleaseDocument["acknowledgements"] }) {
+export function AcceptedFindings({ findings }: { findings: ReleaseRecord["acknowledgements"] }) {
   if (findings.length === 0) return null;
-  const groups = new Map<string, ReleaseDocument["acknowledgements"]>();
+  const groups = new Map<string, ReleaseRecord["acknowledgements"]>();
   for (const one of findings) {
     const key = JSON.stringify([one.finding, one.name, one.reason]);
     groups.set(key, [...(groups.get(key) ?? []), one]);
@@ -59,7 +59,7 @@ export function AcceptedFindings({ findings }: { findings: ReleaseDocument["ackn
 }
 
 /** Sensors, chambers, loads and readers behind the readings, each certificate once. */
-export function EquipmentUsed({ equipment }: { equipment: ReleaseDocument["equipment"] }) {
+export function EquipmentUsed({ equipment }: { equipment: ReleaseRecord["equipment"] }) {
   const once = new Map(equipment.map((one) => [`${one.code} ${one.certificate}`, one]));
   if (once.size === 0) return null;
   return (
