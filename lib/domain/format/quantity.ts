@@ -32,6 +32,18 @@ export const quantities = {
 
 export type QuantityName = keyof typeof quantities;
 
+/** A device's coefficients in the order in which people read them. */
+export const COEFFICIENT_QUANTITIES = [
+  "gain",
+  "gainTc",
+  "gainTc2",
+  "zero",
+  "zeroTc",
+  "zeroTc2",
+  "tempOffset",
+  "tempSlope",
+] as const satisfies QuantityName[];
+
 /** The figure of a stored value in its engineering unit, without the unit, for table cells. */
 export function formatQuantity(
   name: QuantityName,

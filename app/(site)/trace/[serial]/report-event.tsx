@@ -1,15 +1,10 @@
 "use client";
 
 import { useRouter } from "next/navigation";
-import { type FormEvent, useState } from "react";
-import type { ProblemDetails } from "@/app/_components/api-client";
+import { useState } from "react";
 import { Button } from "@/app/_components/button";
-import { readConfirmation } from "@/app/_components/confirm-dialog";
-import { Dialog } from "@/app/_components/dialog";
-import { FormError } from "@/app/_components/form/form-error";
-import { PasswordConfirm, passwordErrors } from "@/app/_components/form/password-confirm";
+import { type Confirmation, ConfirmDialog } from "@/app/_components/confirm-dialog";
 import { Select } from "@/app/_components/form/select";
-import { TextArea } from "@/app/_components/form/text-area";
 import { TextInput } from "@/app/_components/form/text-input";
 import { Notice } from "@/app/_components/notice";
 import { useToast } from "@/app/_components/toast";
@@ -79,8 +74,6 @@ export function ReportEvent({ serial, held, shipped, oneTimeCode }: ReportEventP
   const tell = useToast();
   const [open, setOpen] = useState(false);
   const [kind, setKind] = useState<Kind>(held ? "resume" : "hold");
-  const [problem, setProblem] = useState<ProblemDetails | null>(null);
-  const [pending, setPending] = useState(false);
   const offered = (Object.keys(KINDS) as Kind[]).filter(
     (one) =>
       !(one === "hold" && held) &&
@@ -93,86 +86,71 @@ export function ReportEvent({ serial, held, shipped, oneTimeCode }: ReportEventP
 
   const change = (next: boolean) => {
     setOpen(next);
-    setProblem(null);
     if (next) setKind(held ? "resume" : "hold");
   };
-  const send = async (event: FormEvent<HTMLFormElement>) => {
-    event.preventDefault();
-    const form = new FormData(event.currentTarget);
+  const send = async (values: Confirmation, form: FormData) => {
     const text = (name: string) => String(form.get(name) ?? "").trim() || undefined;
     const facts = { reference: text("reference"), hardwareId: text("hardwareId"), firmware: text("firmware") };
-    setPending(true);
-    const result = await recordEventAction(serial, { kind, ...readConfirmation(form), ...facts });
-    setPending(false);
-    if (!result.ok) {
-      setProblem(result.problem);
-      return;
-    }
-    change(false);
+    const result = await recordEventAction(serial, { kind, ...values, ...facts });
+    if (!result.ok) return result.problem;
     tell({ tone: "good", title: `${serial} ${done}` });
     router.refresh();
+    return null;
   };
 
   return (
     <>
       <Button onClick={() => change(true)}>Report an event</Button>
-      <Dialog open={open} onOpenChange={change} title={`What happened to ${serial}`}>
-        <form className="flex flex-col gap-3" onSubmit={send}>
-          <Select
-            label="Event"
-            value={kind}
-            onChange={(event) => setKind(event.currentTarget.value as Kind)}
-            options={offered.map((one) => ({ value: one, name: KINDS[one].name }))}
-            help={does}
-          />
-          {kind === "resume" ? (
-            <Notice tone="caution" title="Two people">
-              Who put the hold can't end it. Look at why it was held before you sign.
-            </Notice>
-          ) : null}
-          {kind === "board-replaced" ? (
-            <TextInput
-              label="Hardware id of the new board"
-              name="hardwareId"
-              code
-              required
-              maxLength={64}
-              help="As read from the board."
-            />
-          ) : null}
-          {kind === "firmware" ? (
-            <TextInput
-              label="Firmware now"
-              name="firmware"
-              code
-              required
-              maxLength={64}
-              help="Its version, such as 2.3.0."
-            />
-          ) : null}
-          <TextArea
-            label="Reason"
-            name="reason"
-            required
-            maxLength={2000}
-            help="Stands in the device's record; write it for somebody who wasn't there."
-          />
+      <ConfirmDialog
+        open={open}
+        onOpenChange={change}
+        title={`What happened to ${serial}`}
+        confirm={confirm}
+        danger={danger}
+        reason="required"
+        password={signed}
+        oneTimeCode={oneTimeCode}
+        onConfirm={send}
+      >
+        <Select
+          label="Event"
+          value={kind}
+          onChange={(event) => setKind(event.currentTarget.value as Kind)}
+          options={offered.map((one) => ({ value: one, name: KINDS[one].name }))}
+          help={does}
+        />
+        {kind === "resume" ? (
+          <Notice tone="caution" title="Two people">
+            Who put the hold can't end it. Look at why it was held before you sign.
+          </Notice>
+        ) : null}
+        {kind === "board-replaced" ? (
           <TextInput
-            label="Reference, if there is one"
-            name="reference"
-            maxLength={120}
-            help="An order, a complaint, a repair slip."
+            label="Hardware id of the new board"
+            name="hardwareId"
+            code
+            required
+            maxLength={64}
+            help="As read from the board."
           />
-          {signed ? <PasswordConfirm oneTimeCode={oneTimeCode} {...passwordErrors(problem)} /> : null}
-          <FormError problem={problem} />
-          <div className="mt-1 flex flex-wrap justify-end gap-2.5">
-            <Button onClick={() => change(false)}>Leave it</Button>
-            <Button type="submit" look={danger ? "danger" : "primary"} pending={pending}>
-              {confirm}
-            </Button>
-          </div>
-        </form>
-      </Dialog>
+        ) : null}
+        {kind === "firmware" ? (
+          <TextInput
+            label="Firmware now"
+            name="firmware"
+            code
+            required
+            maxLength={64}
+            help="Its version, such as 2.3.0."
+          />
+        ) : null}
+        <TextInput
+          label="Reference, if there is one"
+          name="reference"
+          maxLength={120}
+          help="An order, a complaint, a repair slip."
+        />
+      </ConfirmDialog>
     </>
   );
 }

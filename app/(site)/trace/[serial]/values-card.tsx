@@ -3,21 +3,10 @@ import { Facts } from "@/app/_components/facts";
 import { HexGrid } from "@/app/_components/hex-grid";
 import { formatAddress } from "@/lib/domain/format/digest";
 import { formatField } from "@/lib/domain/format/field-value";
-import { formatQuantity, type QuantityName, quantities } from "@/lib/domain/format/quantity";
+import { COEFFICIENT_QUANTITIES, formatQuantity, quantities } from "@/lib/domain/format/quantity";
 import type { DeviceOrigin } from "@/lib/services/trace/get-device-origin";
 import type { DerivedDeviceDetail } from "@/schemas/api/derivations";
 import { measuredSentence } from "./measured-sentence";
-
-const ORDER = [
-  "gain",
-  "gainTc",
-  "gainTc2",
-  "zero",
-  "zeroTc",
-  "zeroTc2",
-  "tempOffset",
-  "tempSlope",
-] as const satisfies QuantityName[];
 
 export interface ValuesCardProps {
   origin: DeviceOrigin;
@@ -28,7 +17,7 @@ export interface ValuesCardProps {
 /** The coefficients as the memory holds them, decoded, and how the device was measured for them. */
 export function ValuesCard({ origin, derived }: ValuesCardProps) {
   const { fields } = origin.image;
-  const facts = ORDER.flatMap((name) => {
+  const facts = COEFFICIENT_QUANTITIES.flatMap((name) => {
     const field = fields.find(({ source }) => source === `coefficients.${name}`);
     if (!field || typeof field.value !== "number") return [];
     const { unit } = quantities[name];

@@ -7,23 +7,12 @@ import { LegalNote } from "@/app/_components/legal-note";
 import { stateOf } from "@/app/_components/state/state-of";
 import { DataTable } from "@/app/_components/table/data-table";
 import { TitleRow } from "@/app/_components/title-row";
-import { formatQuantity, type QuantityName, quantities } from "@/lib/domain/format/quantity";
+import { COEFFICIENT_QUANTITIES, formatQuantity, type QuantityName, quantities } from "@/lib/domain/format/quantity";
 import { orNotFound, pageContext } from "@/lib/http/page-context";
 import { getDerivationView, getDerivedDevice } from "@/lib/services/derivations/get-derivation";
 import type { DerivedDeviceDetail } from "@/schemas/api/derivations";
 
 export const metadata: Metadata = { title: "Device of a derivation" };
-
-const VALUES = [
-  "gain",
-  "gainTc",
-  "gainTc2",
-  "zero",
-  "zeroTc",
-  "zeroTc2",
-  "tempOffset",
-  "tempSlope",
-] as const satisfies QuantityName[];
 
 const SOURCES = {
   "own-points": "from its own loaded readings",
@@ -75,7 +64,7 @@ function Values({ device }: { device: DerivedDeviceDetail }) {
     <Card title="Coefficients" note="± is one standard error; none is stated without a degree of freedom">
       <Facts
         small
-        facts={VALUES.filter((name) => coefficients[name] !== undefined).map((name) => ({
+        facts={COEFFICIENT_QUANTITIES.filter((name) => coefficients[name] !== undefined).map((name) => ({
           label: `${name}, ${quantities[name].unit}`,
           value: `${formatQuantity(name, coefficients[name])}${errors[name] ? ` ±${formatQuantity(name, errors[name])}` : ""}`,
         }))}
