@@ -52,18 +52,6 @@ export async function listEquipment(
   return rows.map(rowOf);
 }
 
-/** Pieces of equipment with these codes, by code; unknown codes have no row. */
-export async function findEquipmentByCode(db: Db, codes: readonly string[]): Promise<EquipmentRow[]> {
-  if (codes.length === 0) return [];
-  const rows = await db
-    .selectFrom("equipment")
-    .select(equipmentColumns)
-    .where("code", "in", codes)
-    .orderBy("code")
-    .execute();
-  return rows.map(rowOf);
-}
-
 /** A piece of equipment, locked until commit. @throws AppError `equipment.not_found` */
 export async function lockEquipment(trx: Trx, codeOrId: string): Promise<EquipmentRow> {
   const row = await trx

@@ -121,17 +121,6 @@ export async function listDerivationsOfSets(db: Db, setIds: readonly string[]): 
   return new Map(rows.map((row) => [row.id, row.derivationId]));
 }
 
-/** Serials of a package, rising. */
-export async function listImageSerials(db: Db, packageId: string): Promise<string[]> {
-  const rows = await db
-    .selectFrom("image")
-    .select("serial")
-    .where("packageId", "=", packageId)
-    .orderBy("serial")
-    .execute();
-  return rows.map((row) => row.serial);
-}
-
 /** How many images a package has. */
 export async function countImages(db: Db, packageId: string): Promise<number> {
   const row = await db
@@ -142,47 +131,25 @@ export async function countImages(db: Db, packageId: string): Promise<number> {
   return Number(row.count);
 }
 
-/** Where these very bytes stand: images with the SHA-256, of any package, newest package first. */
-export function findImagesBySha256(
-  db: Db,
-  imageSha256: Buffer,
-): Promise<(ImageRow & { version: string; state: string })[]> {
-  return db
+const imagesWithPackage = (db: Db) =>
+  db
     .selectFrom("image")
     .innerJoin("package", "package.id", "image.packageId")
     .select(imageColumns.map((name) => `image.${name}` as const))
     .select(["package.version", "package.state"])
-    .where("image.sha256", "=", imageSha256)
-    .orderBy("image.packageId", "desc")
-    .execute();
+    .orderBy("image.packageId", "desc");
+
+/** An image with the version and state of its package. */
+export type ImageOfPackage = ImageRow & { version: string; state: string };
+
+/** Where these very bytes stand: images with the SHA-256, of any package, newest package first. */
+export function findImagesBySha256(db: Db, imageSha256: Buffer): Promise<ImageOfPackage[]> {
+  return imagesWithPackage(db).where("image.sha256", "=", imageSha256).execute();
 }
 
 /** Images of one device in all packages, newest package first. */
-export function listImagesOfDevice(
-  db: Db,
-  deviceId: string,
-): Promise<(ImageRow & { version: string; state: string })[]> {
-  return db
-    .selectFrom("image")
-    .innerJoin("package", "package.id", "image.packageId")
-    .select(imageColumns.map((name) => `image.${name}` as const))
-    .select(["package.version", "package.state"])
-    .where("image.deviceId", "=", deviceId)
-    .orderBy("image.packageId", "desc")
-    .execute();
-}
-
-/** Serials of a package whose set is in one of the states now, rising. */
-export async function listSerialsBySetState(db: Db, packageId: string, states: readonly string[]): Promise<string[]> {
-  const rows = await db
-    .selectFrom("image")
-    .innerJoin("coefficientSet", "coefficientSet.id", "image.coefficientSetId")
-    .select("image.serial")
-    .where("image.packageId", "=", packageId)
-    .where("coefficientSet.state", "in", [...states])
-    .orderBy("image.serial")
-    .execute();
-  return rows.map((row) => row.serial);
+export function listImagesOfDevice(db: Db, deviceId: string): Promise<ImageOfPackage[]> {
+  return imagesWithPackage(db).where("image.deviceId", "=", deviceId).execute();
 }
 
 /** Serials of a package whose device is held now, rising. */

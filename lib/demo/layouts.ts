@@ -1,5 +1,5 @@
 /** Layouts of the demo's families, as their authors would have written them. */
-import type { LayoutDocument, LayoutField } from "@/schemas/documents/layout";
+import type { CoefficientName, LayoutDocument, LayoutField } from "@/schemas/documents/layout";
 
 const version = (at: number): LayoutField[] => [
   { name: "layoutMajor", at, type: "u8", value: { from: "layout.major" } },
@@ -116,12 +116,13 @@ export const benchLayouts = {
   },
 } satisfies Record<string, LayoutDocument>;
 
-const single = (
-  name: string,
-  at: number,
-  unit: string,
-  from: `coefficients.${"tempOffset" | "tempSlope" | "zero" | "zeroTc" | "zeroTc2" | "gain" | "gainTc" | "gainTc2"}`,
-): LayoutField => ({ name, at, type: "f32", unit, value: { from } });
+const single = (name: string, at: number, unit: string, from: `coefficients.${CoefficientName}`): LayoutField => ({
+  name,
+  at,
+  type: "f32",
+  unit,
+  value: { from },
+});
 
 /** The layout of MW-300: quadratic, big-endian, with a counter that belongs to the device. */
 export const floorLayout: LayoutDocument = {

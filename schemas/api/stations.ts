@@ -138,5 +138,3 @@ export const writeQuery = idPageQuery.extend({
   flagged: z.stringbool().optional().meta({ description: "Only records with a flag, or only those without" }),
   q: z.string().trim().min(1).max(32).optional().meta({ description: "Part of the serial" }),
 });
-
-export type WriteQuery = z.output<typeof writeQuery>;

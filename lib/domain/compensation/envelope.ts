@@ -19,11 +19,6 @@ const MINIMUM_LOAD_STEP_K: Record<AccuracyClass, number> = { A: 2, B: 5, C: 5, D
 
 type EnvelopeRules = Pick<FamilyRules, "accuracyClass" | "intervals" | "pLc">;
 
-/** Loads of the class at which one step of the limit ends. */
-export function classEnds(accuracyClass: AccuracyClass): readonly [number, number] {
-  return STEP_ENDS[accuracyClass];
-}
-
 /**
  * Maximum permissible error at load m, in v, sign-free: p_LC·(0.5, 1, 1.5); a step's end belongs to the lower step.
  * Source: OIML R 60-1:2021, table 4.
@@ -56,18 +51,6 @@ export function spanRatio(spanError: number, rules: EnvelopeRules): number {
 /** Error in v at load m (in v) of a relative span error: what the envelope chart shows. */
 export function spanErrorInIntervals(spanError: number, load: number): number {
   return spanError * load;
-}
-
-/** The envelope as corners for a chart: load in v, limit in v, from 0 to n. */
-export function envelopeCorners(rules: EnvelopeRules): { load: number; limit: number }[] {
-  const corners: { load: number; limit: number }[] = [];
-  let from = 0;
-  for (const to of decisiveLoads(rules)) {
-    const limit = maximumPermissibleError(to, rules);
-    corners.push({ load: from, limit }, { load: to, limit });
-    from = to;
-  }
-  return corners;
 }
 
 /** Largest change of the output at minimum load, relative to the span, 1/K: p_LC/(Tf·Y). Source: R 60-1, 5.6.1.3. */

@@ -240,11 +240,6 @@ const KINDS = {
 
 export type FindingCode = keyof typeof KINDS;
 
-/** All codes with their severity, for pages that explain them. */
-export const FINDING_SEVERITIES: Readonly<Record<FindingCode, Severity>> = Object.fromEntries(
-  Object.entries(KINDS).map(([code, kind]) => [code, kind.severity]),
-) as Record<FindingCode, Severity>;
-
 /** Where a finding stands and what it rests on. */
 export interface FindingPlace {
   serial?: string | null;
