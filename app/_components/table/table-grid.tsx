@@ -27,9 +27,6 @@ export interface TableGridProps {
   onSelected?: (keys: ReadonlySet<string>) => void;
 }
 
-/** Of the column of check boxes, px. */
-const SELECT_WIDTH = 36;
-
 /** The rows themselves: sticky heading and first column, arrow keys, Enter opens, Space selects. */
 export function TableGrid(props: TableGridProps) {
   const { columns, rows, keyOf } = props;
@@ -51,8 +48,6 @@ export function TableGrid(props: TableGridProps) {
     if (lastDrawn >= rows.length - 40) onEnd();
   }, [lastDrawn, rows.length, onEnd]);
 
-  const widths = isVirtual ? widthsOf(columns, rows) : [];
-  const selectWidth = props.selected === undefined ? 0 : SELECT_WIDTH;
   const before = isVirtual ? (items[0]?.start ?? 0) : 0;
   const after = isVirtual ? virtualizer.getTotalSize() - (items.at(-1)?.end ?? 0) : 0;
   const focusRow = (index: number) => {
@@ -71,16 +66,8 @@ export function TableGrid(props: TableGridProps) {
         aria-label={props.name}
         aria-rowcount={rows.length + 1}
         className={`w-full border-separate border-spacing-0 text-sm ${isVirtual ? "table-fixed" : ""}`}
-        style={isVirtual ? { minWidth: widths.reduce((sum, width) => sum + width, selectWidth) } : undefined}
       >
-        {isVirtual ? (
-          <colgroup>
-            {selectWidth > 0 ? <col style={{ width: selectWidth }} /> : null}
-            {columns.map(({ key }, at) => (
-              <col key={key} style={{ width: widths[at] }} />
-            ))}
-          </colgroup>
-        ) : null}
+        {isVirtual ? <Widths columns={columns} rows={rows} selectable={props.selected !== undefined} /> : null}
         <TableHead {...props} />
         <Spacer height={before} />
         <tbody>
@@ -114,17 +101,35 @@ function Spacer({ height }: { height: number }) {
   );
 }
 
-/**
- * Widths in px from the longest of the first texts, so that columns stay where they are while rows come and go. On a narrow
- * screen the table scrolls: a serial cut short is no serial.
- */
-function widthsOf(columns: readonly DataColumn[], rows: readonly Row[]): number[] {
+/** Advance of a figure of the mono face at 14 px, rounded up: at less, the last digit of a serial is cut. */
+const MONO_PX = 8.9;
+
+/** Fixed widths from the longest of the first texts, so that columns stay where they are while rows come and go. */
+function Widths({
+  columns,
+  rows,
+  selectable,
+}: {
+  columns: readonly DataColumn[];
+  rows: readonly Row[];
+  selectable: boolean;
+}) {
   const sample = rows.slice(0, 200);
-  return columns.map((column) => {
-    const extra = column.format?.as === "state" ? 3 : 0;
-    const longest = Math.max(column.header.length + 2, ...sample.map((row) => textOf(column, row).length + extra));
-    return Math.ceil(Math.min(longest, 48) * (isMono(column) ? 8.6 : 8) + 18);
-  });
+  return (
+    <colgroup>
+      {selectable ? <col style={{ width: 36 }} /> : null}
+      {columns.map((column) => {
+        const extra = column.format?.as === "state" ? 3 : 0;
+        const longest = Math.max(column.header.length + 2, ...sample.map((row) => textOf(column, row).length + extra));
+        return (
+          <col
+            key={column.key}
+            style={{ width: `calc(${Math.min(longest, 48) * (isMono(column) ? MONO_PX : 8)}px + 18px)` }}
+          />
+        );
+      })}
+    </colgroup>
+  );
 }
 
 /** Text right after figures would run into them: its column begins a little later. */
