@@ -180,10 +180,12 @@ export interface Equipment {
   calibratedUntil: string;
   certificate: string;
   code: string;
+  coverageFactor: Generated<number>;
   createdAt: Timestamp;
   createdBy: string;
   id: string;
   kind: string;
+  positions: Generated<Json>;
   uncertainty: number;
   updatedAt: Timestamp;
 }
@@ -412,6 +414,13 @@ export interface Reading {
   takenAt: Timestamp;
 }
 
+export interface ReadingMapping {
+  familyId: string;
+  mapping: Json;
+  updatedAt: Timestamp;
+  updatedBy: string;
+}
+
 export interface Reinstatement {
   askedAt: Timestamp;
   askedBy: string;
@@ -447,6 +456,7 @@ export interface Run {
   reason: string | null;
   rowCount: number;
   sha256: Buffer;
+  sourceSha256: Buffer | null;
   supersedesId: string | null;
   temperatureHighC: number | null;
   temperatureLowC: number | null;
@@ -455,7 +465,9 @@ export interface Run {
 export interface RunEquipment {
   calibratedUntil: string;
   certificate: string;
+  coverageFactor: Generated<number>;
   equipmentId: string;
+  positions: Generated<Json>;
   runId: string;
   uncertainty: number;
 }
@@ -590,6 +602,7 @@ export interface DB {
   passwordLink: PasswordLink;
   person: Person;
   reading: Reading;
+  readingMapping: ReadingMapping;
   reinstatement: Reinstatement;
   roleGrant: RoleGrant;
   run: Run;

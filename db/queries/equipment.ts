@@ -6,6 +6,13 @@ import { AppError } from "@/lib/errors";
 
 export type EquipmentKind = "sensor" | "chamber" | "load" | "reader";
 
+/** One place of a chamber: deviation from the reference sensor and its expanded uncertainty, both in K. */
+export interface ChamberPositionRow {
+  position: string;
+  deviationK: number;
+  uncertaintyK: number;
+}
+
 export interface EquipmentRow {
   id: string;
   code: string;
@@ -15,6 +22,9 @@ export interface EquipmentRow {
   calibratedUntil: string;
   /** Expanded uncertainty of the certificate in the kind's unit: °C, °C, kg, mV/V. */
   uncertainty: number;
+  /** k of the certificate's expanded uncertainties. */
+  coverageFactor: number;
+  positions: ChamberPositionRow[];
   createdAt: Date;
   createdBy: string;
   updatedAt: Date;
@@ -27,6 +37,8 @@ const equipmentColumns = [
   "certificate",
   "calibratedUntil",
   "uncertainty",
+  "coverageFactor",
+  "positions",
   "createdAt",
   "createdBy",
   "updatedAt",
@@ -34,7 +46,13 @@ const equipmentColumns = [
 
 /** The driver is told to leave dates as text (they have no time zone); the generated type calls them Date. */
 function rowOf(row: Pick<Selectable<Equipment>, (typeof equipmentColumns)[number]>): EquipmentRow {
-  return { ...row, kind: row.kind as EquipmentKind, calibratedUntil: row.calibratedUntil as unknown as string };
+  const { kind, calibratedUntil, positions } = row;
+  return {
+    ...row,
+    kind: kind as EquipmentKind,
+    calibratedUntil: calibratedUntil as unknown as string,
+    positions: positions as unknown as ChamberPositionRow[],
+  };
 }
 
 /** Equipment by code. */
@@ -67,15 +85,24 @@ export async function lockEquipment(trx: Trx, codeOrId: string): Promise<Equipme
 
 /** @throws constraint `equipment_code_unique` → `equipment.exists` */
 export async function insertEquipment(trx: Trx, row: EquipmentRow): Promise<void> {
-  await trx.insertInto("equipment").values(row).execute();
+  await trx
+    .insertInto("equipment")
+    .values({ ...row, positions: JSON.stringify(row.positions) })
+    .execute();
 }
 
-export type EquipmentChange = Partial<Pick<EquipmentRow, "certificate" | "calibratedUntil" | "uncertainty">>;
+export type EquipmentChange = Partial<
+  Pick<EquipmentRow, "certificate" | "calibratedUntil" | "uncertainty" | "coverageFactor" | "positions">
+>;
 
 export async function updateEquipment(
   trx: Trx,
   id: string,
-  change: EquipmentChange & { updatedAt: Date },
+  { positions, ...change }: EquipmentChange & { updatedAt: Date },
 ): Promise<void> {
-  await trx.updateTable("equipment").set(change).where("id", "=", id).execute();
+  await trx
+    .updateTable("equipment")
+    .set({ ...change, ...(positions && { positions: JSON.stringify(positions) }) })
+    .where("id", "=", id)
+    .execute();
 }

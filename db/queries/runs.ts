@@ -1,5 +1,6 @@
 import type { Db, Trx } from "@/db/executor";
 import type { Json } from "@/db/generated/types.generated";
+import type { ChamberPositionRow } from "@/db/queries/equipment";
 import type { Finding, Purpose } from "@/lib/domain/compensation/types";
 import { AppError } from "@/lib/errors";
 
@@ -134,23 +135,32 @@ export interface RunEquipmentRow {
   /** `YYYY-MM-DD` */
   calibratedUntil: string;
   uncertainty: number;
+  coverageFactor: number;
+  positions: ChamberPositionRow[];
 }
+
+type Certificate = Pick<
+  RunEquipmentRow,
+  "certificate" | "calibratedUntil" | "uncertainty" | "coverageFactor" | "positions"
+>;
 
 /** Notes which equipment a run used, with its certificate as of now. */
 export async function insertRunEquipment(
   trx: Trx,
   runId: string,
-  equipment: readonly { id: string; certificate: string; calibratedUntil: string; uncertainty: number }[],
+  equipment: readonly (Certificate & { id: string })[],
 ): Promise<void> {
   if (equipment.length === 0) return;
-  const rows = equipment.map(({ id, ...rest }) => ({ runId, equipmentId: id, ...rest }));
+  const rows = equipment.map(({ id, positions, ...rest }) => {
+    return { runId, equipmentId: id, ...rest, positions: JSON.stringify(positions) };
+  });
   await trx.insertInto("runEquipment").values(rows).execute();
 }
 
 /** Equipment of runs, by run and code. */
 export async function listRunEquipment(db: Db, runIds: readonly string[]): Promise<RunEquipmentRow[]> {
   if (runIds.length === 0) return [];
-  return db
+  const rows = await db
     .selectFrom("runEquipment")
     .innerJoin("equipment", "equipment.id", "runEquipment.equipmentId")
     .select([
@@ -161,11 +171,14 @@ export async function listRunEquipment(db: Db, runIds: readonly string[]): Promi
       "runEquipment.certificate",
       "runEquipment.calibratedUntil",
       "runEquipment.uncertainty",
+      "runEquipment.coverageFactor",
+      "runEquipment.positions",
     ])
     .where("runEquipment.runId", "in", [...runIds])
     .orderBy("runEquipment.runId")
     .orderBy("equipment.code")
     .execute();
+  return rows.map((row) => ({ ...row, positions: row.positions as unknown as ChamberPositionRow[] }));
 }
 
 /** A finding as stored: one of the arithmetic's, with an id to acknowledge it by. */
@@ -200,12 +213,13 @@ export async function listRunFindings(db: Db, runIds: readonly string[]): Promis
 export async function findEquipmentByCodes(
   db: Db,
   codes: readonly string[],
-): Promise<{ id: string; code: string; certificate: string; calibratedUntil: string; uncertainty: number }[]> {
+): Promise<(Certificate & { id: string; code: string })[]> {
   if (codes.length === 0) return [];
-  return db
+  const rows = await db
     .selectFrom("equipment")
-    .select(["id", "code", "certificate", "calibratedUntil", "uncertainty"])
+    .select(["id", "code", "certificate", "calibratedUntil", "uncertainty", "coverageFactor", "positions"])
     .where("code", "in", [...codes])
     .orderBy("code")
     .execute();
+  return rows.map((row) => ({ ...row, positions: row.positions as unknown as ChamberPositionRow[] }));
 }

@@ -48,6 +48,14 @@ function dateAfter(today: Date, days: number): string {
   return new Date(today.getTime() + days * 86_400_000).toISOString().slice(0, 10);
 }
 
+/** Four shelves' ends of the chamber: warmer at the top, as its certificate of uniformity has it. */
+const CHAMBER_POSITIONS = [
+  { position: "A1", deviationK: 0.12, uncertaintyK: 0.1 },
+  { position: "A2", deviationK: 0.08, uncertaintyK: 0.1 },
+  { position: "B1", deviationK: -0.05, uncertaintyK: 0.1 },
+  { position: "B2", deviationK: -0.11, uncertaintyK: 0.1 },
+];
+
 async function addAllEquipment(story: Story): Promise<void> {
   const due = (days: number) => dateAfter(story.today, days);
   const engineer = story.as("engineer");
@@ -59,7 +67,10 @@ async function addAllEquipment(story: Story): Promise<void> {
     { code: "LD-300", kind: "load", certificate: "M-1155", calibratedUntil: due(18), uncertainty: 0.001 },
     { code: "RD-1", kind: "reader", certificate: "E-4410", calibratedUntil: due(140), uncertainty: 0.000004 },
   ] as const;
-  for (const piece of pieces) await addEquipment(engineer, piece);
+  for (const piece of pieces) {
+    const positions = piece.kind === "chamber" ? CHAMBER_POSITIONS : [];
+    await addEquipment(engineer, { ...piece, coverageFactor: 2, positions });
+  }
 }
 
 /** Two families with published layouts, and the equipment. */

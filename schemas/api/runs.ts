@@ -1,5 +1,6 @@
 import { z } from "zod";
 import { code, id, pageOf, reason, sha256Hex, timestamp } from "@/schemas/api/common";
+import { chamberPosition } from "@/schemas/api/equipment";
 
 export const purpose = z
   .enum(["sample", "zero", "span", "verification", "proof"])
@@ -66,6 +67,8 @@ const runMembers = {
       certificate: z.string(),
       calibratedUntil: z.iso.date(),
       uncertainty: z.number(),
+      coverageFactor: z.number(),
+      positions: z.array(chamberPosition),
     }),
   ),
   findings: z.array(finding),

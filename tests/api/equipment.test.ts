@@ -31,6 +31,19 @@ describe("equipment", () => {
     expect(changed.body).toMatchObject({ ...sensor, certificate: "K-2027-004", calibratedUntil: "2028-03-31" });
   });
 
+  it("takes the factor 2 where none is named, and a chamber's places with their deviations", async () => {
+    const places = [{ position: "A1", deviationK: 0.12, uncertaintyK: 0.1 }];
+    const { body } = await add({ ...sensor, code: "CH-02", kind: "chamber", positions: places });
+    expect(body).toMatchObject({ coverageFactor: 2, positions: places });
+    const changed = await change("CH-02", { coverageFactor: 2.05, positions: [] });
+    expect(changed.body).toMatchObject({ coverageFactor: 2.05, positions: [], certificate: sensor.certificate });
+    const refused = await change("PT-01", { positions: places });
+    expect([refused.status, refused.body.code]).toEqual([422, "equipment.not_a_chamber"]);
+    const list = await api.call("GET", "/equipment", { as: "auditor" });
+    const factors = list.body.items.map((one: { coverageFactor: number }) => one.coverageFactor);
+    expect(factors).toEqual([2, 2.05, 2]);
+  });
+
   it("stands in the ledger with old and new values", async () => {
     const { canonical } = await api.owner
       .selectFrom("ledgerEvent")
@@ -49,6 +62,13 @@ describe("equipment", () => {
     ["/uncertainty", { uncertainty: -1 }],
     ["/certificate", { certificate: " " }],
     ["/code", { code: "a b" }],
+    ["/coverageFactor", { coverageFactor: 0 }],
+    ["/positions", { positions: [{ position: "A1", deviationK: 0, uncertaintyK: 0.1 }] }],
+    ["/positions/0/position", { kind: "chamber", positions: [{ position: "=A1", deviationK: 0, uncertaintyK: 0.1 }] }],
+    [
+      "/positions/1/position",
+      { kind: "chamber", positions: [0, 1].map((deviationK) => ({ position: "A1", deviationK, uncertaintyK: 0.1 })) },
+    ],
   ])("is refused with a bad %s", async (path, values) => {
     const { status, body } = await add({ ...sensor, code: "BAD", ...values });
     expect([status, body.errors[0].path]).toEqual([422, path]);

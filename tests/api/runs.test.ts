@@ -161,14 +161,13 @@ describe("uploading a run", () => {
       certificate: "K-1",
       calibratedUntil: "2026-03-01",
       uncertainty: 0.05,
+      coverageFactor: 2.1,
     };
     expect((await api.call("POST", "/equipment", { as: "engineer", body: equipment })).status).toBe(201);
     const unknown = await upload(small(2), { equipment: "TS-01,TS-99" });
     expect([unknown.status, unknown.body.code, unknown.body.codes]).toEqual([422, "run.equipment_unknown", ["TS-99"]]);
     const reply = await upload(small(2), { equipment: "ts-01" });
-    expect(reply.body.equipment).toEqual([
-      { code: "TS-01", kind: "sensor", certificate: "K-1", calibratedUntil: "2026-03-01", uncertainty: 0.05 },
-    ]);
+    expect(reply.body.equipment).toEqual([{ ...equipment, positions: [] }]);
     expect(reply.body.findings).toContainEqual(
       expect.objectContaining({ code: "equipment.overdue", severity: "soft" }),
     );

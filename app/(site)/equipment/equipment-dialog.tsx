@@ -106,8 +106,8 @@ export function EquipmentDialog({ equipment, onClose }: EquipmentDialogProps) {
   );
 }
 
-function valuesOf({ code, kind, certificate, calibratedUntil, uncertainty }: EquipmentView): NewEquipment {
-  return { code, kind, certificate, calibratedUntil, uncertainty };
+function valuesOf({ id: _, createdAt: _created, updatedAt: _updated, ...values }: EquipmentView): NewEquipment {
+  return values;
 }
 
 function toNumber(typed: unknown): number | undefined {

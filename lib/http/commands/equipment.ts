@@ -32,12 +32,12 @@ export const changeEquipment = command({
   id: "equipment.change",
   method: "PATCH",
   path: "/equipment/{code}",
-  summary: "Changes a certificate, its date or uncertainty",
+  summary: "Changes a certificate, its date, uncertainty or a chamber's places",
   access: { who: "person", roles: ["engineer"] },
   params: byCodeOrId,
   body: equipmentChange,
   reply: { status: 200, schema: equipment },
-  errors: ["equipment.not_found"],
+  errors: ["equipment.not_found", "equipment.not_a_chamber"],
   handle: (ctx, { params, body }) => service.changeEquipment(ctx, params.code, body),
 });
 

@@ -1,5 +1,6 @@
 import type { z } from "zod";
 import * as query from "@/db/queries/equipment";
+import { AppError } from "@/lib/errors";
 import { assertRole, type Ctx, type PersonCtx } from "@/lib/services/context";
 import { appendEvent } from "@/lib/services/ledger/append-event";
 import { type Page, pageOf } from "@/lib/services/page";
@@ -8,9 +9,8 @@ import type { EquipmentChange, equipment, NewEquipment } from "@/schemas/api/equ
 export type EquipmentView = z.output<typeof equipment>;
 
 function viewOf(row: query.EquipmentRow): EquipmentView {
-  const { id, code, kind, certificate, calibratedUntil, uncertainty } = row;
-  const times = { createdAt: row.createdAt.toISOString(), updatedAt: row.updatedAt.toISOString() };
-  return { id, code, kind, certificate, calibratedUntil, uncertainty, ...times };
+  const { createdBy: _, createdAt, updatedAt, ...values } = row;
+  return { ...values, createdAt: createdAt.toISOString(), updatedAt: updatedAt.toISOString() };
 }
 
 /** Equipment by code. */
@@ -32,17 +32,20 @@ export async function addEquipment(ctx: PersonCtx, input: NewEquipment): Promise
 }
 
 /**
- * Changes a certificate, its date or uncertainty. Runs uploaded before keep the values of their day.
- * @throws AppError `equipment.not_found`, `auth.forbidden`
+ * Changes a certificate, its date, uncertainty or a chamber's places. Runs uploaded before keep the values of their day.
+ * @throws AppError `equipment.not_found`, `equipment.not_a_chamber`, `auth.forbidden`
  */
 export async function changeEquipment(ctx: PersonCtx, code: string, change: EquipmentChange): Promise<EquipmentView> {
   assertRole(ctx, "engineer");
   return ctx.db.transaction().execute(async (trx) => {
     const before = await query.lockEquipment(trx, code);
+    if (before.kind !== "chamber" && change.positions?.length) {
+      throw new AppError("equipment.not_a_chamber", { kind: before.kind, message: "Only a chamber has places." });
+    }
     const updatedAt = ctx.now();
     await query.updateEquipment(trx, before.id, { ...change, updatedAt });
-    const { certificate, calibratedUntil, uncertainty } = before;
-    const data = { from: { certificate, calibratedUntil, uncertainty }, to: { ...change } };
+    const { certificate, calibratedUntil, uncertainty, coverageFactor, positions } = before;
+    const data = { from: { certificate, calibratedUntil, uncertainty, coverageFactor, positions }, to: { ...change } };
     await appendEvent(ctx, trx, { action: "equipment.changed", subject: before.code, data });
     return viewOf({ ...before, ...change, updatedAt });
   });
