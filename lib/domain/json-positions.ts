@@ -2,6 +2,8 @@
 export interface JsonSpan {
   from: number;
   end: number;
+  /** Where its name begins, for a member of an object. */
+  keyFrom?: number;
 }
 
 /**
@@ -22,9 +24,22 @@ export function nearestSpan(spans: ReadonlyMap<string, JsonSpan>, pointer: strin
 }
 
 /** Line and column of an offset, both from 1. */
-export function lineAndColumn(text: string, offset: number): { line: number; column: number } {
-  const before = text.slice(0, offset);
-  return { line: before.split("\n").length, column: offset - before.lastIndexOf("\n") };
+export type LineFinder = (offset: number) => { line: number; column: number };
+
+/** Finds lines of a text; its line starts are looked up once, however many offsets are asked for. */
+export function lineFinder(text: string): LineFinder {
+  const starts = [0];
+  for (let at = text.indexOf("\n"); at >= 0; at = text.indexOf("\n", at + 1)) starts.push(at + 1);
+  return (offset) => {
+    let low = 0;
+    let high = starts.length - 1;
+    while (low < high) {
+      const middle = Math.ceil((low + high) / 2);
+      if ((starts[middle] as number) <= offset) low = middle;
+      else high = middle - 1;
+    }
+    return { line: low + 1, column: offset - (starts[low] as number) + 1 };
+  };
 }
 
 class Scanner {
@@ -35,23 +50,24 @@ class Scanner {
   ) {}
 
   /** Reads one value and notes its place. @returns whether it was one. */
-  value(pointer: string): boolean {
+  value(pointer: string, keyFrom?: number): boolean {
     this.space();
     const from = this.at;
     const first = this.text[from];
     const read =
       first === "{" ? this.members(pointer) : first === "[" ? this.items(pointer) : this.scalar() !== undefined;
-    this.spans.set(pointer, { from, end: this.at });
+    this.spans.set(pointer, { from, end: this.at, ...(keyFrom === undefined ? {} : { keyFrom }) });
     return read;
   }
 
   private members(pointer: string): boolean {
     return this.list("}", () => {
       this.space();
+      const keyFrom = this.at;
       const key = this.scalar();
       if (key === undefined || !key.startsWith('"')) return false;
       this.space();
-      return this.skip(":") && this.value(`${pointer}/${pointerToken(key)}`);
+      return this.skip(":") && this.value(`${pointer}/${pointerToken(key)}`, keyFrom);
     });
   }
 

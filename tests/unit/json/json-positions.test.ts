@@ -1,6 +1,6 @@
 import fc from "fast-check";
 import { describe, expect, it } from "vitest";
-import { jsonPositions, lineAndColumn, nearestSpan } from "@/lib/domain/json-positions";
+import { jsonPositions, lineFinder, nearestSpan } from "@/lib/domain/json-positions";
 
 const slice = (text: string, pointer: string) => {
   const span = jsonPositions(text).get(pointer);
@@ -51,9 +51,15 @@ describe("nearestSpan", () => {
   });
 });
 
-describe("lineAndColumn", () => {
+describe("lineFinder", () => {
   it("counts from 1", () => {
-    expect(lineAndColumn("ab\ncd", 0)).toEqual({ line: 1, column: 1 });
-    expect(lineAndColumn("ab\ncd", 4)).toEqual({ line: 2, column: 2 });
+    const lineOf = lineFinder("ab\ncd");
+    expect([0, 2, 3, 4].map(lineOf)).toEqual([
+      { line: 1, column: 1 },
+      { line: 1, column: 3 },
+      { line: 2, column: 1 },
+      { line: 2, column: 2 },
+    ]);
+    expect(lineFinder("")(0)).toEqual({ line: 1, column: 1 });
   });
 });

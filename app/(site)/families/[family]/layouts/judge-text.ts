@@ -7,7 +7,7 @@ import { decodeImage, encodeImage } from "@/builders/codec/image";
 import { type LintOptions, lintLayout } from "@/builders/codec/lint";
 import { readLayout } from "@/builders/codec/lint-shape";
 import { sampleSources } from "@/builders/codec/sample";
-import { jsonPositions, lineAndColumn, nearestSpan } from "@/lib/domain/json-positions";
+import { jsonPositions, lineFinder, nearestSpan } from "@/lib/domain/json-positions";
 import { layoutStep, newestLower, type Step, type StepReason } from "@/lib/domain/semver-step";
 import { AppError, type Problem } from "@/lib/errors";
 import type { LayoutDocument } from "@/schemas/documents/layout";
@@ -112,12 +112,13 @@ function shownAs(type: string, value: number | string | null): number | string |
 
 function markersOf(text: string, errors: readonly Problem[], warnings: readonly Problem[]): JsonMarker[] {
   const spans = jsonPositions(text);
+  const lineOf = lineFinder(text);
   const mark = (severity: JsonMarker["severity"]) => (problem: Problem) => {
     const { from, end } = nearestSpan(spans, problem.path);
     const lineEnd = text.indexOf("\n", from);
     const stop = lineEnd < 0 ? end : Math.min(end, lineEnd);
-    const start = lineAndColumn(text, from);
-    const last = lineAndColumn(text, stop);
+    const start = lineOf(from);
+    const last = lineOf(stop);
     return { severity, message: problem.message, ...start, endLine: last.line, endColumn: last.column };
   };
   return [...errors.map(mark("error")), ...warnings.map(mark("warning"))];
