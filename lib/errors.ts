@@ -33,6 +33,7 @@ const STATUS_BY_CODE: Record<string, { status: number; title: string }> = {
   "idempotency.key_reused": { status: 422, title: "The same key with another body" },
   "idempotency.in_progress": { status: 409, title: "The same request is still running" },
   "device.in_other_lot": { status: 409, title: "The serial belongs to another lot" },
+  "device.batch_differs": { status: 409, title: "Another batch was told before" },
   "run.duplicate": { status: 409, title: "The same bytes were uploaded before" },
   "run.already_superseded": { status: 409, title: "That run was superseded before" },
   "run.too_many_rows": { status: 413, title: "Too many rows" },

@@ -7,6 +7,7 @@ import * as derivations from "./20261201060400_derivations";
 import * as packages from "./20261201060500_packages";
 import * as stations from "./20261201060600_stations";
 import * as ledger from "./20261201060700_ledger";
+import * as runPlans from "./20261201140000_run_plans";
 import * as certificatesAndMappings from "./20261201141000_certificates_and_mappings";
 
 /** Every migration by name, in order. A static list, so that it works the same under tsx, vitest and the built app. */
@@ -19,5 +20,6 @@ export const migrations: Record<string, Migration> = {
   "20261201060500_packages": packages,
   "20261201060600_stations": stations,
   "20261201060700_ledger": ledger,
+  "20261201140000_run_plans": runPlans,
   "20261201141000_certificates_and_mappings": certificatesAndMappings,
 };

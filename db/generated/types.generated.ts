@@ -110,6 +110,7 @@ export interface Derivation {
   createdAt: Timestamp;
   createdBy: string;
   engine: string;
+  envelope: Json | null;
   failure: Json | null;
   familyRevisionId: string;
   finishedAt: Timestamp | null;
@@ -125,6 +126,7 @@ export interface Derivation {
   provenLowC: number | null;
   sha256: Buffer;
   state: string;
+  uncertainty: Json | null;
   verification: Generated<Json>;
 }
 
@@ -155,13 +157,25 @@ export interface Device {
   addedAt: Timestamp;
   addedBy: string;
   firmware: string | null;
+  gaugeBatch: string | null;
   hardwareId: string | null;
   held: Generated<boolean>;
   id: string;
   lotId: string;
+  materialBatch: string | null;
   scrapped: Generated<boolean>;
   serial: string;
   shipped: Generated<boolean>;
+}
+
+export interface DeviceBatchCorrection {
+  at: Timestamp;
+  deviceId: string;
+  gaugeBatch: string | null;
+  id: string;
+  materialBatch: string | null;
+  personId: string;
+  reason: string;
 }
 
 export interface DeviceEvent {
@@ -452,6 +466,7 @@ export interface Run {
   fileName: string | null;
   id: string;
   lotId: string;
+  planId: string | null;
   purpose: string;
   reason: string | null;
   rowCount: number;
@@ -486,6 +501,48 @@ export interface RunFinding {
   runId: string;
   serial: string | null;
   severity: string;
+}
+
+export interface RunPlan {
+  createdAt: Timestamp;
+  createdBy: string;
+  droppedAt: Timestamp | null;
+  droppedBy: string | null;
+  dropReason: string | null;
+  id: string;
+  lotId: string;
+  name: string;
+  notes: string | null;
+  points: Json;
+  purpose: string;
+  sampleDrawId: string | null;
+  state: Generated<string>;
+}
+
+export interface RunPlanDevice {
+  deviceId: string;
+  place: number;
+  planId: string;
+  position: string;
+}
+
+export interface RunPlanEquipment {
+  equipmentId: string;
+  planId: string;
+}
+
+export interface SampleDraw {
+  count: number;
+  createdAt: Timestamp;
+  createdBy: string;
+  eligible: number;
+  id: string;
+  leftOut: Json;
+  lotId: string;
+  method: string;
+  seed: string;
+  serials: string[];
+  strata: Json;
 }
 
 export interface Session {
@@ -581,6 +638,7 @@ export interface DB {
   derivationFinding: DerivationFinding;
   derivationRun: DerivationRun;
   device: Device;
+  deviceBatchCorrection: DeviceBatchCorrection;
   deviceEvent: DeviceEvent;
   equipment: Equipment;
   family: Family;
@@ -609,6 +667,10 @@ export interface DB {
   runEquipment: RunEquipment;
   runFile: RunFile;
   runFinding: RunFinding;
+  runPlan: RunPlan;
+  runPlanDevice: RunPlanDevice;
+  runPlanEquipment: RunPlanEquipment;
+  sampleDraw: SampleDraw;
   session: Session;
   signingKey: SigningKey;
   station: Station;

@@ -8,6 +8,10 @@ export interface DeviceRow {
   /** Of the board in it, as last reported. */
   hardwareId: string | null;
   firmware: string | null;
+  /** Of the strain gauges, as its maker names it. */
+  gaugeBatch: string | null;
+  /** Of the body's material. */
+  materialBatch: string | null;
   held: boolean;
   scrapped: boolean;
   shipped: boolean;
@@ -20,6 +24,8 @@ const deviceColumns = [
   "device.lotId",
   "device.hardwareId",
   "device.firmware",
+  "device.gaugeBatch",
+  "device.materialBatch",
   "device.held",
   "device.scrapped",
   "device.shipped",
@@ -86,9 +92,12 @@ export async function countDevices(db: Db, lotId: string): Promise<number> {
   return row.count;
 }
 
+/** What a device is made of; null where nobody said. */
+export type Batches = Pick<DeviceRow, "gaugeBatch" | "materialBatch">;
+
 export interface NewDevices {
   lotId: string;
-  devices: readonly { id: string; serial: string; hardwareId?: string | null }[];
+  devices: readonly ({ id: string; serial: string; hardwareId?: string | null } & Partial<Batches>)[];
   addedAt: Date;
   addedBy: string;
 }
@@ -99,10 +108,55 @@ export async function insertDevices(trx: Trx, { lotId, devices, addedAt, addedBy
   const ids = devices.map((device) => device.id);
   const serials = devices.map((device) => device.serial);
   const hardwareIds = devices.map((device) => device.hardwareId ?? null);
+  const gaugeBatches = devices.map((device) => device.gaugeBatch ?? null);
+  const materialBatches = devices.map((device) => device.materialBatch ?? null);
   await sql`
-    insert into device (id, serial, lot_id, hardware_id, added_at, added_by)
-    select given.id, given.serial, ${lotId}::uuid, given.hardware_id, ${addedAt}::timestamptz, ${addedBy}::uuid
-    from unnest(${ids}::uuid[], ${serials}::text[], ${hardwareIds}::text[]) as given (id, serial, hardware_id)
+    insert into device (id, serial, lot_id, hardware_id, gauge_batch, material_batch, added_at, added_by)
+    select given.id, given.serial, ${lotId}::uuid, given.hardware_id, given.gauge_batch, given.material_batch,
+           ${addedAt}::timestamptz, ${addedBy}::uuid
+    from unnest(${ids}::uuid[], ${serials}::text[], ${hardwareIds}::text[], ${gaugeBatches}::text[], ${materialBatches}::text[])
+      as given (id, serial, hardware_id, gauge_batch, material_batch)
+  `.execute(trx);
+}
+
+export type DeviceBatches = Batches & { id: string };
+
+/**
+ * Says what devices are made of, each with both batches as they are from now on.
+ * @throws trigger `device.batch_differs` where one changes that no correction names
+ */
+export async function updateBatches(trx: Trx, devices: readonly DeviceBatches[]): Promise<void> {
+  if (devices.length === 0) return;
+  const ids = devices.map((device) => device.id);
+  const gauges = devices.map((device) => device.gaugeBatch);
+  const materials = devices.map((device) => device.materialBatch);
+  await sql`
+    update device set gauge_batch = given.gauge_batch, material_batch = given.material_batch
+    from unnest(${ids}::uuid[], ${gauges}::text[], ${materials}::text[]) as given (id, gauge_batch, material_batch)
+    where device.id = given.id
+  `.execute(trx);
+}
+
+export interface BatchCorrections {
+  devices: readonly (DeviceBatches & { correctionId: string })[];
+  reason: string;
+  personId: string;
+  at: Date;
+}
+
+/** Notes that batches told before were wrong, and what is right. */
+export async function insertBatchCorrections(trx: Trx, corrections: BatchCorrections): Promise<void> {
+  const { devices, reason, personId, at } = corrections;
+  if (devices.length === 0) return;
+  const ids = devices.map((device) => device.correctionId);
+  const deviceIds = devices.map((device) => device.id);
+  const gauges = devices.map((device) => device.gaugeBatch);
+  const materials = devices.map((device) => device.materialBatch);
+  await sql`
+    insert into device_batch_correction (id, device_id, gauge_batch, material_batch, reason, person_id, at)
+    select given.id, given.device_id, given.gauge_batch, given.material_batch, ${reason}, ${personId}::uuid, ${at}::timestamptz
+    from unnest(${ids}::uuid[], ${deviceIds}::uuid[], ${gauges}::text[], ${materials}::text[])
+      as given (id, device_id, gauge_batch, material_batch)
   `.execute(trx);
 }
 

@@ -18,6 +18,7 @@ import { peopleCommands } from "./commands/people";
 import { rebuildCommands } from "./commands/rebuilds";
 import { reinstatementCommands } from "./commands/reinstatements";
 import { runCommands } from "./commands/runs";
+import { sampleCommands } from "./commands/samples";
 import { signingKeyCommands } from "./commands/signing-keys";
 import { stationCommands } from "./commands/stations";
 import { todayCommands } from "./commands/today";
@@ -28,6 +29,7 @@ export const commands: readonly AnyCommand[] = [
   ...layoutCommands,
   ...equipmentCommands,
   ...lotCommands,
+  ...sampleCommands,
   ...runCommands,
   ...derivationCommands,
   ...coefficientCommands,

@@ -1,6 +1,6 @@
 import semver from "semver";
 import { z } from "zod";
-import { code, id, pageOf, pageQuery, timestamp } from "@/schemas/api/common";
+import { code, id, pageOf, pageQuery, reason, timestamp } from "@/schemas/api/common";
 
 /** Devices a lot takes at most. */
 export const LOT_DEVICES_MAX = 60_000;
@@ -40,13 +40,36 @@ export const lot = z.object({
 
 export const lotList = pageOf(lot);
 
-export const newDevices = z.strictObject({
-  serials: z.array(code).min(1, "Name at least one serial.").max(LOT_DEVICES_MAX),
-});
+const batch = code.nullish().meta({ description: "Batch code, in the form of serials; null where nobody knows" });
+
+/** A device with what it is made of. */
+export const newDevice = z.strictObject({ serial: code, gaugeBatch: batch, materialBatch: batch });
+
+export const newDevices = z
+  .strictObject({
+    serials: z.array(code).max(LOT_DEVICES_MAX).optional(),
+    devices: z
+      .array(newDevice)
+      .max(LOT_DEVICES_MAX)
+      .optional()
+      .meta({ description: "Serials with the batches of their gauges and material; known serials get them too" }),
+    reason: reason
+      .optional()
+      .meta({ description: "Why batches that were told before are corrected; without it another batch is refused" }),
+  })
+  .refine(({ serials = [], devices = [] }) => serials.length + devices.length > 0, {
+    path: ["serials"],
+    message: "Name at least one serial.",
+  });
 
 export const addedDevices = z.object({
   added: z.number().int().meta({ description: "Serials new in the lot" }),
   known: z.number().int().meta({ description: "Serials that were in the lot before" }),
+  batchesSet: z
+    .number()
+    .int()
+    .optional()
+    .meta({ description: "Known serials that got batches now, corrected ones included; where batches were given" }),
 });
 
 export const deviceQuery = pageQuery.extend({
@@ -61,6 +84,8 @@ export const lotDevice = z.object({
     .nullable()
     .meta({ description: "State of the newest coefficient set" }),
   hardwareId: z.string().nullable(),
+  gaugeBatch: z.string().nullable(),
+  materialBatch: z.string().nullable(),
   addedAt: timestamp,
 });
 

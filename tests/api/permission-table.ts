@@ -59,6 +59,9 @@ lots.list-writes               401    yes  yes  role yes  yes  yes  role    yes 
 lots.create                    401    yes  role role role role role role    yes      role     role
 lots.add-devices               401    yes  role role role role role role    yes      role     role
 
+samples.list-draws             401    yes  yes  role yes  yes  yes  role    yes      yes      yes
+samples.draw                   401    yes  role role role role role role    yes      role     role
+
 runs.list                      401    yes  yes  role yes  yes  yes  role    yes      yes      yes
 runs.get                       401    yes  yes  role yes  yes  yes  role    yes      yes      yes
 runs.file                      401    yes  yes  role yes  yes  yes  role    yes      yes      yes

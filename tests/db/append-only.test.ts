@@ -12,6 +12,7 @@ const APPEND_ONLY = {
   derivation_exclusion: "reason",
   derivation_finding: "message",
   derivation_run: "run_id",
+  device_batch_correction: "reason",
   device_event: "reason",
   image: "bytes",
   import_file: "content",
@@ -26,6 +27,9 @@ const APPEND_ONLY = {
   run_equipment: "equipment_id",
   run_file: "content",
   run_finding: "message",
+  run_plan_device: "position",
+  run_plan_equipment: "equipment_id",
+  sample_draw: "seed",
   waiver: "reason",
   write_record: "outcome",
 };

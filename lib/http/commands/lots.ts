@@ -59,14 +59,14 @@ export const addDevices = command({
   id: "lots.add-devices",
   method: "POST",
   path: "/lots/{code}/devices",
-  summary: "Adds serials to a lot, all or none",
+  summary: "Adds serials to a lot, with their batches where known, all or none",
   access: engineer,
   params: byCodeOrId,
   body: newDevices,
   reply: { status: 200, schema: addedDevices },
-  errors: ["lot.not_found", "device.in_other_lot", "lot.too_many_devices"],
+  errors: ["lot.not_found", "device.in_other_lot", "device.batch_differs", "lot.too_many_devices"],
   idempotent: true,
-  handle: (ctx, { params, body }) => add(ctx, { lot: params.code, serials: body.serials }),
+  handle: (ctx, { params, body }) => add(ctx, { ...body, lot: params.code }),
 });
 
 export const listLotDevices = command({

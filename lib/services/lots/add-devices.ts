@@ -1,23 +1,44 @@
 import { sha256Hex } from "@/builders/bundle/sha256";
-import { countDevices, findDevicesBySerial, insertDevices } from "@/db/queries/devices";
+import type { Trx } from "@/db/executor";
+import {
+  countDevices,
+  type DeviceRow,
+  findDevicesBySerial,
+  insertBatchCorrections,
+  insertDevices,
+  updateBatches,
+} from "@/db/queries/devices";
 import { getLot, lockLot } from "@/db/queries/lots";
+import { type BatchChange, type GivenDevice, listBatchChanges, mergeGivenDevices } from "@/lib/domain/batches";
 import { canonicalJson } from "@/lib/domain/canonical-json";
 import { AppError } from "@/lib/errors";
 import { assertRole, type PersonCtx } from "@/lib/services/context";
 import { appendEvent } from "@/lib/services/ledger/append-event";
 import { LOT_DEVICES_MAX } from "@/schemas/api/lots";
 
+export interface AddDevicesInput {
+  lot: string;
+  serials?: readonly string[];
+  /** Serials with the batches of their gauges and material. */
+  devices?: readonly GivenDevice[];
+  /** Why batches that were told before are corrected. */
+  reason?: string;
+}
+
+type Added = { added: number; known: number; batchesSet?: number };
+type Change = BatchChange<DeviceRow>;
+
 /**
- * Adds serials to a lot, all or none. A serial named twice counts once.
- * @returns how many are new and how many were in the lot before.
- * @throws AppError `lot.not_found`, `device.in_other_lot` {serials, lots, count}, `lot.too_many_devices` {devicesMax}
+ * Adds serials to a lot and says what devices are made of, all or none. A serial named twice counts once.
+ * @returns how many are new, how many were in the lot before, and where batches were given, how many of those got some.
+ * @throws AppError `lot.not_found`, `device.in_other_lot` {serials, lots, count}, `lot.too_many_devices` {devicesMax},
+ * `device.batches_contradict` {serial}, `device.batch_differs` {serials, count} where a batch changes without a reason
  */
-export async function addDevices(
-  ctx: PersonCtx,
-  input: { lot: string; serials: readonly string[] },
-): Promise<{ added: number; known: number }> {
+export async function addDevices(ctx: PersonCtx, input: AddDevicesInput): Promise<Added> {
   assertRole(ctx, "engineer");
-  const serials = [...new Set(input.serials)].sort();
+  const plain = (input.serials ?? []).map((serial) => ({ serial }));
+  const given = mergeGivenDevices([...plain, ...(input.devices ?? [])]);
+  const serials = [...given.keys()].sort();
   return ctx.db.transaction().execute(async (trx) => {
     const lot = await lockLot(trx, (await getLot(trx, input.lot)).id);
     const found = await findDevicesBySerial(trx, serials);
@@ -28,20 +49,33 @@ export async function addDevices(
       const message = `A lot takes at most ${LOT_DEVICES_MAX.toLocaleString("en")} devices; make a second lot for the others.`;
       throw new AppError("lot.too_many_devices", { devicesMax: LOT_DEVICES_MAX, message });
     }
+    const changes = listBatchChanges(found, given);
+    assertReasonFor(changes, input.reason);
+    const devices = added.map((serial) => ({ ...(given.get(serial) as GivenDevice), id: ctx.newId() }));
+    await insertDevices(trx, { lotId: lot.id, devices, addedAt: ctx.now(), addedBy: ctx.actor.id });
+    await changeBatches(ctx, trx, changes, input.reason);
     if (added.length > 0) {
-      const devices = added.map((serial) => ({ id: ctx.newId(), serial }));
-      await insertDevices(trx, { lotId: lot.id, devices, addedAt: ctx.now(), addedBy: ctx.actor.id });
+      const withBatches = devices.filter((device) => device.gaugeBatch || device.materialBatch).map(batchesOf);
       const data = {
         added: added.length,
         first: added[0],
         last: added.at(-1),
         serialsSha256: sha256Hex(canonicalJson(added)),
+        ...(withBatches.length > 0 && { batchesSha256: sha256Hex(canonicalJson(withBatches)) }),
       };
       await appendEvent(ctx, trx, { action: "devices.added", subject: lot.code, data });
     }
-    return { added: added.length, known: known.size };
+    if (changes.length > 0) await appendChanges(ctx, trx, lot.code, changes, input.reason);
+    const counts = { added: added.length, known: known.size };
+    return input.devices ? { ...counts, batchesSet: changes.length } : counts;
   });
 }
+
+const batchesOf = ({ serial, gaugeBatch = null, materialBatch = null }: GivenDevice) => ({
+  serial,
+  gaugeBatch,
+  materialBatch,
+});
 
 function assertOfLot(found: Awaited<ReturnType<typeof findDevicesBySerial>>, lotId: string): void {
   const others = found.filter((device) => device.lotId !== lotId);
@@ -53,4 +87,41 @@ function assertOfLot(found: Awaited<ReturnType<typeof findDevicesBySerial>>, lot
     count: others.length,
     message: `${first.serial} is in lot ${first.lotCode}${rest}. A serial belongs to one lot for ever; nothing was added.`,
   });
+}
+
+function assertReasonFor(changes: readonly Change[], reason: string | undefined): void {
+  const corrected = changes.filter((change) => change.corrects);
+  const [first] = corrected;
+  if (!first || reason !== undefined) return;
+  const { device } = first;
+  const rest = corrected.length > 1 ? ` and ${corrected.length - 1} more` : "";
+  throw new AppError("device.batch_differs", {
+    serials: corrected.slice(0, 100).map((change) => change.device.serial),
+    count: corrected.length,
+    message:
+      `${device.serial}${rest} stood with another batch (${[device.gaugeBatch, device.materialBatch].filter(Boolean).join(", ")}). ` +
+      "Say why it is corrected; nothing was added.",
+  });
+}
+
+async function changeBatches(ctx: PersonCtx, trx: Trx, changes: readonly Change[], reason = ""): Promise<void> {
+  const rowOf = ({ device, gaugeBatch, materialBatch }: Change) => ({ id: device.id, gaugeBatch, materialBatch });
+  const corrections = changes
+    .filter((change) => change.corrects)
+    .map((change) => ({ ...rowOf(change), correctionId: ctx.newId() }));
+  await insertBatchCorrections(trx, { devices: corrections, reason, personId: ctx.actor.id, at: ctx.now() });
+  await updateBatches(trx, changes.map(rowOf));
+}
+
+async function appendChanges(
+  ctx: PersonCtx,
+  trx: Trx,
+  lot: string,
+  changes: readonly Change[],
+  reason: string | undefined,
+): Promise<void> {
+  const rows = changes.map(({ device, ...to }) => batchesOf({ ...to, serial: device.serial }));
+  const corrected = changes.filter((change) => change.corrects).length;
+  const data = { devices: changes.length, corrected, batchesSha256: sha256Hex(canonicalJson(rows)) };
+  await appendEvent(ctx, trx, { action: "devices.batches-set", subject: lot, data, texts: { reason } });
 }

@@ -56,5 +56,6 @@ export async function listLotDevices(
 function deviceViewOf(row: ListedDeviceRow): LotDeviceView {
   const state = row.scrapped ? "scrapped" : row.held ? "held" : row.shipped ? "shipped" : "active";
   const coefficients = row.coefficients as LotDeviceView["coefficients"];
-  return { serial: row.serial, state, coefficients, hardwareId: row.hardwareId, addedAt: row.addedAt.toISOString() };
+  const { serial, hardwareId, gaugeBatch, materialBatch } = row;
+  return { serial, state, coefficients, hardwareId, gaugeBatch, materialBatch, addedAt: row.addedAt.toISOString() };
 }

@@ -1,0 +1,34 @@
+import { READERS } from "@/lib/domain/roles";
+import { command } from "@/lib/http/command";
+import { drawSample as draw, listSampleDraws as list } from "@/lib/services/samples/draw-sample";
+import { byCodeOrId, idPageQuery } from "@/schemas/api/common";
+import { newSampleDraw, sampleDraw, sampleDrawPage } from "@/schemas/api/sample-draws";
+
+export const listSampleDraws = command({
+  id: "samples.list-draws",
+  method: "GET",
+  path: "/lots/{code}/sample-draws",
+  summary: "Samples drawn at random from a lot, newest first",
+  access: { who: "person", roles: READERS },
+  params: byCodeOrId,
+  query: idPageQuery,
+  reply: { status: 200, schema: sampleDrawPage },
+  errors: ["lot.not_found"],
+  handle: (ctx, { params, query }) => list(ctx, { ...query, lot: params.code }),
+});
+
+export const drawSample = command({
+  id: "samples.draw",
+  method: "POST",
+  path: "/lots/{code}/sample-draws",
+  summary: "Draws a sample at random, balanced over gauge and material batches, and records how",
+  access: { who: "person", roles: ["engineer"] },
+  params: byCodeOrId,
+  body: newSampleDraw,
+  reply: { status: 201, schema: sampleDraw },
+  errors: ["lot.not_found", "draw.too_few"],
+  idempotent: true,
+  handle: (ctx, { params, body }) => draw(ctx, { ...body, lot: params.code }),
+});
+
+export const sampleCommands = [listSampleDraws, drawSample];
