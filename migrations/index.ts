@@ -9,6 +9,7 @@ import * as stations from "./20261201060600_stations";
 import * as ledger from "./20261201060700_ledger";
 import * as runPlans from "./20261201140000_run_plans";
 import * as certificatesAndMappings from "./20261201141000_certificates_and_mappings";
+import * as derivationStatements from "./20261201142000_derivation_statements";
 
 /** Every migration by name, in order. A static list, so that it works the same under tsx, vitest and the built app. */
 export const migrations: Record<string, Migration> = {
@@ -22,4 +23,5 @@ export const migrations: Record<string, Migration> = {
   "20261201060700_ledger": ledger,
   "20261201140000_run_plans": runPlans,
   "20261201141000_certificates_and_mappings": certificatesAndMappings,
+  "20261201142000_derivation_statements": derivationStatements,
 };

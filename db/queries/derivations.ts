@@ -1,6 +1,7 @@
 import type { Db, Trx } from "@/db/executor";
 import type { StoredFinding } from "@/db/queries/runs";
 import type { Finding, Method, PooledResult, VerificationResult } from "@/lib/domain/compensation/types";
+import type { UncertaintyBudget } from "@/lib/domain/compensation/uncertainty/budget-types";
 import { AppError } from "@/lib/errors";
 
 export type DerivationMethod = Method | "import";
@@ -32,6 +33,8 @@ export interface DerivationRow {
   provenHighC: number | null;
   pooled: PooledResult | null;
   verification: VerificationResult[];
+  /** Null for imports, and for derivations of before there were budgets. */
+  uncertainty: UncertaintyBudget | null;
   counts: DerivationCounts;
   progressDone: number;
   progressTotal: number;
@@ -66,6 +69,7 @@ function selectDerivation(db: Db) {
       "derivation.provenHighC",
       "derivation.pooled",
       "derivation.verification",
+      "derivation.uncertainty",
       "derivation.counts",
       "derivation.progressDone",
       "derivation.progressTotal",
@@ -213,6 +217,7 @@ export interface FinishedDerivation {
   provenRange: [number, number] | null;
   pooled: PooledResult | null;
   verification: readonly VerificationResult[];
+  uncertainty: UncertaintyBudget | null;
   counts: DerivationCounts;
   progressTotal: number;
   finishedAt: Date;
@@ -228,6 +233,7 @@ export async function finishDerivation(trx: Trx, id: string, result: FinishedDer
       provenHighC: result.provenRange?.[1] ?? null,
       pooled: result.pooled === null ? null : JSON.stringify(result.pooled),
       verification: JSON.stringify(result.verification),
+      uncertainty: result.uncertainty === null ? null : JSON.stringify(result.uncertainty),
       counts: JSON.stringify(result.counts),
       progressDone: result.progressTotal,
       progressTotal: result.progressTotal,

@@ -55,6 +55,55 @@ export const verificationResult = z.object({
   judged: z.array(z.string()),
 });
 
+const numberOrNull = z.number().nullable();
+
+const effects = z.object({
+  gainTc: numberOrNull.meta({ description: "1/K" }),
+  zeroTc: numberOrNull.meta({ description: "mV/V/K" }),
+  intervals: numberOrNull.meta({ description: "Error of the corrected output at capacity, in v" }),
+});
+
+export const uncertaintyBudget = z
+  .object({
+    formula: z.string().meta({ description: "How the lines are combined, in words and signs" }),
+    level: z.number().meta({ description: "Coverage probability of the expanded uncertainties" }),
+    atC: numberOrNull.meta({ description: "End of the proven range that the lines' intervals stand for, °C" }),
+    lines: z.array(
+      z.object({
+        source: z.string(),
+        words: z.string(),
+        distribution: z.enum(["normal", "rectangular"]),
+        value: numberOrNull.meta({ description: "As observed or certified; null where nothing is known" }),
+        unit: z.string(),
+        divisor: numberOrNull,
+        standard: numberOrNull.meta({ description: "Standard uncertainty, in the unit" }),
+        df: numberOrNull.meta({ description: "Degrees of freedom; null counts as infinitely many" }),
+        ...effects.shape,
+        within: z
+          .string()
+          .nullable()
+          .meta({ description: "Source whose gainTc contains this one's already, so that it isn't added again" }),
+      }),
+    ),
+    combined: effects.meta({ description: "Standard uncertainties" }),
+    degreesOfFreedom: effects.meta({ description: "Effective (Welch and Satterthwaite); null: infinitely many" }),
+    coverageFactor: effects,
+    expanded: effects,
+    ends: z
+      .array(
+        z.object({ temperatureC: z.number(), combined: z.number(), coverageFactor: z.number(), expanded: z.number() }),
+      )
+      .meta({ description: "Error at capacity, in v, at both ends of the proven range" }),
+    missing: z.array(z.string()).meta({ description: "Sources on which nothing is known, left out of the sums" }),
+    chamber: z.object({
+      individual: z.number().meta({ description: "What a chamber error leaves of an individual trim, v: nothing" }),
+      pooled: numberOrNull.meta({ description: "What the chamber's uniformity leaves of a pooled gain, v" }),
+      perKelvin: numberOrNull.meta({ description: "v of a pooled gain for each kelvin of error between the ends" }),
+      words: z.string(),
+    }),
+  })
+  .meta({ description: "Uncertainty of the coefficients and of the output, by source" });
+
 const counts = z.object({
   devices: z.number().int(),
   withValues: z.number().int(),
@@ -78,6 +127,7 @@ const resultMembers = {
     .array(finding)
     .meta({ description: "At most 1,000, those of the lot first; all of them by /derivations/{id}/findings" }),
   verification: z.array(verificationResult),
+  uncertainty: uncertaintyBudget.nullable(),
 };
 
 export const derivation = z.object({
@@ -128,8 +178,6 @@ export const coefficients = z.object({
   gainTc: z.number(),
   gainTc2: z.number().optional(),
 });
-
-const numberOrNull = z.number().nullable();
 
 const deviceMembers = {
   serial: z.string(),

@@ -1,3 +1,5 @@
+import type { UncertaintyBudget } from "./uncertainty/budget-types";
+
 /**
  * Shapes of the compensation arithmetic. Temperatures in °C, differences in K, loads in kg, signals in mV/V;
  * gain has no unit, gainTc is in 1/K, gainTc2 in 1/K². A value that has no basis is `null`, never 0 and never NaN.
@@ -236,4 +238,6 @@ export interface DerivationResult {
   provenRange: [number, number] | null;
   /** Version of this arithmetic. */
   engine: string;
+  /** Filled in where the certificates of the runs' equipment are known. */
+  uncertainty?: UncertaintyBudget;
 }

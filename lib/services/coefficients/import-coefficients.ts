@@ -87,6 +87,7 @@ export async function importCoefficients(ctx: PersonCtx, input: ImportInput): Pr
       provenRange: null,
       pooled: null,
       verification: [],
+      uncertainty: null,
       counts,
       progressTotal: count,
       finishedAt: at,

@@ -86,11 +86,12 @@ async function store(
     if (locked.state !== "working") return;
     await insertSets(trx, id, sets, ctx.now());
     await insertDerivationFindings(trx, id, findings);
-    const { provenRange, pooled, verification } = result;
+    const { provenRange, pooled, verification, uncertainty = null } = result;
     await finishDerivation(trx, id, {
       provenRange,
       pooled,
       verification,
+      uncertainty,
       counts,
       progressTotal,
       finishedAt: ctx.now(),
