@@ -48,6 +48,24 @@ export function spanRatio(spanError: number, rules: EnvelopeRules): number {
   );
 }
 
+/** What a relative span error amounts to at one end of the envelope's steps; loads and errors in v. */
+export interface StepEnd {
+  load: number;
+  error: number;
+  /** Maximum permissible error, sign-free. */
+  limit: number;
+  ratio: number;
+}
+
+/** A relative span error at every load where the envelope is tightest: the class's step ends below n, and n. */
+export function spanErrorAtStepEnds(spanError: number, rules: EnvelopeRules): StepEnd[] {
+  return decisiveLoads(rules).map((load) => {
+    const error = spanErrorInIntervals(spanError, load);
+    const limit = maximumPermissibleError(load, rules);
+    return { load, error, limit, ratio: Math.abs(error) / limit };
+  });
+}
+
 /** Error in v at load m (in v) of a relative span error: what the envelope chart shows. */
 export function spanErrorInIntervals(spanError: number, load: number): number {
   return spanError * load;
@@ -62,8 +80,10 @@ export function zeroTcLimit({ accuracyClass, pLc, vMinRatioY }: FamilyRules): nu
  * Share of the limit at minimum load that a change of the corrected unloaded output uses; ≤ 1 is inside.
  * Source: OIML R 60-1:2021, 5.6.1.3, and C_M of R 60-3:2021, 2.1.4, with the span taken as Emax − Emin.
  * @param changeMvV change of output, mV/V, over `changeK` ≠ 0.
+ * @throws AppError `envelope.same_temperature` {changeK}.
  */
 export function zeroShiftRatio(changeMvV: number, changeK: number, family: FamilyRules): number {
+  if (!(changeK !== 0 && Number.isFinite(changeK))) throw new AppError("envelope.same_temperature", { changeK });
   const { nominalMvV, vMinRatioY, accuracyClass, pLc } = family;
   const step = MINIMUM_LOAD_STEP_K[accuracyClass];
   return ((Math.abs(changeMvV) / nominalMvV) * vMinRatioY * step) / Math.abs(changeK) / pLc;
