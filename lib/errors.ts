@@ -36,6 +36,7 @@ const STATUS_BY_CODE: Record<string, { status: number; title: string }> = {
   "device.batch_differs": { status: 409, title: "Another batch was told before" },
   "run.duplicate": { status: 409, title: "The same bytes were uploaded before" },
   "run.already_superseded": { status: 409, title: "That run was superseded before" },
+  "run.no_proof": { status: 409, title: "Not a proof run" },
   "run.too_many_rows": { status: 413, title: "Too many rows" },
   "layout.not_published": { status: 409, title: "The layout is not published" },
   "layout.firmware_mismatch": { status: 409, title: "The layout is not for the lot's firmware" },

@@ -15,6 +15,7 @@ import { mailCommands } from "./commands/mail";
 import { openApiCommands } from "./commands/openapi";
 import { packageCommands } from "./commands/packages";
 import { peopleCommands } from "./commands/people";
+import { proofCommands } from "./commands/proofs";
 import { rebuildCommands } from "./commands/rebuilds";
 import { reinstatementCommands } from "./commands/reinstatements";
 import { runCommands } from "./commands/runs";
@@ -31,6 +32,7 @@ export const commands: readonly AnyCommand[] = [
   ...lotCommands,
   ...sampleCommands,
   ...runCommands,
+  ...proofCommands,
   ...derivationCommands,
   ...coefficientCommands,
   ...packageCommands,

@@ -66,12 +66,16 @@ runs.list                      401    yes  yes  role yes  yes  yes  role    yes 
 runs.get                       401    yes  yes  role yes  yes  yes  role    yes      yes      yes
 runs.file                      401    yes  yes  role yes  yes  yes  role    yes      yes      yes
 runs.readings                  401    yes  yes  role yes  yes  yes  role    yes      yes      yes
+proofs.run                     401    yes  yes  role yes  yes  yes  role    yes      yes      yes
+proofs.lot                     401    yes  yes  role yes  yes  yes  role    yes      yes      yes
 runs.add                       401    yes  role role role role role role    yes      role     role
 
 derivations.list               401    yes  yes  role yes  yes  yes  role    yes      yes      yes
 derivations.get                401    yes  yes  role yes  yes  yes  role    yes      yes      yes
 derivations.devices            401    yes  yes  role yes  yes  yes  role    yes      yes      yes
 derivations.device             401    yes  yes  role yes  yes  yes  role    yes      yes      yes
+derivations.packages           401    yes  yes  role yes  yes  yes  role    yes      yes      yes
+derivations.compare            401    yes  yes  role yes  yes  yes  role    yes      yes      yes
 derivations.findings           401    yes  yes  role yes  yes  yes  role    yes      yes      yes
 derivations.add                401    yes  role role role role role role    yes      role     role
 derivations.decide             401    role yes  role role role role role    role     session  role

@@ -1,0 +1,4 @@
+import { listLotProofs } from "@/lib/http/commands/proofs";
+import { route } from "@/lib/http/route";
+
+export const GET = route(listLotProofs);
