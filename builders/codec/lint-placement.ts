@@ -28,15 +28,23 @@ function lintPages(layout: LayoutDocument, paths: Paths): Problem[] {
   });
 }
 
+/** Multiples that a number of some bytes starts at so that a 16-bit or 32-bit core reads it in whole words. */
+export const alignmentOf = (width: number): number => (width === 3 ? 2 : width);
+
 function lintAlignment(layout: LayoutDocument, paths: Paths): Problem[] {
   return layout.fields.flatMap((field, i) => {
     const width = findNumberType(field.type)?.width ?? 1;
-    const step = width === 3 ? 1 : width;
-    if ((layout.memory.baseAddress + field.at) % step === 0) return [];
-    const message = `“${field.name}” is ${width} bytes wide and not at a multiple of ${width}`;
+    const address = layout.memory.baseAddress + field.at;
+    if (address % alignmentOf(width) === 0) return [];
+    const message =
+      width === 2 || width === 3
+        ? `“${field.name}” starts at an odd address, ${addressText(address)}; fine for firmware that reads bytes`
+        : `“${field.name}” is ${width} bytes wide and not at a multiple of ${width}`;
     return [{ path: `${paths.fields[i]}/at`, code: "field.unaligned", message }];
   });
 }
+
+const addressText = (address: number) => (address < 65536 ? `${address}` : `0x${address.toString(16).toUpperCase()}`);
 
 function lintCoverage(layout: LayoutDocument, paths: Paths): Problem[] {
   if (layout.checksums.length === 0) {

@@ -2,6 +2,7 @@ import semver from "semver";
 import { findFieldWidth, findNumberType } from "@/builders/codec/field-types";
 import { fits } from "@/builders/codec/lint-field";
 import { lintPlacement } from "@/builders/codec/lint-placement";
+import { lintResolution, listResolutions } from "@/builders/codec/lint-resolution";
 import { readLayout } from "@/builders/codec/lint-shape";
 import { listStructureProblems } from "@/builders/codec/lint-structure";
 import { coefficientsOfOrder } from "@/builders/codec/sources";
@@ -10,12 +11,15 @@ import { assertStepCovers, layoutStep, newestLower, type Step } from "@/lib/doma
 import { AppError, type Problem } from "@/lib/errors";
 import type { LayoutDocument, LayoutField } from "@/schemas/documents/layout";
 
-/** What of a family the rules look at: its code, and what its sources give (°C, kg, mV/V). */
+/** What of a family the rules look at: its code, what its sources give (°C, kg, mV/V), its temperatures and Y = E_max / v_min. */
 export interface FamilyRulesLike {
   code: string;
   referenceC: number;
   capacityKg: number;
   nominalMvV: number;
+  vMinRatioY?: number;
+  temperatureMinC?: number;
+  temperatureMaxC?: number;
 }
 
 export interface LintOptions {
@@ -49,6 +53,7 @@ export function lintLayout(document: unknown, options: LintOptions = {}): LintRe
   errors.push(...lintKnownValues(layout, paths.fields, options.family), ...versions.errors);
   const warnings = [
     ...lintPlacement(layout, paths),
+    ...lintResolution(listResolutions(layout, paths.fields, options.family)),
     ...lintSerial(layout, paths.fields, options),
     ...versions.warnings,
   ];
