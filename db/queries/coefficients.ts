@@ -261,3 +261,24 @@ export async function countSetStates(db: Db, derivationId: string): Promise<Part
     .execute();
   return Object.fromEntries(rows.map(({ state, count }) => [state, count]));
 }
+
+/** Role, state and values of one device, without what stands beside them. */
+export interface SetValuesRow {
+  serial: string;
+  role: SetRole;
+  state: SetState | null;
+  coefficients: Coefficients | null;
+}
+
+/** The values of every set of a derivation, by serial. */
+export async function listSetValues(db: Db, derivationId: string): Promise<SetValuesRow[]> {
+  const rows = await db
+    .selectFrom("coefficientSet")
+    .innerJoin("device", "device.id", "coefficientSet.deviceId")
+    .select(["device.serial", "coefficientSet.role", "coefficientSet.state", ...valueColumns])
+    .$narrowType<{ role: SetRole; state: SetState | null }>()
+    .where("coefficientSet.derivationId", "=", derivationId)
+    .orderBy("device.serial")
+    .execute();
+  return rows.map(setOf);
+}

@@ -1,6 +1,8 @@
 import { z } from "zod";
 import { READERS } from "@/lib/domain/roles";
+import { compareDerivations } from "@/lib/services/derivations/compare-derivations";
 import { decideDerivation } from "@/lib/services/derivations/decide-derivation";
+import { writeDevicesCsv, writeDevicesXlsx } from "@/lib/services/derivations/export-devices";
 import {
   getDerivationView,
   getDerivedDevice,
@@ -8,8 +10,11 @@ import {
   listFindings,
   listLotDerivations,
 } from "@/lib/services/derivations/get-derivation";
+import { listSetPackages } from "@/lib/services/derivations/list-set-packages";
 import { previewDerivation, startDerivation } from "@/lib/services/derivations/start-derivation";
-import { byCode, byId, code, id, idPageQuery, pageQuery } from "@/schemas/api/common";
+import { byCode, byId, code, id, idPageQuery } from "@/schemas/api/common";
+import { compareDerivationsQuery, derivationComparison } from "@/schemas/api/derivation-comparison";
+import { devicesQuery, setPackages, XLSX_TYPE } from "@/schemas/api/derivation-tables";
 import {
   derivation,
   derivationDecision,
@@ -22,6 +27,7 @@ import {
   previewQuery,
   startedDerivation,
 } from "@/schemas/api/derivations";
+import { chooseMediaType } from "../accept";
 import { command } from "../command";
 
 const readers = { who: "person", roles: READERS } as const;
@@ -79,17 +85,59 @@ export const getDerivation = command({
   handle: (ctx, { params }) => getDerivationView(ctx, params.id),
 });
 
+const DEVICE_TYPES = ["application/json", "text/csv", XLSX_TYPE] as const;
+const TYPE_OF_FORMAT = { json: DEVICE_TYPES[0], csv: DEVICE_TYPES[1], xlsx: DEVICE_TYPES[2] } as const;
+
 export const listDevices = command({
   id: "derivations.devices",
   method: "GET",
   path: "/derivations/{id}/devices",
-  summary: "Devices of a derivation by serial",
+  summary: "Devices of a derivation by serial; as text/csv or as a workbook all of them at once",
   access: readers,
   params: byId,
-  query: pageQuery,
-  reply: { status: 200, schema: derivedDevicePage },
+  query: devicesQuery,
+  reply: { status: 200, schema: derivedDevicePage, mediaTypes: DEVICE_TYPES },
+  errors: ["derivation.not_found", "request.not_acceptable"],
+  handle: async (ctx, { params, query, headers }) => {
+    const { format, ...page } = query;
+    const type = format === undefined ? chooseMediaType(headers, DEVICE_TYPES) : TYPE_OF_FORMAT[format];
+    if (type === "application/json") return listDerivedDevices(ctx, params.id, page);
+    const isCsv = type === "text/csv";
+    const body = isCsv ? await writeDevicesCsv(ctx, params.id) : new Uint8Array(await writeDevicesXlsx(ctx, params.id));
+    return new Response(body, {
+      headers: {
+        "content-type": isCsv ? "text/csv; charset=utf-8" : type,
+        "content-disposition": `attachment; filename="coefficients-${params.id}.${isCsv ? "csv" : "xlsx"}"`,
+        "cache-control": "no-store",
+        vary: "accept",
+      },
+    });
+  },
+});
+
+export const compare = command({
+  id: "derivations.compare",
+  method: "GET",
+  path: "/derivations/compare",
+  summary:
+    "What differs between two derivations of a lot: facts of both, and devices by the effect at capacity, page by page",
+  access: readers,
+  query: compareDerivationsQuery,
+  reply: { status: 200, schema: derivationComparison },
+  errors: ["derivation.not_found", "derivation.running", "derivation.wrong_state", "derivation.other_lot"],
+  handle: (ctx, { query }) => compareDerivations(ctx, query),
+});
+
+export const listPackages = command({
+  id: "derivations.packages",
+  method: "GET",
+  path: "/derivations/{id}/packages",
+  summary: "Packages that carry coefficients of a derivation, newest first: what a revocation reaches",
+  access: readers,
+  params: byId,
+  reply: { status: 200, schema: setPackages },
   errors: ["derivation.not_found"],
-  handle: (ctx, { params, query }) => listDerivedDevices(ctx, params.id, query),
+  handle: (ctx, { params }) => listSetPackages(ctx, params.id),
 });
 
 export const getDevice = command({
@@ -148,5 +196,7 @@ export const derivationCommands = [
   listDevices,
   getDevice,
   listDerivationFindings,
+  listPackages,
+  compare,
   decide,
 ];

@@ -1,0 +1,4 @@
+import { compare } from "@/lib/http/commands/derivations";
+import { route } from "@/lib/http/route";
+
+export const GET = route(compare);
