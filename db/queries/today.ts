@@ -72,11 +72,15 @@ export async function listOwnWork(db: Db, personId: string, limit: number): Prom
       left join lateral ${lastRefusal("layout", "l")} refused on true
       where l.state = 'draft' and is_maker('layout', l.id, ${personId}::uuid)
       union all
-      select 'derivation', d.id, null, t.code, null, d.state, (d.counts ->> 'devices')::int, refused.reason,
+      select 'derivation', d.id, null, t.code, null,
+             case when refused.decision = 'revoke' then 'revoked' else d.state end, (d.counts ->> 'devices')::int, refused.reason,
              coalesce(refused.person_name, p.name), coalesce(refused.at, d.finished_at, d.created_at)
       from derivation d join lot t on t.id = d.lot_id join person p on p.id = d.created_by
-      left join lateral ${lastRefusal("derivation", "d")} refused on true
-      where d.state in ('refused', 'failed') and d.created_by = ${personId}::uuid
+      left join lateral (
+        select a.decision, a.reason, a.person_name, a.at from approval a
+        where a.subject_kind = 'derivation' and a.subject_id = d.id and a.decision <> 'approve' order by a.at desc limit 1
+      ) refused on true
+      where (d.state in ('refused', 'failed') or refused.at is not null) and d.created_by = ${personId}::uuid
         and not exists (select 1 from derivation later where later.lot_id = d.lot_id and later.id > d.id)
       union all
       select 'package', k.id, null, t.code, k.version, k.state, (k.counts ->> 'devices')::int, refused.reason,

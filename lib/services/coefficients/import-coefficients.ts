@@ -17,6 +17,7 @@ import { RowErrorList } from "@/lib/domain/readings/row-error-list";
 import { AppError } from "@/lib/errors";
 import { assertRole, type PersonCtx } from "@/lib/services/context";
 import { getDerivationView } from "@/lib/services/derivations/get-derivation";
+import { tellDeciders } from "@/lib/services/derivations/tell-people";
 import { appendEvent } from "@/lib/services/ledger/append-event";
 import { getLotRules } from "@/lib/services/lots/lot-rules";
 import type { DerivationView } from "@/schemas/api/derivations";
@@ -92,6 +93,8 @@ export async function importCoefficients(ctx: PersonCtx, input: ImportInput): Pr
       progressTotal: count,
       finishedAt: at,
     });
+    const told = { id, lotCode: lot.code, createdByName: ctx.actor.name };
+    await tellDeciders(ctx, trx, told, { devices: count, toAcknowledge: bySeverity.soft, blocked: false });
     await appendEvent(ctx, trx, {
       action: "coefficients.imported",
       subject: id,

@@ -25,6 +25,7 @@ import { appendEvent } from "@/lib/services/ledger/append-event";
 import { confirmIdentity } from "@/lib/services/people/confirm-identity";
 import type { DerivationDecisionBody, DerivationView } from "@/schemas/api/derivations";
 import { getDerivationView } from "./get-derivation";
+import { tellAuthors } from "./tell-people";
 
 type Input = DerivationDecisionBody & { id: string };
 
@@ -127,6 +128,8 @@ async function record(ctx: PersonCtx, trx: Trx, { derivation, input, chosen, ack
   );
   const state = stateBySets(await countSetStates(trx, derivation.id));
   if (state !== undefined && state !== derivation.state) await updateDerivationState(trx, derivation.id, state);
+  if (decision !== "approve")
+    await tellAuthors(ctx, trx, derivation, { decision, devices: chosen.length, reason: input.reason ?? "" });
   await appendEvent(ctx, trx, {
     action: `coefficients.${DONE[decision]}`,
     subject: derivation.id,

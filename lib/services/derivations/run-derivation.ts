@@ -21,6 +21,7 @@ import { appendEvent } from "@/lib/services/ledger/append-event";
 import { getLotRules } from "@/lib/services/lots/lot-rules";
 import { compute, countResult, detailOf, listAllFindings } from "./compute";
 import { readInput } from "./derivation-input";
+import { tellDeciders } from "./tell-people";
 
 /**
  * The worker's part of a derivation: computes it and stores the result as proposed. Taken up again after a fall it starts
@@ -97,6 +98,11 @@ async function store(
       finishedAt: ctx.now(),
     });
     const staleSets = await markReplaced(trx, runs, ctx.now());
+    await tellDeciders(ctx, trx, locked, {
+      devices: counts.withValues - staleSets,
+      toAcknowledge: counts.findings.soft,
+      blocked: result.findings.some((finding) => finding.severity === "hard"),
+    });
     await appendEvent(ctx, trx, {
       action: "derivation.proposed",
       subject: id,

@@ -47,7 +47,8 @@ export function releaseItem(row: WaitingRow): TodayItem {
 
 /** Own work that goes on when its maker does something about it. */
 export function ownItem(row: WaitingRow): TodayItem {
-  if (row.reason !== null) return waitingItem(row, `refused: ${row.reason}`, "bad");
+  const refusal = row.state === "revoked" ? "approval taken back" : "refused";
+  if (row.reason !== null) return waitingItem(row, `${refusal}: ${row.reason}`, "bad");
   if (row.state === "failed") return waitingItem(row, "failed", "bad");
   return waitingItem(
     row,
