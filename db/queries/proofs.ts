@@ -50,17 +50,48 @@ export async function listProvenDevices(db: Db, runIds: readonly string[]): Prom
   return rows;
 }
 
-/** Proof runs of a lot that count, newest first. */
-export async function listProofRunsOfLot(db: Db, lotId: string): Promise<string[]> {
-  const rows = await db
+const countingProofRuns = (db: Db) =>
+  db
     .selectFrom("run")
-    .select("id")
-    .where("lotId", "=", lotId)
-    .where("purpose", "=", "proof")
+    .select("run.id")
+    .where("run.purpose", "=", "proof")
     .where(({ not, exists, selectFrom }) =>
       not(exists(selectFrom("run as later").select("later.id").whereRef("later.supersedesId", "=", "run.id"))),
     )
-    .orderBy("id", "desc")
-    .execute();
+    .orderBy("run.id", "desc");
+
+/** Proof runs of a lot that count, newest first. */
+export async function listProofRunsOfLot(db: Db, lotId: string): Promise<string[]> {
+  const rows = await countingProofRuns(db).where("run.lotId", "=", lotId).execute();
   return rows.map((row) => row.id);
+}
+
+/** Proof runs that count and read a device, newest first. */
+export async function listProofRunsOfDevice(db: Db, serial: string): Promise<{ id: string; lot: string }[]> {
+  return countingProofRuns(db)
+    .innerJoin("lot", "lot.id", "run.lotId")
+    .select("lot.code as lot")
+    .where(({ exists, selectFrom }) =>
+      exists(
+        selectFrom("reading")
+          .innerJoin("device", "device.id", "reading.deviceId")
+          .select("reading.runId")
+          .whereRef("reading.runId", "=", "run.id")
+          .where("device.serial", "=", serial),
+      ),
+    )
+    .execute();
+}
+
+/** Lots with something live and a proof run that counts, the newest proof first. */
+export async function listLotsToProve(db: Db, limit: number): Promise<string[]> {
+  const { rows } = await sql<{ code: string }>`
+    select t.code from lot t
+    cross join lateral (
+      select max(r.id::text) as id from run r where r.lot_id = t.id and r.purpose = 'proof'
+        and not exists (select 1 from run later where later.supersedes_id = r.id)) proof
+    where proof.id is not null and exists (select 1 from package k where k.lot_id = t.id and k.state = 'live')
+    order by proof.id desc limit ${limit}
+  `.execute(db);
+  return rows.map((row) => row.code);
 }

@@ -8,6 +8,7 @@ import { benchFamily, floorFamily } from "./families";
 import { askForLayout, publishLayout } from "./ground";
 import { benchLayouts } from "./layouts";
 import { approveSets, type DemoLot, deriveLot, makeLot, readPooledRuns, readRun, refuseSets } from "./lot";
+import { proveDevices } from "./proof";
 import { approvePackage, askForReview, buildLot, release } from "./release";
 import { addDemoStation, type DemoStation, type Mishaps, writeDevices } from "./stations";
 import type { Story } from "./story";
@@ -95,6 +96,8 @@ const written: LotStory = {
     }
     story.clock.to(story.today, 49, 16);
     await writeDevices(story, stations.bench, lot, { package: id, devices: [211, 212] });
+    story.clock.to(story.today, 48, 21);
+    await proveDevices(story, lot, { package: id, devices: [0, 3], temperaturesC: [10, 40] });
   },
 };
 

@@ -35,7 +35,8 @@ export const today = z.object({
   awaited: items.meta({ description: "Made or asked for by this person, to be decided by somebody else" }),
   own: items.meta({ description: "Own drafts, and own work that was refused or failed" }),
   trouble: items.meta({
-    description: "Newest records of serials of the last seven days that are not verified or carry a flag",
+    description:
+      "Live releases that a proof run contradicts, then newest records of serials of the last seven days that are not verified or carry a flag",
   }),
   held: items.meta({ description: "Devices that are held" }),
   people: items.meta({ description: "Roles to confirm" }),

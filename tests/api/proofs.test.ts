@@ -136,6 +136,8 @@ describe("proof of written devices", () => {
     expect(counts.differs).toBe(1);
     expect(devices[0].worst.ratio).toBeGreaterThan(1);
     expect((await lotProofs()).live).toMatchObject({ state: "differs", run, differed: 1 });
+    const { body: today } = await api.call("GET", "/today", { as: "engineer" });
+    expect(today.trouble[0]).toMatchObject({ title: `Proof of ${LOT}`, tone: "bad", link: `/runs/${run}` });
   });
 
   it("lets a corrected run take the place of the one before", async () => {
@@ -148,6 +150,8 @@ describe("proof of written devices", () => {
     });
     expect(reply.status).toBe(201);
     expect((await lotProofs()).live).toMatchObject({ state: "agrees", differed: 0 });
+    const { body: today } = await api.call("GET", "/today", { as: "engineer" });
+    expect(today.trouble.map((item: { title: string }) => item.title)).not.toContain(`Proof of ${LOT}`);
   });
 
   it("answers 409 for a run that is no proof, 404 for none, 401 without a session", async () => {

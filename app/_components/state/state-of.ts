@@ -141,6 +141,13 @@ const states = {
     kept: { tone: "idle", word: "kept here", title: "No mail server is set; this is what would have been sent" },
     failed: { tone: "bad", word: "failed", title: "The mail server refused it or does not answer" },
   },
+  /** Output of written devices against the prediction from their image. */
+  proof: {
+    agrees: { tone: "good", word: "agrees", title: "The output is what the decoded image predicts" },
+    differs: { tone: "bad", word: "differs", title: "The firmware computes otherwise than the image predicts" },
+    "not-judged": { tone: "idle", word: "not judged" },
+    open: { tone: "wait", word: "first-off open", title: "No written device was proven yet" },
+  },
   dump: {
     exact: { tone: "good", word: "equal to the image" },
     differs: { tone: "bad", word: "differs" },

@@ -3,6 +3,7 @@ import { listAwaited } from "@/db/queries/today-awaited";
 import { READERS, type Role } from "@/lib/domain/roles";
 import type { PersonCtx } from "@/lib/services/context";
 import type { Today } from "@/schemas/api/today";
+import { listFailedProofs } from "./failed-proofs";
 import { listLotSteps } from "./lot-steps";
 import * as item from "./today-items";
 
@@ -23,7 +24,12 @@ export async function listToday(ctx: PersonCtx): Promise<Today> {
     release: holds("engineer", "reviewer") ? (await query.listToRelease(db, SHOWN_MAX)).map(item.releaseItem) : [],
     awaited: holds("engineer", "reviewer") ? (await listAwaited(db, actor.id, SHOWN_MAX)).map(item.awaitedItem) : [],
     own: holds("engineer") ? (await query.listOwnWork(db, actor.id, SHOWN_MAX)).map(item.ownItem) : [],
-    trouble: reads ? (await query.listTroubleWrites(db, since, SHOWN_MAX)).map(item.troubleItem) : [],
+    trouble: reads
+      ? [
+          ...(await listFailedProofs(ctx)),
+          ...(await query.listTroubleWrites(db, since, SHOWN_MAX)).map(item.troubleItem),
+        ]
+      : [],
     held: reads ? (await query.listHeldDevices(db, SHOWN_MAX)).map((row) => item.heldItem(row, actor.id)) : [],
     people: holds("admin") ? (await query.listGrantsToConfirm(db, actor.id, SHOWN_MAX)).map(item.roleItem) : [],
     lots: reads ? await listLotSteps(ctx, LOTS_SHOWN) : [],

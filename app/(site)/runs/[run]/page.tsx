@@ -14,7 +14,9 @@ import { formatSize } from "@/lib/domain/format/size";
 import { formatDate, formatDateTime } from "@/lib/domain/format/time";
 import { orNotFound, pageContext } from "@/lib/http/page-context";
 import { listRunUses } from "@/lib/services/derivations/get-derivation";
+import { getProofRun } from "@/lib/services/proofs/judge-proof-run";
 import { getRunView } from "@/lib/services/runs/get-run";
+import { ProofCard } from "./proof-card";
 
 export const metadata: Metadata = { title: "Run" };
 
@@ -22,6 +24,7 @@ export default async function RunPage({ params }: { params: Promise<{ run: strin
   const ctx = await pageContext();
   const run = await orNotFound(getRunView(ctx, (await params).run));
   const uses = await listRunUses(ctx, run.id);
+  const proof = run.purpose === "proof" ? await getProofRun(ctx, run.id) : null;
   const path = `/api/v1/runs/${run.id}`;
   return (
     <>
@@ -83,6 +86,7 @@ export default async function RunPage({ params }: { params: Promise<{ run: strin
             </ul>
           ) : null}
         </Card>
+        {proof ? <ProofCard proof={proof} /> : null}
         <Card title="Findings" note="What the family's rules and the certificates say about it">
           <FindingsList findings={run.findings} empty="Nothing to remark." />
         </Card>

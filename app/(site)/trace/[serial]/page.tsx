@@ -17,6 +17,7 @@ import { History } from "./history";
 import { Limits } from "./limits";
 import { type LoadedTrace, loadTrace } from "./load-trace";
 import { OriginCard } from "./origin-card";
+import { ProofLine } from "./proof-line";
 import { ReportEvent } from "./report-event";
 import { ValuesCard } from "./values-card";
 
@@ -31,7 +32,7 @@ export async function generateMetadata({ params }: PageProps): Promise<Metadata>
 export default async function SerialPage({ params }: PageProps) {
   const ctx = await pageContext(ROLES);
   const loaded = await loadTrace(ctx, (await params).serial);
-  const { trace, origin, derived } = loaded;
+  const { trace, origin, derived, proof } = loaded;
   const reader = holds(ctx, ...READERS);
   const mayCheck = holds(ctx, "engineer", "reviewer", "service");
   const mayReport = holds(ctx, "engineer", "service") && !trace.scrapped;
@@ -58,6 +59,7 @@ export default async function SerialPage({ params }: PageProps) {
           ) : (
             <OwnCoefficients loaded={loaded} linked={reader} />
           )}
+          {proof ? <ProofLine proof={proof} carried={trace.current?.imageSha256 ?? null} linked={reader} /> : null}
           <div className="grid grid-cols-2 gap-2.5 sm:max-w-[480px] print:hidden">
             {mayCheck ? (
               <LinkButton href="#dump" look="primary" wide>
@@ -89,7 +91,7 @@ export default async function SerialPage({ params }: PageProps) {
             <History entries={trace.history} linked={reader} />
           </section>
           <Card title="What this does not prove">
-            <Limits trace={trace} origin={origin} derived={derived} />
+            <Limits trace={trace} origin={origin} derived={derived} proof={proof} />
           </Card>
         </div>
         <div className="flex min-w-0 flex-col gap-[18px]">

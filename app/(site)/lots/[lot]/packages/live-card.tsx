@@ -1,12 +1,25 @@
 import Link from "next/link";
 import { LinkButton } from "@/app/_components/button";
 import { Card } from "@/app/_components/card";
+import { FirstOffState } from "@/app/_components/first-off";
 import { SealMark } from "@/app/_components/seal-mark";
 import { formatNumberOf } from "@/lib/domain/format/figure";
 import type { PackageSummary } from "@/schemas/api/packages";
+import type { FirstOff } from "@/schemas/api/proofs";
 
 /** What stations write now, with its seal; or that nothing is live. */
-export function LiveCard({ lot, live, any }: { lot: string; live: PackageSummary | null; any: boolean }) {
+export function LiveCard({
+  lot,
+  live,
+  any,
+  proof,
+}: {
+  lot: string;
+  live: PackageSummary | null;
+  any: boolean;
+  /** What proof runs show of its layout and firmware. */
+  proof: FirstOff | null;
+}) {
   if (!live?.digest) {
     return any ? (
       <Card title="Nothing is live">
@@ -34,6 +47,11 @@ export function LiveCard({ lot, live, any }: { lot: string; live: PackageSummary
           <LinkButton href={`/lots/${path}/writes#rewrites`}>Re-write list</LinkButton>
         </div>
       </div>
+      {proof ? (
+        <div className="mt-4 border-t border-rule pt-3">
+          <FirstOffState proof={proof} lot={lot} />
+        </div>
+      ) : null}
     </Card>
   );
 }

@@ -9,6 +9,7 @@ import { hasOneTimeCode } from "@/lib/services/account/has-one-time-code";
 import { getLotThread } from "@/lib/services/lots/get-lot-thread";
 import { listLotPackages } from "@/lib/services/packages/get-package";
 import { planPackage } from "@/lib/services/packages/plan-package";
+import { listLotProofs } from "@/lib/services/proofs/list-lot-proofs";
 import { listLotReinstatements } from "@/lib/services/reinstatements/get-reinstatement";
 import { BuildForm } from "./build-form";
 import { LiveCard } from "./live-card";
@@ -31,6 +32,7 @@ export default async function LotPackagesPage({ params }: PageProps) {
   const reinstatements = (await listLotReinstatements(ctx, lot, { limit: 100 })).items;
   const open = reinstatements.find((one) => one.state === "asked");
   const live = packages.find((one) => one.state === "live");
+  const proofs = await listLotProofs(ctx, lot);
   const engineer = holds(ctx, "engineer");
   const releases = holds(ctx, "engineer", "reviewer");
   const oneTimeCode = await hasOneTimeCode(ctx);
@@ -50,7 +52,7 @@ export default async function LotPackagesPage({ params }: PageProps) {
       <LotThread thread={thread} current="package" />
       <div className="flex flex-col gap-[18px]">
         {open ? <OpenReinstatement request={open} live={live ?? null} oneTimeCode={oneTimeCode} /> : null}
-        <LiveCard lot={lot} live={live ?? null} any={packages.length > 0} />
+        <LiveCard lot={lot} live={live ?? null} any={packages.length > 0} proof={proofs.live} />
         <Card title="Packages">
           <PackagesTable
             lot={lot}

@@ -4,6 +4,7 @@ import { LinkButton } from "@/app/_components/button";
 import { Card } from "@/app/_components/card";
 import { EmptyState } from "@/app/_components/empty-state";
 import { Facts } from "@/app/_components/facts";
+import { FirstOffState } from "@/app/_components/first-off";
 import { LotThread } from "@/app/_components/lot-thread";
 import { Notice } from "@/app/_components/notice";
 import { DataTable } from "@/app/_components/table/data-table";
@@ -12,6 +13,7 @@ import { WriteRecords } from "@/app/_components/write-records";
 import { formatCount } from "@/lib/domain/format/figure";
 import { orNotFound, pageContext } from "@/lib/http/page-context";
 import { getLotThread } from "@/lib/services/lots/get-lot-thread";
+import { listLotProofs } from "@/lib/services/proofs/list-lot-proofs";
 import { getWriteProgress, type WriteProgress } from "@/lib/services/stations/get-write-progress";
 import { ProgressChart } from "./progress-chart";
 
@@ -28,6 +30,7 @@ export default async function WritesPage({ params }: PageProps) {
   const ctx = await pageContext();
   const thread = await orNotFound(getLotThread(ctx, decodeURIComponent((await params).lot)));
   const progress = await getWriteProgress(ctx, thread.lot);
+  const proofs = await listLotProofs(ctx, thread.lot);
   const path = `/api/v1/lots/${encodeURIComponent(thread.lot)}`;
   return (
     <>
@@ -55,9 +58,16 @@ export default async function WritesPage({ params }: PageProps) {
               </EmptyState>
             )}
           </Card>
-          <Card title="So far">
-            <Counts progress={progress} />
-          </Card>
+          <div className="flex flex-col gap-[18px]">
+            <Card title="So far">
+              <Counts progress={progress} />
+            </Card>
+            {proofs.live ? (
+              <Card title="First-off" note={`layout ${proofs.live.layout}, firmware ${proofs.live.firmware}`}>
+                <FirstOffState proof={proofs.live} lot={thread.lot} />
+              </Card>
+            ) : null}
+          </div>
         </div>
         {progress.live ? (
           <div id="rewrites" className="scroll-mt-16">

@@ -27,7 +27,7 @@ export async function generateMetadata({ params }: PageProps): Promise<Metadata>
 /** The device record: one sheet of paper that says what a serial carries, from what, signed by whom. */
 export default async function RecordPage({ params }: PageProps) {
   const ctx = await pageContext(ROLES);
-  const { trace, origin, derived } = await loadTrace(ctx, (await params).serial);
+  const { trace, origin, derived, proof } = await loadTrace(ctx, (await params).serial);
   const reader = holds(ctx, ...READERS);
   return (
     <>
@@ -72,7 +72,7 @@ export default async function RecordPage({ params }: PageProps) {
         ) : null}
         <Happened trace={trace} />
         <h2 className="mt-6 mb-1 text-base">What this record does not prove</h2>
-        <Limits trace={trace} origin={origin} derived={derived} />
+        <Limits trace={trace} origin={origin} derived={derived} proof={proof} />
         <div className="mt-4">
           <LegalNote />
         </div>
