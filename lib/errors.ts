@@ -38,6 +38,8 @@ const STATUS_BY_CODE: Record<string, { status: number; title: string }> = {
   "run.already_superseded": { status: 409, title: "That run was superseded before" },
   "run.no_proof": { status: 409, title: "Not a proof run" },
   "run.too_many_rows": { status: 413, title: "Too many rows" },
+  "layout.draft_changed": { status: 409, title: "Somebody else saved this draft" },
+  "layout.unfinished": { status: 409, title: "The draft has errors still" },
   "layout.not_published": { status: 409, title: "The layout is not published" },
   "layout.firmware_mismatch": { status: 409, title: "The layout is not for the lot's firmware" },
   "package.nothing_approved": { status: 409, title: "No approved coefficients to pack" },

@@ -10,6 +10,7 @@ import * as ledger from "./20261201060700_ledger";
 import * as runPlans from "./20261201140000_run_plans";
 import * as certificatesAndMappings from "./20261201141000_certificates_and_mappings";
 import * as derivationStatements from "./20261201142000_derivation_statements";
+import * as unfinishedLayouts from "./20261201150000_unfinished_layouts";
 
 /** Every migration by name, in order. A static list, so that it works the same under tsx, vitest and the built app. */
 export const migrations: Record<string, Migration> = {
@@ -24,4 +25,5 @@ export const migrations: Record<string, Migration> = {
   "20261201140000_run_plans": runPlans,
   "20261201141000_certificates_and_mappings": certificatesAndMappings,
   "20261201142000_derivation_statements": derivationStatements,
+  "20261201150000_unfinished_layouts": unfinishedLayouts,
 };

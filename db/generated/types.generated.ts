@@ -268,6 +268,7 @@ export interface Layout {
   step: string | null;
   submittedAt: Timestamp | null;
   submittedBy: string | null;
+  unfinished: Generated<boolean>;
   updatedAt: Timestamp;
   updatedBy: string;
   version: string;

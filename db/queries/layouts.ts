@@ -1,4 +1,4 @@
-import type { Selectable } from "kysely";
+import { type Selectable, sql } from "kysely";
 import type { Db, Trx } from "@/db/executor";
 import type { Layout } from "@/db/generated/types.generated";
 import { isUuid } from "@/db/queries/code-or-id";
@@ -18,6 +18,8 @@ export interface LayoutRow {
   sha256: Buffer;
   /** Rises with every save, so that two editors notice each other. */
   draftNumber: number;
+  /** The text has moved on from the document: it has errors, or is no JSON yet. Drafts only. */
+  unfinished: boolean;
   /** Computed step against the newest published lower version; null where there is none. */
   step: string | null;
   createdAt: Date;
@@ -39,6 +41,7 @@ const layoutColumns = [
   "document",
   "sha256",
   "draftNumber",
+  "unfinished",
   "step",
   "createdAt",
   "createdBy",
@@ -119,7 +122,10 @@ export async function listPublishedLayoutDocuments(db: Db, familyId: string): Pr
   return rows.map((row) => row.document as unknown as LayoutDocument);
 }
 
-export type NewLayout = Omit<LayoutRow, "state" | "submittedAt" | "submittedBy" | "publishedAt" | "retiredAt">;
+export type NewLayout = Omit<
+  LayoutRow,
+  "state" | "unfinished" | "submittedAt" | "submittedBy" | "publishedAt" | "retiredAt"
+>;
 
 /** Adds a layout as a draft. @throws constraint `layout_version_unique` → `layout.exists` */
 export async function insertLayout(trx: Trx, layout: NewLayout): Promise<void> {
@@ -143,4 +149,48 @@ export async function updateLayout(trx: Trx, id: string, change: LayoutChange): 
 
 export async function deleteLayout(trx: Trx, id: string): Promise<void> {
   await trx.deleteFrom("layout").where("id", "=", id).execute();
+}
+
+/** What of one lot was built from one layout. */
+export interface LayoutUseRow {
+  layoutId: string;
+  lot: string;
+  firmware: string;
+  packages: number;
+  /** The package of the lot that is live and built from this layout. */
+  liveId: string | null;
+  liveVersion: string | null;
+  /** Packages under way: building, draft, in review or approved. */
+  underWay: number;
+}
+
+/** Lots with packages from a family's layouts, by layout and lot code; packages that failed don't count. */
+export async function listLayoutUses(
+  db: Db,
+  familyId: string,
+  options: { layoutId?: string; after?: string; limit?: number } = {},
+): Promise<LayoutUseRow[]> {
+  const { layoutId, after, limit } = options;
+  return db
+    .selectFrom("package")
+    .innerJoin("lot", "lot.id", "package.lotId")
+    .where("lot.familyId", "=", familyId)
+    .where("package.state", "!=", "failed")
+    .$if(layoutId !== undefined, (query) => query.where("package.layoutId", "=", layoutId as string))
+    .$if(after !== undefined, (query) => query.where("lot.code", ">", after as string))
+    .select([
+      "package.layoutId",
+      "lot.code as lot",
+      "lot.firmware",
+      sql<number>`count(*)::int`.as("packages"),
+      sql<string | null>`(array_agg(package.id) filter (where package.state = 'live'))[1]`.as("liveId"),
+      sql<string | null>`(array_agg(package.version) filter (where package.state = 'live'))[1]`.as("liveVersion"),
+      sql<number>`count(*) filter (where package.state in ('building','draft','in-review','approved'))::int`.as(
+        "underWay",
+      ),
+    ])
+    .groupBy(["package.layoutId", "lot.code", "lot.firmware"])
+    .orderBy("lot.code")
+    .$if(limit !== undefined, (query) => query.limit(limit as number))
+    .execute();
 }

@@ -48,6 +48,9 @@ export const layoutReply = z.object({
     .number()
     .int()
     .meta({ description: "Number of the saved draft, for `?draft=` or If-Match of the next save" }),
+  unfinished: z.boolean().meta({
+    description: "The source has errors still; the document is the last one without. Drafts only.",
+  }),
   document: z.record(z.string(), z.unknown()),
   source: z.string().meta({ description: "The document as its author wrote it" }),
   makers: z.array(z.string()),
@@ -66,3 +69,24 @@ export const saveQuery = z.object({
 });
 
 export const retireBody = z.object({ reason: z.string().trim().max(2000).optional() });
+
+export const keptText = z.object({
+  draft: z.number().int().meta({ description: "Number of the draft that now stands" }),
+  unfinished: z.boolean().meta({ description: "The text has errors, so the draft's document did not follow it" }),
+  sha256: sha256Hex.meta({ description: "Digest of the draft's document" }),
+  updatedAt: timestamp,
+  now: timestamp.meta({ description: "The server's clock, to tell how long ago that was" }),
+});
+
+export const layoutUse = z.object({
+  lot: z.string(),
+  firmware: z.string().meta({ description: "Firmware in the lot's devices" }),
+  packages: z.number().int().meta({ description: "Packages built from the layout, failed ones not counted" }),
+  underWay: z.number().int().meta({ description: "Of them building, draft, in review or approved" }),
+  live: z
+    .object({ id, version: z.string() })
+    .nullable()
+    .meta({ description: "The lot's live package, if it is one of them" }),
+});
+
+export const layoutUses = pageOf(layoutUse);

@@ -160,7 +160,9 @@ describe("PUT and DELETE …/layouts/{version}", () => {
 
   it("refuses to save over somebody else's save, by ?draft= or If-Match", async () => {
     const old = await save("1.3.0", next("1.3.0"), { query: { draft: 1 } });
-    expect([old.status, old.body.code, old.body.now]).toEqual([409, "layout.changed", 2]);
+    expect([old.status, old.body.code, old.body.now]).toEqual([409, "layout.draft_changed", 2]);
+    expect(JSON.parse(old.body.source).description).toBe("with a text");
+    expect(old.body.updatedBy).toBe("engineer2");
     expect((await save("1.3.0", next("1.3.0"), { headers: { "if-match": '"1"' } })).status).toBe(409);
     expect((await save("1.3.0", next("1.3.0"), { headers: { "if-match": "abc" } })).status).toBe(422);
     expect((await save("1.3.0", next("1.3.0"), { headers: { "if-match": '"2"' } })).body.draft).toBe(3);
@@ -188,6 +190,102 @@ describe("PUT and DELETE …/layouts/{version}", () => {
     expect((await api.call("DELETE", `${path}/1.6.0`, { as: "reviewer" })).status).toBe(403);
     expect((await api.call("DELETE", `${path}/1.6.0`, { as: "engineer" })).status).toBe(204);
     expect((await api.call("GET", `${path}/1.6.0`, { as: "engineer" })).status).toBe(404);
+  });
+});
+
+describe("PUT …/layouts/{version}/text", () => {
+  const keep = (version: string, text: string | Uint8Array, options: Parameters<TestApi["call"]>[2] = {}) =>
+    api.call("PUT", `${path}/${version}/text`, {
+      as: "engineer",
+      body: text,
+      headers: { "content-type": "text/plain" },
+      ...options,
+    });
+  const read = async (version: string) => (await api.call("GET", `${path}/${version}`, { as: "auditor" })).body;
+  const text = (change: Partial<LayoutDocument> = {}) => JSON.stringify(next("1.20.0", change), null, 2);
+  const savedEvents = async () =>
+    (await api.owner.selectFrom("ledgerEvent").select("action").where("action", "=", "layout.saved").execute()).length;
+
+  it("keeps half a thought, and the last document without errors beside it", async () => {
+    await create(next("1.20.0"));
+    const half = `${text()}, and then`;
+    const { status, body } = await keep("1.20.0", half, { query: { draft: 1 } });
+    expect([status, body.draft, body.unfinished]).toEqual([200, 2, true]);
+    expect(await read("1.20.0")).toMatchObject({ source: half, unfinished: true, document: next("1.20.0") });
+    expect((await act("1.20.0", "submit")).body.code).toBe("layout.unfinished");
+    expect((await read("1.20.0")).state).toBe("draft");
+  });
+
+  it("makes a text without errors the draft's document", async () => {
+    const described = text({ description: "whole again" });
+    const { body } = await keep("1.20.0", described, { query: { draft: 2 } });
+    expect(body).toMatchObject({ draft: 3, unfinished: false });
+    const stored = await read("1.20.0");
+    expect(stored).toMatchObject({ source: described, unfinished: false });
+    expect(stored.sha256).toBe(documentDigest(JSON.parse(described)).toString("hex"));
+    expect(body.sha256).toBe(stored.sha256);
+  });
+
+  it("counts the same text again as nothing new", async () => {
+    const again = await keep("1.20.0", text({ description: "whole again" }), { query: { draft: 3 } });
+    expect([again.status, again.body.draft]).toEqual([200, 3]);
+  });
+
+  it("takes another version or family in the text as unfinished, not as a rename", async () => {
+    expect((await keep("1.20.0", JSON.stringify(next("1.21.0")), { query: { draft: 3 } })).body.unfinished).toBe(true);
+    expect((await read("1.20.0")).version).toBe("1.20.0");
+    const other = JSON.stringify({ ...next("1.20.0"), family: "MW-300" });
+    expect((await keep("1.20.0", other, { query: { draft: 4 } })).body).toMatchObject({ draft: 5, unfinished: true });
+  });
+
+  it("loses neither text when two people write one draft at once", async () => {
+    const mine = text({ description: "mine" });
+    const theirs = text({ description: "theirs" });
+    const results = await Promise.all([
+      keep("1.20.0", mine, { headers: { "content-type": "text/plain", "if-match": '"5"' } }),
+      keep("1.20.0", theirs, { as: "engineer2", query: { draft: 5 } }),
+    ]);
+    expect(results.map(({ status }) => status).sort()).toEqual([200, 409]);
+    const refused = results.find(({ status }) => status === 409)?.body;
+    const { source } = await read("1.20.0");
+    expect([mine, theirs]).toContain(source);
+    expect(refused).toMatchObject({ code: "layout.draft_changed", draft: 5, now: 6, source });
+  });
+
+  it("makes a writer a maker, and names them in the ledger once", async () => {
+    const before = await savedEvents();
+    await create(next("1.22.0"));
+    const save = (draft: number, as: "engineer" | "engineer2") =>
+      keep("1.22.0", JSON.stringify(next("1.22.0", { description: `draft ${draft}` })), { as, query: { draft } });
+    await save(1, "engineer");
+    await save(2, "engineer2");
+    await save(3, "engineer2");
+    expect((await read("1.22.0")).makers).toEqual(["engineer", "engineer2"]);
+    expect(await savedEvents()).toBe(before + 1);
+    await act("1.22.0", "submit");
+    expect((await decide("1.22.0", { as: "engineer2" })).body.code).toBe("layout.self_approval");
+  });
+
+  it("refuses what can't be kept, and whoever may not, and writes nothing", async () => {
+    const before = await read("1.20.0");
+    const stale = { query: { draft: before.draft } };
+    expect((await keep("1.20.0", "{}")).body.code).toBe("request.invalid");
+    expect((await keep("1.20.0", "a\0b", stale)).body.code).toBe("request.invalid");
+    expect((await keep("1.20.0", new Uint8Array([0xff, 0xfe]), stale)).body.code).toBe("request.malformed");
+    expect((await keep("1.20.0", "x".repeat(1024 * 1024 + 1), stale)).status).toBe(413);
+    expect((await keep("1.20.0", "{}", { ...stale, headers: { "content-type": "text/html" } })).status).toBe(415);
+    expect((await keep("1.0.0", "{}", { query: { draft: 1 } })).body.code).toBe("layout.wrong_state");
+    expect((await keep("9.0.0", "{}", { query: { draft: 1 } })).status).toBe(404);
+    expect((await keep("1.20.0", "{}", { ...stale, as: "reviewer" })).status).toBe(403);
+    expect(await read("1.20.0")).toEqual(before);
+  });
+});
+
+describe("GET …/layouts/{version}/use", () => {
+  it("is empty before anything was built, and 404 for what is not there", async () => {
+    const { status, body } = await api.call("GET", `${path}/1.0.0/use`, { as: "auditor" });
+    expect([status, body]).toEqual([200, { items: [], next: null }]);
+    expect((await api.call("GET", `${path}/7.7.7/use`, { as: "auditor" })).status).toBe(404);
   });
 });
 

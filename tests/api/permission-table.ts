@@ -41,6 +41,8 @@ layouts.list                   401    yes  yes  role yes  yes  yes  role    yes 
 layouts.get                    401    yes  yes  role yes  yes  yes  role    yes      yes      yes
 layouts.create                 401    yes  role role role role role role    yes      role     role
 layouts.save                   401    yes  role role role role role role    yes      role     role
+layouts.keep-text              401    yes  role role role role role role    yes      role     role
+layouts.use                    401    yes  yes  role yes  yes  yes  role    yes      yes      yes
 layouts.delete                 401    yes  role role role role role role    yes      role     role
 layouts.submit                 401    yes  role role role role role role    yes      role     role
 layouts.take-back              401    yes  role role role role role role    yes      role     role
@@ -61,6 +63,12 @@ lots.add-devices               401    yes  role role role role role role    yes 
 
 samples.list-draws             401    yes  yes  role yes  yes  yes  role    yes      yes      yes
 samples.draw                   401    yes  role role role role role role    yes      role     role
+
+run-plans.list                 401    yes  yes  role yes  yes  yes  role    yes      yes      yes
+run-plans.get                  401    yes  yes  role yes  yes  yes  role    yes      yes      yes
+run-plans.template             401    yes  yes  role yes  yes  yes  role    yes      yes      yes
+run-plans.add                  401    yes  role role role role role role    yes      role     role
+run-plans.drop                 401    yes  role role role role role role    yes      role     role
 
 runs.list                      401    yes  yes  role yes  yes  yes  role    yes      yes      yes
 runs.get                       401    yes  yes  role yes  yes  yes  role    yes      yes      yes

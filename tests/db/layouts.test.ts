@@ -119,6 +119,17 @@ describe("a layout in the database", () => {
     await expect(move(layout.id, { state: "published" })).rejects.toMatchObject({ message: "layout.wrong_state" });
   });
 
+  it("is unfinished as a draft only: nothing with errors in its text is decided over", async () => {
+    const layout = await draft("1.5.0");
+    await move(layout.id, { source: "{", unfinished: true });
+    await expect(move(layout.id, { state: "in-review" })).rejects.toMatchObject({
+      constraint: "layout_unfinished_draft",
+    });
+    await move(layout.id, { source, unfinished: false });
+    await move(layout.id, { state: "in-review" });
+    await expect(move(layout.id, { unfinished: true })).rejects.toMatchObject({ message: "layout.wrong_state" });
+  });
+
   it("is deleted as a draft, not under review", async () => {
     const layout = await draft("1.4.0");
     await move(layout.id, { state: "in-review" });

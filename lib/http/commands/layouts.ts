@@ -5,14 +5,18 @@ import { parseJson } from "@/lib/http/read-body";
 import type { PersonCtx } from "@/lib/services/context";
 import * as decide from "@/lib/services/layouts/decide-layout";
 import * as read from "@/lib/services/layouts/get-layout";
+import { getLayoutUse } from "@/lib/services/layouts/get-layout-use";
+import { keepDraftText } from "@/lib/services/layouts/keep-draft-text";
 import { lintDocument } from "@/lib/services/layouts/lint-document";
 import * as write from "@/lib/services/layouts/write-layout";
 import { byCodeOrId, decision, pageQuery } from "@/schemas/api/common";
 import {
+  keptText,
   LAYOUT_MAX_BYTES,
   layoutList,
   layoutPath,
   layoutReply,
+  layoutUses,
   lintReply,
   retireBody,
   saveQuery,
@@ -27,6 +31,15 @@ const documentBody = { upload: { contentTypes: ["application/json"], maxBytes: L
 function writtenOf({ bytes }: Upload): write.WrittenLayout {
   const document = parseJson(bytes);
   return { source: bytes.toString("utf8"), document };
+}
+
+/** @throws AppError `request.malformed` */
+function textOf({ bytes }: Upload): string {
+  try {
+    return new TextDecoder("utf-8", { fatal: true, ignoreBOM: true }).decode(bytes);
+  } catch (cause) {
+    throw new AppError("request.malformed", { message: "The text is not UTF-8." }, { cause });
+  }
 }
 
 const keyOf = (params: { code: string; version: string }): write.LayoutKey => ({
@@ -112,11 +125,49 @@ export const saveLayout = command({
   query: saveQuery,
   body: documentBody,
   reply: { status: 200, schema: layoutReply },
-  errors: ["layout.not_found", "layout.wrong_state", "layout.changed", "layout.version_differs", "layout.invalid"],
+  errors: [
+    "layout.not_found",
+    "layout.wrong_state",
+    "layout.draft_changed",
+    "layout.version_differs",
+    "layout.invalid",
+  ],
   handle: (ctx, { params, query, body, headers }) => {
     const input = { ...keyOf(params), ...writtenOf(body), draft: draftOf(query, headers) };
     return then(ctx, params, write.saveLayout(ctx, input));
   },
+});
+
+export const keepLayoutText = command({
+  id: "layouts.keep-text",
+  method: "PUT",
+  path: "/families/{code}/layouts/{version}/text",
+  summary:
+    "Keeps a draft's text while it is typed, finished or not; ?draft= or If-Match names the draft that was edited",
+  access: engineer,
+  params: layoutPath,
+  query: saveQuery,
+  body: { upload: { contentTypes: ["application/json", "text/plain"], maxBytes: LAYOUT_MAX_BYTES } },
+  reply: { status: 200, schema: keptText },
+  errors: ["layout.not_found", "layout.wrong_state", "layout.draft_changed", "request.invalid"],
+  handle: (ctx, { params, query, body, headers }) => {
+    const draft = draftOf(query, headers);
+    if (draft === undefined) throw new AppError("request.invalid", { message: "Name the draft you edited: ?draft=3." });
+    return keepDraftText(ctx, { ...keyOf(params), source: textOf(body), draft });
+  },
+});
+
+export const getUse = command({
+  id: "layouts.use",
+  method: "GET",
+  path: "/families/{code}/layouts/{version}/use",
+  summary: "Lots with packages built from a layout",
+  access: readers,
+  params: layoutPath,
+  query: pageQuery,
+  reply: { status: 200, schema: layoutUses },
+  errors: ["family.not_found", "layout.not_found"],
+  handle: (ctx, { params, query }) => getLayoutUse(ctx, { ...query, ...keyOf(params) }),
 });
 
 export const deleteLayout = command({
@@ -142,7 +193,7 @@ export const submitLayout = command({
   access: engineer,
   params: layoutPath,
   reply: { status: 200, schema: layoutReply },
-  errors: ["layout.not_found", "layout.wrong_state", "layout.invalid"],
+  errors: ["layout.not_found", "layout.wrong_state", "layout.unfinished", "layout.invalid"],
   handle: (ctx, { params }) => then(ctx, params, decide.submitLayout(ctx, keyOf(params))),
 });
 
@@ -191,6 +242,8 @@ export const layoutCommands = [
   createLayout,
   getLayout,
   saveLayout,
+  keepLayoutText,
+  getUse,
   deleteLayout,
   submitLayout,
   takeBackLayout,

@@ -2,6 +2,7 @@ import type { Trx } from "@/db/executor";
 import { insertApproval } from "@/db/queries/approvals";
 import type { FamilyRow } from "@/db/queries/families";
 import { type LayoutChange, type LayoutRow, lockLayout, updateLayout } from "@/db/queries/layouts";
+import { AppError } from "@/lib/errors";
 import { assertRole, type PersonCtx } from "@/lib/services/context";
 import type { Decision } from "@/lib/services/families/decide-family-revision";
 import { assertMayTakeBack, assertState } from "@/lib/services/families/publishing";
@@ -28,15 +29,23 @@ async function moveLayout(
 
 /**
  * Asks a second person to publish a draft. The rules are asked again, as other versions may have been published meanwhile.
- * @throws AppError `layout.not_found`, `layout.wrong_state`, `layout.invalid`
+ * @throws AppError `layout.not_found`, `layout.wrong_state`, `layout.unfinished`, `layout.invalid`
  */
 export async function submitLayout(ctx: PersonCtx, key: LayoutKey): Promise<void> {
   assertRole(ctx, "engineer");
   await moveLayout(ctx, key, { action: "layout.submitted" }, async (trx, layout, family) => {
     assertState("layout", layout.state, "draft");
+    assertFinished(layout);
     const { step } = await getValidLayout(trx, family, layout.document);
     return { state: "in-review", step, submittedAt: ctx.now(), submittedBy: ctx.actor.id };
   });
+}
+
+/** What stands in the text is what is asked for, never an older document behind it. @throws AppError `layout.unfinished` */
+function assertFinished({ unfinished, version }: LayoutRow): void {
+  if (!unfinished) return;
+  const message = `The text of draft ${version} has errors still; mend them, then ask again.`;
+  throw new AppError("layout.unfinished", { version, message });
 }
 
 /** Makes a layout under review a draft again. @throws AppError `layout.wrong_state`, `auth.forbidden` for another person */

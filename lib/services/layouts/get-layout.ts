@@ -32,7 +32,12 @@ export async function getLayout(ctx: Ctx, key: LayoutKey): Promise<LayoutView> {
   const row = await getLayoutRow(ctx.db, family.id, key.version);
   const names = await listPersonNames(ctx.db, [row.createdBy, row.updatedBy, row.submittedBy]);
   const { decisions, makers } = await listSignatures(ctx.db, "layout", row.id);
-  const written = { draft: row.draftNumber, document: { ...row.document }, source: row.source };
+  const written = {
+    draft: row.draftNumber,
+    unfinished: row.unfinished,
+    document: { ...row.document },
+    source: row.source,
+  };
   return { ...summaryOf(row, family.code, names), ...written, makers, decisions };
 }
 

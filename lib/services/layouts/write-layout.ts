@@ -9,6 +9,7 @@ import {
   updateLayout,
 } from "@/db/queries/layouts";
 import { insertMakers, listMakers } from "@/db/queries/makers";
+import { listPersonNames } from "@/db/queries/person-names";
 import { AppError } from "@/lib/errors";
 import { assertRole, type PersonCtx } from "@/lib/services/context";
 import { documentDigest } from "@/lib/services/families/document-digest";
@@ -71,7 +72,7 @@ async function assertVersionFree(trx: Trx, family: FamilyRow, document: unknown)
 /**
  * Saves a draft anew.
  * @param input.draft the number of the draft that was edited; left out, the save wins whatever stands there.
- * @throws AppError `layout.not_found`, `layout.wrong_state`, `layout.changed`, `layout.version_differs`, `layout.invalid`
+ * @throws AppError `layout.not_found`, `layout.wrong_state`, `layout.draft_changed`, `layout.version_differs`, `layout.invalid`
  */
 export async function saveLayout(ctx: PersonCtx, input: LayoutKey & WrittenLayout & { draft?: number }): Promise<void> {
   assertRole(ctx, "engineer");
@@ -79,7 +80,7 @@ export async function saveLayout(ctx: PersonCtx, input: LayoutKey & WrittenLayou
     const family = await lockFamilyOf(trx, input.family);
     const before = await lockLayout(trx, family.id, input.version);
     assertState("layout", before.state, "draft");
-    assertSameDraft(before, input.draft);
+    await assertSameDraft(trx, before, input.draft);
     const { layout: document, step } = await getValidLayout(trx, family, input.document);
     if (document.version !== before.version) {
       const message = `This is the draft of ${before.version}; add ${document.version} as a layout of its own.`;
@@ -96,6 +97,7 @@ export async function saveLayout(ctx: PersonCtx, input: LayoutKey & WrittenLayou
       sha256,
       step,
       draftNumber,
+      unfinished: false,
       updatedAt: ctx.now(),
       updatedBy: ctx.actor.id,
     };
@@ -112,20 +114,31 @@ export async function saveLayout(ctx: PersonCtx, input: LayoutKey & WrittenLayou
   });
 }
 
-function assertSameDraft(layout: LayoutRow, draft: number | undefined): void {
+/** @throws AppError `layout.draft_changed` {draft, now, source, updatedBy, updatedAt}: the text that stands there, so that none is lost. */
+export async function assertSameDraft(trx: Trx, layout: LayoutRow, draft: number | undefined): Promise<void> {
   if (draft === undefined || draft === layout.draftNumber) return;
-  const message = "Somebody else saved this draft meanwhile; load it again and put your changes in.";
-  throw new AppError("layout.changed", { draft, now: layout.draftNumber, message });
+  const { source, updatedAt, draftNumber: now } = layout;
+  const updatedBy = (await listPersonNames(trx, [layout.updatedBy])).get(layout.updatedBy) ?? "";
+  const message = `${updatedBy} saved this draft meanwhile; put the two texts together and save over draft ${now}.`;
+  throw new AppError("layout.draft_changed", {
+    draft,
+    now,
+    source,
+    updatedBy,
+    updatedAt: updatedAt.toISOString(),
+    message,
+  });
 }
 
-/** Everyone who ever wrote a draft counts as its maker, once. */
-async function addWriter(ctx: PersonCtx, trx: Trx, layoutId: string): Promise<void> {
+/** Everyone who ever wrote a draft counts as its maker, once. @returns whether the person is a new one. */
+export async function addWriter(ctx: PersonCtx, trx: Trx, layoutId: string): Promise<boolean> {
   const personId = ctx.actor.id;
   const makers = await listMakers(trx, "layout", layoutId);
-  if (makers.some((maker) => maker.personId === personId)) return;
+  if (makers.some((maker) => maker.personId === personId)) return false;
   await insertMakers(trx, [
     { id: ctx.newId(), subjectKind: "layout", subjectId: layoutId, personId, act: "wrote", at: ctx.now() },
   ]);
+  return true;
 }
 
 /** Drops a draft; its version is free again. @throws AppError `layout.not_found`, `layout.wrong_state` */

@@ -1,0 +1,4 @@
+import { keepLayoutText } from "@/lib/http/commands/layouts";
+import { route } from "@/lib/http/route";
+
+export const PUT = route(keepLayoutText);
