@@ -10,6 +10,7 @@ const CODE_BY_CONSTRAINT: Record<string, string> = {
   device_serial_unique: "device.in_other_lot",
   run_bytes_once: "run.duplicate",
   run_supersedes_once: "run.already_superseded",
+  run_plan_name_unique: "run_plan.exists",
   package_version_unique: "package.changed",
   package_one_live: "package.live_changed",
   live_period_sequence_unique: "package.live_changed",

@@ -21,6 +21,9 @@ export interface RunRow {
   /** Id of the run that replaces this one, null while it counts. */
   supersededById: string | null;
   reason: string | null;
+  /** Planned run that it is the reading of. */
+  planId: string | null;
+  planName: string | null;
   createdAt: Date;
   createdBy: string;
   createdByName: string;
@@ -32,6 +35,7 @@ function selectRun(db: Db) {
     .innerJoin("lot", "lot.id", "run.lotId")
     .innerJoin("person", "person.id", "run.createdBy")
     .leftJoin("run as later", "later.supersedesId", "run.id")
+    .leftJoin("runPlan", "runPlan.id", "run.planId")
     .select([
       "run.id",
       "run.lotId",
@@ -47,6 +51,8 @@ function selectRun(db: Db) {
       "run.supersedesId",
       "later.id as supersededById",
       "run.reason",
+      "run.planId",
+      "runPlan.name as planName",
       "run.createdAt",
       "run.createdBy",
       "person.name as createdByName",
@@ -101,6 +107,7 @@ export interface NewRun {
   temperatureLowC: number | null;
   temperatureHighC: number | null;
   supersedesId: string | null;
+  planId: string | null;
   reason: string | null;
   createdAt: Date;
   createdBy: string;

@@ -18,6 +18,7 @@ import { peopleCommands } from "./commands/people";
 import { proofCommands } from "./commands/proofs";
 import { rebuildCommands } from "./commands/rebuilds";
 import { reinstatementCommands } from "./commands/reinstatements";
+import { runPlanCommands } from "./commands/run-plans";
 import { runCommands } from "./commands/runs";
 import { sampleCommands } from "./commands/samples";
 import { signingKeyCommands } from "./commands/signing-keys";
@@ -31,6 +32,7 @@ export const commands: readonly AnyCommand[] = [
   ...equipmentCommands,
   ...lotCommands,
   ...sampleCommands,
+  ...runPlanCommands,
   ...runCommands,
   ...proofCommands,
   ...derivationCommands,

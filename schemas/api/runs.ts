@@ -37,6 +37,7 @@ export const newRunQuery = z
     addDevices: z.enum(["true", "false"]).default("false").meta({ description: "Add serials that no lot has yet" }),
     supersedes: id.optional().meta({ description: "Run of the same purpose that this one replaces" }),
     reason: reason.optional().meta({ description: "Why the earlier run is replaced" }),
+    plan: id.optional().meta({ description: "Planned run that these are the readings of" }),
     fileName: z.string().trim().max(255).optional(),
   })
   .refine((query) => query.supersedes === undefined || query.reason !== undefined, {
@@ -58,6 +59,7 @@ const runMembers = {
   supersedes: id.nullable(),
   supersededBy: id.nullable(),
   reason: z.string().nullable(),
+  plan: z.object({ id, name: z.string() }).nullable().meta({ description: "Planned run that it is the reading of" }),
   createdAt: timestamp,
   createdBy: z.string(),
   equipment: z.array(

@@ -35,6 +35,8 @@ export const addRun = command({
     "run.duplicate",
     "run.already_superseded",
     "run.equipment_unknown",
+    "run_plan.not_found",
+    "run_plan.wrong_state",
     "run.too_many_rows",
   ],
   idempotent: true,

@@ -73,6 +73,7 @@ function viewOf(row: RunRow, equipment: readonly RunEquipmentRow[], findings: re
     supersedes: row.supersedesId,
     supersededBy: row.supersededById,
     reason: row.reason,
+    plan: row.planId === null ? null : { id: row.planId, name: row.planName ?? "" },
     createdAt: row.createdAt.toISOString(),
     createdBy: row.createdByName,
     equipment: equipment.filter(({ runId }) => runId === row.id),

@@ -17,6 +17,7 @@ import { AppError } from "@/lib/errors";
 import { assertRole, type PersonCtx } from "@/lib/services/context";
 import { appendEvent } from "@/lib/services/ledger/append-event";
 import { getLotRules } from "@/lib/services/lots/lot-rules";
+import { findUsedPlan, takeUsedPlan } from "@/lib/services/run-plans/use-run-plan";
 import { listEquipmentFindings } from "./equipment-findings";
 import { getRunView } from "./get-run";
 import { type RunFile, readRunFile } from "./read-run-file";
@@ -29,6 +30,8 @@ export interface NewRunInput {
   addDevices: boolean;
   supersedes?: string;
   reason?: string;
+  /** Planned run that these are the readings of. */
+  plan?: string;
   fileName?: string;
   bytes: Buffer;
 }
@@ -36,7 +39,8 @@ export interface NewRunInput {
 /**
  * Takes a run's readings into a lot, all of them or none.
  * @throws AppError `lot.not_found`, `run.duplicate` {run}, `run.invalid` {errors, errorCount}, `run.too_many_rows`,
- * `run.equipment_unknown` {codes}, `run.supersedes_other_lot`, `run.supersedes_other_purpose`, `run.already_superseded`
+ * `run.equipment_unknown` {codes}, `run.supersedes_other_lot`, `run.supersedes_other_purpose`, `run.already_superseded`,
+ * `run_plan.not_found`, `run_plan.other_lot`, `run_plan.other_purpose`, `run_plan.wrong_state`
  */
 export async function uploadRun(ctx: PersonCtx, input: NewRunInput) {
   assertRole(ctx, "engineer");
@@ -48,10 +52,15 @@ export async function uploadRun(ctx: PersonCtx, input: NewRunInput) {
     throw new AppError("run.duplicate", { run: earlier.id, message: `These very bytes were uploaded on ${on}.` });
   }
   await assertMaySupersede(ctx, lot, input);
+  const plan = await findUsedPlan(ctx, { ...input, lotId: lot.id });
   const equipment = await requireEquipment(ctx, input.equipment);
   const { rules } = await getLotRules(ctx.db, lot);
   const file = await readRunFile(ctx.db, { ...input, lot, rules });
-  const findings = [...file.findings, ...listEquipmentFindings(equipment, lastTakenAt(file.readings))];
+  const findings = [
+    ...file.findings,
+    ...(plan?.compare(file.readings, input.equipment) ?? []),
+    ...listEquipmentFindings(equipment, lastTakenAt(file.readings)),
+  ];
 
   const id = ctx.newId();
   const staleSets = await ctx.db.transaction().execute(async (trx) => {
@@ -59,6 +68,7 @@ export async function uploadRun(ctx: PersonCtx, input: NewRunInput) {
     if (input.supersedes !== undefined || file.unknown.length > 0) await lockLot(trx, lot.id);
     await addUnknown(ctx, trx, lot, file);
     await insertRun(trx, runRowOf(ctx, id, lot, sha256, input, file), input.bytes);
+    await takeUsedPlan(trx, plan);
     await insertRunEquipment(
       trx,
       id,
@@ -83,6 +93,7 @@ export async function uploadRun(ctx: PersonCtx, input: NewRunInput) {
         devices: file.deviceIds.size,
         added: file.unknown.length,
         equipment: equipment.map((one) => one.code),
+        ...(plan && { plan: plan.id }),
         ...(input.supersedes !== undefined && {
           supersedes: input.supersedes,
           staleSets: count,
@@ -158,6 +169,7 @@ function runRowOf(ctx: PersonCtx, id: string, lot: LotRow, sha256: Buffer, input
     temperatureLowC: low,
     temperatureHighC: high,
     supersedesId: input.supersedes ?? null,
+    planId: input.plan ?? null,
     reason: input.reason ?? null,
     createdAt: ctx.now(),
     createdBy: ctx.actor.id,

@@ -1,0 +1,4 @@
+import { dropRunPlan } from "@/lib/http/commands/run-plans";
+import { route } from "@/lib/http/route";
+
+export const POST = route(dropRunPlan);

@@ -1,0 +1,4 @@
+import { getRunPlan } from "@/lib/http/commands/run-plans";
+import { route } from "@/lib/http/route";
+
+export const GET = route(getRunPlan);
