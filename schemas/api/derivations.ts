@@ -44,6 +44,24 @@ export const pooled = z.object({
   confidence: z.number(),
   limit: z.number(),
   verdict: z.enum(["inside", "outside", "not-judged"]),
+  shareExpected: z
+    .number()
+    .nullable()
+    .optional()
+    .meta({ description: "At least this share of the lot is within the limit of the mean, at the confidence (exact)" }),
+  shareEstimate: z
+    .number()
+    .nullable()
+    .optional()
+    .meta({ description: "Share within the limit, were mean and sd the lot's own" }),
+  sampleNeeded: z
+    .number()
+    .int()
+    .nullable()
+    .optional()
+    .meta({
+      description: "Sample devices in total with which this sd would come out inside; null where no number does",
+    }),
 });
 
 export const verificationResult = z.object({

@@ -1,76 +1,7 @@
 import { AppError } from "@/lib/errors";
 import { panelNodes } from "./integrate";
 import { findRoot } from "./root";
-
-/** Lanczos coefficients, g = 7, n = 9. */
-const LANCZOS = [
-  0.99999999999980993, 676.5203681218851, -1259.1392167224028, 771.32342877765313, -176.61502916214059,
-  12.507343278686905, -0.13857109526572012, 9.9843695780195716e-6, 1.5056327351493116e-7,
-] as const;
-
-/** Natural logarithm of the gamma function for x > 0 (Lanczos). */
-export function logGamma(x: number): number {
-  if (x < 0.5) return Math.log(Math.PI / Math.sin(Math.PI * x)) - logGamma(1 - x);
-  let sum: number = LANCZOS[0];
-  for (let i = 1; i < LANCZOS.length; i++) sum += (LANCZOS[i] as number) / (x - 1 + i);
-  const base = x + 6.5;
-  return 0.5 * Math.log(2 * Math.PI) + (x - 0.5) * Math.log(base) - base + Math.log(sum);
-}
-
-const TINY = 1e-300;
-
-/** Lower and upper regularised incomplete gamma functions P(a, x), Q(a, x): series below a + 1, fraction above. */
-function incompleteGamma(a: number, x: number): { lower: number; upper: number } {
-  if (x <= 0) return { lower: 0, upper: 1 };
-  const front = Math.exp(a * Math.log(x) - x - logGamma(a));
-  if (x < a + 1) {
-    let term = 1 / a;
-    let sum = term;
-    for (let k = 1; k < 10_000 && term > sum * 1e-17; k++) {
-      term *= x / (a + k);
-      sum += term;
-    }
-    const lower = Math.min(1, front * sum);
-    return { lower, upper: 1 - lower };
-  }
-  let b = x + 1 - a;
-  let c = 1 / TINY;
-  let d = 1 / b;
-  let h = d;
-  for (let k = 1; k < 10_000; k++) {
-    const factor = -k * (k - a);
-    b += 2;
-    d = 1 / (factor * d + b || TINY);
-    c = b + factor / c || TINY;
-    h *= d * c;
-    if (Math.abs(d * c - 1) < 1e-16) break;
-  }
-  const upper = Math.min(1, front * h);
-  return { lower: 1 - upper, upper };
-}
-
-/** Regularised incomplete beta function I_x(a, b) by its continued fraction (Lentz). */
-function incompleteBeta(x: number, a: number, b: number): number {
-  if (x <= 0) return 0;
-  if (x >= 1) return 1;
-  if (x > (a + 1) / (a + b + 2)) return 1 - incompleteBeta(1 - x, b, a);
-  const front = Math.exp(logGamma(a + b) - logGamma(a) - logGamma(b) + a * Math.log(x) + b * Math.log1p(-x)) / a;
-  let c = 1;
-  let d = 1 / (1 - ((a + b) * x) / (a + 1) || TINY);
-  let h = d;
-  for (let m = 1; m < 10_000; m++) {
-    const even = (m * (b - m) * x) / ((a + 2 * m - 1) * (a + 2 * m));
-    d = 1 / (1 + even * d || TINY);
-    c = 1 + even / c || TINY;
-    h *= d * c;
-    const odd = (-(a + m) * (a + b + m) * x) / ((a + 2 * m) * (a + 2 * m + 1));
-    d = 1 / (1 + odd * d || TINY);
-    c = 1 + odd / c || TINY;
-    h *= d * c;
-    if (Math.abs(d * c - 1) < 1e-16) break;
-  }
-  return front * h;
-}
+import { incompleteBeta, incompleteGamma, logGamma } from "./special-functions";
 
 function assertProbability(p: number): void {
   if (!(p > 0 && p < 1)) throw new AppError("probability.out_of_range", { value: p });
@@ -80,13 +11,23 @@ function assertFreedom(df: number): void {
   if (!(df > 0 && Number.isFinite(df))) throw new AppError("freedom.out_of_range", { value: df });
 }
 
-/** Density of the standard normal distribution. */
+/** Infinite arguments have a meaning for a distribution, NaN has none and must not travel on. */
+function assertNumber(x: number): void {
+  if (Number.isNaN(x)) throw new AppError("argument.not_a_number");
+}
+
+/** Density of the standard normal distribution. @throws AppError `argument.not_a_number`. */
 export function normalDensity(z: number): number {
+  assertNumber(z);
   return Math.exp(-0.5 * z * z) / Math.sqrt(2 * Math.PI);
 }
 
-/** P(Z ≤ z) of the standard normal distribution; the far tails keep their relative precision. */
+/**
+ * P(Z ≤ z) of the standard normal distribution; the far lower tail keeps its relative precision.
+ * @throws AppError `argument.not_a_number`.
+ */
 export function normalCdf(z: number): number {
+  assertNumber(z);
   const { lower, upper } = incompleteGamma(0.5, 0.5 * z * z);
   return z < 0 ? 0.5 * upper : 0.5 + 0.5 * lower;
 }
@@ -99,68 +40,90 @@ export function normalQuantile(p: number): number {
   assertProbability(p);
   if (p === 0.5) return 0;
   if (p > 0.5) return -normalQuantile(1 - p);
-  return findRoot((z) => Math.log(normalCdf(z)) - Math.log(p), -40, 0);
+  return findRoot((z) => Math.log(normalCdf(z)) - Math.log(p), -38.5, 0);
 }
 
 /**
  * P(X ≤ x) of the chi-square distribution.
- * @throws AppError `freedom.out_of_range` unless df > 0.
+ * @throws AppError `freedom.out_of_range` unless df > 0; `argument.not_a_number`.
  */
 export function chiSquareCdf(x: number, df: number): number {
+  assertNumber(x);
   assertFreedom(df);
   return incompleteGamma(df / 2, x / 2).lower;
 }
 
 /** P(X > x) of the chi-square distribution. @throws as {@link chiSquareCdf} */
 export function chiSquareUpper(x: number, df: number): number {
+  assertNumber(x);
   assertFreedom(df);
   return incompleteGamma(df / 2, x / 2).upper;
 }
 
+/** Searched on logarithms of value and probability: both may be tiny and still be meant. */
+const LOG_LEAST = -700;
+
 /**
  * x with P(X ≤ x) = p for the chi-square distribution.
- * @throws AppError `probability.out_of_range` or `freedom.out_of_range`.
+ * @throws AppError `probability.out_of_range` or `freedom.out_of_range`; `root.not_bracketed` where x is below 1e-304.
  */
 export function chiSquareQuantile(p: number, df: number): number {
   assertProbability(p);
   assertFreedom(df);
-  let high = df + 10;
-  while (chiSquareCdf(high, df) < p) high *= 2;
-  let low = Math.min(1, df);
-  while (chiSquareCdf(low, df) > p) low /= 4;
-  return findRoot((x) => chiSquareCdf(x, df) - p, low, high);
+  const [tail, share] = p > 0.5 ? [chiSquareUpper, 1 - p] : [chiSquareCdf, p];
+  const off = (log: number) => Math.log(tail(Math.exp(log), df) || Number.MIN_VALUE) - Math.log(share);
+  let high = Math.log(df + 10);
+  while (chiSquareCdf(Math.exp(high), df) < p) high += 0.5;
+  return Math.exp(findRoot(off, LOG_LEAST, high));
 }
 
 /**
  * P(T ≤ t) of Student's distribution.
- * @throws AppError `freedom.out_of_range` unless df > 0.
+ * @throws AppError `freedom.out_of_range` unless df > 0; `argument.not_a_number`.
  */
 export function studentCdf(t: number, df: number): number {
+  assertNumber(t);
   assertFreedom(df);
-  const tail = 0.5 * incompleteBeta(df / (df + t * t), df / 2, 0.5);
+  const square = t * t;
+  // Beyond what a square can hold the tail is nothing.
+  if (square === Number.POSITIVE_INFINITY) return t < 0 ? 0 : 1;
+  const tail = 0.5 * incompleteBeta(df / (df + square), square / (df + square), df / 2, 0.5);
   return t < 0 ? tail : 1 - tail;
 }
 
 /**
  * t with P(T ≤ t) = p for Student's distribution.
- * @throws AppError `probability.out_of_range` or `freedom.out_of_range`.
+ * @throws AppError `probability.out_of_range` or `freedom.out_of_range`; `root.not_bracketed` where |t| passes 1e152.
  */
 export function studentQuantile(p: number, df: number): number {
   assertProbability(p);
   assertFreedom(df);
   if (p === 0.5) return 0;
   if (p > 0.5) return -studentQuantile(1 - p, df);
-  let low = -10;
-  while (studentCdf(low, df) > p) low *= 4;
-  return findRoot((t) => studentCdf(t, df) - p, low, 0);
+  return -Math.exp(findRoot((log) => Math.log(studentCdf(-Math.exp(log), df)) - Math.log(p), -45, 350));
+}
+
+/**
+ * P(X ≤ x) of the beta distribution.
+ * @param x any number but NaN. @param a, b > 0.
+ * @throws AppError `freedom.out_of_range` unless a and b are positive; `argument.not_a_number`.
+ */
+export function betaCdf(x: number, a: number, b: number): number {
+  assertNumber(x);
+  assertFreedom(a);
+  assertFreedom(b);
+  const inside = Math.min(1, Math.max(0, x));
+  return incompleteBeta(inside, 1 - inside, a, b);
 }
 
 /**
  * P(T ≤ t) of the noncentral t distribution, by integrating P(Z ≤ t·r − delta) over the density of r = √(χ²/df).
- * @throws AppError `freedom.out_of_range` unless df > 0.
+ * @param t, delta finite.
+ * @throws AppError `freedom.out_of_range` unless df > 0; `argument.not_a_number` where t or delta is not finite.
  */
 export function noncentralTCdf(t: number, df: number, delta: number): number {
   assertFreedom(df);
+  if (!(Number.isFinite(t) && Number.isFinite(delta))) throw new AppError("argument.not_a_number");
   const logFront = Math.log(2) + (df / 2) * Math.log(df / 2) - logGamma(df / 2);
   const reach = 9 / Math.sqrt(2 * df);
   const low = Math.max(0, 1 - reach);

@@ -1,12 +1,12 @@
 import { studentQuantile } from "./distributions";
 import { poolingLimit } from "./envelope";
 import { findGrubbsStatistic, grubbsCritical } from "./grubbs";
+import { findSampleSize, shareInside } from "./sample-plan";
 import { standardDeviationOf } from "./sample-statistics";
 import { toleranceFactor } from "./tolerance";
 import type { FamilyRules, GainCoefficients, PooledResult } from "./types";
 
-/** Fewer sample devices than this can't stand for a lot. */
-export const SAMPLE_MIN = 5;
+export { SAMPLE_MIN } from "./sample-plan";
 
 /** Two-sided level of the outlier test on the sample's gainTc. */
 const OUTLIER_ALPHA = 0.05;
@@ -20,7 +20,8 @@ function plainMean(values: readonly number[]): number {
 
 /**
  * The lot's gainTc from the sample's individual trims: plain means, an exact two-sided normal tolerance interval
- * mean ± k·s and a confidence interval of the mean. Inside when k·s is at most the pooling limit.
+ * mean ± k·s and a confidence interval of the mean. Inside when k·s is at most the pooling limit; and what the sample
+ * says of the share inside it, and of the size it would have to have.
  * @returns null for an empty sample; intervals and verdict need two devices.
  */
 export function poolGain(trims: readonly GainCoefficients[], order: 1 | 2, family: FamilyRules): PooledResult | null {
@@ -47,6 +48,9 @@ export function poolGain(trims: readonly GainCoefficients[], order: 1 | 2, famil
     confidence,
     limit,
     verdict: "not-judged",
+    shareExpected: null,
+    shareEstimate: null,
+    sampleNeeded: null,
   };
   if (sd === null) return pooled;
   const ofMean = (studentQuantile((1 + confidence) / 2, n - 1) * sd) / Math.sqrt(n);
@@ -55,6 +59,10 @@ export function poolGain(trims: readonly GainCoefficients[], order: 1 | 2, famil
   pooled.toleranceInterval = [gainTc - k * sd, gainTc + k * sd];
   pooled.toleranceFactor = k;
   pooled.verdict = k * sd <= limit ? "inside" : "outside";
+  const share = shareInside({ n, sd, limit, confidence });
+  pooled.shareExpected = share.lowerBound;
+  pooled.shareEstimate = share.estimate;
+  pooled.sampleNeeded = findSampleSize({ sd, limit, coverage, confidence });
   return pooled;
 }
 

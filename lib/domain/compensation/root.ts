@@ -14,7 +14,8 @@ export function findRoot(f: (x: number) => number, low: number, high: number): n
   let fb = f(b);
   if (fa === 0) return a;
   if (fb === 0) return b;
-  if (!(fa * fb < 0)) throw new AppError("root.not_bracketed", { low, high });
+  // Signs, not products: these may be too small for a double.
+  if (!(Math.sign(fa) * Math.sign(fb) < 0)) throw new AppError("root.not_bracketed", { low, high });
   for (let step = 0; step < 200; step++) {
     const bisect = step % 3 === 2;
     let x = bisect ? (a + b) / 2 : b - (fb * (b - a)) / (fb - fa);
@@ -22,7 +23,8 @@ export function findRoot(f: (x: number) => number, low: number, high: number): n
     if (x === a || x === b || Math.abs(b - a) <= 4e-16 * Math.abs(x)) return x;
     const fx = f(x);
     if (fx === 0) return x;
-    if (fx * fb < 0) {
+    if (Number.isNaN(fx)) throw new AppError("root.not_bracketed", { low, high });
+    if (Math.sign(fx) !== Math.sign(fb)) {
       a = b;
       fa = fb;
     } else {

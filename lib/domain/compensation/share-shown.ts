@@ -1,4 +1,6 @@
 import { AppError } from "@/lib/errors";
+import { betaCdf } from "./distributions";
+import { findRoot } from "./root";
 
 function assertOpen(name: string, value: number): void {
   if (!(value > 0 && value < 1)) throw new AppError("share.invalid", { [name]: value });
@@ -17,7 +19,24 @@ export function shareShown(count: number, confidence: number): number {
 }
 
 /**
- * How many devices have to pass, all of them, to show the share at the confidence.
+ * The same where some of the `count` devices failed: the exact one-sided lower bound of a binomial share, that is the
+ * share p under which `passed` or more of `count` have the probability 1 − confidence.
+ * Source: Clopper and Pearson, Biometrika 26 (1934), with the beta distribution for the binomial sum.
+ * @returns 0 where none passed.
+ * @throws AppError `share.invalid` unless 0 ≤ passed ≤ count and count ≥ 1.
+ */
+export function shareShownWithFailures(passed: number, count: number, confidence: number): number {
+  if (!(Number.isInteger(passed) && passed >= 0 && passed <= count)) throw new AppError("share.invalid", { passed });
+  if (passed === count) return shareShown(count, confidence);
+  assertOpen("confidence", confidence);
+  if (!Number.isInteger(count)) throw new AppError("share.invalid", { count });
+  if (passed === 0) return 0;
+  return findRoot((share) => betaCdf(share, passed, count - passed + 1) - (1 - confidence), 0, 1);
+}
+
+/**
+ * How many devices have to pass, all of them, to show the share at the confidence: ln(1 − confidence) / ln(share),
+ * rounded up.
  * @throws AppError `share.invalid`.
  */
 export function devicesToShow(share: number, confidence: number): number {

@@ -201,6 +201,15 @@ export interface PooledResult {
   /** Pooling limit: k·sd may not exceed it. */
   limit: number;
   verdict: PooledVerdict;
+  /**
+   * At least this share of the lot has its gainTc within the limit of the mean, at the confidence (exact, normal lot);
+   * null below two devices. Missing, as the next two, from results of before these were computed.
+   */
+  shareExpected?: number | null;
+  /** The share within the limit, were mean and sd the lot's own: a point estimate. */
+  shareEstimate?: number | null;
+  /** Sample devices in total, at least 5, with which this sd would come out inside; null where no number does. */
+  sampleNeeded?: number | null;
 }
 
 export interface VerificationResult {
