@@ -71,6 +71,22 @@ export function manifestBytes(manifest: Manifest): Uint8Array {
   return encoder.encode(canonicalJson(manifest));
 }
 
+/**
+ * As {@link manifestBytes} of {@link buildManifest}, from the canonical text of the images, joined by commas and by serial, in
+ * pieces: a lot of 60,000 devices is never held as one object or string.
+ */
+export function manifestBytesAround(
+  content: Omit<Manifest, "format" | "images">,
+  images: readonly Uint8Array[],
+): Buffer {
+  const around = canonicalJson(buildManifest({ ...content, images: [] }));
+  // Quotes within texts are escaped, so that this stands in the manifest once.
+  const at = around.indexOf(NO_IMAGES) + NO_IMAGES.length - 1;
+  return Buffer.concat([encoder.encode(around.slice(0, at)), ...images, encoder.encode(around.slice(at))]);
+}
+
+const NO_IMAGES = '"images":[]';
+
 /** What a derivation was computed from; the digest tells whether two were computed alike. */
 export interface DerivationInputs {
   method: ManifestDerivation["method"];

@@ -8,3 +8,10 @@ const oneCall = "hash" in crypto ? crypto.hash : undefined;
 export function sha256Hex(data: Uint8Array | string): string {
   return oneCall ? oneCall("sha256", data, "hex") : createHash("sha256").update(data).digest("hex");
 }
+
+/** SHA-256 of a content that comes in pieces, in lower-case hex. */
+export function sha256OfPieces(pieces: Iterable<Uint8Array>): string {
+  const hash = createHash("sha256");
+  for (const piece of pieces) hash.update(piece);
+  return hash.digest("hex");
+}
