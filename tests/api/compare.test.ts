@@ -207,7 +207,9 @@ describe("GET /compare/layouts", () => {
     expect(status).toBe(200);
     expect(body).toMatchObject({ family: "MW-20", from: "1.0.0", to: "2.0.0", step: "major" });
     expect(body.changes).toHaveLength(1);
-    expect(body.changes[0].message).toBe("the scale of “gainTc” changed");
+    expect(body.changes[0].message).toBe(
+      "the scale of “gainTc” is 2e-12 instead of 1e-12: firmware that reads 1.x would misread it",
+    );
   });
 
   it("refuses what is not there", async () => {
