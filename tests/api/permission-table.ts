@@ -62,6 +62,7 @@ lots.create                    401    yes  role role role role role role    yes 
 lots.add-devices               401    yes  role role role role role role    yes      role     role
 
 samples.list-draws             401    yes  yes  role yes  yes  yes  role    yes      yes      yes
+samples.plan                   401    yes  yes  role yes  yes  yes  role    yes      yes      yes
 samples.draw                   401    yes  role role role role role role    yes      role     role
 
 run-plans.list                 401    yes  yes  role yes  yes  yes  role    yes      yes      yes

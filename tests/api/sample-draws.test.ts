@@ -1,5 +1,7 @@
 import { beforeAll, describe, expect, it } from "vitest";
 import { drawSample } from "@/lib/domain/compensation/draw-sample";
+import { poolingLimit } from "@/lib/domain/compensation/envelope";
+import { planSample } from "@/lib/domain/compensation/sample-plan";
 import { openTestApi, type TestApi } from "../support/api";
 import { PASSWORD, type PersonName } from "../support/people";
 import { uploadGoldenRuns } from "../support/scenario/derived";
@@ -162,4 +164,56 @@ describe("drawing a sample", () => {
     expect((await draw("NONE", { count: 5 })).status).toBe(404);
     expect(await countDraws()).toBe(before);
   });
+});
+
+describe("GET /lots/{code}/sample-plan", () => {
+  const ask = (query: Record<string, string | number>, lot = golden.lot) =>
+    api.call("GET", `/lots/${lot}/sample-plan`, { as: "auditor", query });
+
+  it("asks the pure planner with the family's limit and confidence", async () => {
+    const { status, body } = await ask({ expectedSd: 1e-6 });
+    expect(status, JSON.stringify(body)).toBe(200);
+    const limit = poolingLimit(golden.family);
+    const { coverage, confidence } = golden.family;
+    expect(body).toMatchObject({ lot: golden.lot, limit, coverage, confidence, expectedSd: 1e-6, earlier: null });
+    expect(body.sample).toEqual(planSample({ sd: 1e-6, limit, coverage, confidence }));
+    // 0.05^(1/5); ln 0.05 / ln 0.9 = 28.4: both from the definition, k of k passing.
+    expect(body.verification.shownByFive).toBeCloseTo(0.549, 3);
+    expect(body.verification).toMatchObject({ share: 0.9, n: 29 });
+  });
+
+  it("says nothing on the sample where nothing is known of the scatter, and never fewer than five", async () => {
+    expect((await ask({})).body).toMatchObject({ expectedSd: null, sample: null });
+    expect((await ask({ expectedSd: 0 })).body.sample.n).toBe(5);
+    expect((await ask({ expectedSd: 1 })).body.sample).toMatchObject({ outcome: "spread-too-large", n: null });
+  });
+
+  it("takes the scatter of the family's other lots, and says which", async () => {
+    const reply = await api.call("POST", `/lots/${golden.lot}/derivations`, {
+      as: "engineer",
+      body: {
+        method: "pooled-gain",
+        order: 1,
+        exclude: [],
+        runs: (await api.call("GET", `/lots/${golden.lot}/runs`, { as: "auditor" })).body.items.map(
+          (run: { id: string }) => run.id,
+        ),
+      },
+    });
+    await api.runJobs();
+    const derived = (await api.call("GET", `/derivations/${reply.body.id}`, { as: "auditor" })).body;
+    const { body } = await ask({}, "DRAW");
+    const { sd, n } = derived.pooled;
+    expect(body.earlier).toEqual({ sd, freedom: n - 1, lots: [{ lot: golden.lot, derivation: derived.id, sd, n }] });
+    expect(body.expectedSd).toBe(sd);
+    expect(body.sample.n).toBeGreaterThanOrEqual(5);
+    expect((await ask({})).body.earlier).toBeNull();
+  });
+
+  it.each([{ expectedSd: "x" }, { expectedSd: -1 }, { coverage: 1 }, { verificationShare: 0 }])(
+    "refuses %j",
+    async (query) => {
+      expect((await ask(query as Record<string, string | number>)).status).toBe(422);
+    },
+  );
 });

@@ -1,8 +1,10 @@
 import { READERS } from "@/lib/domain/roles";
 import { command } from "@/lib/http/command";
 import { drawSample as draw, listSampleDraws as list } from "@/lib/services/samples/draw-sample";
+import { getSamplePlan } from "@/lib/services/samples/get-sample-plan";
 import { byCodeOrId, idPageQuery } from "@/schemas/api/common";
 import { newSampleDraw, sampleDraw, sampleDrawPage } from "@/schemas/api/sample-draws";
+import { samplePlan, samplePlanQuery } from "@/schemas/api/sample-plan";
 
 export const listSampleDraws = command({
   id: "samples.list-draws",
@@ -31,4 +33,17 @@ export const drawSample = command({
   handle: (ctx, { params, body }) => draw(ctx, { ...body, lot: params.code }),
 });
 
-export const sampleCommands = [listSampleDraws, drawSample];
+export const planSample = command({
+  id: "samples.plan",
+  method: "GET",
+  path: "/lots/{code}/sample-plan",
+  summary: "How many sample and verification devices a lot takes for an expected scatter of gainTc",
+  access: { who: "person", roles: READERS },
+  params: byCodeOrId,
+  query: samplePlanQuery,
+  reply: { status: 200, schema: samplePlan },
+  errors: ["lot.not_found"],
+  handle: (ctx, { params, query }) => getSamplePlan(ctx, { ...query, lot: params.code }),
+});
+
+export const sampleCommands = [listSampleDraws, drawSample, planSample];
