@@ -1,19 +1,23 @@
 import type { Db } from "@/db/executor";
 import type { DerivationCounts } from "@/db/queries/derivations";
-import { listRunFindings } from "@/db/queries/runs";
+import { listRunEquipment, listRunFindings } from "@/db/queries/runs";
 import { derive } from "@/lib/domain/compensation/derive";
 import type { DerivationInput, DerivationResult, DeviceResult, Finding } from "@/lib/domain/compensation/types";
+import { uncertaintyBudget } from "@/lib/domain/compensation/uncertainty/budget";
 
-/** The result of a derivation with what its runs' equipment has to say. */
+/** Findings of a run that the arithmetic can't make anew: they rest on certificates and plans of the day of the upload. */
+const STANDING = ["equipment.", "chamber.off_set_point"];
+
+/** The result of a derivation with what its runs' equipment has to say, and its uncertainty budget. */
 export async function compute(db: Db, input: DerivationInput): Promise<DerivationResult> {
   const result = derive(input);
   const replaced = new Set(input.runs.map((run) => run.supersedes));
   const used = input.runs.filter((run) => run.purpose !== "proof" && !replaced.has(run.id)).map((run) => run.id);
-  // Findings on readings are made anew by the arithmetic; those on equipment rest on the certificates of that time.
-  const equipment = (await listRunFindings(db, used))
-    .filter((finding) => finding.code.startsWith("equipment."))
+  const standing = (await listRunFindings(db, used))
+    .filter(({ code }) => STANDING.some((start) => code.startsWith(start)))
     .map(({ id, runId, ...finding }): Finding => ({ ...finding, data: { ...finding.data, run: runId } }));
-  return { ...result, findings: [...result.findings, ...equipment] };
+  const uncertainty = uncertaintyBudget(input, result, await listRunEquipment(db, used));
+  return { ...result, findings: [...result.findings, ...standing], uncertainty };
 }
 
 /** Everything of a device's result that is not kept in columns of its own or as findings. */
