@@ -1,18 +1,25 @@
-/** `npm run codegen`: writes db/generated/types.generated.ts from the migrations. With --verify it only compares. */
+/**
+ * `npm run codegen`: writes db/generated/types.generated.ts from the migrations and the layout's validator from its schema.
+ * With --verify it only compares.
+ */
+import { readFileSync, writeFileSync } from "node:fs";
 import { join } from "node:path";
 import { createTestDatabase, dropTestDatabase, ensureTemplate } from "@/db/test-database";
 import { CHECKOUT, PROGRAMS } from "@/lib/commands/checkout";
 import { runToEnd } from "@/lib/commands/run-tool";
 import { joinTestServer } from "@/lib/commands/test-server";
 import { childEnv, findTestServerUrl } from "@/lib/env";
+import { layoutValidatorSource } from "@/schemas/documents/validator-source";
 
 const TYPES_FILE = join(CHECKOUT, "db/generated/types.generated.ts");
+const VALIDATOR_FILE = join(CHECKOUT, "schemas/documents/layout-validator.generated.ts");
 /** The migrator's own tables are nobody's business. bigint, numeric and date stay strings, as db/client.ts reads them. */
 const FLAGS = ["--dialect", "postgres", "--camel-case", "--numeric-parser", "string", "--date-parser", "string"];
 const SCOPE = ["--default-schema", "public", "--include-pattern", "public.*", "--exclude-pattern", "public.kysely_*"];
 
 export default async function codegen(args: string[], signal: AbortSignal): Promise<number> {
   const verify = args.includes("--verify");
+  if (!keepValidator(verify)) return 1;
   const given = findTestServerUrl();
   const server = given === undefined ? await joinTestServer() : { url: given, release: async () => undefined };
   try {
@@ -26,6 +33,15 @@ export default async function codegen(args: string[], signal: AbortSignal): Prom
   } finally {
     await server.release();
   }
+}
+
+/** @returns false where the stored validator is stale and only to be compared. */
+function keepValidator(verify: boolean): boolean {
+  const source = layoutValidatorSource();
+  if (!verify) writeFileSync(VALIDATOR_FILE, source);
+  if (readFileSync(VALIDATOR_FILE, "utf8") === source) return true;
+  console.error("The layout's validator is stale; run npm run codegen.");
+  return false;
 }
 
 async function generate(url: string, verify: boolean, signal: AbortSignal): Promise<number> {

@@ -1,0 +1,44 @@
+/**
+ * The shape of a layout document, judged by its JSON Schema. The validator is compiled ahead of time, so that the very same
+ * code runs in the browser, whose content security policy forbids compiling there, and on the server.
+ */
+import type { ErrorObject, ValidateFunction } from "ajv/dist/2020";
+import type { Problem } from "@/lib/errors";
+import type { LayoutDocument } from "@/schemas/documents/layout";
+import { validate as generated } from "@/schemas/documents/layout-validator.generated";
+
+const validate = generated as unknown as ValidateFunction<LayoutDocument>;
+
+/** Every problem of shape with its JSON pointer (code `layout.shape`); none for a layout document. */
+export function shapeProblems(json: unknown): Problem[] {
+  if (validate(json)) return [];
+  return withoutRepeats((validate.errors ?? []).map(problemOf));
+}
+
+function problemOf(error: ErrorObject): Problem {
+  const extra = error.params as { additionalProperty?: string; missingProperty?: string; allowedValues?: unknown[] };
+  const named = extra.additionalProperty ?? extra.missingProperty;
+  const path = named === undefined ? error.instancePath : `${error.instancePath}/${escapePointer(named)}`;
+  return { path, code: "layout.shape", message: messageOf(error, extra) };
+}
+
+function messageOf(
+  error: ErrorObject,
+  extra: { additionalProperty?: string; missingProperty?: string; allowedValues?: unknown[] },
+): string {
+  if (extra.additionalProperty !== undefined) return `“${extra.additionalProperty}” is not known here`;
+  if (extra.missingProperty !== undefined) return `“${extra.missingProperty}” is missing`;
+  if (extra.allowedValues !== undefined) return `must be one of ${extra.allowedValues.join(", ")}`;
+  return error.message ?? "is not valid";
+}
+
+/** Branches of a choice often complain of the same thing. */
+function withoutRepeats(problems: readonly Problem[]): Problem[] {
+  const seen = new Set<string>();
+  return problems.filter(({ path, message }) => !seen.has(path + message) && seen.add(path + message));
+}
+
+/** RFC 6901, section 3: `~` and `/` are escaped. */
+function escapePointer(token: string): string {
+  return token.replaceAll("~", "~0").replaceAll("/", "~1");
+}
