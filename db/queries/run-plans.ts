@@ -23,6 +23,7 @@ export interface RunPlanRow {
   createdAt: Date;
   createdByName: string;
   deviceCount: number;
+  equipmentCodes: string[];
 }
 
 function selectPlan(db: Db) {
@@ -53,6 +54,14 @@ function selectPlan(db: Db) {
         .select(sql<number>`count(*)::int`.as("count"))
         .whereRef("runPlanDevice.planId", "=", "runPlan.id")
         .as("deviceCount"),
+    )
+    .select((eb) =>
+      eb
+        .selectFrom("runPlanEquipment")
+        .innerJoin("equipment", "equipment.id", "runPlanEquipment.equipmentId")
+        .select(sql<string[]>`coalesce(array_agg(equipment.code order by equipment.code), '{}')`.as("codes"))
+        .whereRef("runPlanEquipment.planId", "=", "runPlan.id")
+        .as("equipmentCodes"),
     );
 }
 

@@ -64,6 +64,7 @@ const summaryMembers = {
   state: runPlanState,
   deviceCount: z.number().int(),
   points: z.array(plannedPoint),
+  equipmentCodes: z.array(z.string()),
   createdAt: timestamp,
   createdBy: z.string(),
 };

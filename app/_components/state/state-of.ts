@@ -54,6 +54,11 @@ const states = {
     superseded: { tone: "idle", word: "superseded", title: "Another release went live after it" },
     withdrawn: { tone: "bad", word: "withdrawn", title: "Stopped; no station may write it" },
   },
+  "run-plan": {
+    planned: { tone: "wait", word: "planned", title: "Waits for its readings" },
+    used: { tone: "good", word: "read", title: "Readings were uploaded for it" },
+    dropped: { tone: "idle", word: "dropped", title: "Will not be run" },
+  },
   reinstatement: {
     asked: { tone: "wait", word: "asked", title: "Waits for a second person" },
     done: { tone: "good", word: "done" },

@@ -88,6 +88,7 @@ function summaryOf(row: RunPlanRow): RunPlanSummary {
     state: row.state,
     deviceCount: row.deviceCount,
     points: row.points.map((point) => ({ ...point, loadsKg: [...point.loadsKg] })),
+    equipmentCodes: row.equipmentCodes,
     createdAt: row.createdAt.toISOString(),
     createdBy: row.createdByName,
   };

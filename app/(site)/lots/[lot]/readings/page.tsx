@@ -1,4 +1,5 @@
 import type { Metadata } from "next";
+import { LinkButton } from "@/app/_components/button";
 import { Card } from "@/app/_components/card";
 import { LotThread } from "@/app/_components/lot-thread";
 import { Notice } from "@/app/_components/notice";
@@ -7,8 +8,10 @@ import { TitleRow } from "@/app/_components/title-row";
 import { holds, orNotFound, pageContext } from "@/lib/http/page-context";
 import { listEquipment } from "@/lib/services/equipment/keep-equipment";
 import { getLotThread } from "@/lib/services/lots/get-lot-thread";
+import { listRunPlans } from "@/lib/services/run-plans/get-run-plan";
 import { listLotRuns } from "@/lib/services/runs/get-run";
 import type { RunView } from "@/schemas/api/runs";
+import { PlannedRuns } from "./planned-runs";
 import { UploadPanel } from "./upload-panel";
 
 export const metadata: Metadata = { title: "Readings" };
@@ -24,12 +27,20 @@ function rowOf(run: RunView) {
   };
 }
 
-export default async function ReadingsPage({ params }: { params: Promise<{ lot: string }> }) {
+interface PageProps {
+  params: Promise<{ lot: string }>;
+  /** What a link chose to upload for: a planned run, or a run to replace. */
+  searchParams: Promise<{ plan?: string; supersedes?: string }>;
+}
+
+export default async function ReadingsPage({ params, searchParams }: PageProps) {
   const ctx = await pageContext();
+  const { plan, supersedes } = await searchParams;
   const lot = decodeURIComponent((await params).lot);
   const thread = await orNotFound(getLotThread(ctx, lot));
   const { items } = await listLotRuns(ctx, thread.lot, { limit: 1_000 });
   const runs = items.map(rowOf);
+  const plans = (await listRunPlans(ctx, { lot: thread.lot, limit: 1_000 })).items;
   const isEngineer = holds(ctx, "engineer");
   const equipment = isEngineer ? (await listEquipment(ctx, { limit: 1_000 })).items : [];
   const today = ctx.now().toISOString().slice(0, 10);
@@ -43,9 +54,17 @@ export default async function ReadingsPage({ params }: { params: Promise<{ lot: 
         ]}
         title={`Readings of ${thread.lot}`}
         note="Thermal runs: one chamber session each, kept as uploaded"
+        actions={
+          isEngineer ? (
+            <LinkButton href={`/lots/${encodeURIComponent(thread.lot)}/readings/plan`} look="outline">
+              Plan a run
+            </LinkButton>
+          ) : undefined
+        }
       />
       <LotThread thread={thread} current="readings" />
       <div className="flex flex-col gap-[18px]">
+        <PlannedRuns plans={plans} />
         <Card title="Runs">
           <DataTable
             name="runs"
@@ -79,25 +98,38 @@ export default async function ReadingsPage({ params }: { params: Promise<{ lot: 
             empty={{
               title: "No readings yet",
               text: isEngineer
-                ? "Upload the readings of a chamber session below: a sample run for an individual or a pooled-gain trim, then zero, span and verification runs."
+                ? "Plan a run, or upload the readings of a chamber session below: a sample run for an individual or a pooled-gain trim, then zero, span and verification runs."
                 : "An engineer uploads the readings of a chamber session here.",
             }}
           />
         </Card>
         {isEngineer ? (
           <>
-            <UploadPanel
-              lot={thread.lot}
-              equipment={equipment.map(({ code, kind, calibratedUntil }) => ({
-                code,
-                kind,
-                calibratedUntil,
-                overdue: calibratedUntil < today,
-              }))}
-              runs={runs
-                .filter((run) => run.counted)
-                .map(({ id, purpose, createdAt, devices }) => ({ id, purpose, createdAt, devices }))}
-            />
+            <div id="upload" className="scroll-mt-20">
+              <UploadPanel
+                key={`${plan} ${supersedes}`}
+                lot={thread.lot}
+                start={{ plan, supersedes }}
+                plans={plans
+                  .filter((one) => one.state === "planned")
+                  .map(({ id, name, purpose, equipmentCodes }) => ({ id, name, purpose, equipment: equipmentCodes }))}
+                equipment={equipment.map(({ code, kind, calibratedUntil }) => ({
+                  code,
+                  kind,
+                  calibratedUntil,
+                  overdue: calibratedUntil < today,
+                }))}
+                runs={runs
+                  .filter((run) => run.counted)
+                  .map((run) => ({
+                    id: run.id,
+                    purpose: run.purpose,
+                    createdAt: run.createdAt,
+                    devices: run.devices,
+                    planId: run.plan?.id ?? null,
+                  }))}
+              />
+            </div>
             <Notice tone="caution" title="At the chamber">
               Surfaces are hot or cold, loads hang or stand high, and a cold device draws moisture: let it warm up
               before it is switched on. The procedures of your site come first.

@@ -32,7 +32,11 @@ export interface UploadPanelProps {
   lot: string;
   equipment: readonly { code: string; kind: string; calibratedUntil: string; overdue: boolean }[];
   /** Runs that count and so may be replaced. */
-  runs: readonly { id: string; purpose: string; createdAt: string; devices: number }[];
+  runs: readonly { id: string; purpose: string; createdAt: string; devices: number; planId: string | null }[];
+  /** Planned runs that wait for their readings. */
+  plans: readonly { id: string; name: string; purpose: string; equipment: readonly string[] }[];
+  /** What a link chose: the planned run, or the run to replace. */
+  start?: { plan?: string; supersedes?: string };
 }
 
 interface Uploaded {
@@ -45,15 +49,18 @@ interface Uploaded {
 }
 
 /** Takes the readings of a run: file, purpose, equipment, and what the run replaces. Nothing is stored unless all of it is taken. */
-export function UploadPanel({ lot, equipment, runs }: UploadPanelProps) {
+export function UploadPanel({ lot, equipment, runs, plans, start = {} }: UploadPanelProps) {
   const router = useRouter();
+  const startPlan = plans.find((one) => one.id === start.plan);
+  const startRun = runs.find((one) => one.id === start.supersedes);
   const [file, setFile] = useState<File>();
   const [table, setTable] = useState<GivenTable>();
   const [mapped, setMapped] = useState<string>();
-  const [purpose, setPurpose] = useState("");
-  const [used, setUsed] = useState<readonly string[]>([]);
+  const [purpose, setPurpose] = useState(startPlan?.purpose ?? startRun?.purpose ?? "");
+  const [plan, setPlan] = useState(startPlan?.id ?? "");
+  const [used, setUsed] = useState<readonly string[]>(startPlan?.equipment ?? []);
   const [addDevices, setAddDevices] = useState(false);
-  const [supersedes, setSupersedes] = useState("");
+  const [supersedes, setSupersedes] = useState(startRun?.id ?? "");
   const [reason, setReason] = useState("");
   const [pending, setPending] = useState(false);
   const [problem, setProblem] = useState<ProblemDetails>();
@@ -76,6 +83,15 @@ export function UploadPanel({ lot, equipment, runs }: UploadPanelProps) {
   const changePurpose = (next: string) => {
     setPurpose(next);
     setSupersedes("");
+    setPlan("");
+  };
+  const choosePlan = (id: string) => {
+    const chosen = plans.find((one) => one.id === id);
+    setPlan(id);
+    if (!chosen) return;
+    setPurpose(chosen.purpose);
+    setUsed(chosen.equipment);
+    setSupersedes("");
   };
   const send = async () => {
     if (!file) return;
@@ -85,6 +101,9 @@ export function UploadPanel({ lot, equipment, runs }: UploadPanelProps) {
       query.set("supersedes", supersedes);
       query.set("reason", reason);
     }
+    // A corrected file stays the reading of what was planned.
+    const planned = runs.find((run) => run.id === supersedes)?.planId ?? plan;
+    if (planned) query.set("plan", planned);
     setPending(true);
     setProblem(undefined);
     try {
@@ -120,6 +139,16 @@ export function UploadPanel({ lot, equipment, runs }: UploadPanelProps) {
           help="Columns serial, point, chamber_c (°C by the reference sensor, corrected), soak_min, device_temp, load_kg, signal_mv_v, taken_at; optional position, hardware_id, dwell_s, output_mv_v."
         />
         {table ? <ColumnMapping table={table} onMapped={setMapped} /> : null}
+        {plans.length > 0 ? (
+          <Select
+            label="Planned as"
+            placeholder="No planned run"
+            value={plan}
+            onChange={(event) => choosePlan(event.currentTarget.value)}
+            options={plans.map((one) => ({ value: one.id, name: `${one.name}, ${one.purpose} run` }))}
+            help="What was planned and what was read are held against each other: missing readings, swapped positions, other loads."
+          />
+        ) : null}
         <div className="grid gap-4 md:grid-cols-2">
           <Select
             label="Purpose"
@@ -134,7 +163,10 @@ export function UploadPanel({ lot, equipment, runs }: UploadPanelProps) {
             placeholder="No earlier run"
             disabled={replaceable.length === 0}
             value={supersedes}
-            onChange={(event) => setSupersedes(event.currentTarget.value)}
+            onChange={(event) => {
+              setSupersedes(event.currentTarget.value);
+              setPlan("");
+            }}
             options={replaceable.map((run) => ({
               value: run.id,
               name: `${run.purpose} run of ${formatDateTime(run.createdAt)}, ${formatNumberOf(run.devices, "device")}`,
