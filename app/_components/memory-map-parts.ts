@@ -1,6 +1,7 @@
 import { type MapPart, tintOfSource } from "@/app/_components/memory-map-rows";
+import { findChecksumWidth, rangesOf } from "@/builders/codec/checksum-algorithm";
 import { findFieldWidth } from "@/builders/codec/field-types";
-import { findChecksumWidth } from "@/builders/codec/memory-map";
+
 import type { LayoutDocument } from "@/schemas/documents/layout";
 
 export interface LayoutMemory {
@@ -22,7 +23,7 @@ export function memoryOfLayout(layout: LayoutDocument): LayoutMemory {
   });
   const checksums = layout.checksums.flatMap(({ name, at, algorithm, over }): MapPart[] => {
     const length = findChecksumWidth(algorithm);
-    return length === undefined ? [] : [{ name, at, length, tint: "checksum", over }];
+    return length === undefined ? [] : [{ name, at, length, tint: "checksum", over: rangesOf(over) }];
   });
   const kept = (layout.kept ?? []).map(
     ([from, to]): MapPart => ({ name: "kept", at: from, length: to - from + 1, tint: "kept" }),

@@ -7,8 +7,8 @@ export interface MapPart {
   tint: "identity" | "version" | "temperature" | "zero" | "gain" | "checksum" | "other" | "kept";
   /** The bytes are text. */
   isText?: boolean;
-  /** Inclusive range that a checksum covers. */
-  over?: readonly [number, number];
+  /** Inclusive ranges that a checksum covers. */
+  over?: readonly (readonly [number, number])[];
 }
 
 export interface MapRow {

@@ -56,24 +56,26 @@ export function MemoryMap({ bytes, pageBytes, parts, hex, label }: MemoryMapProp
       </table>
       {covering ? (
         <p role="status" className="mt-1 text-xs text-ink-soft">
-          {covering.name} covers {over ? `${formatAddress(over[0])} to ${formatAddress(over[1])}` : "nothing"}
+          {covering.name} covers {over ? over.map(rangeText).join(", then ") : "nothing"}
         </p>
       ) : null}
     </div>
   );
 }
 
+const rangeText = ([from, to]: readonly [number, number]) => `${formatAddress(from)} to ${formatAddress(to)}`;
+
 interface RowCellsProps {
   row: MapRow;
   hex: string | undefined;
-  over: readonly [number, number] | undefined;
+  over: MapPart["over"];
   onCover: (part: MapPart | undefined) => void;
   pageStart: boolean;
 }
 
 function RowCells({ row, hex, over, onCover, pageStart }: RowCellsProps) {
   return cellsOf(row).map((cell) => {
-    const covered = over !== undefined && cell.at <= over[1] && cell.at + cell.length - 1 >= over[0];
+    const covered = over?.some(([from, to]) => cell.at <= to && cell.at + cell.length - 1 >= from) ?? false;
     const outline = covered ? "outline-2 -outline-offset-1 outline-oxide" : "";
     const page = pageStart ? "border-t-2 border-t-ink-faint" : "";
     if (!cell.part) {

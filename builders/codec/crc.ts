@@ -1,8 +1,8 @@
 import { AppError } from "@/lib/errors";
 
-/** A cyclic redundancy check in the usual parameters: width 8, 16 or 32 bits; poly, init and xorout as unsigned numbers. */
+/** A cyclic redundancy check in the usual parameters: width 8, 16, 24 or 32 bits; poly, init and xorout as unsigned numbers. */
 export interface CrcParameters {
-  width: 8 | 16 | 32;
+  width: 8 | 16 | 24 | 32;
   poly: number;
   init: number;
   refin: boolean;
@@ -10,7 +10,7 @@ export interface CrcParameters {
   xorout: number;
 }
 
-/** Check of the bytes from `from` up to, not including, `end`, as an unsigned number. */
+/** Check of the bytes from `from` up to, not including, `end`, as an unsigned number; a sum over them has the same shape. */
 export type Crc = (bytes: Uint8Array, from: number, end: number) => number;
 
 const parameters = (
@@ -58,7 +58,7 @@ export function getCrc(name: string): Crc {
   return crc;
 }
 
-/** Builds the table-driven check for any parameters of 8, 16 or 32 bits. */
+/** Builds the table-driven check for any parameters of 8, 16, 24 or 32 bits. */
 export function makeCrc(p: CrcParameters): Crc {
   const table = p.refin ? reflectedTable(p) : forwardTable(p);
   const mask = maskOf(p.width);

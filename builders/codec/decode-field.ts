@@ -1,10 +1,13 @@
 import type { CompiledField } from "@/builders/codec/compile-layout";
 import { toHex } from "@/builders/codec/hex-text";
+import { readBcd, readBits, readUnsigned } from "@/builders/codec/stored-integer";
 
 /**
- * The value that the stored bytes stand for: raw · scale + bias for integers, the number itself for f32 and f64, text
- * without its NUL padding for ascii, lower-case hex for bytes.
- * @returns null where the bytes hold no value: a NaN or infinity, or text that is not printable ASCII padded with NUL.
+ * The value that the stored bytes stand for: raw · scale + bias for integers, packed decimal and fixed point, the name for
+ * an enumeration, decimal digits for 64-bit integers, the number itself for f32 and f64, text without its NUL padding
+ * for ascii, lower-case hex for bytes.
+ * @returns null where the bytes hold no value: a NaN or infinity, half bytes that are no digits, a number without a name, or
+ * text that is not printable ASCII padded with NUL.
  */
 export function decodeField(field: CompiledField, bytes: Uint8Array, view: DataView): number | string | null {
   switch (field.type) {
@@ -16,25 +19,29 @@ export function decodeField(field: CompiledField, bytes: Uint8Array, view: DataV
       return finiteOrNull(view.getFloat32(field.at, field.littleEndian));
     case "f64":
       return finiteOrNull(view.getFloat64(field.at, field.littleEndian));
+    case "u64":
+      return String(view.getBigUint64(field.at, field.littleEndian));
+    case "i64":
+      return String(view.getBigInt64(field.at, field.littleEndian));
     default:
-      return readStored(field, bytes) * field.scale + field.bias;
+      return decodeInteger(field, bytes);
   }
 }
 
-/** The stored integer of an integer field, before scale and bias. */
-export function readStored(field: CompiledField, bytes: Uint8Array): number {
-  const value = readUnsigned(bytes, field.at, field.width, field.littleEndian);
-  const { number } = field;
-  return number && number.min < 0 && value > number.max ? value - 2 ** (8 * field.width) : value;
+function decodeInteger(field: CompiledField, bytes: Uint8Array): number | string | null {
+  const stored = readStored(field, bytes);
+  if (stored === null) return null;
+  if (field.names) return field.names.name.get(stored) ?? null;
+  return stored * field.scale + field.bias;
 }
 
-/** An unsigned integer of up to 32 bits. */
-export function readUnsigned(bytes: Uint8Array, at: number, width: number, littleEndian: boolean): number {
-  let value = 0;
-  for (let i = 0; i < width; i++) {
-    value = value * 256 + (bytes[littleEndian ? at + width - 1 - i : at + i] as number);
-  }
-  return value;
+/** The stored integer of a field of up to 32 bits, before scale and bias; null where packed decimal holds no digits. */
+export function readStored(field: CompiledField, bytes: Uint8Array): number | null {
+  if (field.type === "bcd") return readBcd(bytes, field) ?? null;
+  const { number, bits } = field;
+  const value = bits ? readBits(bytes, field, bits) : readUnsigned(bytes, field.at, field.width, field.littleEndian);
+  if (!number || number.min >= 0 || value <= number.max) return value;
+  return value - 2 ** (bits ? bits.width : 8 * field.width);
 }
 
 function finiteOrNull(value: number): number | null {

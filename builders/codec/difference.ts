@@ -1,4 +1,4 @@
-import type { CompiledLayout } from "@/builders/codec/compile-layout";
+import type { CompiledField, CompiledLayout } from "@/builders/codec/compile-layout";
 import { readStored } from "@/builders/codec/decode-field";
 import { type DecodedField, decodeImage, imageDigestBytes } from "@/builders/codec/image";
 import { type LayoutPairing, pairingOf } from "@/builders/codec/layout-pairing";
@@ -71,7 +71,7 @@ function fieldDifferences(pairing: LayoutPairing, before: Uint8Array, after: Uin
     const old = oldIndex === null ? undefined : olds[oldIndex];
     if (!old) differences.push({ name, from: null, to: value, unit, steps: null });
     else if (!isSameValue(old, { value, unit, raw })) {
-      const steps = counted && readStored(counted.to, after) - readStored(counted.from, before);
+      const steps = counted && stepsBetween(counted, before, after);
       differences.push({ name, from: old.value, to: value, unit, steps });
     }
   });
@@ -80,6 +80,17 @@ function fieldDifferences(pairing: LayoutPairing, before: Uint8Array, after: Uin
     differences.push({ name, from: value, to: null, unit, steps: null });
   }
   return differences;
+}
+
+/** Null where one of the two holds no integer (half bytes that are no digits). */
+function stepsBetween(
+  counted: { from: CompiledField; to: CompiledField },
+  before: Uint8Array,
+  after: Uint8Array,
+): number | null {
+  const from = readStored(counted.from, before);
+  const to = readStored(counted.to, after);
+  return from === null || to === null ? null : to - from;
 }
 
 type Reading = Pick<DecodedField, "value" | "unit" | "raw">;
@@ -94,10 +105,17 @@ function changeOf(
   fields: readonly FieldDifference[],
   bytes: readonly ByteDifference[],
 ): ImageDifference["change"] {
-  const sameMemory = from.bytes === to.bytes && from.baseAddress === to.baseAddress;
+  const sameMemory = from.bytes === to.bytes && isSamePlace(from, to);
   if (!sameMemory || (bytes.length === 0 && fields.length > 0)) return "values";
   if (bytes.length === 0) return "same";
   const onlyVersion =
     fields.every((field) => versionNames.has(field.name)) && bytes.every(({ at }) => isVersionByte[at] === 1);
   return onlyVersion ? "version-only" : "values";
+}
+
+/** The same bytes at other addresses are another image. */
+function isSamePlace(from: CompiledLayout, to: CompiledLayout): boolean {
+  if (from === to) return true;
+  if (from.segments.length !== to.segments.length) return false;
+  return from.segments.every(({ at, address }, i) => at === to.segments[i]?.at && address === to.segments[i]?.address);
 }

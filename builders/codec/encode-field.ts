@@ -1,5 +1,7 @@
 import type { CompiledField } from "@/builders/codec/compile-layout";
 import { roundHalfEven } from "@/builders/codec/round-half-even";
+import { writeBcd, writeBits, writeInteger } from "@/builders/codec/stored-integer";
+import { isWideText, wideEnds } from "@/builders/codec/wide-integer";
 import { AppError } from "@/lib/errors";
 
 /** Where a value is written and whose it is, for errors. */
@@ -10,17 +12,21 @@ export interface EncodeTarget {
 }
 
 /**
- * Writes one value. Integers are stored as round-half-even((value − bias) / scale), in binary64, one subtraction and
- * then one division; f32 is the nearest binary32, ties to even. Limits are inclusive and apply before rounding.
+ * Writes one value. Integers, packed decimal and fixed point are stored as round-half-even((value − bias) / scale), in
+ * binary64, one subtraction and then one division; f32 is the nearest binary32, ties to even. Limits are inclusive and
+ * apply before rounding. Of an enumeration the name or the stored number is taken, of 64-bit integers decimal digits or
+ * a number.
  * @throws AppError with {serial, field, value, limit}: `image.source_missing`, `image.not_finite`,
  * `image.limit_exceeded`, `image.value_out_of_range`, `image.value_not_numeric`, `image.value_not_text`,
- * `image.not_ascii`, `image.serial_too_long`, `image.text_too_long`. Nothing is clamped or wrapped.
+ * `image.value_not_named`, `image.not_ascii`, `image.serial_too_long`, `image.text_too_long`. Nothing is clamped or wrapped.
  */
 export function encodeField(field: CompiledField, value: unknown, target: EncodeTarget): void {
   if (value === null || value === undefined) {
     throw refusal("image.source_missing", field, value, null, target.serial, "has no value");
   }
-  if (field.number) encodeNumber(field, value, target);
+  if (field.names) writeStored(field, storedOfName(field, field.names, value, target.serial), target.bytes);
+  else if (field.number?.kind === "wide") encodeWide(field, value, target);
+  else if (field.number) encodeNumber(field, value, target);
   else if (field.type === "ascii") encodeText(field, value, target);
   else encodeHexConstant(field, value, target);
 }
@@ -32,16 +38,23 @@ function encodeNumber(field: CompiledField, value: unknown, target: EncodeTarget
   if (!Number.isFinite(value)) {
     throw refusal("image.not_finite", field, String(value), null, target.serial, "is not a finite number");
   }
-  if (value < field.min) {
-    throw refusal("image.limit_exceeded", field, value, field.min, target.serial, `is below the limit ${field.min}`);
-  }
-  if (value > field.max) {
-    throw refusal("image.limit_exceeded", field, value, field.max, target.serial, `is above the limit ${field.max}`);
-  }
+  assertWithinLimits(field, value, target.serial);
   if (field.type === "f64") target.view.setFloat64(field.at, value, field.littleEndian);
   else if (field.type === "f32") encodeSingle(field, value, target);
   else encodeInteger(field, value, target);
 }
+
+function assertWithinLimits(field: CompiledField, value: number | bigint, serial: string): void {
+  if (value < field.min) {
+    throw refusal("image.limit_exceeded", field, told(value), field.min, serial, `is below the limit ${field.min}`);
+  }
+  if (value > field.max) {
+    throw refusal("image.limit_exceeded", field, told(value), field.max, serial, `is above the limit ${field.max}`);
+  }
+}
+
+/** Errors travel as JSON, which has no bigint. */
+const told = (value: number | bigint) => (typeof value === "bigint" ? String(value) : value);
 
 function encodeSingle(field: CompiledField, value: number, target: EncodeTarget): void {
   const single = Math.fround(value);
@@ -55,16 +68,43 @@ function encodeInteger(field: CompiledField, value: number, target: EncodeTarget
   if (!(stored >= type.min && stored <= type.max)) {
     throw outOfRange(field, value, stored < type.min, target.serial);
   }
-  writeInteger(target.bytes, field.at, field.width, field.littleEndian, stored);
+  writeStored(field, stored, target.bytes);
 }
 
-/** Writes an integer of up to 32 bits in two's complement. */
-export function writeInteger(bytes: Uint8Array, at: number, width: number, littleEndian: boolean, value: number): void {
-  if (littleEndian) {
-    for (let i = 0; i < width; i++) bytes[at + i] = value >> (8 * i);
-  } else {
-    for (let i = 0; i < width; i++) bytes[at + i] = value >> (8 * (width - 1 - i));
+function writeStored(field: CompiledField, stored: number, bytes: Uint8Array): void {
+  if (field.bits) writeBits(bytes, field, field.bits, stored);
+  else if (field.type === "bcd") writeBcd(bytes, field, stored);
+  else writeInteger(bytes, field.at, field.width, field.littleEndian, stored);
+}
+
+function storedOfName(
+  field: CompiledField,
+  names: NonNullable<CompiledField["names"]>,
+  value: unknown,
+  serial: string,
+): number {
+  const stored = typeof value === "string" ? names.stored.get(value) : (value as number);
+  if (stored !== undefined && names.name.has(stored)) return stored;
+  const known = [...names.stored.keys()].join(", ");
+  throw refusal("image.value_not_named", field, value, null, serial, `is none of ${known}`);
+}
+
+function encodeWide(field: CompiledField, value: unknown, target: EncodeTarget): void {
+  const { serial, view } = target;
+  if (typeof value === "number" && !Number.isFinite(value)) {
+    throw refusal("image.not_finite", field, String(value), null, serial, "is not a finite number");
   }
+  if (typeof value !== "number" && !isWideText(value)) {
+    throw refusal("image.value_not_numeric", field, value, null, serial, "is not a whole number in decimal digits");
+  }
+  const stored = BigInt(typeof value === "number" ? roundHalfEven(value) : value);
+  assertWithinLimits(field, typeof value === "number" ? value : stored, serial);
+  const { min, max } = wideEnds(field.type);
+  if (stored < min || stored > max) {
+    const limit = String(stored < min ? min : max);
+    throw refusal("image.value_out_of_range", field, value, limit, serial, `does not fit into ${field.type}`);
+  }
+  view.setBigInt64(field.at, BigInt.asIntN(64, stored), field.littleEndian);
 }
 
 function encodeText(field: CompiledField, value: unknown, target: EncodeTarget): void {
@@ -99,14 +139,15 @@ function outOfRange(field: CompiledField, value: number, below: boolean, serial:
   const type = field.number as NonNullable<CompiledField["number"]>;
   const end = below ? type.min : type.max;
   const limit = type.kind === "integer" ? end * field.scale + field.bias : end;
-  return refusal("image.value_out_of_range", field, value, limit, serial, `does not fit into ${field.type}`);
+  const size = field.bits ? `${field.bits.width} bits` : field.type;
+  return refusal("image.value_out_of_range", field, value, limit, serial, `does not fit into ${size}`);
 }
 
 function refusal(
   code: string,
   field: CompiledField,
   value: unknown,
-  limit: number | null,
+  limit: number | string | null,
   serial: string,
   reason: string,
 ): AppError {

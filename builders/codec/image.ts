@@ -1,25 +1,27 @@
+import { type CompiledChecksum, findStoredSum } from "@/builders/codec/compile-checksum";
 import type { CompiledLayout } from "@/builders/codec/compile-layout";
-import { decodeField, readUnsigned } from "@/builders/codec/decode-field";
-import { encodeField, writeInteger } from "@/builders/codec/encode-field";
+import { decodeField } from "@/builders/codec/decode-field";
+import { encodeField } from "@/builders/codec/encode-field";
 import { toHex } from "@/builders/codec/hex-text";
 import type { ImageSources } from "@/builders/codec/sources";
+import { readUnsigned, writeInteger } from "@/builders/codec/stored-integer";
 import { AppError } from "@/lib/errors";
 
-/** One field or checksum of an image as read. Members stand in the order of RFC 8785, so that writing them is canonical. */
+/** One field, element, part of bits or checksum of an image as read. Members stand in the order of RFC 8785, so that writing them is canonical. */
 export interface DecodedField {
   at: number;
   name: string;
   /** Lower-case hex of the stored bytes. */
   raw: string;
   unit: string | null;
-  /** Null where the bytes hold no value (NaN, unprintable text). */
+  /** Null where the bytes hold no value (NaN, unprintable text, a number without a name). */
   value: number | string | null;
 }
 
 export interface ChecksumResult {
   name: string;
   ok: boolean;
-  /** Computed over the covered bytes, as an unsigned number. */
+  /** Computed over the covered bytes, as an unsigned number; what is stored instead where that is forbidden. */
   expected: number;
   /** As stored, as an unsigned number. */
   stored: number;
@@ -27,16 +29,28 @@ export interface ChecksumResult {
 
 /**
  * The bytes of one device's EEPROM: fill everywhere, then the fields, then the checksums in the order listed.
- * @throws AppError as {@link encodeField}, with {serial, field, value, limit}.
+ * @throws AppError as {@link encodeField} and `image.checksum_forbidden`, with {serial, field, value, limit}.
  */
 export function encodeImage(layout: CompiledLayout, sources: ImageSources): Uint8Array<ArrayBuffer> {
   const bytes = new Uint8Array(layout.bytes).fill(layout.fill);
   const target = { bytes, view: new DataView(bytes.buffer), serial: sources.device.serial };
   for (const field of layout.fields) encodeField(field, field.read(sources), target);
   for (const sum of layout.checksums) {
-    writeInteger(bytes, sum.at, sum.width, sum.littleEndian, sum.crc(bytes, sum.from, sum.end));
+    writeInteger(bytes, sum.at, sum.width, sum.littleEndian, storedSum(sum, bytes, target.serial));
   }
   return bytes;
+}
+
+function storedSum(sum: CompiledChecksum, bytes: Uint8Array, serial: string): number {
+  const computed = sum.compute(bytes);
+  const stored = findStoredSum(sum, computed);
+  if (stored !== undefined) return stored;
+  const value = computed
+    .toString(16)
+    .toUpperCase()
+    .padStart(2 * sum.width, "0");
+  const message = `${serial}: ${sum.name} would be ${value}, which the layout forbids; name a value “instead”, or change what it covers`;
+  throw new AppError("image.checksum_forbidden", { serial, field: sum.name, value, limit: null, message });
 }
 
 /**
@@ -75,9 +89,10 @@ export function decodeImage(layout: CompiledLayout, bytes: Uint8Array): DecodedF
 export function checkChecksums(layout: CompiledLayout, bytes: Uint8Array): ChecksumResult[] {
   assertLength(layout, bytes);
   return layout.checksums.map((sum) => {
-    const expected = sum.crc(bytes, sum.from, sum.end);
+    const computed = sum.compute(bytes);
+    const allowed = findStoredSum(sum, computed);
     const stored = readUnsigned(bytes, sum.at, sum.width, sum.littleEndian);
-    return { name: sum.name, ok: expected === stored, expected, stored };
+    return { name: sum.name, ok: allowed === stored, expected: allowed ?? computed, stored };
   });
 }
 

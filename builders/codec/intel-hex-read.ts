@@ -1,29 +1,20 @@
-import { AppError } from "@/lib/errors";
+import {
+  bytesOfDigits,
+  type FilePiece,
+  type HexFile,
+  joinPieces,
+  linesOf,
+  numberOf,
+  lineRefusal as refusal,
+} from "@/builders/codec/file-segments";
 
-/** Bytes without a gap from an address on. */
-export interface HexSegment {
-  address: number;
-  bytes: Uint8Array;
-}
-
-export interface HexFile {
-  /** In rising order, touching ones joined. */
-  segments: HexSegment[];
-  /** Stretches between segments that the file says nothing about. */
-  gaps: { address: number; length: number }[];
-  /** From a start record (types 03 and 05), as the 32 bits in it; null without one. */
-  start: number | null;
-}
+export type { HexFile, HexSegment } from "@/builders/codec/file-segments";
 
 interface Record {
   line: number;
   offset: number;
   type: number;
   data: Uint8Array;
-}
-
-interface Piece extends HexSegment {
-  line: number;
 }
 
 /**
@@ -34,16 +25,14 @@ interface Piece extends HexSegment {
  * which readers disagree), `hex.address_out_of_range`, `hex.overlap` {first}, `hex.after_end`, `hex.no_end`.
  */
 export function readIntelHex(text: string): HexFile {
-  const pieces: Piece[] = [];
+  const pieces: FilePiece[] = [];
   let base = 0;
   let segmented = false;
   let start: number | null = null;
   let endLine = 0;
-  const lines = text.split("\n");
-  if (lines.at(-1) === "") lines.pop();
-  lines.forEach((raw, i) => {
+  const lines = linesOf(text);
+  lines.forEach((content, i) => {
     const line = i + 1;
-    const content = raw.endsWith("\r") ? raw.slice(0, -1) : raw;
     if (endLine > 0) {
       if (content === "") return;
       throw refusal("hex.after_end", line, "stands after the end record", { end: endLine });
@@ -75,8 +64,7 @@ export function readIntelHex(text: string): HexFile {
     }
   });
   if (endLine === 0) throw refusal("hex.no_end", lines.length, "is the last one, and there is no end record");
-  const segments = join(pieces);
-  return { segments, gaps: gapsBetween(segments), start };
+  return { ...joinPieces(pieces, "hex"), start };
 }
 
 function parseRecord(content: string, line: number): Record {
@@ -89,20 +77,12 @@ function parseRecord(content: string, line: number): Record {
     const actual = (digits.length - 10) / 2;
     throw refusal("hex.wrong_length", line, "is not as long as it says", { declared, actual });
   }
-  const bytes = new Uint8Array(digits.length / 2);
-  for (let i = 0; i < bytes.length; i++) {
-    bytes[i] = nibble(digits.charCodeAt(2 * i)) * 16 + nibble(digits.charCodeAt(2 * i + 1));
-  }
+  const bytes = bytesOfDigits(digits);
   // All bytes of a record, its checksum among them, sum to 0 modulo 256.
   const sum = bytes.reduce((total, byte) => (total + byte) & 0xff, 0);
   if (sum !== 0) throw refusal("hex.bad_checksum", line, "has a wrong checksum");
   const [, high = 0, low = 0, type = 0] = bytes;
   return { line, offset: high * 256 + low, type, data: bytes.slice(4, -1) };
-}
-
-/** Value of a hex digit's character code: letters of both cases share their low bits. */
-function nibble(code: number): number {
-  return code <= 0x39 ? code - 0x30 : (code & 0xf) + 9;
 }
 
 function addressOf(record: Record, base: number, segmented: boolean): number {
@@ -124,53 +104,6 @@ function assertRecord(record: Record, length: number): void {
   }
 }
 
-/** Bytes as one unsigned number, high byte first. */
-function numberOf(data: Uint8Array): number {
-  return data.reduce((total, byte) => total * 256 + byte, 0);
-}
-
-function join(pieces: Piece[]): HexSegment[] {
-  const rising = pieces
-    .filter((piece) => piece.bytes.length > 0)
-    .sort((a, b) => a.address - b.address || a.line - b.line);
-  const groups: Piece[][] = [];
-  let next = -1;
-  let last: Piece | undefined;
-  for (const piece of rising) {
-    if (last && piece.address < next) {
-      const [first, second] = last.line < piece.line ? [last, piece] : [piece, last];
-      throw refusal("hex.overlap", second.line, `writes bytes that line ${first.line} wrote`, { first: first.line });
-    }
-    if (piece.address === next) groups.at(-1)?.push(piece);
-    else groups.push([piece]);
-    next = piece.address + piece.bytes.length;
-    last = piece;
-  }
-  return groups.map(joinGroup);
-}
-
-function joinGroup(group: Piece[]): HexSegment {
-  const bytes = new Uint8Array(group.reduce((total, piece) => total + piece.bytes.length, 0));
-  let at = 0;
-  for (const piece of group) {
-    bytes.set(piece.bytes, at);
-    at += piece.bytes.length;
-  }
-  return { address: group[0]?.address ?? 0, bytes };
-}
-
-function gapsBetween(segments: readonly HexSegment[]): HexFile["gaps"] {
-  return segments.slice(1).map((segment, i) => {
-    const before = segments[i] as HexSegment;
-    const address = before.address + before.bytes.length;
-    return { address, length: segment.address - address };
-  });
-}
-
 function hex2(value: number): string {
   return value.toString(16).toUpperCase().padStart(2, "0");
-}
-
-function refusal(code: string, line: number, reason: string, details: { [key: string]: number } = {}): AppError {
-  return new AppError(code, { line, ...details, message: `Line ${line} ${reason}` });
 }

@@ -1,5 +1,5 @@
 import { UPPER_HEX } from "@/builders/codec/hex-text";
-import { rangesBetween } from "@/builders/codec/memory-map";
+import { listSegments, listWrittenPieces, type MemoryPiece } from "@/builders/codec/segments";
 import { AppError } from "@/lib/errors";
 import type { ByteRange } from "@/schemas/documents/layout";
 
@@ -7,34 +7,48 @@ const RECORD_BYTES = 16;
 const END_RECORD = ":00000001FF\n";
 
 /**
- * An image as Intel HEX (contract, section 5; record layout: Hexadecimal Object File Format Specification, Rev. A, 1988).
- * Records hold up to 16 bytes, start at addresses that are multiples of 16 (or at the first byte, or after a kept
- * range) and never cross one; an extended linear address record stands before the first record of each 64 K above the
- * first; upper case, LF, one end record. Only kept ranges are left out.
+ * An image in one piece as Intel HEX; see {@link writeHexPieces}.
  * @param baseAddress address of byte 0.
- * @param kept inclusive offsets, in any order.
+ * @param kept inclusive offsets, in any order: the only bytes that are left out.
  * @throws AppError `hex.address_out_of_range` where the image ends above address FFFFFFFF.
  */
 export function writeIntelHex(bytes: Uint8Array, baseAddress: number, kept: readonly ByteRange[]): string {
-  if (baseAddress < 0 || baseAddress + bytes.length > 2 ** 32) {
-    throw new AppError("hex.address_out_of_range", { baseAddress, bytes: bytes.length });
-  }
+  return writeHexPieces(bytes, listWrittenPieces(listSegments({ bytes: bytes.length, baseAddress }), kept));
+}
+
+/**
+ * Pieces of an image as Intel HEX (contract, section 5; record layout: Hexadecimal Object File Format Specification, Rev. A,
+ * 1988). Records hold up to 16 bytes, start at addresses that are multiples of 16 (or at the first byte of a piece) and
+ * never cross one; an extended linear address record stands before the first record of each 64 K above the first; upper
+ * case, LF, one end record.
+ * @param pieces by rising address.
+ * @throws AppError `hex.address_out_of_range` where one ends above address FFFFFFFF.
+ */
+export function writeHexPieces(bytes: Uint8Array, pieces: readonly MemoryPiece[]): string {
   let text = "";
   let upper = 0;
-  for (const [from, to] of rangesBetween(kept, bytes.length)) {
-    let at = from;
-    while (at <= to) {
-      const address = baseAddress + at;
+  for (const piece of pieces) {
+    const { end, address: start } = piece;
+    assertAddresses(piece);
+    let at = piece.at;
+    while (at < end) {
+      const address = start + at - piece.at;
       if (Math.floor(address / 0x10000) !== upper) {
         upper = Math.floor(address / 0x10000);
         text += upperAddressRecord(upper);
       }
-      const end = Math.min(to + 1, at + RECORD_BYTES - (address % RECORD_BYTES));
-      text += dataRecord(bytes, at, end, address & 0xffff);
-      at = end;
+      const next = Math.min(end, at + RECORD_BYTES - (address % RECORD_BYTES));
+      text += dataRecord(bytes, at, next, address & 0xffff);
+      at = next;
     }
   }
   return text + END_RECORD;
+}
+
+/** @throws AppError `hex.address_out_of_range` {baseAddress, bytes} */
+export function assertAddresses({ at, end, address }: MemoryPiece): void {
+  if (address >= 0 && address + end - at <= 2 ** 32) return;
+  throw new AppError("hex.address_out_of_range", { baseAddress: address, bytes: end - at });
 }
 
 function dataRecord(bytes: Uint8Array, at: number, end: number, low: number): string {

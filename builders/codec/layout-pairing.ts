@@ -61,15 +61,21 @@ function matchParts(olds: readonly Part[], news: readonly Part[]): (number | und
 function placeOf({ kind, part }: Part): string {
   const reading =
     kind === "field"
-      ? [part.type, part.scale, part.bias, part.unit, part.source]
-      : [part.algorithm, part.from, part.end];
+      ? [...readingOf(part), part.unit, part.source]
+      : [part.algorithm, part.over, [...part.forbidden].sort(), part.instead];
   return JSON.stringify([kind, part.at, part.width, part.littleEndian, ...reading]);
 }
 
-/** Integers of one type, scale and bias. */
+/** All that turns stored bytes into a value. */
+function readingOf({ type, number, bits, scale, bias, names }: CompiledField): unknown[] {
+  return [type, number?.min, number?.max, bits, scale, bias, names && [...names.name].sort()];
+}
+
+/** Integers of one size, scale and bias; a name has no steps. */
 function countedFields(old: Part, part: Part): LayoutPairing["matches"][number]["counted"] {
   if (old.kind !== "field" || part.kind !== "field" || part.part.number?.kind !== "integer") return null;
-  const same = (["type", "scale", "bias"] as const).every((key) => old.part[key] === part.part[key]);
+  if (old.part.names || part.part.names) return null;
+  const same = JSON.stringify(readingOf(old.part)) === JSON.stringify(readingOf(part.part));
   return same ? { from: old.part, to: part.part } : null;
 }
 

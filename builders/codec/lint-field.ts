@@ -1,10 +1,18 @@
-import { findFieldWidth, findNumberType, isHexPairs, type NumberType } from "@/builders/codec/field-types";
-import { roundHalfEven } from "@/builders/codec/round-half-even";
+import { findFieldNumber, isNumeric, type NumberType, scaleOf } from "@/builders/codec/field-types";
+import { lintBits } from "@/builders/codec/lint-bits";
+import { lintConstant } from "@/builders/codec/lint-constant";
+import { lintMembers } from "@/builders/codec/lint-members";
+import { lintScaled } from "@/builders/codec/lint-scaled";
 import { isTextSource, SOURCE_NAMES } from "@/builders/codec/sources";
 import type { Problem } from "@/lib/errors";
 import type { LayoutField, SourceName } from "@/schemas/documents/layout";
 
-/** What is wrong in one field on its own: type, scale, limits, source, constant. */
+export { fits } from "@/builders/codec/lint-scaled";
+
+/** Notes one finding: where behind the part's own pointer, the code's reason, and what the part does or has. */
+export type Add = (tail: string, reason: string, message: string) => void;
+
+/** What is wrong in one field on its own: type, size, scale, limits, source, constant, bits. */
 export function lintField(field: LayoutField, path: string): Problem[] {
   const problems: Problem[] = [];
   const add: Add = (tail, reason, message) =>
@@ -13,97 +21,41 @@ export function lintField(field: LayoutField, path: string): Problem[] {
       code: `field.${reason}`,
       message: `“${field.name}” ${message}`,
     });
-  const type = findNumberType(field.type);
-  if (type) lintNumber(field, type, add);
-  else lintPlain(field, add);
-  lintValue(field, type, add);
+  lintMembers(field, add);
+  const type = findFieldNumber(field);
+  if (type) lintScaled({ ...field, scale: scaleOf(field) }, type, field.type, add);
+  if ("bits" in field.value) lintBits(field, field.value.bits, add);
+  else if ("from" in field.value) lintSource(field, field.value.from, add);
+  else lintConstants(field, type, field.value.const, add);
   return problems;
 }
 
-type Add = (tail: string, reason: string, message: string) => void;
-
-function lintNumber(field: LayoutField, type: NumberType, add: Add): void {
-  if (field.length !== undefined) add("length", "length_not_allowed", "has a length; only ascii takes one");
-  if (type.kind === "float") {
-    if (field.scale !== undefined) add("scale", "scale_not_allowed", "has a scale; only integers take one");
-    if (field.bias !== undefined) add("bias", "scale_not_allowed", "has a bias; only integers take one");
-  } else if (field.scale === 0) {
-    add("scale", "scale_zero", "has a scale of 0");
-  }
-  if (field.min !== undefined && field.max !== undefined && field.min > field.max) {
-    add("min", "limits_inverted", "has a lower limit above its upper limit");
-  }
-  for (const end of ["min", "max"] as const) {
-    const limit = field[end];
-    if (limit !== undefined && !fits(field, type, limit)) {
-      add(end, "type_too_narrow", `is too narrow: ${limit} does not fit into ${field.type} at this scale`);
-    }
-  }
-}
-
-function lintPlain(field: LayoutField, add: Add): void {
-  for (const key of ["scale", "bias"] as const) {
-    if (field[key] !== undefined) add(key, "scale_not_allowed", `has a ${key}; only integers take one`);
-  }
-  for (const key of ["min", "max"] as const) {
-    if (field[key] !== undefined) add(key, "limits_not_allowed", "has a limit; only numbers take one");
-  }
-  if (field.type === "ascii" && field.length === undefined) add("length", "length_missing", "needs a length in bytes");
-  if (field.type === "bytes" && field.length !== undefined) {
-    add("length", "length_not_allowed", "has a length; bytes take theirs from the constant");
-  }
-}
-
-function lintValue(field: LayoutField, type: NumberType | undefined, add: Add): void {
-  if ("from" in field.value) lintSource(field, field.value.from, type, add);
-  else if (type) lintNumberConstant(field, type, field.value.const, add);
-  else lintPlainConstant(field, field.value.const, add);
-}
-
-function lintSource(field: LayoutField, from: SourceName, type: NumberType | undefined, add: Add): void {
+function lintSource(field: LayoutField, from: SourceName, add: Add): void {
   if (!SOURCE_NAMES.includes(from)) {
     add("value/from", "unknown_source", `names “${from}”, which is no source`);
   } else if (field.type === "bytes") {
     add("value", "source_type", "takes a constant only, being of type bytes");
-  } else if (isTextSource(from) !== (type === undefined)) {
+  } else if (isTextSource(from) === isNumeric(field.type)) {
     add("value/from", "source_type", `is ${field.type}, but “${from}” is a ${isTextSource(from) ? "text" : "number"}`);
   }
 }
 
-function lintNumberConstant(field: LayoutField, type: NumberType, constant: number | string, add: Add): void {
-  if (typeof constant !== "number") {
-    add("value/const", "const_type", "needs a number");
+function lintConstants(
+  field: LayoutField,
+  type: NumberType | undefined,
+  constants: number | string | (number | string)[],
+  add: Add,
+): void {
+  const judged = { ...field, scale: scaleOf(field) };
+  if (!Array.isArray(constants)) {
+    lintConstant(judged, type, constants, (_, reason, message) => add("value/const", reason, message));
     return;
   }
-  if (!fits(field, type, constant)) {
-    add("value/const", "const_out_of_range", `is ${constant}, which does not fit into ${field.type} at this scale`);
+  if (constants.length !== field.count) {
+    const count = field.count === undefined ? "is no array" : `has ${field.count} elements`;
+    add("value/const", "const_count", `${count}, but its list has ${constants.length}`);
   }
-  const { min = constant, max = constant } = field;
-  if (constant < min || constant > max)
-    add("value/const", "const_outside_limits", `is ${constant}, outside its limits`);
-}
-
-function lintPlainConstant(field: LayoutField, constant: number | string, add: Add): void {
-  if (field.type === "bytes") {
-    if (!isHexPairs(constant)) add("value/const", "const_type", "needs hex digits in pairs");
-    return;
-  }
-  if (typeof constant !== "string") {
-    add("value/const", "const_type", "needs a text");
-    return;
-  }
-  if (!/^[\x20-\x7e]*$/.test(constant)) add("value/const", "const_type", "has characters outside printable ASCII");
-  const width = findFieldWidth(field);
-  if (width !== undefined && constant.length > width) {
-    add("value/const", "const_out_of_range", `is longer than ${width} characters`);
-  }
-}
-
-/** True where the value can be stored, by the encoder's own arithmetic. */
-export function fits(field: Pick<LayoutField, "scale" | "bias">, type: NumberType, value: number): boolean {
-  if (type.kind === "float") return type.width === 8 || Number.isFinite(Math.fround(value));
-  // A scale of 0 has its own finding.
-  if (field.scale === 0) return true;
-  const stored = roundHalfEven((value - (field.bias ?? 0)) / (field.scale ?? 1));
-  return stored >= type.min && stored <= type.max;
+  constants.forEach((constant, i) => {
+    lintConstant(judged, type, constant, (_, reason, message) => add(`value/const/${i}`, reason, message));
+  });
 }

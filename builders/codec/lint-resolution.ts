@@ -1,4 +1,4 @@
-import { findNumberType } from "@/builders/codec/field-types";
+import { findFieldNumber, scaleOf } from "@/builders/codec/field-types";
 import type { FamilyRulesLike } from "@/builders/codec/lint";
 import type { Problem } from "@/lib/errors";
 import type { LayoutDocument, LayoutField, SourceName } from "@/schemas/documents/layout";
@@ -54,8 +54,8 @@ export function listResolutions(
 }
 
 /** Value of one stored step; undefined for what is not stored as an integer. */
-export function stepOf(field: Pick<LayoutField, "type" | "scale">): number | undefined {
-  return findNumberType(field.type)?.kind === "integer" ? Math.abs(field.scale ?? 1) : undefined;
+export function stepOf(field: Omit<LayoutField, "name" | "at" | "value">): number | undefined {
+  return findFieldNumber(field)?.kind === "integer" ? Math.abs(scaleOf(field)) : undefined;
 }
 
 /** The largest step that is fine enough. */

@@ -1,14 +1,22 @@
-import { findNumberType } from "@/builders/codec/field-types";
+import { isFieldType } from "@/builders/codec/field-types";
+import { wrongInAlgorithm, wrongInCovered, wrongInForbidden } from "@/builders/codec/lint-shape-checksum";
+import { wrongInValue } from "@/builders/codec/lint-shape-value";
+import type { LayoutPaths } from "@/builders/codec/memory-map";
 import type { Problem } from "@/lib/errors";
 import type { ByteRange, LayoutChecksum, LayoutDocument, LayoutField } from "@/schemas/documents/layout";
 
 /** The parts of a document that have the shape to be judged further, each with its JSON pointer. */
 export interface ReadableLayout {
   layout: LayoutDocument;
-  paths: { fields: string[]; checksums: string[]; kept: string[] };
+  paths: LayoutPaths;
 }
 
-type Loose = Record<string, unknown>;
+/** Any JSON object. */
+export type Loose = Record<string, unknown>;
+
+/** Most elements of an array: each is a value of its own in lists and comparisons. */
+const COUNT_MAX = 1024;
+const FRACTION_MAX = 64;
 
 /**
  * Sorts out what of a document can be judged. The JSON Schema is the full judge of shape; this is the part of it that
@@ -20,44 +28,50 @@ export function readLayout(document: unknown): { readable?: ReadableLayout; prob
   const shape = (path: string, message: string) => problems.push({ path, code: "layout.shape", message });
   if (!isObject(document)) return { problems: [{ path: "", code: "layout.shape", message: "is not an object" }] };
   if (!isMemory(document.memory)) shape("/memory", "needs bytes, pageBytes, baseAddress, fill and byteOrder");
+  else if (!isSegments(document.memory.segments)) shape("/memory/segments", "is not a list of {at, baseAddress}");
   if (!Array.isArray(document.fields)) shape("/fields", "is not a list");
   if (!Array.isArray(document.checksums)) shape("/checksums", "is not a list");
-  if (document.kept !== undefined && !Array.isArray(document.kept)) shape("/kept", "is not a list");
+  for (const list of ["kept", "reserved"]) {
+    if (document[list] !== undefined && !Array.isArray(document[list])) shape(`/${list}`, "is not a list");
+  }
   if (document.order !== 1 && document.order !== 2) shape("/order", "must be 1 or 2");
   if (problems.length > 0) return { problems };
 
-  const paths = { fields: [] as string[], checksums: [] as string[], kept: [] as string[] };
-  const pick = <T>(list: unknown, name: keyof typeof paths, test: (part: unknown) => string | null): T[] =>
-    (list as unknown[]).filter((part, i) => {
+  const paths: LayoutPaths = { fields: [], checksums: [], kept: [], reserved: [] };
+  const pick = <T>(name: keyof LayoutPaths, test: (part: unknown) => string | null): T[] =>
+    ((document[name] ?? []) as unknown[]).filter((part, i) => {
       const wrong = test(part);
       if (wrong !== null) shape(`/${name}/${i}`, wrong);
       else paths[name].push(`/${name}/${i}`);
       return wrong === null;
     }) as T[];
-  const fields = pick<LayoutField>(document.fields, "fields", wrongInField);
-  const checksums = pick<LayoutChecksum>(document.checksums, "checksums", wrongInChecksum);
-  const kept = pick<ByteRange>(document.kept ?? [], "kept", (part) =>
-    isRange(part) ? null : "is not a range [from, to]",
-  );
-  return {
-    readable: { layout: { ...(document as unknown as LayoutDocument), fields, checksums, kept }, paths },
-    problems,
+  const wrongInRange = (part: unknown) => (isRange(part) ? null : "is not a range [from, to]");
+  const parts = {
+    fields: pick<LayoutField>("fields", wrongInField),
+    checksums: pick<LayoutChecksum>("checksums", wrongInChecksum),
+    kept: pick<ByteRange>("kept", wrongInRange),
+    reserved: pick<ByteRange>("reserved", wrongInRange),
   };
+  return { readable: { layout: { ...(document as unknown as LayoutDocument), ...parts }, paths }, problems };
 }
 
-function isObject(value: unknown): value is Loose {
+export function isObject(value: unknown): value is Loose {
   return typeof value === "object" && value !== null && !Array.isArray(value);
 }
 
-function isCount(value: unknown, min: number, max: number): boolean {
+export function isCount(value: unknown, min: number, max: number): boolean {
   return Number.isInteger(value) && (value as number) >= min && (value as number) <= max;
+}
+
+export function isRange(value: unknown): boolean {
+  return Array.isArray(value) && value.length === 2 && value.every((end) => isCount(end, 0, 65535));
 }
 
 function isByteOrder(value: unknown): boolean {
   return value === "little" || value === "big";
 }
 
-function isMemory(memory: unknown): boolean {
+function isMemory(memory: unknown): memory is Loose {
   return (
     isObject(memory) &&
     isCount(memory.bytes, 1, 65536) &&
@@ -68,40 +82,55 @@ function isMemory(memory: unknown): boolean {
   );
 }
 
-function isRange(value: unknown): boolean {
-  return Array.isArray(value) && value.length === 2 && value.every((end) => isCount(end, 0, 65535));
+function isSegments(segments: unknown): boolean {
+  if (segments === undefined) return true;
+  const isSegment = (one: unknown) =>
+    isObject(one) && isCount(one.at, 1, 65535) && isCount(one.baseAddress, 0, 2 ** 32 - 1);
+  return Array.isArray(segments) && segments.every(isSegment);
 }
 
 function isNumberOrAbsent(value: unknown): boolean {
   return value === undefined || (typeof value === "number" && Number.isFinite(value));
 }
 
+/** The numbers that tell a value's meaning: of a field and of a part of its bits. */
+export function wrongInNumbers(part: Loose): string | null {
+  const wrong = ["scale", "bias", "min", "max"].find((key) => !isNumberOrAbsent(part[key]));
+  if (wrong !== undefined) return `“${wrong}” must be a number`;
+  if (part.enum === undefined) return null;
+  const named =
+    isObject(part.enum) &&
+    Object.keys(part.enum).length > 0 &&
+    Object.values(part.enum).every((stored) => Number.isSafeInteger(stored));
+  return named ? null : "“enum” must name whole numbers, such as {“linear”: 1}";
+}
+
 function wrongInField(field: unknown): string | null {
   if (!isObject(field)) return "is not an object";
   if (typeof field.name !== "string" || field.name === "") return "needs a name";
   if (!isCount(field.at, 0, 65535)) return "needs an offset “at”, a whole number from 0";
-  const type = field.type;
-  if (typeof type !== "string" || !(findNumberType(type) || type === "ascii" || type === "bytes")) {
-    return "needs a type: u8 i8 u16 i16 u24 i24 u32 i32 f32 f64 ascii or bytes";
+  if (!isFieldType(field.type)) {
+    return "needs a type: u8 i8 u16 i16 u24 i24 u32 i32 u64 i64 f32 f64 fixed bcd ascii or bytes";
   }
-  if (field.length !== undefined && !isCount(field.length, 1, 65536)) return "“length” must be a whole number from 1";
   if (field.byteOrder !== undefined && !isByteOrder(field.byteOrder)) return "“byteOrder” must be little or big";
-  const numbers = ["scale", "bias", "min", "max"].find((key) => !isNumberOrAbsent(field[key]));
-  if (numbers !== undefined) return `“${numbers}” must be a number`;
-  return isFieldValue(field.value) ? null : "“value” must be {from: a source} or {const: a number or text}";
+  return wrongInSize(field) ?? wrongInNumbers(field) ?? wrongInValue(field.value);
 }
 
-function isFieldValue(value: unknown): boolean {
-  if (!isObject(value) || Object.keys(value).length !== 1) return false;
-  if ("from" in value) return typeof value.from === "string";
-  return typeof value.const === "string" || (typeof value.const === "number" && Number.isFinite(value.const));
+function wrongInSize({ length, bits, fraction, signed, count }: Loose): string | null {
+  if (length !== undefined && !isCount(length, 1, 65536)) return "“length” must be a whole number from 1";
+  if (bits !== undefined && !isCount(bits, 1, 64)) return "“bits” must be a whole number from 1";
+  if (fraction !== undefined && !isCount(fraction, 0, FRACTION_MAX)) {
+    return `“fraction” must be a whole number from 0 to ${FRACTION_MAX}`;
+  }
+  if (signed !== undefined && typeof signed !== "boolean") return "“signed” must be true or false";
+  if (count === undefined || isCount(count, 1, COUNT_MAX)) return null;
+  return `“count” must be a whole number from 1 to ${COUNT_MAX}`;
 }
 
 function wrongInChecksum(checksum: unknown): string | null {
   if (!isObject(checksum)) return "is not an object";
   if (typeof checksum.name !== "string" || checksum.name === "") return "needs a name";
   if (!isCount(checksum.at, 0, 65535)) return "needs an offset “at”, a whole number from 0";
-  if (typeof checksum.algorithm !== "string") return "needs an algorithm by its catalogue name";
   if (checksum.byteOrder !== undefined && !isByteOrder(checksum.byteOrder)) return "“byteOrder” must be little or big";
-  return isRange(checksum.over) ? null : "“over” must be a range [from, to]";
+  return wrongInAlgorithm(checksum.algorithm) ?? wrongInCovered(checksum.over) ?? wrongInForbidden(checksum);
 }

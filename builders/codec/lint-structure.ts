@@ -1,5 +1,6 @@
-import { findCrcParameters } from "@/builders/codec/crc";
+import { lintChecksums } from "@/builders/codec/lint-checksums";
 import { lintField } from "@/builders/codec/lint-field";
+import { lintSegments } from "@/builders/codec/lint-segments";
 import { type ReadableLayout, readLayout } from "@/builders/codec/lint-shape";
 import { type Extent, listExtents } from "@/builders/codec/memory-map";
 import type { Problem } from "@/lib/errors";
@@ -16,6 +17,7 @@ export function listStructureProblems(document: unknown): Problem[] {
     ...readable.layout.fields.flatMap((field, i) => lintField(field, readable.paths.fields[i] as string)),
     ...lintNames(readable),
     ...lintPlaces(readable),
+    ...lintSegments(readable),
     ...lintChecksums(readable),
   ];
 }
@@ -36,16 +38,13 @@ function lintNames({ layout, paths }: ReadableLayout): Problem[] {
 
 function lintPlaces({ layout, paths }: ReadableLayout): Problem[] {
   const problems: Problem[] = [];
-  const { bytes, baseAddress } = layout.memory;
-  if (baseAddress + bytes > 2 ** 32) {
-    problems.push(
-      problem("/memory/baseAddress", "memory.beyond_address_space", "the memory ends above address FFFFFFFF"),
-    );
+  const { bytes } = layout.memory;
+  for (const kind of ["kept", "reserved"] as const) {
+    (layout[kind] ?? []).forEach(([from, to], i) => {
+      if (from <= to) return;
+      problems.push(problem(paths[kind][i] as string, `${kind}.range_invalid`, "the range ends before it starts"));
+    });
   }
-  (layout.kept ?? []).forEach(([from, to], i) => {
-    if (from > to)
-      problems.push(problem(paths.kept[i] as string, "kept.range_invalid", "the range ends before it starts"));
-  });
   // A sweep in rising order against the part that reaches furthest finds every part that lies on an earlier one.
   let furthest: Extent | undefined;
   for (const part of listExtents(layout, paths)) {
@@ -59,39 +58,17 @@ function lintPlaces({ layout, paths }: ReadableLayout): Problem[] {
   return problems;
 }
 
+/** Whether a part is one that bytes are written by. */
+const isWritten = ({ kind }: Extent) => kind === "field" || kind === "checksum";
+
 function overlap(part: Extent, other: Extent): Problem {
-  const [written, kept] = part.kind === "kept" ? [other, part] : [part, other];
+  const [written, range] = isWritten(part) ? [part, other] : [other, part];
   const shared = `bytes ${part.at} to ${Math.min(part.end, other.end) - 1}`;
-  if (written.kind !== "kept" && kept.kind === "kept") {
-    return problem(written.path, `${written.kind}.over_kept`, `“${written.name}” lies on a kept range, ${shared}`);
+  if (isWritten(written) && !isWritten(range)) {
+    const message = `“${written.name}” lies on a ${range.kind} range, ${shared}`;
+    return problem(written.path, `${written.kind}.over_${range.kind}`, message);
   }
   return problem(part.path, `${part.kind}.overlap`, `“${part.name}” and “${other.name}” share ${shared}`);
-}
-
-function lintChecksums({ layout, paths }: ReadableLayout): Problem[] {
-  const parts = listExtents(layout, paths);
-  const stored = new Map(parts.filter((part) => part.kind === "checksum").map((part) => [part.path, part]));
-  const kept = parts.filter((part) => part.kind === "kept");
-  return layout.checksums.flatMap((checksum, i) => {
-    const path = paths.checksums[i] as string;
-    const [from, to] = checksum.over;
-    const covers = (part: Extent | undefined) => part !== undefined && part.at <= to && part.end > from;
-    const found: Problem[] = [];
-    const add = (tail: string, reason: string, message: string) =>
-      found.push(problem(`${path}/${tail}`, `checksum.${reason}`, message));
-    if (!findCrcParameters(checksum.algorithm)) {
-      add("algorithm", "unknown_algorithm", `“${checksum.algorithm}” is not in the catalogue`);
-    }
-    if (from > to) add("over", "range_invalid", "the range ends before it starts");
-    if (to >= layout.memory.bytes) add("over", "range_outside_memory", `the memory ends at ${layout.memory.bytes - 1}`);
-    if (covers(stored.get(path))) add("over", "covers_itself", `“${checksum.name}” covers its own place`);
-    if (kept.some(covers)) add("over", "over_kept", `“${checksum.name}” covers bytes that belong to the device`);
-    layout.checksums.slice(i + 1).forEach((later, j) => {
-      if (!covers(stored.get(paths.checksums[i + 1 + j] as string))) return;
-      add("over", "covers_later", `“${checksum.name}” covers “${later.name}”, which is computed after it`);
-    });
-    return found;
-  });
 }
 
 function problem(path: string, code: string, message: string): Problem {

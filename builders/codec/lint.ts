@@ -1,15 +1,16 @@
 import semver from "semver";
-import { findFieldWidth, findNumberType } from "@/builders/codec/field-types";
-import { fits } from "@/builders/codec/lint-field";
+import { findFieldWidth } from "@/builders/codec/field-types";
+import { type LayoutCell, listCells } from "@/builders/codec/layout-cells";
 import { lintPlacement } from "@/builders/codec/lint-placement";
 import { lintResolution, listResolutions } from "@/builders/codec/lint-resolution";
+import { fits } from "@/builders/codec/lint-scaled";
 import { readLayout } from "@/builders/codec/lint-shape";
 import { listStructureProblems } from "@/builders/codec/lint-structure";
 import { coefficientsOfOrder } from "@/builders/codec/sources";
 import { isFirmwareRange, isRangeText, mayShareFirmware } from "@/lib/domain/firmware-range";
 import { assertStepCovers, layoutStep, newestLower, type Step } from "@/lib/domain/semver-step";
 import { AppError, type Problem } from "@/lib/errors";
-import type { LayoutDocument, LayoutField } from "@/schemas/documents/layout";
+import type { LayoutDocument } from "@/schemas/documents/layout";
 
 /** What of a family the rules look at: its code, what its sources give (°C, kg, mV/V), its temperatures and Y = E_max / v_min. */
 export interface FamilyRulesLike {
@@ -49,8 +50,9 @@ export function lintLayout(document: unknown, options: LintOptions = {}): LintRe
   if (!readable) return { errors, warnings: [], step: null };
   const { layout, paths } = readable;
   const versions = lintVersions(layout, options.publishedVersions ?? []);
-  errors.push(...lintFamily(layout, options.family), ...lintCoefficients(layout, paths.fields));
-  errors.push(...lintKnownValues(layout, paths.fields, options.family), ...versions.errors);
+  const cells = layout.fields.flatMap((field, i) => listCells(field, paths.fields[i] as string));
+  errors.push(...lintFamily(layout, options.family), ...lintCoefficients(layout, cells));
+  errors.push(...lintKnownValues(layout, cells, options.family), ...versions.errors);
   const warnings = [
     ...lintPlacement(layout, paths),
     ...lintResolution(listResolutions(layout, paths.fields, options.family)),
@@ -72,19 +74,20 @@ function lintFamily(layout: LayoutDocument, family: FamilyRulesLike | undefined)
 }
 
 /** Firmware computes with every coefficient of the order, so a missing one is wrong bytes, and one too many has no value. */
-function lintCoefficients(layout: LayoutDocument, paths: readonly string[]): Problem[] {
+function lintCoefficients(layout: LayoutDocument, cells: readonly LayoutCell[]): Problem[] {
   const needed = coefficientsOfOrder(layout.order).map((name) => `coefficients.${name}`);
-  const used = layout.fields.map((field) => ("from" in field.value ? field.value.from : null));
-  const missing = needed.filter((name) => !(used as (string | null)[]).includes(name));
+  const used = new Set<string>(cells.flatMap(({ value }) => ("from" in value ? [value.from] : [])));
+  const missing = needed.filter((name) => !used.has(name));
+  const beyond = layout.order === 1 ? ["coefficients.zeroTc2", "coefficients.gainTc2"] : [];
   return [
     ...missing.map((name) => ({
       path: "/fields",
       code: "layout.coefficient_missing",
       message: `No field holds ${name}, which order ${layout.order} needs`,
     })),
-    ...used.flatMap((name, i) =>
-      layout.order === 1 && (name === "coefficients.zeroTc2" || name === "coefficients.gainTc2")
-        ? [{ path: `${paths[i]}/value/from`, code: "field.order_exceeded", message: `Order 1 has no ${name}` }]
+    ...cells.flatMap(({ value, path }) =>
+      "from" in value && beyond.includes(value.from)
+        ? [{ path: `${path}/value/from`, code: "field.order_exceeded", message: `Order 1 has no ${value.from}` }]
         : [],
     ),
   ];
@@ -93,7 +96,7 @@ function lintCoefficients(layout: LayoutDocument, paths: readonly string[]): Pro
 /** Values that are known before any device is: the layout's own version and the family's. */
 function lintKnownValues(
   layout: LayoutDocument,
-  paths: readonly string[],
+  cells: readonly LayoutCell[],
   family: FamilyRulesLike | undefined,
 ): Problem[] {
   const version = semver.parse(layout.version);
@@ -105,19 +108,18 @@ function lintKnownValues(
     "family.capacity": family?.capacityKg,
     "family.nominalOutput": family?.nominalMvV,
   };
-  return layout.fields.flatMap((field, i) => {
-    const value = "from" in field.value ? known[field.value.from] : undefined;
-    if (value === undefined || takes(field, value)) return [];
-    const message = `“${field.name}” cannot take ${value}, which is its value here`;
-    return [{ path: paths[i] as string, code: "field.value_out_of_range", message }];
+  return cells.flatMap((cell) => {
+    const value = "from" in cell.value ? known[cell.value.from] : undefined;
+    if (value === undefined || takes(cell, value)) return [];
+    const message = `“${cell.name}” cannot take ${value}, which is its value here`;
+    return [{ path: cell.path, code: "field.value_out_of_range", message }];
   });
 }
 
-function takes(field: LayoutField, value: number): boolean {
-  const type = findNumberType(field.type);
-  if (!type) return true;
-  const { min = value, max = value } = field;
-  return value >= min && value <= max && fits(field, type, value);
+function takes({ number, names, min, max, scale, bias }: LayoutCell, value: number): boolean {
+  if (!number) return true;
+  if (names) return Object.values(names).includes(value);
+  return value >= (min ?? value) && value <= (max ?? value) && fits({ scale, bias }, number, value);
 }
 
 function lintSerial(layout: LayoutDocument, paths: readonly string[], options: LintOptions): Problem[] {

@@ -1,10 +1,10 @@
-import { findCrcParameters } from "@/builders/codec/crc";
+import { findChecksumWidth } from "@/builders/codec/checksum-algorithm";
 import { findFieldWidth } from "@/builders/codec/field-types";
 import type { ByteRange, LayoutDocument } from "@/schemas/documents/layout";
 
 /** A named stretch of the image: `at` is its first offset, `end` the offset after its last. */
 export interface Extent {
-  kind: "field" | "checksum" | "kept";
+  kind: "field" | "checksum" | "kept" | "reserved";
   name: string;
   at: number;
   end: number;
@@ -12,13 +12,21 @@ export interface Extent {
   path: string;
 }
 
+/** JSON pointers of a layout's parts. */
+export interface LayoutPaths {
+  fields: string[];
+  checksums: string[];
+  kept: string[];
+  reserved: string[];
+}
+
 /**
  * What is written where, in rising order, for a document of any state: parts whose width is not known are left out.
  * @param paths JSON pointers of the parts, where they are not simply counted.
  */
 export function listExtents(
-  layout: Pick<LayoutDocument, "fields" | "checksums" | "kept">,
-  paths?: { fields: string[]; checksums: string[]; kept: string[] },
+  layout: Pick<LayoutDocument, "fields" | "checksums" | "kept" | "reserved">,
+  paths?: LayoutPaths,
 ): Extent[] {
   const fields = layout.fields.flatMap((field, i) =>
     extent("field", field.name, field.at, findFieldWidth(field), paths?.fields[i] ?? `/fields/${i}`),
@@ -26,16 +34,12 @@ export function listExtents(
   const checksums = layout.checksums.flatMap(({ name, at, algorithm }, i) =>
     extent("checksum", name, at, findChecksumWidth(algorithm), paths?.checksums[i] ?? `/checksums/${i}`),
   );
-  const kept = (layout.kept ?? []).flatMap(([from, to], i) =>
-    extent("kept", "kept", from, to - from + 1, paths?.kept[i] ?? `/kept/${i}`),
+  const ranges = (["kept", "reserved"] as const).flatMap((kind) =>
+    (layout[kind] ?? []).flatMap(([from, to], i) =>
+      extent(kind, kind, from, to - from + 1, paths?.[kind][i] ?? `/${kind}/${i}`),
+    ),
   );
-  return [...fields, ...checksums, ...kept].sort((a, b) => a.at - b.at || a.end - b.end);
-}
-
-/** Bytes of a checksum; undefined for an unknown algorithm. */
-export function findChecksumWidth(algorithm: string): number | undefined {
-  const parameters = findCrcParameters(algorithm);
-  return parameters && parameters.width / 8;
+  return [...fields, ...checksums, ...ranges].sort((a, b) => a.at - b.at || a.end - b.end);
 }
 
 function extent(kind: Extent["kind"], name: string, at: number, width: number | undefined, path: string): Extent[] {

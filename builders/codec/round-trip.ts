@@ -13,8 +13,8 @@ export interface ValueFault {
 const ROUNDING = 1e-9;
 
 /**
- * How far a decoded number may lie from the one that was stored: half a step of an integer, half a unit in the last place
- * of a binary32, nothing of a binary64.
+ * How far a decoded number may lie from the one that was stored: half a step of an integer, of packed decimal and of fixed
+ * point, half a unit in the last place of a binary32, nothing of a binary64.
  */
 export function storageTolerance(field: CompiledField, value: number): number {
   if (field.number?.kind === "integer") {
@@ -47,6 +47,8 @@ export function listRoundTripFaults(
 }
 
 function isSame(field: CompiledField, expected: number | string | null, actual: number | string | null): boolean {
+  if (field.names && typeof expected === "number") return field.names.name.get(expected) === actual;
+  if (field.number?.kind === "wide" && typeof expected === "number") return Math.abs(Number(actual) - expected) <= 0.5;
   if (typeof expected === "number" && typeof actual === "number")
     return Math.abs(actual - expected) <= storageTolerance(field, expected);
   if (field.type === "bytes" && typeof expected === "string") return expected.toLowerCase() === actual;

@@ -1,8 +1,8 @@
 import semver from "semver";
-import { findFieldWidth, findNumberType } from "@/builders/codec/field-types";
+import { type LayoutCell, listCells } from "@/builders/codec/layout-cells";
 import type { FamilyRulesLike } from "@/builders/codec/lint";
 import type { ImageSources } from "@/builders/codec/sources";
-import type { LayoutDocument, LayoutField, SourceName } from "@/schemas/documents/layout";
+import type { LayoutDocument, SourceName } from "@/schemas/documents/layout";
 
 /** Plausible values for a cell with a digital thermometer of about 0.12 °C a step; invented. */
 const TYPICAL: Readonly<Record<string, number>> = {
@@ -53,28 +53,31 @@ export function sampleSources(layout: LayoutDocument, family?: FamilyRulesLike):
   };
 }
 
-function fieldsFrom(layout: LayoutDocument, name: SourceName): LayoutField[] {
-  return layout.fields.filter((field) => "from" in field.value && field.value.from === name);
+function cellsFrom(layout: LayoutDocument, name: SourceName): LayoutCell[] {
+  const cells = layout.fields.flatMap((field, i) => listCells(field, `/fields/${i}`));
+  return cells.filter(({ value }) => "from" in value && value.from === name);
 }
 
 function sampleNumber(layout: LayoutDocument, name: SourceName): number {
-  const ranges = fieldsFrom(layout, name).map(rangeOf);
+  const cells = cellsFrom(layout, name);
+  const named = cells.flatMap((cell) => (cell.names ? Object.values(cell.names) : []));
+  if (named[0] !== undefined) return named[0];
+  const ranges = cells.map(rangeOf);
   const min = Math.max(...ranges.map((range) => range[0]), Number.NEGATIVE_INFINITY);
   const max = Math.min(...ranges.map((range) => range[1]), Number.POSITIVE_INFINITY);
   const typical = TYPICAL[name] as number;
   return typical >= min && typical <= max ? typical : min / 2 + max / 2;
 }
 
-/** What a field takes: its limits cut to what its type can store. */
-function rangeOf(field: LayoutField): [min: number, max: number] {
-  const type = findNumberType(field.type);
-  const { scale = 1, bias = 0, min = Number.NEGATIVE_INFINITY, max = Number.POSITIVE_INFINITY } = field;
-  if (!type) return [min, max];
-  const ends = [type.min * scale + bias, type.max * scale + bias];
+/** What a value takes: its limits cut to what its type can store. */
+function rangeOf({ number, scale, bias, ...limits }: LayoutCell): [min: number, max: number] {
+  const { min = Number.NEGATIVE_INFINITY, max = Number.POSITIVE_INFINITY } = limits;
+  if (!number) return [min, max];
+  const ends = [number.min * scale + bias, number.max * scale + bias];
   return [Math.max(min, Math.min(...ends)), Math.min(max, Math.max(...ends))];
 }
 
 function sampleText(layout: LayoutDocument, name: SourceName, text: string): string {
-  const widths = fieldsFrom(layout, name).map((field) => findFieldWidth(field) ?? text.length);
+  const widths = cellsFrom(layout, name).map((cell) => cell.width);
   return text.slice(0, Math.min(text.length, ...widths));
 }

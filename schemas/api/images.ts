@@ -52,7 +52,7 @@ export const image = z.object({
   gaps: z.array(range).meta({ description: "Inclusive ranges that nothing covers; they hold the fill" }),
   extents: z.array(
     z.object({
-      kind: z.enum(["field", "checksum", "kept"]),
+      kind: z.enum(["field", "checksum", "kept", "reserved"]),
       name: z.string(),
       at: z.number().int(),
       length: z.number().int(),

@@ -12,8 +12,11 @@ import layoutSchema from "@/schemas/documents/layout.schema.json";
 
 export type ByteOrder = "little" | "big";
 
-/** Types a field can have; `ascii` takes a `length`, `bytes` takes its width from its constant. */
-export type FieldType = "u8" | "i8" | "u16" | "i16" | "u24" | "i24" | "u32" | "i32" | "f32" | "f64" | "ascii" | "bytes";
+/**
+ * Types a field can have: `ascii` and `bcd` take a `length`, `fixed` takes `bits`, `fraction` and `signed`, `bytes` takes its
+ * width from its constant; `u64` and `i64` are read and written as decimal text.
+ */
+export type FieldType = `${"u" | "i"}${8 | 16 | 24 | 32 | 64}` | "f32" | "f64" | "fixed" | "bcd" | "ascii" | "bytes";
 
 /** Where a field's value may come from when the image of a device is encoded. */
 export type SourceName =
@@ -34,8 +37,33 @@ export type CoefficientName =
   | "gainTc"
   | "gainTc2";
 
-/** A number, a text (ascii) or an even count of hex digits (bytes). */
-export type FieldValue = { from: SourceName } | { const: number | string };
+/** A number, a text (ascii), a name (of an enumeration), decimal digits (64 bits) or an even count of hex digits (bytes). */
+export type Constant = number | string;
+
+/** A list has one constant an element of an array. */
+export type FieldValue = { from: SourceName } | { const: Constant | Constant[] } | { bits: BitField[] };
+
+/** A part of an unsigned integer's bits. Bits that no part names stay as in the fill. */
+export interface BitField {
+  name: string;
+  /** Its lowest bit; 0 is the least significant one of the integer. */
+  from: number;
+  /** Number of bits. */
+  width: number;
+  /** Two's complement of that many bits; false where absent. */
+  signed?: boolean;
+  scale?: number;
+  bias?: number;
+  unit?: string;
+  min?: number;
+  max?: number;
+  enum?: Enumeration;
+  description?: string;
+  value: { from: SourceName } | { const: Constant };
+}
+
+/** Stored integer by name. */
+export type Enumeration = Record<string, number>;
 
 /** Inclusive offsets into the image. */
 export type ByteRange = [from: number, to: number];
@@ -48,6 +76,16 @@ export interface LayoutMemory {
   /** Value of every byte that no field or checksum covers, 0…255. */
   fill: number;
   byteOrder: ByteOrder;
+  /** Where the memory is not in one piece: from offset `at` on, up to the next one, bytes lie at another address. */
+  segments?: MemorySegment[];
+}
+
+export interface MemorySegment {
+  name?: string;
+  /** Offset in the image of the first byte that lies here, above 0. */
+  at: number;
+  /** Address of that byte in the device, 0…4294967295. */
+  baseAddress: number;
 }
 
 export interface LayoutField {
@@ -55,8 +93,18 @@ export interface LayoutField {
   /** Offset of the first byte in the image. */
   at: number;
   type: FieldType;
-  /** Bytes of an ascii field. */
+  /** Bytes of an ascii or bcd field. */
   length?: number;
+  /** All bits of a fixed field: 8, 16, 24 or 32. */
+  bits?: number;
+  /** Bits behind the point of a fixed field: value = stored / 2^fraction. */
+  fraction?: number;
+  /** Of a fixed field: two's complement. */
+  signed?: boolean;
+  /** Elements of an array, one behind the other; a single value where absent. */
+  count?: number;
+  /** Integers only: what the stored numbers are called. */
+  enum?: Enumeration;
   byteOrder?: ByteOrder;
   /** Integers only: value of one step, in `unit`; 1 where absent. */
   scale?: number;
@@ -70,13 +118,44 @@ export interface LayoutField {
   value: FieldValue;
 }
 
+/** A cyclic redundancy check by its parameters; poly, init and xorout as hex digits, highest power first. */
+export interface CrcDefinition {
+  width: number;
+  poly: string;
+  init: string;
+  refin: boolean;
+  refout: boolean;
+  xorout: string;
+}
+
+/** Sum of all bytes, kept to that many bits, then its complement. */
+export interface SumDefinition {
+  sum: number;
+  complement?: Complement;
+}
+
+/** All bytes combined by exclusive or, then the complement. */
+export interface XorDefinition {
+  xor: number;
+  complement?: Complement;
+}
+
+export type Complement = "none" | "ones" | "twos";
+
+/** A catalogue name, e.g. `CRC-16/IBM-3740`, or a definition. */
+export type ChecksumAlgorithm = string | CrcDefinition | SumDefinition | XorDefinition;
+
 export interface LayoutChecksum {
   name: string;
   at: number;
-  /** Catalogue name, e.g. `CRC-16/IBM-3740`. */
-  algorithm: string;
+  algorithm: ChecksumAlgorithm;
   byteOrder?: ByteOrder;
-  over: ByteRange;
+  /** One range, or several in the order in which they are run through. */
+  over: ByteRange | ByteRange[];
+  /** Values, as hex digits, that firmware does not take for a checksum, such as those of an erased memory. */
+  forbid?: string[];
+  /** What is stored instead of a forbidden value; an image that would need it is refused where absent. */
+  instead?: string;
   description?: string;
 }
 
@@ -94,6 +173,8 @@ export interface LayoutDocument {
   memory: LayoutMemory;
   /** Ranges that belong to the device and are never written. */
   kept?: ByteRange[];
+  /** Ranges that nothing may use: written as fill. */
+  reserved?: ByteRange[];
   fields: LayoutField[];
   checksums: LayoutChecksum[];
 }

@@ -41,7 +41,7 @@ function parse(text: string): unknown {
 
 /** `/fields/3` of `/fields/3/value/from`: the field, checksum or kept range that a finding is about. */
 export function partOf(path: string): string {
-  return /^\/(?:fields|checksums|kept)\/\d+/.exec(path)?.[0] ?? path;
+  return /^\/(?:fields|checksums|kept|reserved)\/\d+/.exec(path)?.[0] ?? path;
 }
 
 /** The part of the document that a pointer names, as written. */

@@ -36,7 +36,7 @@ describe.each([
     const [sources] = golden.sources;
     if (!sources) throw new Error("the example has devices");
     const bytes = encodeImage(golden.compiled, sources);
-    const fill = golden.compiled.checksums[0]?.from ?? 0;
+    const fill = golden.compiled.checksums[0]?.over[0]?.[0] ?? 0;
     bytes[fill] = (bytes[fill] as number) ^ 0x01;
     const faults = listRoundTripFaults(golden.compiled, sources, bytes, decodeImage(golden.compiled, bytes));
     expect(faults.some((fault) => golden.compiled.checksums.some((sum) => sum.name === fault.field))).toBe(true);
