@@ -44,6 +44,16 @@ export const newRunPlan = z.strictObject({
 
 export type NewRunPlan = z.output<typeof newRunPlan>;
 
+/** A plan that is still being written: devices and temperatures as far as they are there. */
+export const runPlanDraft = z.strictObject({
+  purpose,
+  devices: z.array(z.strictObject({ serial: code, position: z.string().trim().max(64) })).max(LOT_DEVICES_MAX),
+  points: z.array(plannedPoint).max(50),
+  equipment: z.array(code).max(50).default([]),
+});
+
+export type RunPlanDraft = z.output<typeof runPlanDraft>;
+
 export const runPlanState = z.enum(["planned", "used", "dropped"]);
 
 export const planFinding = z.object({
@@ -104,5 +114,12 @@ export const runPlan = z
   .meta({ description: "What is to be done in one chamber session" });
 
 export type RunPlanView = z.output<typeof runPlan>;
+
+export const runPlanCheck = z.object({
+  findings: z.array(planFinding),
+  rows: z.number().int().meta({ description: "Readings it asks for" }),
+});
+
+export type RunPlanCheck = z.output<typeof runPlanCheck>;
 
 export const dropRunPlan = z.strictObject({ reason });

@@ -69,6 +69,7 @@ run-plans.list                 401    yes  yes  role yes  yes  yes  role    yes 
 run-plans.get                  401    yes  yes  role yes  yes  yes  role    yes      yes      yes
 run-plans.template             401    yes  yes  role yes  yes  yes  role    yes      yes      yes
 run-plans.add                  401    yes  role role role role role role    yes      role     role
+run-plans.check                401    yes  role role role role role role    yes      role     role
 run-plans.drop                 401    yes  role role role role role role    yes      role     role
 
 runs.list                      401    yes  yes  role yes  yes  yes  role    yes      yes      yes

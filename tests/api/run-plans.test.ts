@@ -187,6 +187,25 @@ describe("planning a run", () => {
   });
 });
 
+describe("checking a plan that is being written", () => {
+  it("says the same as planning would, stores nothing, and takes what is not there yet", async () => {
+    const before = await countPlans();
+    const check = (body: object, as: PersonName = "engineer") =>
+      api.call("POST", `/lots/${golden.lot}/run-plans/check`, { as, body });
+    const { name: _, ...draft } = planOf("", { devices: [{ serial: "NOBODY-1", position: "" }], points: [] });
+    const { status, body } = await check(draft);
+    expect([status, codes(body), body.rows]).toEqual([
+      200,
+      ["plan.serial_unknown", "plan.position_invalid", "plan.sample_small", "plan.no_points"],
+      0,
+    ]);
+    expect((await check({ ...draft, equipment: ["NONE"] })).body.code).toBe("run.equipment_unknown");
+    expect((await check({ purpose: "sample" })).status).toBe(422);
+    expect((await check(draft, "reviewer")).status).toBe(403);
+    expect(await countPlans()).toBe(before);
+  });
+});
+
 describe("the template", () => {
   it("has the columns of the contract under their names, rows in working order, measured ones empty", async () => {
     const points = [point(1, 10, { repeats: 2 }), point(2, 40, { loadsKg: [10, 20] })];

@@ -2,9 +2,17 @@ import { READERS } from "@/lib/domain/roles";
 import { command } from "@/lib/http/command";
 import { dropRunPlan as drop } from "@/lib/services/run-plans/drop-run-plan";
 import { getPlanTemplate, getRunPlanView, listRunPlans as list } from "@/lib/services/run-plans/get-run-plan";
-import { planRun as plan } from "@/lib/services/run-plans/plan-run";
+import { checkRunPlan as check, planRun as plan } from "@/lib/services/run-plans/plan-run";
 import { byCodeOrId, byId } from "@/schemas/api/common";
-import { dropRunPlan as dropBody, newRunPlan, runPlan, runPlanPage, runPlanQuery } from "@/schemas/api/run-plans";
+import {
+  dropRunPlan as dropBody,
+  newRunPlan,
+  runPlan,
+  runPlanCheck,
+  runPlanDraft,
+  runPlanPage,
+  runPlanQuery,
+} from "@/schemas/api/run-plans";
 
 const readers = { who: "person", roles: READERS } as const;
 const engineer = { who: "person", roles: ["engineer"] } as const;
@@ -34,6 +42,19 @@ export const planRun = command({
   errors: ["lot.not_found", "run_plan.exists", "run_plan.invalid", "run.equipment_unknown", "draw.not_found"],
   idempotent: true,
   handle: async (ctx, { params, body }) => getRunPlanView(ctx, await plan(ctx, { ...body, lot: params.code })),
+});
+
+export const checkRunPlan = command({
+  id: "run-plans.check",
+  method: "POST",
+  path: "/lots/{code}/run-plans/check",
+  summary: "What is to be said of a plan that is still being written; nothing is stored",
+  access: { ...engineer, reads: true },
+  params: byCodeOrId,
+  body: runPlanDraft,
+  reply: { status: 200, schema: runPlanCheck },
+  errors: ["lot.not_found", "run.equipment_unknown"],
+  handle: (ctx, { params, body }) => check(ctx, { ...body, lot: params.code }),
 });
 
 export const getRunPlan = command({
@@ -88,4 +109,4 @@ export const getRunPlanTemplate = command({
   },
 });
 
-export const runPlanCommands = [listRunPlans, planRun, getRunPlan, dropRunPlan, getRunPlanTemplate];
+export const runPlanCommands = [listRunPlans, planRun, checkRunPlan, getRunPlan, dropRunPlan, getRunPlanTemplate];

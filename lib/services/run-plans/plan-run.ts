@@ -1,15 +1,27 @@
-import { getLot, lockLot } from "@/db/queries/lots";
+import type { Db } from "@/db/executor";
+import { getLot, type LotRow, lockLot } from "@/db/queries/lots";
 import { findDrawOfLot, insertRunPlan, listPlannableDevices } from "@/db/queries/run-plans";
 import { findEquipmentByCodes } from "@/db/queries/runs";
 import { checkPlan } from "@/lib/domain/run-plan/check-plan";
 import type { PlanFinding } from "@/lib/domain/run-plan/plan-findings";
+import { countPlannedRows } from "@/lib/domain/run-plan/run-plan";
 import { AppError } from "@/lib/errors";
-import { assertRole, type PersonCtx } from "@/lib/services/context";
+import { assertRole, type Ctx, type PersonCtx } from "@/lib/services/context";
 import { appendEvent } from "@/lib/services/ledger/append-event";
 import { getLotRules } from "@/lib/services/lots/lot-rules";
-import type { NewRunPlan } from "@/schemas/api/run-plans";
+import type { NewRunPlan, RunPlanCheck, RunPlanDraft } from "@/schemas/api/run-plans";
 
 const NAMED_MAX = 100;
+
+/**
+ * What is to be said of a plan that is still being written; nothing is stored.
+ * @throws AppError `lot.not_found`, `run.equipment_unknown` {codes}
+ */
+export async function checkRunPlan(ctx: Ctx, input: RunPlanDraft & { lot: string }): Promise<RunPlanCheck> {
+  const lot = await getLot(ctx.db, input.lot);
+  const { findings } = await judge(ctx, ctx.db, lot, input);
+  return { findings, rows: countPlannedRows(input) };
+}
 
 /**
  * Plans a run of a lot. What speaks softly against it is said and may be planned all the same.
@@ -21,20 +33,10 @@ export async function planRun(ctx: PersonCtx, input: NewRunPlan & { lot: string 
   assertRole(ctx, "engineer");
   return ctx.db.transaction().execute(async (trx) => {
     const lot = await lockLot(trx, (await getLot(trx, input.lot)).id);
-    const { rules } = await getLotRules(trx, lot);
-    const codes = [...new Set(input.equipment)];
-    const equipment = await findEquipmentByCodes(trx, codes);
-    assertAllFound(
-      codes,
-      equipment.map((one) => one.code),
-    );
     if (input.sampleDraw !== undefined && !(await findDrawOfLot(trx, lot.id, input.sampleDraw)))
       throw new AppError("draw.not_found", { draw: input.sampleDraw, message: "The lot has no such draw." });
-    const serials = input.devices.map((device) => device.serial);
-    const devices = await listPlannableDevices(trx, lot.id, serials);
-    const known = new Map(devices.map((device) => [device.serial, device]));
-    const today = ctx.now().toISOString().slice(0, 10);
-    assertNothingHard(checkPlan(input, { family: rules, devices: known, equipment, today }), input);
+    const { findings, known, equipment } = await judge(ctx, trx, lot, input);
+    assertNothingHard(findings, input);
     const id = ctx.newId();
     const { name, purpose, points, notes = null } = input;
     await insertRunPlan(trx, {
@@ -50,10 +52,28 @@ export async function planRun(ctx: PersonCtx, input: NewRunPlan & { lot: string 
       devices: input.devices.map(({ serial, position }) => ({ id: known.get(serial)?.id as string, position })),
       equipmentIds: equipment.map((one) => one.id),
     });
-    const data = { lot: lot.code, name, purpose, devices: serials.length, points, equipment: codes };
+    const codes = equipment.map((one) => one.code);
+    const data = { lot: lot.code, name, purpose, devices: input.devices.length, points, equipment: codes };
     await appendEvent(ctx, trx, { action: "run.planned", subject: id, data, texts: { notes } });
     return id;
   });
+}
+
+/** Holds a plan against the lot's rules, devices and the equipment's dates. */
+async function judge(ctx: Ctx, db: Db, lot: LotRow, plan: RunPlanDraft) {
+  const { rules: family } = await getLotRules(db, lot);
+  const codes = [...new Set(plan.equipment)];
+  const equipment = await findEquipmentByCodes(db, codes);
+  assertAllFound(
+    codes,
+    equipment.map((one) => one.code),
+  );
+  const serials = plan.devices.map((device) => device.serial);
+  const known = new Map(
+    (await listPlannableDevices(db, lot.id, serials)).map((device) => [device.serial, device] as const),
+  );
+  const today = ctx.now().toISOString().slice(0, 10);
+  return { findings: checkPlan(plan, { family, devices: known, equipment, today }), known, equipment };
 }
 
 function assertAllFound(codes: readonly string[], found: readonly string[]): void {
