@@ -12,25 +12,19 @@ import { Select } from "@/app/_components/form/select";
 import { TextArea } from "@/app/_components/form/text-area";
 import { Notice } from "@/app/_components/notice";
 import { formatNumberOf } from "@/lib/domain/format/figure";
-import { formatDate, formatDateTime } from "@/lib/domain/format/time";
+import { formatDateTime } from "@/lib/domain/format/time";
 import type { FindingView } from "@/schemas/api/runs";
 import { ColumnMapping } from "./column-mapping";
+import { type ChosenEquipment, EquipmentChoice } from "./equipment-choice";
+import { PURPOSES } from "./purposes";
 import { type GivenTable, isReadingsCsv, readTable } from "./read-table";
 import { RowErrors, rowErrorsOf } from "./row-errors";
-
-const PURPOSES = [
-  { value: "sample", name: "Sample: loaded and unloaded at each temperature, feeds gain and zero" },
-  { value: "zero", name: "Zero: unloaded only" },
-  { value: "span", name: "Span: unloaded and loaded near the reference temperature, feeds gain only" },
-  { value: "verification", name: "Verification: as sample, never feeds the lot's gain coefficient" },
-  { value: "proof", name: "Proof: compensated output of written devices" },
-] as const;
 
 const MAX_BYTES = 64 * 1024 * 1024;
 
 export interface UploadPanelProps {
   lot: string;
-  equipment: readonly { code: string; kind: string; calibratedUntil: string; overdue: boolean }[];
+  equipment: readonly ChosenEquipment[];
   /** Runs that count and so may be replaced. */
   runs: readonly { id: string; purpose: string; createdAt: string; devices: number; planId: string | null }[];
   /** Planned runs that wait for their readings. */
@@ -183,7 +177,7 @@ export function UploadPanel({ lot, equipment, runs, plans, start = {} }: UploadP
             onChange={(event) => setReason(event.currentTarget.value)}
           />
         ) : null}
-        <EquipmentChoice equipment={equipment} used={used} onUsed={setUsed} />
+        <EquipmentChoice legend="Equipment used" equipment={equipment} used={used} onUsed={setUsed} />
         <Checkbox
           label="Add devices that the lot doesn't have yet"
           checked={addDevices}
@@ -199,49 +193,6 @@ export function UploadPanel({ lot, equipment, runs, plans, start = {} }: UploadP
         </div>
       </form>
     </Card>
-  );
-}
-
-function EquipmentChoice({
-  equipment,
-  used,
-  onUsed,
-}: {
-  equipment: UploadPanelProps["equipment"];
-  used: readonly string[];
-  onUsed: (codes: string[]) => void;
-}) {
-  if (equipment.length === 0) {
-    return (
-      <p className="text-sm text-ink-soft">
-        No equipment is on file. <Link href="/equipment">Add sensors, chamber, loads and reader</Link> so that a run can
-        name them.
-      </p>
-    );
-  }
-  return (
-    <fieldset className="m-0 min-w-0">
-      <legend className="mb-1 text-sm font-semibold">Equipment used</legend>
-      <div className="flex flex-wrap gap-x-6 gap-y-1.5">
-        {equipment.map(({ code, kind, calibratedUntil, overdue }) => (
-          <Checkbox
-            key={code}
-            label={
-              <>
-                <span className="font-mono">{code}</span>{" "}
-                <span className={overdue ? "text-ochre" : "text-ink-soft"}>
-                  {kind}, {overdue ? "past its date of" : "due"} {formatDate(calibratedUntil)}
-                </span>
-              </>
-            }
-            checked={used.includes(code)}
-            onChange={(event) =>
-              onUsed(event.currentTarget.checked ? [...used, code] : used.filter((other) => other !== code))
-            }
-          />
-        ))}
-      </div>
-    </fieldset>
   );
 }
 
