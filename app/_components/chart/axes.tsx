@@ -9,10 +9,13 @@ interface AxisProps {
   title: string;
   /** Instead of round numbers. */
   ticks?: readonly number[];
+  /** Only whole numbers, as of devices in a row. */
+  whole?: boolean;
 }
 
-export function XAxis({ area, scale, title, ticks }: AxisProps) {
+export function XAxis({ area, scale, title, ticks: given, whole }: AxisProps) {
   const nice = niceTicks(scale.domain, Math.max(2, (area.right - area.left) / 90));
+  const ticks = given ?? (whole ? nice.values.filter(Number.isInteger) : undefined);
   return (
     <g>
       {(ticks ?? nice.values).map((value) => (

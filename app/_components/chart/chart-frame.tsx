@@ -1,14 +1,7 @@
 "use client";
 
 import { type ReactNode, useEffect, useRef, useState } from "react";
-import { ScrollRegion } from "@/app/_components/scroll-region";
-
-export interface ChartTable {
-  /** Headings with their units. */
-  columns: readonly string[];
-  /** Formatted cells; the first is the row's heading. */
-  rows: readonly (readonly string[])[];
-}
+import { type ChartTable, ChartTableDetails } from "@/app/_components/chart/chart-table";
 
 export interface PlotArea {
   width: number;
@@ -44,47 +37,19 @@ export function ChartFrame({ label, table, height = 290, legend, children }: Cha
   return (
     <figure className="m-0">
       <div ref={box} className="overflow-hidden">
-        <svg width={width} height={height} role="img" aria-label={label} className="block text-[13px]">
+        <svg
+          viewBox={`0 0 ${width} ${height}`}
+          width={width}
+          height={height}
+          role="img"
+          aria-label={label}
+          className="block text-[13px] print:h-auto print:w-full"
+        >
           {children(area)}
         </svg>
       </div>
       {legend}
-      <details className="mt-1.5 text-sm print:hidden">
-        <summary className="w-max text-slate hover:text-copper-strong">Values as a table</summary>
-        <ScrollRegion label="Values as a table" className="mt-2 max-h-80 overflow-auto border border-rule">
-          <table className="w-full">
-            <thead>
-              <tr>
-                {table.columns.map((column, index) => (
-                  <th
-                    key={column}
-                    scope="col"
-                    className={`sticky top-0 border-b border-rule bg-raised px-3 py-1.5 text-xs text-ink-soft ${index ? "text-right" : "text-left"}`}
-                  >
-                    {column}
-                  </th>
-                ))}
-              </tr>
-            </thead>
-            <tbody>
-              {table.rows.map((row, index) => (
-                // biome-ignore lint/suspicious/noArrayIndexKey: rows of a chart have no identity of their own
-                <tr key={index} className="border-b border-rule/55">
-                  {row.map((text, column) => (
-                    <td
-                      // biome-ignore lint/suspicious/noArrayIndexKey: columns are fixed
-                      key={column}
-                      className={`px-3 py-1 font-mono whitespace-nowrap ${column ? "text-right" : ""}`}
-                    >
-                      {text}
-                    </td>
-                  ))}
-                </tr>
-              ))}
-            </tbody>
-          </table>
-        </ScrollRegion>
-      </details>
+      <ChartTableDetails table={table} />
     </figure>
   );
 }

@@ -39,8 +39,9 @@ export function DotHistogram(props: DotHistogramProps) {
       label={label}
       height={props.height}
       table={{
-        columns: ["Serial", "Role", xTitle],
-        rows: values.map((v) => [v.name, v.role, formatFigure(v.value, { digits })]),
+        name: label,
+        columns: [{ title: "Serial" }, { title: "Role" }, { title: xTitle, digits }],
+        rows: values.map((v) => [v.name, v.role, v.value]),
       }}
       legend={<Legend entries={entriesOf(props, toleranceName, digits)} />}
     >

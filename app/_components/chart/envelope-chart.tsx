@@ -2,9 +2,9 @@
 
 import { XAxis, YAxis } from "@/app/_components/chart/axes";
 import { ChartFrame } from "@/app/_components/chart/chart-frame";
+import type { ChartTable } from "@/app/_components/chart/chart-table";
 import { Legend, strokeOf } from "@/app/_components/chart/legend";
 import { linearScale, type Scale } from "@/app/_components/chart/scale";
-import { formatCount, formatFigure } from "@/lib/domain/format/figure";
 
 export interface EnvelopeLine {
   /** Serial. */
@@ -50,7 +50,7 @@ export function EnvelopeChart({ label, envelopeName, steps, lines, height }: Env
     <ChartFrame
       label={label}
       height={height}
-      table={tableOf(lines, steps)}
+      table={tableOf(label, lines, steps)}
       legend={
         <Legend
           entries={[
@@ -109,16 +109,17 @@ function outline(steps: readonly EnvelopeStep[], x: Scale, y: Scale): string {
   return [...upper, ...lower].map(([load, limit]) => `${x(load)},${y(limit)}`).join(" ");
 }
 
-function tableOf(lines: readonly EnvelopeLine[], steps: readonly EnvelopeStep[]) {
-  const limitAt = (load: number) => steps.find((step) => load <= step.upTo)?.limit;
+function tableOf(label: string, lines: readonly EnvelopeLine[], steps: readonly EnvelopeStep[]): ChartTable {
+  const limitAt = (load: number) => steps.find((step) => load <= step.upTo)?.limit ?? null;
   const rows = lines.flatMap((line) =>
-    line.points.map(([load, error]) => [
-      line.name,
-      looks[line.role].name,
-      formatCount(load),
-      formatFigure(error, { digits: 3 }),
-      `±${formatFigure(limitAt(load), { digits: 3 })}`,
-    ]),
+    line.points.map(([load, error]) => [line.name, looks[line.role].name, load, error, limitAt(load)]),
   );
-  return { columns: ["Serial", "Role", "Load, v", "Error, v", "Limit, v"], rows };
+  const columns = [
+    { title: "Serial" },
+    { title: "Role" },
+    { title: "Load, v", digits: 0 },
+    { title: "Error, v", digits: 3 },
+    { title: "Limit ±, v", digits: 3 },
+  ];
+  return { name: label, columns, rows };
 }

@@ -22,7 +22,7 @@ export const fillOf: Record<SeriesTone, string> = {
 export interface LegendEntry {
   name: string;
   tone: SeriesTone;
-  shape: "line" | "dashed" | "dot" | "ring" | "band" | "bar";
+  shape: "line" | "dashed" | "dot" | "ring" | "band" | "area" | "bar";
 }
 
 /** Names of what is drawn, each with its own drawing. */
@@ -47,6 +47,7 @@ function drawingOf({ tone, shape }: LegendEntry) {
   if (shape === "ring") return <circle cx="11" cy="6" r="4.2" fill="none" strokeWidth="1.6" className={stroke} />;
   if (shape === "band")
     return <rect x="1" y="1" width="20" height="10" fillOpacity="0.12" className={`${fillOf[tone]} ${stroke}`} />;
+  if (shape === "area") return <rect x="1" y="1" width="20" height="10" fillOpacity="0.2" className={fillOf[tone]} />;
   if (shape === "bar") return <path d="M1 6H21M1 2V10M21 2V10" fill="none" strokeWidth="1.8" className={stroke} />;
   return (
     <path d="M1 6H21" strokeWidth="1.6" strokeDasharray={shape === "dashed" ? "4 3" : undefined} className={stroke} />

@@ -2,9 +2,9 @@
 
 import { XAxis, YAxis } from "@/app/_components/chart/axes";
 import { ChartFrame } from "@/app/_components/chart/chart-frame";
+import type { ChartTable } from "@/app/_components/chart/chart-table";
 import { fillOf, Legend, type SeriesTone, strokeOf } from "@/app/_components/chart/legend";
-import { domainOf, linearScale } from "@/app/_components/chart/scale";
-import { formatFigure } from "@/lib/domain/format/figure";
+import { domainOf, linearScale, type Scale } from "@/app/_components/chart/scale";
 
 export interface LineSeries {
   name: string;
@@ -17,32 +17,46 @@ export interface LineSeries {
   group?: string;
 }
 
+/** What many devices span together, from lowest to highest. */
+export interface LineRange {
+  name: string;
+  tone: SeriesTone;
+  points: readonly (readonly [x: number, low: number, high: number])[];
+}
+
 export interface LineChartProps {
   label: string;
   /** Quantity and unit. */
   xTitle: string;
   yTitle: string;
   series: readonly LineSeries[];
+  ranges?: readonly LineRange[];
   /** Allowed range of y. */
   band?: { name: string; from: number; to: number };
   xDigits?: number;
   yDigits?: number;
+  /** Only whole numbers are named on the axis. */
+  xWhole?: boolean;
   height?: number;
+  /** Instead of one row a point. */
+  table?: ChartTable;
 }
 
 /** Any y over x: zero and gain over temperature before and after, residuals, progress over time. */
-export function LineChart({ label, xTitle, yTitle, series, band, xDigits = 2, yDigits = 3, height }: LineChartProps) {
-  const xs = series.flatMap((s) => s.points.map(([x]) => x));
-  const ys = [...series.flatMap((s) => s.points.map(([, y]) => y)), ...(band ? [band.from, band.to] : [])];
-  const rows = series.flatMap((s) =>
-    s.points.map(([x, y]) => [s.name, formatFigure(x, { digits: xDigits }), formatFigure(y, { digits: yDigits })]),
-  );
+export function LineChart(props: LineChartProps) {
+  const { label, xTitle, yTitle, series, ranges = [], band, height } = props;
+  const xs = [...series.flatMap((s) => s.points.map(([x]) => x)), ...ranges.flatMap((r) => r.points.map(([x]) => x))];
+  const ys = [
+    ...series.flatMap((s) => s.points.map(([, y]) => y)),
+    ...ranges.flatMap((r) => r.points.flatMap(([, low, high]) => [low, high])),
+    ...(band ? [band.from, band.to] : []),
+  ];
   return (
     <ChartFrame
       label={label}
       height={height}
-      table={{ columns: ["Series", xTitle, yTitle], rows }}
-      legend={<Legend entries={legendOf(series, band)} />}
+      table={props.table ?? tableOf(props)}
+      legend={<Legend entries={legendOf(series, ranges, band)} />}
     >
       {(area) => {
         const x = linearScale(domainOf(xs, 0.03), [area.left, area.right]);
@@ -50,7 +64,7 @@ export function LineChart({ label, xTitle, yTitle, series, band, xDigits = 2, yD
         return (
           <>
             <YAxis area={area} scale={y} title={yTitle} />
-            <XAxis area={area} scale={x} title={xTitle} />
+            <XAxis area={area} scale={x} title={xTitle} whole={props.xWhole} />
             {band ? (
               <rect
                 x={area.left}
@@ -61,25 +75,11 @@ export function LineChart({ label, xTitle, yTitle, series, band, xDigits = 2, yD
                 className="fill-verdigris stroke-verdigris"
               />
             ) : null}
+            {ranges.map((range) => (
+              <RangeArea key={range.name} range={range} x={x} y={y} />
+            ))}
             {series.map((s) => (
-              <g key={s.name}>
-                <title>{s.name}</title>
-                {s.draw === "points" ? null : (
-                  <polyline
-                    points={s.points.map(([px, py]) => `${x(px)},${y(py)}`).join(" ")}
-                    fill="none"
-                    strokeWidth="1.4"
-                    strokeDasharray={s.dashed ? "4 3" : undefined}
-                    opacity="0.85"
-                    className={strokeOf[s.tone]}
-                  />
-                )}
-                {s.draw === "points" || s.draw === "both"
-                  ? s.points.map(([px, py]) => (
-                      <circle key={`${px},${py}`} cx={x(px)} cy={y(py)} r="3" className={fillOf[s.tone]} />
-                    ))
-                  : null}
-              </g>
+              <SeriesLine key={`${s.group ?? ""} ${s.name}`} series={s} x={x} y={y} />
             ))}
           </>
         );
@@ -88,12 +88,58 @@ export function LineChart({ label, xTitle, yTitle, series, band, xDigits = 2, yD
   );
 }
 
-function legendOf(series: readonly LineSeries[], band: LineChartProps["band"]) {
+function SeriesLine({ series: s, x, y }: { series: LineSeries; x: Scale; y: Scale }) {
+  return (
+    <g>
+      <title>{s.name}</title>
+      {s.draw === "points" ? null : (
+        <polyline
+          points={s.points.map(([px, py]) => `${x(px)},${y(py)}`).join(" ")}
+          fill="none"
+          strokeWidth="1.4"
+          strokeDasharray={s.dashed ? "4 3" : undefined}
+          opacity="0.85"
+          className={strokeOf[s.tone]}
+        />
+      )}
+      {s.draw === "points" || s.draw === "both"
+        ? s.points.map(([px, py], index) => (
+            // biome-ignore lint/suspicious/noArrayIndexKey: points of a series have no identity of their own
+            <circle key={index} cx={x(px)} cy={y(py)} r="3" className={fillOf[s.tone]} />
+          ))
+        : null}
+    </g>
+  );
+}
+
+function RangeArea({ range, x, y }: { range: LineRange; x: Scale; y: Scale }) {
+  const upper = range.points.map(([px, , high]) => `${x(px)},${y(high)}`);
+  const lower = range.points.map(([px, low]) => `${x(px)},${y(low)}`).reverse();
+  return (
+    <polygon points={[...upper, ...lower].join(" ")} fillOpacity="0.14" className={fillOf[range.tone]}>
+      <title>{range.name}</title>
+    </polygon>
+  );
+}
+
+function tableOf({ label, xTitle, yTitle, series, xDigits = 2, yDigits = 3 }: LineChartProps): ChartTable {
+  return {
+    name: label,
+    columns: [{ title: "Series" }, { title: xTitle, digits: xDigits }, { title: yTitle, digits: yDigits }],
+    rows: series.flatMap((s) => s.points.map(([x, y]) => [s.name, x, y])),
+  };
+}
+
+function legendOf(series: readonly LineSeries[], ranges: readonly LineRange[], band: LineChartProps["band"]) {
   const named = new Map(series.map((s) => [s.group ?? s.name, s] as const));
   const entries = [...named].map(([name, s]) => ({
     name,
     tone: s.tone,
     shape: s.draw === "points" ? ("dot" as const) : s.dashed ? ("dashed" as const) : ("line" as const),
   }));
-  return band ? [...entries, { name: band.name, tone: "verdigris" as const, shape: "band" as const }] : entries;
+  return [
+    ...entries,
+    ...ranges.map(({ name, tone }) => ({ name, tone, shape: "area" as const })),
+    ...(band ? [{ name: band.name, tone: "verdigris" as const, shape: "band" as const }] : []),
+  ];
 }

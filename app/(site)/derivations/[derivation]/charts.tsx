@@ -4,7 +4,7 @@ import { EnvelopeChart } from "@/app/_components/chart/envelope-chart";
 import { decisiveLoads, maximumPermissibleError, spanErrorInIntervals } from "@/lib/domain/compensation/envelope";
 import type { FamilyRules } from "@/lib/domain/compensation/types";
 import { formatCount, formatPercent } from "@/lib/domain/format/figure";
-import type { ChartDevice } from "@/lib/services/derivations/get-derivation-chart";
+import type { ChartDevice, DerivationChart } from "@/lib/services/derivations/get-derivation-chart";
 import type { DerivationView } from "@/schemas/api/derivations";
 
 interface ChartsProps {
@@ -13,14 +13,21 @@ interface ChartsProps {
   devices: readonly ChartDevice[];
 }
 
+/** "the first 200 of 5,000", where not every loaded device is drawn by itself. */
+export function drawnNote({ devices, loaded }: DerivationChart): string | undefined {
+  return loaded > devices.length
+    ? `the first ${formatCount(devices.length)} of ${formatCount(loaded)} loaded devices, by serial`
+    : undefined;
+}
+
 const PPM = 1e6;
 const shareOf = (share: number) => formatPercent(share).replace(" %", "");
 const asPpm = (range: readonly [number, number]) => [range[0] * PPM, range[1] * PPM] as const;
 
 /** The two pictures of a derivation: what the errors use of the envelope, and how the gain coefficient scatters. */
-export function DerivationCharts({ view, rules, devices }: ChartsProps) {
-  const count = (view.counts.roles.sample ?? 0) + (view.counts.roles.verification ?? 0);
-  const note = count > devices.length ? `the first ${formatCount(devices.length)} of ${formatCount(count)}` : undefined;
+export function DerivationCharts({ view, chart }: { view: DerivationView; chart: DerivationChart }) {
+  const { rules, devices } = chart;
+  const note = drawnNote(chart);
   return (
     <div className="grid gap-[18px] xl:grid-cols-2">
       <ErrorChart view={view} rules={rules} devices={devices} note={note} />
@@ -33,14 +40,11 @@ function ErrorChart({ view, rules, devices, note }: ChartsProps & { note?: strin
   const { accuracyClass, intervals, pLc } = rules;
   const judged = devices.filter((device) => device.spanErrorPpm !== null && device.role !== "excluded");
   const lines = judged.map(({ serial, role, spanErrorPpm }) => {
-    const error = spanErrorInIntervals((spanErrorPpm ?? 0) / PPM, intervals);
+    const error = (load: number) => spanErrorInIntervals((spanErrorPpm ?? 0) / PPM, load);
     return {
       name: serial,
       role: role === "verification" ? role : ("sample" as const),
-      points: [
-        [0, 0],
-        [intervals, error],
-      ] as const,
+      points: [0, ...decisiveLoads(rules)].map((load) => [load, error(load)] as const),
     };
   });
   const title =

@@ -1,84 +1,65 @@
+"use client";
+
+import { useMemo } from "react";
 import { Card } from "@/app/_components/card";
 import { DataTable } from "@/app/_components/table/data-table";
+import { formatNumberOf } from "@/lib/domain/format/figure";
+import type { DerivationView } from "@/schemas/api/derivations";
+import { deviceChips, deviceColumns, withErrorV } from "./device-columns";
+import { useSelection } from "./selection";
 
-/** Every device of a derivation with its values, its error and its findings. */
-export function DevicesCard({ id, noFreedom, order }: { id: string; noFreedom: boolean; order: number }) {
+export interface DevicesCardProps {
+  view: Pick<DerivationView, "id" | "order" | "method" | "counts">;
+  intervals: number;
+  /** Some fits pass through all their points. */
+  noFreedom: boolean;
+  /** Who asks may decide over the devices, and so select them. */
+  selectable: boolean;
+}
+
+/** Every device of a derivation with its values, its error, its findings and its state. */
+export function DevicesCard({ view, intervals, noFreedom, selectable }: DevicesCardProps) {
+  const { serials, setSerials } = useSelection();
+  const { id, order, method, counts } = view;
+  const columns = useMemo(
+    () => deviceColumns({ order, intervals, isPooled: method === "pooled-gain", isImport: method === "import" }),
+    [order, intervals, method],
+  );
+  const toRow = useMemo(() => (row: Record<string, unknown>) => withErrorV(row, intervals), [intervals]);
   const few = order === 1 ? "Two temperatures" : "Three temperatures";
+  const path = `/api/v1/derivations/${id}/devices`;
   return (
-    <Card title="Devices">
+    <Card
+      title="Devices"
+      note={selectable && serials.size > 0 ? `${formatNumberOf(serials.size, "device")} selected` : undefined}
+      aside={
+        <span className="print:hidden">
+          All columns, full precision:{" "}
+          <a href={`${path}?format=csv`} download>
+            CSV
+          </a>{" "}
+          ·{" "}
+          <a href={`${path}?format=xlsx`} download>
+            XLSX
+          </a>
+        </span>
+      }
+    >
       <DataTable
         name="devices"
         urlName="devices"
-        endpoint={`/api/v1/derivations/${id}/devices`}
+        endpoint={path}
         rowKey="serial"
         rowHref={`/derivations/${id}/{serial}`}
-        note={noFreedom ? `${few} leave no degree of freedom: fits pass through their points.` : undefined}
-        columns={[
-          { key: "serial", header: "Serial", format: { as: "code" } },
-          { key: "role", header: "Role" },
-          { key: "individual.gainTc", header: "own gainTc", format: { as: "quantity", name: "gainTc" } },
-          { key: "coefficients.gainTc", header: "gainTc", format: { as: "quantity", name: "gainTc" }, hidden: true },
-          { key: "coefficients.zeroTc", header: "zeroTc", format: { as: "quantity", name: "zeroTc" } },
-          {
-            key: "uncertainty.zeroTc",
-            header: "zeroTc ±",
-            title: "Standard error; none without a degree of freedom",
-            format: { as: "quantity", name: "zeroTc" },
-            hidden: noFreedom,
-          },
-          { key: "coefficients.zero", header: "zero", format: { as: "quantity", name: "zero" } },
-          { key: "coefficients.gain", header: "gain", format: { as: "quantity", name: "gain" } },
-          {
-            key: "coefficients.gainTc2",
-            header: "gainTc2",
-            format: { as: "quantity", name: "gainTc2" },
-            hidden: order === 1,
-          },
-          {
-            key: "coefficients.zeroTc2",
-            header: "zeroTc2",
-            format: { as: "quantity", name: "zeroTc2" },
-            hidden: order === 1,
-          },
-          {
-            key: "coefficients.tempOffset",
-            header: "tempOffset",
-            format: { as: "quantity", name: "tempOffset" },
-            hidden: true,
-          },
-          {
-            key: "coefficients.tempSlope",
-            header: "tempSlope",
-            format: { as: "quantity", name: "tempSlope" },
-            hidden: true,
-          },
-          {
-            key: "spanErrorPpm",
-            header: "span error",
-            format: { as: "quantity", name: "spanErrorPpm", sign: "always" },
-          },
-          {
-            key: "spanRatio",
-            header: "span",
-            title: "Share of the envelope; up to 1 is inside",
-            format: { as: "quantity", name: "ratio" },
-          },
-          {
-            key: "zeroShiftRatio",
-            header: "zero shift",
-            title: "Share of the limit; up to 1 is inside",
-            format: { as: "quantity", name: "ratio" },
-          },
-          { key: "findings.length", header: "Findings", format: { as: "count" } },
-          { key: "state", header: "State", format: { as: "state", kind: "coefficient-set" } },
-        ]}
-        chips={[
-          { id: "findings", name: "With findings", key: "findings.length", above: 0 },
-          { id: "sample", name: "Sample", key: "role", in: ["sample"] },
-          { id: "zero", name: "Zero-only", key: "role", in: ["zero"] },
-          { id: "verification", name: "Verification", key: "role", in: ["verification"] },
-          { id: "excluded", name: "Excluded", key: "role", in: ["excluded"] },
-        ]}
+        toRow={toRow}
+        columns={columns}
+        chips={deviceChips(counts)}
+        note={
+          noFreedom
+            ? `${few} leave no degree of freedom: the fit passes through all points, and no error is stated.`
+            : "± is one standard error."
+        }
+        {...(selectable && { selected: serials, onSelected: setSerials })}
         empty={{ title: "No device", text: "The runs named no device." }}
       />
     </Card>

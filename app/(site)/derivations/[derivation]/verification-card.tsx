@@ -1,19 +1,31 @@
 import { Card } from "@/app/_components/card";
+import { StateMark } from "@/app/_components/state/state-mark";
 import { DataTable } from "@/app/_components/table/data-table";
+import { devicesToShow, shareShown } from "@/lib/domain/compensation/share-shown";
+import { formatFigure, formatNumberOf, formatPercent } from "@/lib/domain/format/figure";
 import type { DerivationView } from "@/schemas/api/derivations";
 
 const JUDGED_BY: Record<string, string> = { spanRatio: "span error", zeroShiftRatio: "zero shift" };
 
+export interface VerificationCardProps {
+  derivation: string;
+  results: DerivationView["verification"];
+  /** Of the family, 0…1. */
+  confidence: number;
+  coverage: number;
+}
+
 /** Devices that never fed the gain coefficient, judged with it. Nothing where there is none. */
-export function VerificationCard({ results }: { results: DerivationView["verification"] }) {
+export function VerificationCard({ derivation, results, confidence, coverage }: VerificationCardProps) {
   if (results.length === 0) return null;
   const judged = results.filter((one) => one.passed !== null);
   const passed = judged.filter((one) => one.passed).length;
   return (
-    <Card
-      title="Verification"
-      note={`${passed} of ${judged.length} judged devices inside; the findings say what share of the lot that shows`}
-    >
+    <Card title="Verification" note="Devices that never fed the lot's gainTc, judged with it">
+      <div className="mb-3 flex flex-wrap items-baseline gap-x-4 gap-y-1 text-sm">
+        <StateMark {...verdictOf(passed, judged.length)} />
+        <p className="min-w-0">{shownText(passed, judged.length, confidence, coverage)}</p>
+      </div>
       <DataTable
         name="verification devices"
         urlName="verification"
@@ -22,6 +34,7 @@ export function VerificationCard({ results }: { results: DerivationView["verific
           judged: one.judged.map((ratio) => JUDGED_BY[ratio] ?? ratio).join(", "),
         }))}
         rowKey="serial"
+        rowHref={`/derivations/${derivation}/{serial}`}
         columns={[
           { key: "serial", header: "Serial", format: { as: "code" } },
           {
@@ -37,5 +50,23 @@ export function VerificationCard({ results }: { results: DerivationView["verific
         empty={{ title: "No verification device" }}
       />
     </Card>
+  );
+}
+
+function verdictOf(passed: number, judged: number) {
+  if (judged === 0) return { tone: "caution", word: "none could be judged" } as const;
+  const word = `${passed} of ${judged} inside`;
+  return passed === judged ? ({ tone: "good", word } as const) : ({ tone: "bad", word } as const);
+}
+
+/** What the count really shows: no more than luck allows. */
+function shownText(passed: number, judged: number, confidence: number, coverage: number): string {
+  if (judged === 0) return "No verification device has a loaded reading beside the ones its gain was taken from.";
+  if (passed < judged) return "One outside is enough to doubt the pooled coefficient: find out what sets it apart.";
+  const share = formatFigure(Math.floor(shareShown(judged, confidence) * 1000) / 10, { digits: 1 });
+  const needed = devicesToShow(coverage, confidence);
+  return (
+    `${passed} of ${judged} passing shows at least ${share} % of the lot at ${formatPercent(confidence)} confidence, and no more. ` +
+    `To show ${formatPercent(coverage)}, ${formatNumberOf(needed, "device")} would have to pass, all of them.`
   );
 }
