@@ -80,13 +80,14 @@ export function zeroTcLimit({ accuracyClass, pLc, vMinRatioY }: FamilyRules): nu
  * Share of the limit at minimum load that a change of the corrected unloaded output uses; ≤ 1 is inside.
  * Source: OIML R 60-1:2021, 5.6.1.3, and C_M of R 60-3:2021, 2.1.4, with the span taken as Emax − Emin.
  * @param changeMvV change of output, mV/V, over `changeK` ≠ 0.
- * @throws AppError `envelope.same_temperature` {changeK}.
+ * @throws AppError `envelope.change_invalid` {changeMvV, changeK} where that is no finite share.
  */
 export function zeroShiftRatio(changeMvV: number, changeK: number, family: FamilyRules): number {
-  if (!(changeK !== 0 && Number.isFinite(changeK))) throw new AppError("envelope.same_temperature", { changeK });
   const { nominalMvV, vMinRatioY, accuracyClass, pLc } = family;
   const step = MINIMUM_LOAD_STEP_K[accuracyClass];
-  return ((Math.abs(changeMvV) / nominalMvV) * vMinRatioY * step) / Math.abs(changeK) / pLc;
+  const ratio = ((Math.abs(changeMvV) / nominalMvV) * vMinRatioY * step) / Math.abs(changeK) / pLc;
+  if (!Number.isFinite(ratio)) throw new AppError("envelope.change_invalid", { changeMvV, changeK });
+  return ratio;
 }
 
 /**
@@ -99,6 +100,15 @@ export function poolingLimit(family: FamilyRules): number {
   return (temperatureShare * spanErrorLimit(family)) / reach;
 }
 
+const FINITE = [
+  "referenceC",
+  "temperatureMinC",
+  "temperatureMaxC",
+  "minSoakMinutes",
+  "minLoadFraction",
+  "minTemperatureSpanK",
+] as const;
+
 /**
  * Refuses rules with which nothing can be computed.
  * @throws AppError `family.invalid` {field, value}.
@@ -108,11 +118,9 @@ export function assertFamilyRules(family: FamilyRules): void {
   const bad =
     positive.find((field) => !(family[field] > 0 && Number.isFinite(family[field]))) ??
     (["coverage", "confidence"] as const).find((field) => !(family[field] > 0 && family[field] < 1)) ??
-    (["referenceC", "minSoakMinutes", "minLoadFraction", "minTemperatureSpanK"] as const).find(
-      (field) => !Number.isFinite(family[field]),
-    ) ??
+    FINITE.find((field) => !Number.isFinite(family[field])) ??
     (family.temperatureMinC < family.temperatureMaxC ? undefined : "temperatureMaxC");
   if (bad) throw new AppError("family.invalid", { field: bad, value: family[bad] });
-  if (!(family.accuracyClass in STEP_ENDS))
+  if (!Object.hasOwn(STEP_ENDS, family.accuracyClass))
     throw new AppError("family.invalid", { field: "accuracyClass", value: family.accuracyClass });
 }

@@ -1,5 +1,12 @@
 import { AppError } from "@/lib/errors";
 
+/** The same polynomial in powers of x − x0, x0 being the mean of x: there its coefficients are least entangled. */
+interface CentredPolynomial {
+  x0: number;
+  coefficients: number[];
+  covariance: number[][] | null;
+}
+
 /** A least-squares polynomial in powers of x. */
 export interface Fit {
   /** b0, b1 (, b2): y = b0 + b1·x (+ b2·x²). */
@@ -16,6 +23,7 @@ export interface Fit {
   degreesOfFreedom: number;
   /** 1 − SSE/SST; null where y does not vary. */
   rSquared: number | null;
+  centred: CentredPolynomial;
 }
 
 /** Below this share of the spread of x the columns count as dependent. */
@@ -54,20 +62,34 @@ function centre(x: readonly number[], y: readonly number[]): Centred | undefined
   return { n, meanX, meanY: roughY + restY / n, halfWidth };
 }
 
-/** Adds deviations and R² to coefficients and residuals; `unit` is the covariance for a residual variance of 1. */
-function finish(coefficients: number[], residuals: number[], unit: number[][], sst: number): Fit | undefined {
+/** A polynomial through points before its deviations are known. */
+interface Solution {
+  coefficients: number[];
+  residuals: number[];
+  x0: number;
+  centred: number[];
+  /** Covariance of the coefficients about x = origin, for a residual variance of 1. */
+  unit: (origin: number) => number[][];
+  sst: number;
+}
+
+/** Adds deviations and R² to a solution. */
+function finish({ coefficients, residuals, x0, centred, unit, sst }: Solution): Fit | undefined {
   const degreesOfFreedom = residuals.length - coefficients.length;
   let sse = 0;
   for (const residual of residuals) sse += residual * residual;
   if (!Number.isFinite(sse) || !coefficients.every(Number.isFinite)) return undefined;
   const rSquared = sst > 0 ? 1 - sse / sst : null;
+  const about = { x0, coefficients: centred, covariance: null };
   if (degreesOfFreedom < 1) {
     const none = { standardErrors: null, covariance: null, residualSd: null };
-    return { coefficients, ...none, residuals, degreesOfFreedom, rSquared };
+    return { coefficients, ...none, residuals, degreesOfFreedom, rSquared, centred: about };
   }
   const variance = sse / degreesOfFreedom;
-  const covariance = unit.map((row) => row.map((value) => value * variance));
+  const scaled = (origin: number) => unit(origin).map((row) => row.map((value) => value * variance));
+  const covariance = scaled(0);
   const standardErrors = covariance.map((row, i) => Math.sqrt(row[i] as number));
+  if (!standardErrors.every(Number.isFinite)) return undefined;
   return {
     coefficients,
     standardErrors,
@@ -76,6 +98,7 @@ function finish(coefficients: number[], residuals: number[], unit: number[][], s
     residualSd: Math.sqrt(variance),
     degreesOfFreedom,
     rSquared,
+    centred: { ...about, covariance: scaled(x0) },
   };
 }
 
@@ -118,15 +141,20 @@ export function findLine(x: readonly number[], y: readonly number[]): Fit | unde
     sxx += dx * dx;
     sst += dy * dy;
   }
+  // Beyond a double a square says nothing any more.
+  if (!Number.isFinite(sxx) || !Number.isFinite(sst)) return undefined;
   const [intercept, slope] = lineThrough(x, y);
   const residuals = new Array<number>(n);
   for (let i = 0; i < n; i++) residuals[i] = (y[i] as number) - meanY - slope * ((x[i] as number) - meanX);
-  const cross = -meanX / sxx;
-  const unit = [
-    [1 / n + (meanX * meanX) / sxx, cross],
-    [cross, 1 / sxx],
-  ];
-  return finish([intercept, slope], residuals, unit, sst);
+  const unit = (origin: number) => {
+    const shift = meanX - origin;
+    const cross = -shift / sxx;
+    return [
+      [1 / n + (shift * shift) / sxx, cross],
+      [cross, 1 / sxx],
+    ];
+  };
+  return finish({ coefficients: [intercept, slope], residuals, x0: meanX, centred: [meanY, slope], unit, sst });
 }
 
 /** As {@link fitQuadratic}, undefined where the points do not fix a parabola. */
@@ -157,24 +185,29 @@ export function findQuadratic(x: readonly number[], y: readonly number[]): Fit |
     p2y += p * dy;
     sst += dy * dy;
   }
-  if (!(p2p2 > DEPENDENT * n)) return undefined;
+  if (!(p2p2 > DEPENDENT * n) || !Number.isFinite(sst)) return undefined;
   const linear = wy / w2;
   const square = p2y / p2p2;
   const residuals = w.map((value, i) => (y[i] as number) - meanY - linear * value - square * (p2[i] as number));
-  // Powers of x of the three polynomials: rows b0, b1, b2; columns the polynomials.
-  const shift = meanX / halfWidth;
-  const toPowers = [
-    [1, -shift, shift * shift + skew * shift - spread],
-    [0, 1 / halfWidth, (-2 * shift - skew) / halfWidth],
-    [0, 0, 1 / (halfWidth * halfWidth)],
-  ];
   const inPolynomials = [meanY, linear, square];
   const weights = [1 / n, 1 / w2, 1 / p2p2];
   const product = (a: readonly number[], b: readonly number[], scale: readonly number[]) =>
     a.reduce((sum, value, k) => sum + value * (b[k] as number) * (scale[k] as number), 0);
-  const coefficients = toPowers.map((row) => product(row, inPolynomials, [1, 1, 1]));
-  const unit = toPowers.map((row) => toPowers.map((column) => product(row, column, weights)));
-  return finish(coefficients, residuals, unit, sst);
+  // The three polynomials in powers of x − origin: rows b0, b1, b2; columns the polynomials.
+  const toPowers = (origin: number) => {
+    const shift = (meanX - origin) / halfWidth;
+    return [
+      [1, -shift, shift * shift + skew * shift - spread],
+      [0, 1 / halfWidth, (-2 * shift - skew) / halfWidth],
+      [0, 0, 1 / (halfWidth * halfWidth)],
+    ];
+  };
+  const about = (origin: number) => toPowers(origin).map((row) => product(row, inPolynomials, [1, 1, 1]));
+  const unit = (origin: number) => {
+    const rows = toPowers(origin);
+    return rows.map((row) => rows.map((column) => product(row, column, weights)));
+  };
+  return finish({ coefficients: about(0), residuals, x0: meanX, centred: about(meanX), unit, sst });
 }
 
 function degenerate(x: readonly number[], y: readonly number[], needed: number): AppError {
@@ -210,4 +243,33 @@ export function fitQuadratic(x: readonly number[], y: readonly number[]): Fit {
   const fit = findQuadratic(x, y);
   if (!fit) throw degenerate(x, y, 3);
   return fit;
+}
+
+/** What a fit says at one x. */
+export interface FitPrediction {
+  value: number;
+  /** Standard error of the fitted curve there; null without a degree of freedom. */
+  standardError: number | null;
+  /** The same for a single new measurement: its own scatter added. */
+  newStandardError: number | null;
+}
+
+/**
+ * Value of the fit at x, with its standard error √(vᵀ·C·v): v the powers of x − x0 and C their covariance. About the mean
+ * of x nothing cancels, where powers of x itself would lose their digits for a mean far from 0.
+ * Source: NIST/SEMATECH e-Handbook of Statistical Methods, 4.5.1 (predicted values and their uncertainty).
+ * @param x finite, in the unit of the fit's x. Outside the points it is an extrapolation: the error knows nothing of it.
+ * @throws AppError `fit.x_invalid` {x}, also where the value is beyond a double.
+ */
+export function predictFit(fit: Fit, x: number): FitPrediction {
+  const { x0, coefficients, covariance } = fit.centred;
+  const powers = coefficients.map((_, i) => (x - x0) ** i);
+  const value = powers.reduce((sum, power, i) => sum + power * (coefficients[i] as number), 0);
+  let variance = 0;
+  for (const [i, row] of (covariance ?? []).entries())
+    for (const [k, entry] of row.entries()) variance += entry * (powers[i] as number) * (powers[k] as number);
+  if (!Number.isFinite(value) || !Number.isFinite(variance)) throw new AppError("fit.x_invalid", { x });
+  if (!covariance || fit.residualSd === null) return { value, standardError: null, newStandardError: null };
+  const standardError = Math.sqrt(Math.max(0, variance));
+  return { value, standardError, newStandardError: Math.hypot(standardError, fit.residualSd) };
 }

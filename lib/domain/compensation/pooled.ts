@@ -1,6 +1,6 @@
 import { studentQuantile } from "./distributions";
 import { poolingLimit } from "./envelope";
-import { findGrubbsStatistic, grubbsCritical } from "./grubbs";
+import { findGrubbsStatistic, type GrubbsPower, grubbsPower } from "./grubbs";
 import { findSampleSize, shareInside } from "./sample-plan";
 import { standardDeviationOf } from "./sample-statistics";
 import { toleranceFactor } from "./tolerance";
@@ -66,12 +66,17 @@ export function poolGain(trims: readonly GainCoefficients[], order: 1 | 2, famil
   return pooled;
 }
 
+/** A sample device whose gainTc stands out. */
+export interface GainTcOutlier extends GrubbsPower {
+  /** Position among the trims. */
+  index: number;
+  g: number;
+}
+
 /** The device whose gainTc stands out from the sample by Grubbs' test (two-sided, 5 %), if one does. */
-export function findGainTcOutlier(
-  trims: readonly GainCoefficients[],
-): { index: number; g: number; critical: number } | undefined {
+export function findGainTcOutlier(trims: readonly GainCoefficients[]): GainTcOutlier | undefined {
   const found = findGrubbsStatistic(trims.map((trim) => trim.gainTc));
   if (!found) return undefined;
-  const critical = grubbsCritical(trims.length, OUTLIER_ALPHA);
-  return found.g > critical ? { ...found, critical } : undefined;
+  const power = grubbsPower(trims.length, OUTLIER_ALPHA);
+  return found.g > power.critical ? { ...found, ...power } : undefined;
 }

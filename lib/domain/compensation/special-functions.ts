@@ -20,11 +20,16 @@ const TINY = 1e-300;
  * fraction above, so that each keeps its relative precision where it is small.
  * Source: Abramowitz and Stegun 6.5.29 and 6.5.31.
  * @param a > 0, finite. @param x any number but NaN; below 0 counts as 0.
+ * @param logGammaA ln Γ(a), for callers with many x and one a.
  */
-export function incompleteGamma(a: number, x: number): { lower: number; upper: number } {
+export function incompleteGamma(
+  a: number,
+  x: number,
+  logGammaA: number = logGamma(a),
+): { lower: number; upper: number } {
   if (x <= 0) return { lower: 0, upper: 1 };
   if (x === Number.POSITIVE_INFINITY) return { lower: 1, upper: 0 };
-  const front = Math.exp(a * Math.log(x) - x - logGamma(a));
+  const front = Math.exp(a * Math.log(x) - x - logGammaA);
   if (x < a + 1) {
     let term = 1 / a;
     let sum = term;

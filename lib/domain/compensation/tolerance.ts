@@ -1,33 +1,31 @@
 import { AppError } from "@/lib/errors";
-import {
-  chiSquareQuantile,
-  chiSquareUpper,
-  noncentralTCdf,
-  normalCdf,
-  normalDensity,
-  normalQuantile,
-} from "./distributions";
+import { chiSquareQuantile, noncentralTCdf, normalCdf, normalDensity, normalQuantile } from "./distributions";
 import { panelNodes } from "./integrate";
 import { findRoot } from "./root";
+import { incompleteGamma, logGamma } from "./special-functions";
 
 /** How much is to lie inside, with what confidence, known from how many values. */
 export interface ToleranceQuestion {
-  /** Number of values n ≥ 2. */
+  /** Number of values n, 2 … 1e9. */
   n: number;
-  /** Share of the population, 0…1. */
+  /** Share of the population, 1e-9 … 1 − 1e-9. */
   coverage: number;
-  /** 0…1 */
+  /** 1e-9 … 1 − 1e-9 */
   confidence: number;
 }
 
+/** Shares closer to 0 or 1 than this are not told apart. */
+const SHARE_END = 1e-9;
+const MOST_VALUES = 1e9;
+
 function assertQuestion({ n, coverage, confidence }: ToleranceQuestion): void {
-  const open = (p: number) => p > 0 && p < 1;
-  if (!(Number.isInteger(n) && n >= 2 && open(coverage) && open(confidence)))
+  const open = (p: number) => p >= SHARE_END && p <= 1 - SHARE_END;
+  if (!(Number.isInteger(n) && n >= 2 && n <= MOST_VALUES && open(coverage) && open(confidence)))
     throw new AppError("tolerance.invalid", { n, coverage, confidence });
 }
 
 /** The error of a mean in units of its own deviation: beyond 9 nothing is left to double precision. */
-const MEAN_NODES = panelNodes(0, 9, 8)
+const MEAN_NODES = panelNodes(0, 9, 4)
   .map(({ x, weight }) => ({ x, weight: 2 * weight * normalDensity(x) }))
   .sort((a, b) => a.x - b.x);
 
@@ -51,6 +49,9 @@ function halfWidth(offset: number, outside: number, near: number, z: number): nu
   return findRoot((r) => left(r) - outside, z * 0.999999, z * 1.000001 + offset);
 }
 
+/** Relative precision of factors and shares: that of the integration. */
+const PRECISION = 1e-13;
+
 /** z such that ±z holds all but the share `outside` of a standard normal population. */
 function quantileOutside(outside: number): number {
   return -normalQuantile(outside / 2);
@@ -61,14 +62,20 @@ function quantileOutside(outside: number): number {
  * a function of k. What does not depend on k is computed once.
  */
 function confidenceByFactor(n: number, outside: number): (k: number) => number {
-  const df = n - 1;
+  const half = (n - 1) / 2;
+  const logGammaHalf = logGamma(half);
   const z = quantileOutside(outside);
   let near = z;
   const nodes = MEAN_NODES.map(({ x, weight }) => {
     near = halfWidth(x / Math.sqrt(n), outside, near, z);
-    return { weight, square: df * near ** 2 };
+    return { weight, square: near ** 2 };
   });
-  return (k) => nodes.reduce((sum, node) => sum + node.weight * chiSquareUpper(node.square / (k * k), df), 0);
+  // P(s ≤ r/k) the other way round: the upper tail of χ² = (n − 1)·s² at (n − 1)·(r/k)².
+  return (k) =>
+    nodes.reduce(
+      (sum, { weight, square }) => sum + weight * incompleteGamma(half, (half * square) / (k * k), logGammaHalf).upper,
+      0,
+    );
 }
 
 /**
@@ -82,11 +89,12 @@ export function toleranceFactor(question: ToleranceQuestion): number {
   assertQuestion(question);
   const { n, coverage, confidence } = question;
   const reached = confidenceByFactor(n, 1 - coverage);
-  let low = normalQuantile((1 + coverage) / 2) / 4;
-  while (reached(low) > confidence) low /= 2;
-  let high = 2 * howeFactor(question);
-  while (reached(high) < confidence) high *= 2;
-  return findRoot((k) => reached(k) - confidence, low, high);
+  const guess = howeFactor(question);
+  let low = guess * 0.95;
+  while (reached(low) > confidence) low *= 0.8;
+  let high = guess * 1.05;
+  while (reached(high) < confidence) high *= 1.25;
+  return findRoot((k) => reached(k) - confidence, low, high, PRECISION);
 }
 
 /**
@@ -101,9 +109,6 @@ export function toleranceConfidence({ n, coverage, k }: { n: number; coverage: n
   return k === 0 ? 0 : Math.min(1, confidenceByFactor(n, 1 - coverage)(k));
 }
 
-/** Shares closer to 0 or 1 than this are not told apart. */
-const SHARE_END = 1e-9;
-
 /**
  * The largest share that mean ± k·s of n values holds with the confidence asked: {@link toleranceFactor} solved for the
  * coverage, by the same integration. It rises with k and n.
@@ -114,12 +119,19 @@ const SHARE_END = 1e-9;
 export function toleranceCoverage({ n, k, confidence }: { n: number; k: number; confidence: number }): number {
   assertQuestion({ n, coverage: 0.5, confidence });
   if (!(k >= 0)) throw new AppError("tolerance.invalid", { k });
-  const over = (outside: number) => confidenceByFactor(n, outside)(k) - confidence;
-  if (k === 0 || over(1 - SHARE_END) < 0) return 0;
-  if (k === Number.POSITIVE_INFINITY || over(SHARE_END) >= 0) return 1 - SHARE_END;
-  // In z the confidence turns smoothly, where in the share itself it is a cliff at either end.
-  const z = findRoot((z) => over(2 * normalCdf(-z)), quantileOutside(1 - SHARE_END), quantileOutside(SHARE_END));
-  return 1 - 2 * normalCdf(-z);
+  if (k === 0) return 0;
+  if (k === Number.POSITIVE_INFINITY) return 1 - SHARE_END;
+  const over = (z: number) => confidenceByFactor(n, 2 * normalCdf(-z))(k) - confidence;
+  const [least, most] = [quantileOutside(1 - SHARE_END), quantileOutside(SHARE_END)];
+  const clip = (z: number) => Math.min(most, Math.max(least, z));
+  // Howe's approximation is off by a few per cent at most: a narrow bracket, widened where it misses.
+  const guess = k * Math.sqrt(chiSquareQuantile(1 - confidence, n - 1) / ((n - 1) * (1 + 1 / n)));
+  let [low, high] = [clip(guess * 0.95), clip(guess * 1.05)];
+  while (low > least && over(low) < 0) low = clip(low * 0.8);
+  while (high < most && over(high) > 0) high = clip(high * 1.25);
+  if (low === least && over(low) < 0) return 0;
+  if (high === most && over(high) >= 0) return 1 - SHARE_END;
+  return 1 - 2 * normalCdf(-findRoot(over, low, high, PRECISION));
 }
 
 /**
