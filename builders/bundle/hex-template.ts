@@ -1,5 +1,6 @@
 import type { CompiledLayout } from "@/builders/codec/compile-layout";
-import { writeIntelHex } from "@/builders/codec/intel-hex-write";
+import { writeImageHex } from "@/builders/codec/hex-image";
+import { findOffset, type MemoryPiece } from "@/builders/codec/segments";
 
 /** Characters of a data record before its data: colon, count, address, type. */
 const HEAD = 9;
@@ -21,27 +22,27 @@ interface DataRecord {
 
 /**
  * The Intel HEX text of every image of one layout. Addresses and record lengths are the same for each, so that only digits of
- * data and checks are written anew: the very text of {@link writeIntelHex}, at a multiple of its speed.
+ * data and checks are written anew: the very text of {@link writeImageHex}, at a multiple of its speed.
  */
 export class HexTemplate {
   readonly #text: Uint8Array;
   readonly #records: DataRecord[] = [];
 
-  constructor({ bytes, baseAddress, kept }: CompiledLayout) {
-    const text = writeIntelHex(new Uint8Array(bytes), baseAddress, kept);
+  constructor({ bytes, pieces, written }: CompiledLayout) {
+    const text = writeImageHex({ written }, new Uint8Array(bytes));
     this.#text = Buffer.from(text, "latin1");
     let upper = 0;
     let at = 0;
     for (const line of text.split("\n")) {
       const [count, low, type] = [line.slice(1, 3), line.slice(3, 7), line.slice(7, HEAD)];
       if (type === "04") upper = Number.parseInt(line.slice(HEAD, HEAD + 4), 16);
-      if (type === "00") this.#addRecord(at, Number.parseInt(count, 16), Number.parseInt(low, 16), upper, baseAddress);
+      if (type === "00") this.#addRecord(at, Number.parseInt(count, 16), Number.parseInt(low, 16), upper, pieces);
       at += line.length + 1;
     }
   }
 
-  #addRecord(at: number, count: number, low: number, upper: number, baseAddress: number): void {
-    const from = upper * 0x10000 + low - baseAddress;
+  #addRecord(at: number, count: number, low: number, upper: number, pieces: readonly MemoryPiece[]): void {
+    const from = findOffset(pieces, upper * 0x10000 + low) ?? 0;
     this.#records.push({ text: at + HEAD, from, end: from + count, sum: count + (low >> 8) + (low & 0xff) });
   }
 

@@ -49,7 +49,7 @@ export interface CompiledLayout {
   /** Address of the image's first byte. */
   baseAddress: number;
   /** Where the image lies in the device; one piece unless the layout names segments. */
-  segments: MemoryPiece[];
+  pieces: MemoryPiece[];
   /** The same without what is kept, by rising address: what a file for a station holds. */
   written: MemoryPiece[];
   /** Joined and in rising order. */
@@ -72,14 +72,14 @@ export function compileLayout(layout: LayoutDocument): CompiledLayout {
   }
   const { memory } = layout;
   const kept = joinRanges(layout.kept ?? [], memory.bytes);
-  const segments = listSegments(memory);
+  const pieces = listSegments(memory);
   return {
     document: layout,
     bytes: memory.bytes,
     fill: memory.fill,
     baseAddress: memory.baseAddress,
-    segments,
-    written: listWrittenPieces(segments, kept),
+    pieces,
+    written: listWrittenPieces(pieces, kept),
     kept,
     fields: layout.fields.flatMap((field, i) => {
       const littleEndian = (field.byteOrder ?? memory.byteOrder) === "little";

@@ -116,6 +116,6 @@ function changeOf(
 /** The same bytes at other addresses are another image. */
 function isSamePlace(from: CompiledLayout, to: CompiledLayout): boolean {
   if (from === to) return true;
-  if (from.segments.length !== to.segments.length) return false;
-  return from.segments.every(({ at, address }, i) => at === to.segments[i]?.at && address === to.segments[i]?.address);
+  if (from.pieces.length !== to.pieces.length) return false;
+  return from.pieces.every(({ at, address }, i) => at === to.pieces[i]?.at && address === to.pieces[i]?.address);
 }

@@ -29,7 +29,7 @@ export function writeImageSRecords(layout: Pick<CompiledLayout, "written">, byte
 export function assembleImage(layout: CompiledLayout, segments: readonly HexSegment[]): AssembledImage {
   const bytes = new Uint8Array(layout.bytes).fill(layout.fill);
   const covered: ByteRange[] = [...layout.kept];
-  const pieces = [...layout.segments].sort((a, b) => a.address - b.address);
+  const pieces = [...layout.pieces].sort((a, b) => a.address - b.address);
   for (const segment of segments) {
     for (const piece of pieces) {
       const from = Math.max(segment.address, piece.address);

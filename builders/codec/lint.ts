@@ -62,6 +62,15 @@ export function lintLayout(document: unknown, options: LintOptions = {}): LintRe
   return { errors, warnings, step: versions.step };
 }
 
+/**
+ * Findings of shape and of meaning together. Where the shape is wrong, what the meaning says of the same place would only say
+ * it again.
+ */
+export function joinShape(shape: readonly Problem[], { errors, ...rest }: LintResult): LintResult {
+  const told = new Set(shape.map((problem) => problem.path));
+  return { errors: [...shape, ...errors.filter((error) => !told.has(error.path))], ...rest };
+}
+
 function lintFamily(layout: LayoutDocument, family: FamilyRulesLike | undefined): Problem[] {
   if (!family || layout.family === family.code) return [];
   return [

@@ -24,6 +24,12 @@ export function addressAt(pieces: readonly MemoryPiece[], offset: number): numbe
   return piece.address + offset - piece.at;
 }
 
+/** Offset in the image of an address; undefined outside the memory. */
+export function findOffset(pieces: readonly MemoryPiece[], address: number): number | undefined {
+  const piece = pieces.find((one) => address >= one.address && address < one.address + one.end - one.at);
+  return piece && piece.at + address - piece.address;
+}
+
 /** What is written to the device: the pieces without what it keeps, by rising address. */
 export function listWrittenPieces(pieces: readonly MemoryPiece[], kept: readonly ByteRange[]): MemoryPiece[] {
   const bytes = Math.max(0, ...pieces.map((piece) => piece.end));

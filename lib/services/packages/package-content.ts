@@ -2,8 +2,8 @@ import type { PackageContent } from "@/builders/bundle/bundle";
 import { imageLine } from "@/builders/bundle/images-jsonl";
 import { sha256Hex } from "@/builders/bundle/sha256";
 import { type CompiledLayout, compileLayout } from "@/builders/codec/compile-layout";
+import { writeImageHex } from "@/builders/codec/hex-image";
 import { decodeImage } from "@/builders/codec/image";
-import { writeIntelHex } from "@/builders/codec/intel-hex-write";
 import type { Db } from "@/db/executor";
 import { eachImages, type ImageRow, listDerivationsOfSets } from "@/db/queries/images";
 import { getLayoutById } from "@/db/queries/layouts";
@@ -51,7 +51,7 @@ async function assertAsBuilt(db: Db, packageId: string, name: string, content: B
 
 /** An image as Intel HEX. @throws AppError `package.bytes_differ` where it is not the text that was built */
 export function hexOf(layout: CompiledLayout, image: ImageRow): string {
-  const hex = writeIntelHex(image.bytes, layout.baseAddress, layout.kept);
+  const hex = writeImageHex(layout, image.bytes);
   if (sha256Hex(hex) === image.hexSha256.toString("hex")) return hex;
   throw bytesDiffer(`images/${image.serial}.hex`);
 }
