@@ -79,7 +79,7 @@ export class ContentWriter {
 
   /** The HEX file of the device that was added last, as it was hashed. */
   lastHex(): string {
-    return this.#text.latin1Slice();
+    return this.#text.toString("latin1");
   }
 
   /** The files, once all devices are in. @param head what the manifest says besides its images and values. */

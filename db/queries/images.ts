@@ -111,6 +111,21 @@ export async function* eachImageBytes(
   }
 }
 
+/** Bytes of the images of some serials in a package, by serial. */
+export async function listBytesOfSerials(
+  db: Db,
+  packageId: string,
+  serials: readonly string[],
+): Promise<Map<string, Buffer>> {
+  const rows = await db
+    .selectFrom("image")
+    .select(["serial", "bytes"])
+    .where("packageId", "=", packageId)
+    .where(sql<boolean>`serial = any(${serials as string[]}::text[])`)
+    .execute();
+  return new Map(rows.map((row) => [row.serial, row.bytes]));
+}
+
 /** Derivation of each of some coefficient sets, by the set's id. */
 export async function listDerivationsOfSets(db: Db, setIds: readonly string[]): Promise<Map<string, string>> {
   const rows = await db

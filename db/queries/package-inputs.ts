@@ -73,6 +73,39 @@ export async function listLapsedSets(db: Db, packageId: string): Promise<{ seria
   return rows.map((row) => ({ serial: row.serial, state: row.state ?? "" }));
 }
 
+/** Those of some sets that are not approved now: serials with the state, rising. */
+export async function listSetsNotApproved(
+  db: Db,
+  setIds: readonly string[],
+): Promise<{ serial: string; state: string }[]> {
+  const rows = await db
+    .selectFrom("coefficientSet")
+    .innerJoin("device", "device.id", "coefficientSet.deviceId")
+    .select(["device.serial", "coefficientSet.state"])
+    .where(sql<boolean>`coefficient_set.id = any(${setIds as string[]}::uuid[])`)
+    .where("coefficientSet.state", "is distinct from", "approved")
+    .orderBy("device.serial")
+    .execute();
+  return rows.map((row) => ({ serial: row.serial, state: row.state ?? "" }));
+}
+
+/** Firmware that some devices are known to run, where it is another than the lot's: by serial. */
+export async function listFirmwareOtherThan(
+  db: Db,
+  deviceIds: readonly string[],
+  firmware: string,
+): Promise<{ serial: string; firmware: string }[]> {
+  const rows = await db
+    .selectFrom("device")
+    .select(["serial", "firmware"])
+    .where(sql<boolean>`id = any(${deviceIds as string[]}::uuid[])`)
+    .where("firmware", "is not", null)
+    .where("firmware", "!=", firmware)
+    .orderBy("serial")
+    .execute();
+  return rows.map((row) => ({ serial: row.serial, firmware: row.firmware as string }));
+}
+
 /** Firmware that devices of a package are known to run, where it is another than the lot's: by serial. */
 export async function listOtherFirmware(
   db: Db,

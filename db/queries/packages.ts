@@ -119,14 +119,25 @@ export async function insertPackage(trx: Trx, row: Insertable<Package>): Promise
   await trx.insertInto("package").values(row).execute();
 }
 
-/** What a waiting person sees of a build; written outside the build's own transaction. */
-export async function setPackageProgress(db: Db, id: string, done: number, total: number, step: string): Promise<void> {
-  await db
+export interface PackageProgress {
+  done: number;
+  total: number;
+  step: string;
+}
+
+/**
+ * What a waiting person sees of a build; written outside the build's own transaction.
+ * @returns false where the package is no longer building
+ */
+export async function setPackageProgress(db: Db, id: string, progress: PackageProgress): Promise<boolean> {
+  const { done, total, step } = progress;
+  const result = await db
     .updateTable("package")
     .set({ progressDone: done, progressTotal: total, progressStep: step })
     .where("id", "=", id)
     .where("state", "=", "building")
-    .execute();
+    .executeTakeFirst();
+  return result.numUpdatedRows > 0n;
 }
 
 export interface BuiltPackage {

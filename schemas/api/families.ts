@@ -11,6 +11,35 @@ export const INTERVALS_OF_CLASS = {
 
 const temperatureC = z.number().min(-100).max(250);
 
+/** Thresholds that a family sets for the checks of its packages; defaults: `lib/domain/package-checks/thresholds.ts`. */
+export const checkThresholds = z.strictObject({
+  outlierScore: z
+    .number()
+    .min(3, "Below 3 every lot would have some.")
+    .max(1000)
+    .optional()
+    .meta({ description: "Robust standard deviations beyond which a value stands out" }),
+  differenceShareWarn: z
+    .number()
+    .min(0)
+    .max(1)
+    .optional()
+    .meta({ description: "Share of devices whose values differ from the live ones; 1 never warns" }),
+  differenceStepWarn: z
+    .number()
+    .min(0)
+    .max(1)
+    .optional()
+    .meta({ description: "Largest change of a value as a share of the room between its limits" }),
+  signFlipsWarn: z
+    .number()
+    .int()
+    .min(0)
+    .max(60_000)
+    .optional()
+    .meta({ description: "Devices whose gain or temperature coefficient may change its sign" }),
+});
+
 /** A family's values: the body of `POST /families`, and the document that a revision freezes and hashes. */
 export const familyDocument = z
   .strictObject({
@@ -47,6 +76,10 @@ export const familyDocument = z
       .max(0.9999)
       .meta({ description: "Share of the lot that the tolerance interval has to cover" }),
     confidence: z.number().min(0.5).max(0.9999).meta({ description: "Confidence of the intervals" }),
+    checks: checkThresholds.optional().meta({
+      description:
+        "From when on checks of packages warn; what is left out has its default, and stays out of the document",
+    }),
   })
   .superRefine((family, context) => {
     const { temperatureMinC, temperatureMaxC, accuracyClass, intervals } = family;

@@ -83,13 +83,20 @@ describe("building a golden lot", () => {
     }
     expect(verdictsOf(body)).toEqual({
       coverage,
+      "decided-sets": "pass",
+      firmware: "pass",
       limits: "pass",
       "round-trip": "pass",
+      "reserved-bytes": "pass",
       "hex-reading": "pass",
+      repeatability: "pass",
+      outliers: "pass",
+      "equal-images": "pass",
       pooling: "pass",
       verification: "pass",
       "proven-range": "pass",
       twin: "pass",
+      "live-difference": "pass",
     });
   });
 
@@ -265,6 +272,6 @@ it("lists a lot's packages by pages, newest first, with their verdicts", async (
     cursor = body.next;
   } while (cursor);
   expect(pages).toEqual(all.items.map((item: { id: string }) => item.id));
-  expect(all.items.at(-1)).toMatchObject({ version: "1.0.0", state: "draft", checks: { pass: 8, warn: 0, fail: 0 } });
+  expect(all.items.at(-1)).toMatchObject({ version: "1.0.0", state: "draft", checks: { pass: 15, warn: 0, fail: 0 } });
   expect((await api.call("GET", "/lots/NO-LOT/packages", { as: "auditor" })).status).toBe(404);
 });

@@ -1,7 +1,8 @@
+import { type CheckThresholds, DEFAULT_THRESHOLDS } from "@/lib/domain/package-checks/thresholds";
 import type { FamilyDocument } from "@/schemas/api/families";
 
 export interface FamilyField {
-  name: Exclude<keyof FamilyDocument, "code" | "name" | "accuracyClass">;
+  name: Exclude<keyof FamilyDocument, "code" | "name" | "accuracyClass" | "checks">;
   label: string;
   unit?: string;
   help: string;
@@ -97,6 +98,40 @@ export const familyFieldGroups: readonly FamilyFieldGroup[] = [
       },
       { name: "confidence", label: "Confidence", help: "Of the tolerance and the confidence interval, as 0.95." },
     ],
+  },
+];
+
+export interface ThresholdField {
+  name: keyof CheckThresholds;
+  label: string;
+  unit?: string;
+  help: string;
+}
+
+const unless = (name: keyof CheckThresholds) => `${DEFAULT_THRESHOLDS[name]} where left empty.`;
+
+/** From when on the checks of this family's packages warn. */
+export const thresholdFields: readonly ThresholdField[] = [
+  {
+    name: "outlierScore",
+    label: "Values that stand out",
+    help: `Distance from the lot's median in robust standard deviations; ${unless("outlierScore")}`,
+  },
+  {
+    name: "differenceShareWarn",
+    label: "Share of devices changed",
+    help: `Against what is live, 0 to 1; 1 never warns. ${unless("differenceShareWarn")}`,
+  },
+  {
+    name: "differenceStepWarn",
+    label: "Largest change of a value",
+    help: `Against what is live, as a share of the room between the layout's limits, 0 to 1; ${unless("differenceStepWarn")}`,
+  },
+  {
+    name: "signFlipsWarn",
+    label: "Changes of sign",
+    unit: "devices",
+    help: `Of a gain or its temperature coefficient against what is live; ${unless("signFlipsWarn")}`,
   },
 ];
 

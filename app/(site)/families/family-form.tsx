@@ -14,7 +14,7 @@ import { Select } from "@/app/_components/form/select";
 import { TextInput } from "@/app/_components/form/text-input";
 import { type FamilyDocument, familyDocument } from "@/schemas/api/families";
 import { createFamilyAction, reviseFamilyAction } from "./actions";
-import { accuracyClasses, familyFieldGroups } from "./family-fields";
+import { accuracyClasses, familyFieldGroups, thresholdFields } from "./family-fields";
 
 type Values = z.input<typeof familyDocument>;
 
@@ -45,7 +45,8 @@ export function FamilyForm({ initial = {}, revise }: FamilyFormProps) {
   });
   const { errors, isSubmitting } = formState;
 
-  const send = async (document: FamilyDocument) => {
+  const send = async (typed: FamilyDocument) => {
+    const document = withoutEmptyChecks(typed);
     const result =
       revise === undefined ? await createFamilyAction(document) : await reviseFamilyAction(revise, document);
     if (result.ok) return router.push(`/families/${document.code}`);
@@ -92,6 +93,20 @@ export function FamilyForm({ initial = {}, revise }: FamilyFormProps) {
           </div>
         </Card>
       ))}
+      <Card title="Checks of packages" note="From when on they warn; what is left empty follows the default">
+        <div className="grid gap-4 sm:grid-cols-2 lg:grid-cols-3">
+          {thresholdFields.map(({ name, label, unit, help }) => (
+            <NumberInput
+              key={name}
+              {...register(`checks.${name}`, { setValueAs: toNumber })}
+              label={label}
+              unit={unit}
+              help={help}
+              error={numberError(errors.checks?.[name])}
+            />
+          ))}
+        </div>
+      </Card>
       <FormError problem={problem} />
       <div className="flex flex-wrap justify-end gap-2.5">
         <LinkButton href={revise === undefined ? "/families" : `/families/${revise}`}>Leave it</LinkButton>
@@ -101,6 +116,12 @@ export function FamilyForm({ initial = {}, revise }: FamilyFormProps) {
       </div>
     </form>
   );
+}
+
+/** Thresholds that nobody typed stay out of the document, so that its digest says only what was decided. */
+function withoutEmptyChecks({ checks, ...document }: FamilyDocument): FamilyDocument {
+  const typed = Object.entries(checks ?? {}).filter(([, value]) => value !== undefined);
+  return typed.length === 0 ? document : { ...document, checks: Object.fromEntries(typed) };
 }
 
 function numberError(error: { type?: string; message?: string } | undefined): string | undefined {

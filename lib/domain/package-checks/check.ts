@@ -3,13 +3,20 @@ import { formatCount } from "@/lib/domain/format/figure";
 /** The checks of a package, in the order in which they are told. */
 export const CHECK_CODES = [
   "coverage",
+  "decided-sets",
+  "firmware",
   "limits",
   "round-trip",
+  "reserved-bytes",
   "hex-reading",
+  "repeatability",
+  "outliers",
+  "equal-images",
   "pooling",
   "verification",
   "proven-range",
   "twin",
+  "live-difference",
 ] as const;
 
 export type CheckCode = (typeof CHECK_CODES)[number];

@@ -1,189 +1,140 @@
-import { sha256Hex } from "@/builders/bundle/sha256";
 import { appErrorFromDatabase } from "@/db/constraint-codes";
-import type { Trx } from "@/db/executor";
-import type { Json } from "@/db/generated/types.generated";
-import { insertChecks } from "@/db/queries/checks";
-import { insertImages } from "@/db/queries/images";
-import { lockLot } from "@/db/queries/lots";
-import { insertMakers, listMakers, type MakerAct } from "@/db/queries/makers";
-import {
-  finishPackage,
-  getPackage,
-  insertPackageDerivations,
-  insertPackageFile,
-  lockPackage,
-  type PackageRow,
-  setPackageProgress,
-} from "@/db/queries/packages";
-import type { PackageCheck } from "@/lib/domain/package-checks/check";
+import { listBytesOfSerials } from "@/db/queries/images";
+import { listFirmwareOtherThan, listSetsNotApproved } from "@/db/queries/package-inputs";
+import { findLivePackage, getPackage, type PackageRow, setPackageProgress } from "@/db/queries/packages";
+import { EVIDENCE_MAX } from "@/lib/domain/package-checks/check";
 import { AppError } from "@/lib/errors";
 import type { Ctx } from "@/lib/services/context";
-import { appendEvent } from "@/lib/services/ledger/append-event";
+import { layoutsOfPackages } from "@/lib/services/devices/layouts-of-packages";
 import { PackageChecker } from "./check-package";
-import { chooseSets, type Selection, serialsSha256, setsSha256 } from "./choose-sets";
-import { type ComposedPackage, composePackage, type PackageInputs, readPackageInputs } from "./compose-package";
-import { countSelection, countsOf } from "./package-counts";
-
-/** What a build failed with: the device and field where one is to blame. */
-export interface BuildFailure {
-  code: string;
-  message: string;
-  serial?: string;
-  field?: string;
-}
+import type { LivePackage } from "./checking/difference-gatherer";
+import { composePackage, type ImagePart, type PackageInputs, partsOf, readPackageInputs } from "./compose-package";
+import { failBuild } from "./end-build";
+import { countsOf } from "./package-counts";
+import { selectDevices } from "./select-devices";
+import { type Built, storePackage } from "./store-package";
 
 /**
- * The worker's part of a build: composes the package, checks it by decoding it again, and stores everything in one
- * transaction. Taken up again after a fall it starts anew, and does nothing where the package has ended already. What can't
- * be built ends as failed and leaves no image.
+ * The worker's part of a build: chooses the sets, composes the package, checks it by decoding it again, composes it a second
+ * time, and stores everything in one transaction. Taken up again after a fall it starts anew, and does nothing where the
+ * package has ended already; what was cancelled meanwhile ends at the next part. What can't be built ends as failed and
+ * leaves no image.
  * @throws what is wrong with the database or with our code, so that the queue tries again or the log tells
  */
 export async function buildPackage(ctx: Ctx, { packageId }: { packageId: string }): Promise<void> {
   const pkg = await getPackage(ctx.db, packageId);
   if (pkg.state !== "building") return;
   try {
-    await store(ctx, pkg, await compose(ctx, pkg));
+    const inputs = await readPackageInputs(ctx.db, pkg);
+    await storePackage(ctx, inputs, await build(ctx, inputs));
   } catch (error) {
     if (appErrorFromDatabase(error)?.code === "database.unavailable") throw error;
     const known = error instanceof AppError ? error : undefined;
     const message = "Something went wrong here; the log of the worker says what.";
-    await fail(ctx, pkg, known ?? new AppError("server.fault", { message }));
+    await failBuild(ctx, pkg, known ?? new AppError("server.fault", { message }));
     if (!known) throw error;
   }
 }
 
-interface Built {
-  selection: Selection;
-  composed: ComposedPackage;
-  checks: PackageCheck[];
-  inputs: PackageInputs;
-}
-
-async function compose(ctx: Ctx, pkg: PackageRow): Promise<Built> {
-  const inputs = await readPackageInputs(ctx.db, pkg);
-  const selection = await select(ctx.db, pkg, inputs);
-  const total = selection.packed.length;
-  await setPackageProgress(ctx.db, pkg.id, 0, total, "encoding");
-  const checker = new PackageChecker(inputs);
-  const composed = await composePackage(ctx.db, inputs, selection.packed, {
-    withDetail: true,
-    onImage: (image) => checker.add(image),
-    onProgress: (done) => setPackageProgress(ctx.db, pkg.id, done, total, "encoding"),
+async function build(ctx: Ctx, inputs: PackageInputs): Promise<Built> {
+  const { pkg } = inputs;
+  const selection = await selectDevices(ctx.db, inputs);
+  const { packed } = selection;
+  const live = await findLive(ctx.db, pkg);
+  const checker = new PackageChecker(inputs, { devices: packed.length, live });
+  const tell = progressOf(ctx.db, pkg.id, packed.length);
+  const parts: ImagePart[] = [];
+  let liveBytes = new Map<string, Buffer>();
+  await tell("encoding", 0);
+  const composed = await composePackage(ctx.db, inputs, partsOf(packed), {
+    beforePart: async (devices) => {
+      liveBytes = live
+        ? await listBytesOfSerials(
+            ctx.db,
+            live.id,
+            devices.map((one) => one.serial),
+          )
+        : liveBytes;
+    },
+    onImage: (image) => checker.add(image, liveBytes.get(image.device.serial)),
+    onPart: (part) => {
+      parts.push(part);
+      return tell("encoding", part.devices.length);
+    },
   });
+  const repeated = await repeat(ctx.db, inputs, parts, tell);
+  await tell("storing", packed.length);
+  const ids = packed.map((one) => one.coefficientSetId);
   const checks = checker.finish({
-    coverage: { ...selection, packed: total },
+    coverage: { ...selection, packed: packed.length },
+    decidedSets: { notApproved: await listSetsNotApproved(ctx.db, ids) },
+    firmware: {
+      others: await listFirmwareOtherThan(
+        ctx.db,
+        packed.map((one) => one.deviceId),
+        pkg.firmware,
+      ),
+    },
+    repeatability: { digest: composed.digest, ...repeated },
     derivations: composed.derivations,
-    provenRange: composed.manifest.provenRange,
+    provenRange: composed.provenRange,
   });
-  await setPackageProgress(ctx.db, pkg.id, total, total, "storing");
-  return { selection, composed, checks, inputs };
+  return { selection, parts, composed, checks };
 }
 
-/** What the package takes, which has to be the devices that it was numbered for. @throws AppError `package.devices_changed` */
-async function select(db: Ctx["db"], pkg: PackageRow, { layout }: PackageInputs): Promise<Selection> {
-  const { familyRevisionId } = pkg;
-  const selection = await chooseSets(db, pkg.lotId, { order: layout.document.order, familyRevisionId });
-  if (serialsSha256(selection.packed) === countsOf(pkg).serialsSha256) return selection;
-  const message = "Other devices have approved coefficients than when the build was asked for; build again.";
-  throw new AppError("package.devices_changed", { message });
-}
-
-async function store(ctx: Ctx, pkg: PackageRow, { selection, composed, checks, inputs }: Built): Promise<void> {
-  const { images, values, manifestBytes, digest, sums, derivations } = composed;
-  await ctx.db.transaction().execute(async (trx) => {
-    await lockLot(trx, pkg.lotId);
-    if ((await lockPackage(trx, pkg.id)).state !== "building") return;
-    const now = await select(trx, pkg, inputs);
-    if (setsSha256(now.packed) !== setsSha256(selection.packed)) {
-      const message = "Coefficients were decided or withdrawn while the package was built; build again.";
-      throw new AppError("package.sets_changed", { message });
-    }
-    await insertImages(trx, pkg.id, images);
-    const file = { "manifest.json": manifestBytes, "images.jsonl": values, SHA256SUMS: sums };
-    for (const [name, content] of Object.entries(file)) {
-      await insertPackageFile(trx, pkg.id, { name, content, sha256: Buffer.from(sha256Hex(content), "hex") });
-    }
-    await insertPackageDerivations(
-      trx,
-      pkg.id,
-      derivations.map((one) => one.id),
-    );
-    await insertChecks(
-      trx,
-      pkg.id,
-      checks.map((check) => ({ ...check, evidence: check.evidence as Json })),
-    );
-    await addMakersOf(ctx, trx, pkg.id, derivations);
-    const counts = countSelection(selection);
-    await finishPackage(trx, pkg.id, {
-      state: "draft",
-      digest: Buffer.from(digest, "hex"),
-      counts: counts as unknown as Json,
-      failure: null,
-      builtAt: ctx.now(),
-    });
-    await appendEvent(ctx, trx, {
-      action: "package.built",
-      subject: pkg.id,
-      data: {
-        lot: pkg.lotCode,
-        version: pkg.version,
-        digest,
-        devices: counts.devices,
-        leftOut: counts.leftOut,
-        derivations: derivations.map((one) => one.id),
-        checks: Object.fromEntries(checks.map((check) => [check.code, check.verdict])),
+/** Reads the inputs and composes once more: which images came out otherwise, and the package digest. */
+async function repeat(db: Ctx["db"], inputs: PackageInputs, parts: readonly ImagePart[], tell: Tell) {
+  const differing: string[] = [];
+  let at = 0;
+  await tell("repeating", 0);
+  const { digest } = await composePackage(
+    db,
+    inputs,
+    parts.map((part) => part.devices),
+    {
+      onPart: (again) => {
+        const first = parts[at++] as ImagePart;
+        differing.push(...differingSerials(first, again).slice(0, EVIDENCE_MAX - differing.length));
+        return tell("repeating", again.devices.length);
       },
-    });
-  });
-}
-
-/** Whoever made one of the derivations has a hand in the package too (contract, section 6). */
-async function addMakersOf(
-  ctx: Ctx,
-  trx: Trx,
-  packageId: string,
-  derivations: readonly { id: string }[],
-): Promise<void> {
-  const makers = new Map<string, { personId: string; act: MakerAct }>();
-  for (const { id } of derivations) {
-    for (const { personId, act } of await listMakers(trx, "derivation", id)) {
-      makers.set(`${personId} ${act}`, { personId, act: act as MakerAct });
-    }
-  }
-  const subject = { subjectKind: "package" as const, subjectId: packageId, at: ctx.now() };
-  await insertMakers(
-    trx,
-    [...makers.values()].map((maker) => ({ ...maker, ...subject, id: ctx.newId() })),
+    },
   );
+  return { repeated: digest, differing };
 }
 
-function failureOf({ code, message, details }: AppError): BuildFailure {
-  const { serial, field } = details;
-  return {
-    code,
-    message,
-    ...(typeof serial === "string" && { serial }),
-    ...(typeof field === "string" && { field }),
+function differingSerials(first: ImagePart, again: ImagePart): string[] {
+  if (first.bytes.equals(again.bytes) && first.hexSha256.equals(again.hexSha256)) return [];
+  const size = first.bytes.length / first.devices.length;
+  const differs = (a: Buffer, b: Buffer, i: number, width: number) =>
+    a.compare(b, i * width, (i + 1) * width, i * width, (i + 1) * width) !== 0;
+  return first.devices
+    .filter((_, i) => differs(first.bytes, again.bytes, i, size) || differs(first.hexSha256, again.hexSha256, i, 32))
+    .map((device) => device.serial);
+}
+
+/** Takes a step and how many devices more are through it. */
+type Tell = (step: "encoding" | "repeating" | "storing", more: number) => Promise<void>;
+
+/**
+ * Tells how far a build is, and hears at the same time whether it is still wanted.
+ * @throws AppError `package.cancelled` where the package is no longer building
+ */
+function progressOf(db: Ctx["db"], packageId: string, total: number): Tell {
+  const progress = { done: 0, total, step: "" };
+  return async (step, more) => {
+    progress.done = step === progress.step ? progress.done + more : more;
+    progress.step = step;
+    if (await setPackageProgress(db, packageId, progress)) return;
+    throw new AppError("package.cancelled", { message: "The build was cancelled." });
   };
 }
 
-async function fail(ctx: Ctx, pkg: PackageRow, error: AppError): Promise<void> {
-  const failure = failureOf(error);
-  await ctx.db.transaction().execute(async (trx) => {
-    if ((await lockPackage(trx, pkg.id)).state !== "building") return;
-    await finishPackage(trx, pkg.id, {
-      state: "failed",
-      digest: null,
-      counts: pkg.counts as Json,
-      failure: failure as unknown as Json,
-      builtAt: ctx.now(),
-    });
-    const { code, serial, field } = failure;
-    await appendEvent(ctx, trx, {
-      action: "package.build-failed",
-      subject: pkg.id,
-      data: { lot: pkg.lotCode, version: pkg.version, code, ...(serial && { serial }), ...(field && { field }) },
-    });
-  });
+/** What is live for the package's lot, to be compared with. */
+async function findLive(db: Ctx["db"], pkg: PackageRow): Promise<LivePackage | null> {
+  const live = await findLivePackage(db, pkg.lotId);
+  if (!live) return null;
+  const layout = (await layoutsOfPackages(db, [live.id])).get(live.id);
+  if (!layout || !live.digest) throw new Error(`the live package ${live.id} has no layout or no digest`);
+  const { devices } = countsOf(live);
+  return { id: live.id, version: live.version, digest: live.digest.toString("hex"), layout, images: devices };
 }

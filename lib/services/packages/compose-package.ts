@@ -1,18 +1,9 @@
 import semver from "semver";
-import { assertDevicesFit, hexPath } from "@/builders/bundle/bundle";
-import { imageLine } from "@/builders/bundle/images-jsonl";
-import {
-  buildManifest,
-  byCodeUnits,
-  type Manifest,
-  type ManifestImage,
-  manifestBytes,
-} from "@/builders/bundle/manifest";
-import { sha256Hex } from "@/builders/bundle/sha256";
-import { sumsTextOf } from "@/builders/bundle/sums";
+import { assertDevicesFit } from "@/builders/bundle/bundle";
+import { ContentWriter, type WrittenContent } from "@/builders/bundle/content-writer";
+import { byCodeUnits, type Manifest } from "@/builders/bundle/manifest";
 import { type CompiledLayout, compileLayout } from "@/builders/codec/compile-layout";
-import { type DecodedField, decodeImage, encodeImage, imageDigestBytes } from "@/builders/codec/image";
-import { writeIntelHex } from "@/builders/codec/intel-hex-write";
+import { type DecodedField, decodeImage, encodeImage } from "@/builders/codec/image";
 import type { ImageSources } from "@/builders/codec/sources";
 import type { Db } from "@/db/executor";
 import { type DerivationRow, getDerivation, listDerivationRunIds } from "@/db/queries/derivations";
@@ -44,31 +35,34 @@ export interface ComposedImage {
   decoded: DecodedField[];
 }
 
-export interface ComposedPackage {
-  images: NewImage[];
-  /** `images.jsonl`. */
-  values: Buffer;
-  manifest: Manifest;
-  /** `manifest.json`. */
-  manifestBytes: Buffer;
-  /** Package digest, lower-case hex. */
-  digest: string;
-  /** `SHA256SUMS`. */
-  sums: Buffer;
+/** The images of some devices, one after the other, in as little memory as their bytes take. */
+export interface ImagePart {
+  devices: readonly PackedDevice[];
+  bytes: Buffer;
+  /** 32 bytes a device. */
+  sha256: Buffer;
+  hexSha256: Buffer;
+}
+
+export interface ComposedPackage extends WrittenContent {
   /** Derivations whose sets are packed, by id. */
   derivations: DerivationRow[];
+  provenRange: [number, number] | null;
 }
 
 export interface ComposeOptions {
-  /** Also reads what stands beside the coefficients, for checks. */
-  withDetail?: boolean;
+  /** Looks at every image; also reads what stands beside the coefficients, and decodes. */
   onImage?: (image: ComposedImage) => void;
-  /** After every part of the devices: how many are done. */
-  onProgress?: (done: number) => Promise<void>;
+  /** Before each part of the devices is read. */
+  beforePart?: (devices: readonly PackedDevice[]) => Promise<void>;
+  /** Takes each part of the images; they are not kept here. */
+  onPart?: (part: ImagePart) => void | Promise<void>;
 }
 
 /** Devices read and encoded at a time: bounds memory and how long the event loop is held. */
-const PART = 500;
+export const PART_DEVICES = 250;
+
+const DIGEST_BYTES = 32;
 
 /** @throws AppError `layout.invalid` */
 export async function readPackageInputs(db: Db, pkg: PackageRow): Promise<PackageInputs> {
@@ -81,57 +75,82 @@ export async function readPackageInputs(db: Db, pkg: PackageRow): Promise<Packag
   };
 }
 
+/** A list of devices in parts of {@link PART_DEVICES}. */
+export function* partsOf(devices: readonly PackedDevice[]): Generator<readonly PackedDevice[]> {
+  for (let from = 0; from < devices.length; from += PART_DEVICES) yield devices.slice(from, from + PART_DEVICES);
+}
+
 /**
  * The bytes of a package from its inputs: the same ones at every call, on any machine, years later. Builds and rebuilds
  * both come here; a build chooses the sets, a rebuild takes those that its image rows name.
- * @param devices in any order.
+ * @param parts devices by serial in UTF-16 code units.
  * @throws AppError `bundle.too_many_devices`, `package.set_missing` {serial}, and as {@link encodeImage} with {serial, field}
  */
 export async function composePackage(
   db: Db,
   inputs: PackageInputs,
-  devices: readonly PackedDevice[],
+  parts: Iterable<readonly PackedDevice[]> | AsyncIterable<readonly PackedDevice[]>,
   options: ComposeOptions = {},
 ): Promise<ComposedPackage> {
-  assertDevicesFit(devices.length);
-  const rising = [...devices].sort((a, b) => byCodeUnits(a.serial, b.serial));
-  const images: NewImage[] = [];
-  const values: Buffer[] = [];
+  const writer = new ContentWriter(inputs.layout);
   const used = new Set<string>();
-  for (let from = 0; from < rising.length; from += PART) {
-    const part = rising.slice(from, from + PART);
-    const sets = await listSetsById(
-      db,
-      part.map((one) => one.coefficientSetId),
-      { withDetail: options.withDetail ?? false },
-    );
-    let lines = "";
-    for (const device of part) {
-      const image = composeImage(inputs, device, sets.get(device.coefficientSetId));
-      used.add(image.set.derivationId);
-      options.onImage?.(image);
-      const row = imageRowOf(inputs.layout, image);
-      images.push(row);
-      const { serial } = device;
-      const sha256 = row.sha256.toString("hex");
-      lines += imageLine({ serial, derivation: image.set.derivationId, sha256, fields: image.decoded });
-    }
-    values.push(Buffer.from(lines));
-    await options.onProgress?.(from + part.length);
+  let count = 0;
+  for await (const devices of parts) {
+    count += devices.length;
+    assertDevicesFit(count);
+    await options.beforePart?.(devices);
+    const ids = devices.map((one) => one.coefficientSetId);
+    const sets = await listSetsById(db, ids, { withDetail: options.onImage !== undefined });
+    for (const set of sets.values()) used.add(set.derivationId);
+    const part = composePart(inputs, writer, { devices, sets }, options.onImage);
+    await options.onPart?.(part);
   }
-  return seal(db, inputs, { images, values: Buffer.concat(values), derivationIds: [...used] });
+  return seal(db, inputs, writer, [...used].sort(byCodeUnits));
 }
 
-function composeImage(inputs: PackageInputs, device: PackedDevice, set: SetForImage | undefined): ComposedImage {
-  const { serial } = device;
-  if (!set?.coefficients) {
-    throw new AppError("package.set_missing", { serial, message: `${serial} has no coefficients to pack.` });
-  }
+function composePart(
+  inputs: PackageInputs,
+  writer: ContentWriter,
+  { devices, sets }: { devices: readonly PackedDevice[]; sets: ReadonlyMap<string, SetForImage> },
+  onImage: ComposeOptions["onImage"],
+): ImagePart {
   const { layout } = inputs;
-  const sources = sourcesOf(inputs, serial, set.coefficients);
-  const bytes = encodeImage(layout, sources);
-  const hex = writeIntelHex(bytes, layout.baseAddress, layout.kept);
-  return { device, set, sources, bytes, hex, decoded: decodeImage(layout, bytes) };
+  const part = {
+    devices,
+    bytes: Buffer.allocUnsafe(devices.length * layout.bytes),
+    sha256: Buffer.allocUnsafe(devices.length * DIGEST_BYTES),
+    hexSha256: Buffer.allocUnsafe(devices.length * DIGEST_BYTES),
+  };
+  devices.forEach((device, i) => {
+    const { serial, hardwareId } = device;
+    const set = sets.get(device.coefficientSetId);
+    if (!set?.coefficients) {
+      throw new AppError("package.set_missing", { serial, message: `${serial} has no coefficients to pack.` });
+    }
+    const sources = sourcesOf(inputs, serial, set.coefficients);
+    const bytes = encodeImage(layout, sources);
+    const { sha256, hexSha256 } = writer.add({ serial, hardwareId, derivation: set.derivationId, image: bytes });
+    part.bytes.set(bytes, i * layout.bytes);
+    part.sha256.write(sha256, i * DIGEST_BYTES, "hex");
+    part.hexSha256.write(hexSha256, i * DIGEST_BYTES, "hex");
+    onImage?.({ device, set, sources, bytes, hex: writer.lastHex(), decoded: decodeImage(layout, bytes) });
+  });
+  return part;
+}
+
+/** The rows of a part's images; their bytes are views into it. */
+export function imageRowsOf({ devices, bytes, sha256, hexSha256 }: ImagePart): NewImage[] {
+  const size = bytes.length / devices.length;
+  const digest = (all: Buffer, i: number) => all.subarray(i * DIGEST_BYTES, (i + 1) * DIGEST_BYTES);
+  return devices.map(({ deviceId, serial, coefficientSetId, hardwareId }, i) => ({
+    deviceId,
+    serial,
+    coefficientSetId,
+    hardwareId,
+    bytes: bytes.subarray(i * size, (i + 1) * size),
+    sha256: digest(sha256, i),
+    hexSha256: digest(hexSha256, i),
+  }));
 }
 
 function sourcesOf(
@@ -151,49 +170,26 @@ function sourcesOf(
   };
 }
 
-function imageRowOf(layout: CompiledLayout, { device, bytes, hex }: ComposedImage): NewImage {
-  return {
-    ...device,
-    bytes: Buffer.from(bytes.buffer, bytes.byteOffset, bytes.byteLength),
-    sha256: Buffer.from(sha256Hex(imageDigestBytes(layout, bytes)), "hex"),
-    hexSha256: Buffer.from(sha256Hex(hex), "hex"),
-  };
-}
-
 /** Manifest, digest and list of sums over the images. */
 async function seal(
   db: Db,
-  { pkg, layout, layoutSha256, revision }: PackageInputs,
-  { images, values, derivationIds }: { images: NewImage[]; values: Buffer; derivationIds: string[] },
+  { pkg, layoutSha256, revision }: PackageInputs,
+  writer: ContentWriter,
+  derivationIds: readonly string[],
 ): Promise<ComposedPackage> {
   const derivations: DerivationRow[] = [];
-  for (const id of derivationIds.sort(byCodeUnits)) derivations.push(await getDerivation(db, id));
-  const manifest = buildManifest({
+  for (const id of derivationIds) derivations.push(await getDerivation(db, id));
+  const provenRange = commonRange(derivations);
+  const content = writer.finish({
     lot: pkg.lotCode,
     family: { code: pkg.familyCode, revision: revision.number, sha256: revision.sha256.toString("hex") },
     version: pkg.version,
     firmware: pkg.firmware,
     layout: { version: pkg.layoutVersion, sha256: layoutSha256 },
-    provenRange: commonRange(derivations),
+    provenRange,
     derivations: await manifestDerivations(db, derivations),
-    images: images.map((image) => manifestImage(image, layout.bytes)),
-    values: { path: "images.jsonl", sha256: sha256Hex(values) },
   });
-  const bytes = Buffer.from(manifestBytes(manifest));
-  const digest = sha256Hex(bytes);
-  const sums = sumsTextOf(
-    new Map([
-      ...manifest.images.map(({ hex }): [string, string] => [hex.path, hex.sha256]),
-      [manifest.values.path, manifest.values.sha256],
-      ["manifest.json", digest],
-    ]),
-  );
-  return { images, values, manifest, manifestBytes: bytes, digest, sums: Buffer.from(sums), derivations };
-}
-
-function manifestImage({ serial, hardwareId, sha256, hexSha256 }: NewImage, bytes: number): ManifestImage {
-  const hex = { path: hexPath(serial), sha256: hexSha256.toString("hex") };
-  return { serial, hardwareId, bytes, sha256: sha256.toString("hex"), hex };
+  return { ...content, derivations, provenRange };
 }
 
 async function manifestDerivations(db: Db, derivations: readonly DerivationRow[]): Promise<Manifest["derivations"]> {

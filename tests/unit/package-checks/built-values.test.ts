@@ -69,9 +69,11 @@ describe("round trip", () => {
 
 describe("HEX reading", () => {
   it("passes and fails", () => {
-    expect(checkHexReading({ devices: 28, faults: [] }).verdict).toBe("pass");
-    expect(
-      checkHexReading({ devices: 28, faults: [{ serial: "A", at: 17, reason: "byte 17 differs" }] }),
-    ).toMatchObject({ verdict: "fail", message: "1 HEX file reads otherwise than the image: A: byte 17 differs." });
+    expect(checkHexReading({ devices: 28, faults: [], faultCount: 0 }).verdict).toBe("pass");
+    const faults = [{ serial: "A", reader: "strict" as const, at: 17, reason: "byte 17 differs" }];
+    expect(checkHexReading({ devices: 28, faults, faultCount: 1 })).toMatchObject({
+      verdict: "fail",
+      message: "1 HEX file reads otherwise than the image: A: byte 17 differs (strict reader).",
+    });
   });
 });

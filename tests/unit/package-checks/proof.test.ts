@@ -2,7 +2,7 @@ import { describe, expect, it } from "vitest";
 import type { PooledResult, VerificationResult } from "@/lib/domain/compensation/types";
 import { checkPooling } from "@/lib/domain/package-checks/pooling";
 import { checkProvenRange } from "@/lib/domain/package-checks/proven-range";
-import { checkTwin, type TwinPrediction } from "@/lib/domain/package-checks/twin";
+import { checkTwin as check, type TwinPrediction, type TwinRangeFacts } from "@/lib/domain/package-checks/twin";
 import { checkVerification } from "@/lib/domain/package-checks/verification";
 
 const pooled: PooledResult = {
@@ -113,11 +113,20 @@ describe("proven range", () => {
   });
 });
 
+const noOverflow: TwinRangeFacts = { overflows: [], overflowCount: 0, spanRounding: null, zeroRounding: null };
+const checkTwin = (packed: number, predictions: readonly TwinPrediction[], range = noOverflow) =>
+  check(packed, predictions, range);
+
 const prediction = (serial: string, change: Partial<TwinPrediction> = {}): TwinPrediction => ({
   serial,
   spanErrorPpm: 100,
   spanRatio: 0.3,
+  spanAtC: 40.02,
+  spanRoundingPpm: -0.24,
+  largestRoundingPpm: 0.3,
   zeroShiftRatio: null,
+  zeroBetweenC: null,
+  zeroRoundingRatio: null,
   independent: true,
   ...change,
 });
@@ -128,7 +137,7 @@ describe("twin", () => {
     expect(checkTwin(2, predictions)).toMatchObject({
       verdict: "pass",
       message:
-        "Computed with its decoded values, each of 2 devices with readings to judge it stays inside the envelope. Largest span error −200 ppm, 0.60 of the limit (B). Largest zero shift 0.90 of the limit (B).",
+        "Computed with its decoded values, each of 2 devices with readings to judge it stays inside the envelope. Largest span error −200 ppm, 0.60 of the limit (B at 40.0 °C); 0.2 ppm of it are rounding. Largest zero shift 0.90 of the limit (B).",
     });
   });
 
@@ -138,6 +147,20 @@ describe("twin", () => {
     expect(checkTwin(1, [prediction("A", { zeroShiftRatio: 1.001 })])).toMatchObject({
       verdict: "warn",
       evidence: { outside: { count: 1, serials: ["A"] } },
+    });
+  });
+
+  it("names the worst device with its temperature, and the part of rounding", () => {
+    const { evidence } = checkTwin(2, [prediction("A"), prediction("B", { spanRatio: 0.6, largestRoundingPpm: 0.1 })]);
+    expect(evidence).toMatchObject({ span: { serial: "B", spanAtC: 40.02 }, rounding: { serial: "A", ppm: 0.3 } });
+  });
+
+  it("fails where the arithmetic overflows over the family's temperatures", () => {
+    const overflows = [{ serial: "C", quantity: "gain", atC: -10 }];
+    const failed = checkTwin(1, [prediction("A")], { ...noOverflow, overflows, overflowCount: 3 });
+    expect(failed).toMatchObject({
+      verdict: "fail",
+      message: expect.stringContaining("the arithmetic of 3 devices overflows: gain of C at −10.0 °C."),
     });
   });
 

@@ -1,7 +1,13 @@
 import { formatCount } from "@/lib/domain/format/figure";
-import { familyFieldGroups } from "../family-fields";
+import { thresholdsOf } from "@/lib/domain/package-checks/thresholds";
+import { familyFieldGroups, thresholdFields } from "../family-fields";
 
 type Values = Record<string, unknown>;
+
+/** The values of a document as rows name them; what a revision does not set stands as its default. */
+function flat(values: Values): Values {
+  return { ...values, ...thresholdsOf(values) };
+}
 
 function shown(value: unknown): string {
   if (typeof value !== "number") return value === undefined ? "—" : String(value);
@@ -9,7 +15,9 @@ function shown(value: unknown): string {
 }
 
 /** A revision's values with unit and explanation. Against an earlier one, what changed stands old → new. */
-export function FamilyValues({ values, before }: { values: Values; before?: Values }) {
+export function FamilyValues({ values: given, before: earlier }: { values: Values; before?: Values }) {
+  const values = flat(given);
+  const before = earlier && flat(earlier);
   const rows = [
     { name: "name", label: "Name", unit: undefined, help: "As people call it." },
     {
@@ -19,6 +27,7 @@ export function FamilyValues({ values, before }: { values: Values; before?: Valu
       help: "Of OIML R 60; decides the error envelope.",
     },
     ...familyFieldGroups.flatMap((group) => group.fields),
+    ...thresholdFields,
   ];
   return (
     <dl className="grid gap-x-8 sm:grid-cols-2">

@@ -1,0 +1,89 @@
+"use client";
+
+import { ToneShape } from "@/app/_components/state/state-mark";
+import type { Problem } from "@/lib/errors";
+import { CellInput } from "./cell-input";
+import type { Column } from "./columns";
+import type { GridPlace } from "./grid-keys";
+import type { Writing } from "./part-table";
+
+interface PartRowProps {
+  part: Record<string, unknown>;
+  columns: readonly Column[];
+  problems: readonly Problem[];
+  /** Column of the table's focus, if it is in this row. */
+  here: number | undefined;
+  writing: Writing | undefined;
+  lit: boolean;
+  readOnly: boolean;
+  onPoint: () => void;
+  onGo: (column: number) => void;
+  onBegin: (column: number) => void;
+  onCommit: (entry: string, then?: GridPlace) => void;
+  onCancel: () => void;
+}
+
+/** One field or checksum: its members as cells, the first one its name. */
+export function PartRow(props: PartRowProps) {
+  const { part, columns, problems, here, writing, lit, readOnly, onPoint, onGo, onBegin, onCommit, onCancel } = props;
+  return (
+    <tr
+      aria-selected={here !== undefined}
+      onMouseEnter={onPoint}
+      className={`border-b border-rule/55 last:border-0 ${lit ? "bg-tint" : ""}`}
+    >
+      {columns.map((column, index) => {
+        const active = here === index;
+        const isWriting = writing?.column === index;
+        const text = column.kind.read(part);
+        const Cell = index === 0 ? "th" : "td";
+        return (
+          <Cell
+            key={column.name}
+            role={index === 0 ? "rowheader" : "gridcell"}
+            data-cell={active ? "here" : undefined}
+            data-member={column.name}
+            tabIndex={active && !isWriting ? 0 : -1}
+            aria-readonly={readOnly || text === null || undefined}
+            title={text === null ? "Written in the text only" : undefined}
+            onFocus={() => {
+              onGo(index);
+              onPoint();
+            }}
+            onClick={() => onGo(index)}
+            onDoubleClick={() => onBegin(index)}
+            className={`h-8 px-2 text-left font-mono font-normal focus-visible:-outline-offset-2 ${column.figures ? "text-right" : ""} ${
+              index === 0 ? `sticky left-0 ${lit ? "bg-tint" : "bg-raised"}` : ""
+            }`}
+          >
+            {isWriting ? (
+              <CellInput
+                column={column}
+                writing={writing}
+                onCommit={(entry, step = 0) => onCommit(entry, { row: writing.row, column: index + step })}
+                onCancel={onCancel}
+              />
+            ) : (
+              <>
+                {index === 0 ? <RowMark problems={problems} /> : null}
+                {text ?? "…"}
+              </>
+            )}
+          </Cell>
+        );
+      })}
+    </tr>
+  );
+}
+
+/** What stands against the row, as a shape with its words. */
+function RowMark({ problems }: { problems: readonly Problem[] }) {
+  if (problems.length === 0) return null;
+  const words = problems.map((problem) => problem.message).join("; ");
+  return (
+    <span title={words} className="mr-1.5 inline-block align-baseline text-oxide">
+      <ToneShape tone="caution" size={10} />
+      <span className="sr-only">{words} — </span>
+    </span>
+  );
+}
