@@ -9,6 +9,7 @@ import * as stations from "./20261201060600_stations";
 import * as ledger from "./20261201060700_ledger";
 import * as runPlans from "./20261201140000_run_plans";
 import * as certificatesAndMappings from "./20261201141000_certificates_and_mappings";
+import * as readingsByStatement from "./20261201141001_readings_by_statement";
 import * as derivationStatements from "./20261201142000_derivation_statements";
 import * as unfinishedLayouts from "./20261201150000_unfinished_layouts";
 
@@ -24,6 +25,7 @@ export const migrations: Record<string, Migration> = {
   "20261201060700_ledger": ledger,
   "20261201140000_run_plans": runPlans,
   "20261201141000_certificates_and_mappings": certificatesAndMappings,
+  "20261201141001_readings_by_statement": readingsByStatement,
   "20261201142000_derivation_statements": derivationStatements,
   "20261201150000_unfinished_layouts": unfinishedLayouts,
 };

@@ -1,4 +1,5 @@
 import { sql } from "kysely";
+import { textArray } from "@/db/binary-arrays";
 import type { Db, Trx } from "@/db/executor";
 
 export interface DeviceRow {
@@ -79,6 +80,19 @@ export async function findDevicesBySerial(
     .select("lot.code as lotCode")
     .where(sql<boolean>`device.serial = any(${serials as string[]}::text[])`)
     .orderBy("device.serial")
+    .execute();
+}
+
+/** Which device, of which lot, each of some serials is; serials that no lot has are left out. */
+export async function findLotsOfSerials(
+  db: Db,
+  serials: readonly string[],
+): Promise<{ id: string; serial: string; lotId: string; lotCode: string }[]> {
+  return db
+    .selectFrom("device")
+    .innerJoin("lot", "lot.id", "device.lotId")
+    .select(["device.id", "device.serial", "device.lotId", "lot.code as lotCode"])
+    .where(sql<boolean>`device.serial = any(${textArray(serials)}::text[])`)
     .execute();
 }
 

@@ -1,9 +1,10 @@
 import { sql } from "kysely";
+import { float8Array, int4Array, textArray, timestamptzArray, uuidArray } from "@/db/binary-arrays";
 import type { Db, Trx } from "@/db/executor";
 import type { Reading } from "@/lib/domain/compensation/types";
 
-/** Rows a statement takes: keeps one statement's parameters at a few megabytes. */
-const ROWS_A_STATEMENT = 20_000;
+/** Rows a statement takes: a few megabytes of parameters, and the next are written while the server stores these. */
+const ROWS_A_STATEMENT = 10_000;
 
 /**
  * Stores a run's readings, column by column through `unnest`.
@@ -15,50 +16,42 @@ export async function insertReadings(
   readings: readonly Reading[],
   deviceIds: ReadonlyMap<string, string>,
 ): Promise<void> {
+  let running: Promise<unknown> = Promise.resolve();
   for (let from = 0; from < readings.length; from += ROWS_A_STATEMENT) {
-    await insertChunk(trx, runId, readings.slice(from, from + ROWS_A_STATEMENT), deviceIds);
+    const statement = insertStatement(runId, readings.slice(from, from + ROWS_A_STATEMENT), deviceIds);
+    await running;
+    running = statement.execute(trx);
   }
+  await running;
 }
 
-/** An array literal of PostgreSQL from values without quotation marks, commas, braces or backslashes. */
-function plainArray(rows: readonly Reading[], of: (row: Reading) => string | number | null | undefined): string {
-  return `{${rows.map((row) => of(row) ?? "NULL").join(",")}}`;
-}
-
-/** The same from any texts. */
-function textArray(rows: readonly Reading[], of: (row: Reading) => string | null | undefined): string {
-  const quoted = (text: string) => `"${text.replace(/["\\]/g, "\\$&")}"`;
-  return plainArray(rows, (row) => {
-    const text = of(row);
-    return text === null || text === undefined ? null : quoted(text);
-  });
-}
-
-/** Literals are written here: the driver quotes element by element, which takes longer than the statement itself. */
-async function insertChunk(
-  trx: Trx,
-  runId: string,
-  rows: readonly Reading[],
-  deviceIds: ReadonlyMap<string, string>,
-): Promise<void> {
-  await sql`
+function insertStatement(runId: string, rows: readonly Reading[], deviceIds: ReadonlyMap<string, string>) {
+  const numbers = (of: (row: Reading) => number | null | undefined) => float8Array(valuesOf(rows, of));
+  const texts = (of: (row: Reading) => string | null | undefined) => textArray(valuesOf(rows, of));
+  return sql`
     insert into reading (run_id, row_number, device_id, point, chamber_c, soak_min, device_temp, load_kg, signal_mv_v,
       taken_at, position, hardware_id, dwell_s, output_mv_v)
     select ${runId}::uuid, given.* from unnest(
-      ${plainArray(rows, (row) => row.row)}::int[],
-      ${plainArray(rows, (row) => deviceIds.get(row.serial))}::uuid[],
-      ${plainArray(rows, (row) => row.point)}::int[],
-      ${plainArray(rows, (row) => row.chamberC)}::float8[],
-      ${plainArray(rows, (row) => row.soakMin)}::float8[],
-      ${plainArray(rows, (row) => row.deviceTemp)}::float8[],
-      ${plainArray(rows, (row) => row.loadKg)}::float8[],
-      ${plainArray(rows, (row) => row.signalMvV)}::float8[],
-      ${plainArray(rows, (row) => row.takenAt)}::timestamptz[],
-      ${textArray(rows, (row) => row.position)}::text[],
-      ${textArray(rows, (row) => row.hardwareId)}::text[],
-      ${plainArray(rows, (row) => row.dwellS)}::float8[],
-      ${plainArray(rows, (row) => row.outputMvV)}::float8[]) as given
-  `.execute(trx);
+      ${int4Array(rows.map((row) => row.row))}::int4[],
+      ${uuidArray(rows.map((row) => deviceIds.get(row.serial) as string))}::uuid[],
+      ${int4Array(rows.map((row) => row.point))}::int4[],
+      ${numbers((row) => row.chamberC)}::float8[],
+      ${numbers((row) => row.soakMin)}::float8[],
+      ${numbers((row) => row.deviceTemp)}::float8[],
+      ${numbers((row) => row.loadKg)}::float8[],
+      ${numbers((row) => row.signalMvV)}::float8[],
+      ${timestamptzArray(rows.map((row) => row.takenAt))}::timestamptz[],
+      ${texts((row) => row.position)}::text[],
+      ${texts((row) => row.hardwareId)}::text[],
+      ${numbers((row) => row.dwellS)}::float8[],
+      ${numbers((row) => row.outputMvV)}::float8[]) as given
+  `;
+}
+
+/** A column's values; none where no row has one, which `unnest` fills up with NULL. */
+function valuesOf<T>(rows: readonly Reading[], of: (row: Reading) => T | null | undefined): (T | null | undefined)[] {
+  const values = rows.map(of);
+  return values.some((value) => value !== null && value !== undefined) ? values : [];
 }
 
 export type StoredReading = Reading & { runId: string };

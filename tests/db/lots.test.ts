@@ -1,10 +1,14 @@
+import { sql } from "kysely";
 import { v7 as uuidv7 } from "uuid";
 import { beforeAll, describe, expect, it } from "vitest";
 import { appErrorFromDatabase } from "@/db/constraint-codes";
 import type { Trx } from "@/db/executor";
-import { countDevices, findDevicesBySerial, insertDevices, listDevices } from "@/db/queries/devices";
+import { countDevices, findDevicesBySerial, findLotsOfSerials, insertDevices, listDevices } from "@/db/queries/devices";
 import { insertFamily, insertFamilyRevision } from "@/db/queries/families";
 import { getLot, insertLot, listLots, lockLot } from "@/db/queries/lots";
+import { insertReadings, listReadings } from "@/db/queries/readings";
+import { insertRun, listRunsOfLot } from "@/db/queries/runs";
+import type { Reading } from "@/lib/domain/compensation/types";
 import { numberSerials } from "@/lib/domain/serials";
 import { documentDigest } from "@/lib/services/families/document-digest";
 import { openTestDatabase, type TestDatabase } from "../support/database";
@@ -129,5 +133,68 @@ describe("devices in the database", () => {
     expect(page.map((device) => device.serial)).toEqual(["MANY-09999", "MANY-10000"]);
     expect(page[0]).toMatchObject({ coefficients: null, held: false });
     expect(await listDevices(database.db, id, { q: "0042", limit: 99 })).toHaveLength(11);
+  });
+});
+
+describe("readings in the database", () => {
+  const readingOf = (serial: string, row: number): Reading => ({
+    row,
+    serial,
+    point: 1,
+    chamberC: 20.5,
+    soakMin: 95,
+    deviceTemp: 1941.32,
+    loadKg: 0,
+    signalMvV: -0.0139659,
+    takenAt: "2026-03-02T09:48:00.000Z",
+  });
+
+  async function store(lotId: string, readings: Reading[], devices: Map<string, string>): Promise<string> {
+    const id = uuidv7();
+    const none = { fileName: null, temperatureLowC: null, temperatureHighC: null, supersedesId: null, reason: null };
+    await inTransaction(async (trx) => {
+      const sizes = { byteCount: 1, rowCount: readings.length, deviceCount: devices.size };
+      const made = { createdAt: at, createdBy: person, planId: null, sha256: Buffer.alloc(32, readings.length) };
+      await insertRun(trx, { id, lotId, purpose: "zero", ...sizes, ...none, ...made }, Buffer.from("x"));
+      await insertReadings(trx, id, readings, devices);
+    });
+    return id;
+  }
+
+  it("come back as they were, over more than one statement", async () => {
+    const id = await addLot("READ-1");
+    await add(id, ["READ-1-A", "READ-1-B"]);
+    const devices = new Map(
+      (await findLotsOfSerials(database.db, ["READ-1-A", "READ-1-B"])).map((d) => [d.serial, d.id]),
+    );
+    const readings = Array.from({ length: 10_001 }, (_, index) =>
+      readingOf(index % 2 ? "READ-1-A" : "READ-1-B", index + 2),
+    );
+    const optional = { position: 'shelf "A", 1', hardwareId: null, dwellS: 30, outputMvV: null };
+    readings[10_000] = { ...(readings[10_000] as Reading), ...optional };
+    const run = await store(id, readings, devices);
+    const stored = await listReadings(database.db, [run]);
+    expect(stored).toHaveLength(10_001);
+    expect(stored[1]).toMatchObject({ ...readings[1], dwellS: null });
+    expect(stored[10_000]).toMatchObject(readings[10_000] as Reading);
+  });
+
+  it("are refused for a device of another lot or of none, all of them", async () => {
+    const [first, second] = [await addLot("READ-2"), await addLot("READ-3")];
+    await add(first, ["READ-2-A"]);
+    await add(second, ["READ-3-A"]);
+    const known = await findLotsOfSerials(database.db, ["READ-2-A", "READ-3-A"]);
+    const devices = new Map(known.map((device) => [device.serial, device.id]));
+    const rows = [readingOf("READ-2-A", 2), readingOf("READ-3-A", 3)];
+    await expect(store(first, rows, devices)).rejects.toThrow("reading.device_of_other_lot");
+    devices.set("READ-3-A", uuidv7());
+    await expect(store(first, rows, devices)).rejects.toThrow("reading.device_of_other_lot");
+    expect(await listRunsOfLot(database.db, first)).toEqual([]);
+  });
+
+  it("keep their devices: none can be removed", async () => {
+    await expect(sql`delete from device where serial = 'READ-2-A'`.execute(database.owner)).rejects.toThrow(
+      "database.append_only",
+    );
   });
 });

@@ -26,20 +26,28 @@ const NUMBERS = [
   ["signalMvV", "signal_mv_v"],
 ] as const;
 
+function note(errors: RowError[], row: number, column: string, code: string, message: string): void {
+  errors.push({ row, column, code, message });
+}
+
 function rowErrors(reading: Reading, purpose: Purpose, errors: RowError[]): void {
   const { row } = reading;
-  const add = (column: string, code: string, message: string) => errors.push({ row, column, code, message });
   for (const [field, column] of NUMBERS)
-    if (!Number.isFinite(reading[field])) add(column, "reading.not_finite", "A finite number is needed here");
-  if (!Number.isInteger(reading.point)) add("point", "reading.point_invalid", "point is an integer");
-  if (reading.loadKg < 0) add("load_kg", "reading.load_negative", "A load is 0 or more");
-  if (reading.soakMin < 0) add("soak_min", "reading.soak_negative", "A soak time is 0 or more");
-  if (!RFC_3339.test(reading.takenAt) || Number.isNaN(Date.parse(reading.takenAt.toUpperCase())))
-    add("taken_at", "reading.time_invalid", "A time with its offset is needed, as 2026-03-02T09:48:00Z (RFC 3339)");
+    if (!Number.isFinite(reading[field]))
+      note(errors, row, column, "reading.not_finite", "A finite number is needed here");
+  if (!Number.isInteger(reading.point)) note(errors, row, "point", "reading.point_invalid", "point is an integer");
+  if (reading.loadKg < 0) note(errors, row, "load_kg", "reading.load_negative", "A load is 0 or more");
+  if (reading.soakMin < 0) note(errors, row, "soak_min", "reading.soak_negative", "A soak time is 0 or more");
+  if (!RFC_3339.test(reading.takenAt) || Number.isNaN(Date.parse(reading.takenAt.toUpperCase()))) {
+    const message = "A time with its offset is needed, as 2026-03-02T09:48:00Z (RFC 3339)";
+    note(errors, row, "taken_at", "reading.time_invalid", message);
+  }
   if (purpose === "zero" && reading.loadKg > 0)
-    add("load_kg", "reading.load_in_zero_run", "A zero run has unloaded readings only");
-  if (purpose === "proof" && !Number.isFinite(reading.outputMvV ?? Number.NaN))
-    add("output_mv_v", "reading.output_missing", "A proof run needs the compensated output of every reading");
+    note(errors, row, "load_kg", "reading.load_in_zero_run", "A zero run has unloaded readings only");
+  if (purpose === "proof" && !Number.isFinite(reading.outputMvV ?? Number.NaN)) {
+    const message = "A proof run needs the compensated output of every reading";
+    note(errors, row, "output_mv_v", "reading.output_missing", message);
+  }
 }
 
 /** Rows that contradict other rows of their device. */

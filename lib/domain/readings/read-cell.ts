@@ -44,6 +44,10 @@ export function readTime(text: string): string | undefined {
   const [year, month, day, hour] = [Number(parts[1]), Number(parts[2]), Number(parts[3]), Number(parts[4])];
   if (year < 1970 || year > 2199 || day < 1 || day > daysOf(year, month) || hour > 23) return undefined;
   if (Number(parts[7] ?? 0) > 23 || Number(parts[8] ?? 0) > 59) return undefined;
+  // The usual form needs no arithmetic.
+  if (text.length === 20 && Number(parts[5]) < 60 && Number(parts[6]) < 60) {
+    return `${text.slice(0, 19).toUpperCase()}.000Z`;
+  }
   const time = Date.parse(text.toUpperCase());
   return Number.isNaN(time) ? undefined : new Date(time).toISOString();
 }

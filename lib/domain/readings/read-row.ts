@@ -61,8 +61,8 @@ const RULES: Record<Column, CellRule> = {
 const CELL_SHOWN_MAX = 40;
 
 /** What a cell held, for a message: shortened, without control characters. */
-function shown(text: string): string {
-  const clean = text.replace(/\p{C}/gu, "�");
+export function shownCell(text: string): string {
+  const clean = text.slice(0, CELL_SHOWN_MAX + 1).replace(/\p{C}/gu, "�");
   return clean.length > CELL_SHOWN_MAX ? `${clean.slice(0, CELL_SHOWN_MAX)}…` : clean;
 }
 
@@ -92,7 +92,7 @@ export function readRow(
       const value = read(text);
       if (value === undefined) {
         wrong = true;
-        const found = text === "" ? "the cell is empty" : `found "${shown(text)}"`;
+        const found = text === "" ? "the cell is empty" : `found "${shownCell(text)}"`;
         errors.add({ row: line, column, code, message: `Takes ${needs}; ${found}.` });
       } else values[field] = value;
     }

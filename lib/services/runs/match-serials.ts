@@ -1,5 +1,5 @@
 import type { Db } from "@/db/executor";
-import { findDevicesBySerial } from "@/db/queries/devices";
+import { findLotsOfSerials } from "@/db/queries/devices";
 import type { Reading } from "@/lib/domain/compensation/types";
 import type { RowErrorList } from "@/lib/domain/readings/row-error-list";
 
@@ -22,7 +22,7 @@ export async function matchSerials(
   errors: RowErrorList,
 ): Promise<MatchedSerials> {
   const serials = [...new Set(readings.map((reading) => reading.serial))];
-  const known = new Map((await findDevicesBySerial(db, serials)).map((device) => [device.serial, device]));
+  const known = new Map((await findLotsOfSerials(db, serials)).map((device) => [device.serial, device]));
   const deviceIds = new Map<string, string>();
   for (const [serial, device] of known) if (device.lotId === lot.id) deviceIds.set(serial, device.id);
   const unknown = serials.filter((serial) => !known.has(serial));

@@ -1,7 +1,8 @@
 import { readFileSync } from "node:fs";
 import fc from "fast-check";
 import { describe, expect, it } from "vitest";
-import { parseReadingsCsv, ROWS_MAX } from "@/lib/domain/readings/parse-readings-csv";
+import { ROWS_MAX } from "@/lib/domain/readings/gather-readings";
+import { parseReadingsCsv } from "@/lib/domain/readings/parse-readings-csv";
 
 const HEADER = "serial,point,chamber_c,soak_min,device_temp,load_kg,signal_mv_v,taken_at";
 const ROW = "A-1,1,10.5,98,1941.32,0,-0.0139659,2026-03-02T09:48:00Z";
