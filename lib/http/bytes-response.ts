@@ -1,5 +1,6 @@
 import type { StoredBytes } from "@/lib/services/stored-bytes";
 import { allowsRange, namesTag, readRange } from "./byte-range";
+import { streamOf } from "./stream";
 
 /**
  * Answers a GET for exact bytes: entity tag, `Repr-Digest` (RFC 9530), one range (206, 416), `If-Range`, `If-None-Match` (304).
@@ -28,21 +29,4 @@ export function bytesResponse(headers: Headers, bytes: StoredBytes, extra: Recor
   common["content-length"] = String(range.last - range.first + 1);
   common["content-range"] = `bytes ${range.first}-${range.last}/${bytes.length}`;
   return new Response(streamOf(bytes.read(range)), { status: 206, headers: common });
-}
-
-function streamOf(pieces: AsyncIterable<Uint8Array>): ReadableStream<Uint8Array> {
-  const iterator = pieces[Symbol.asyncIterator]();
-  return new ReadableStream<Uint8Array>(
-    {
-      async pull(controller) {
-        const { done, value } = await iterator.next();
-        if (done) controller.close();
-        else controller.enqueue(value);
-      },
-      async cancel() {
-        await iterator.return?.();
-      },
-    },
-    { highWaterMark: 0 },
-  );
 }

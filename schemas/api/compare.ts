@@ -67,7 +67,7 @@ export const fieldSummary = z.object({
 
 export type FieldSummary = z.output<typeof fieldSummary>;
 
-const comparedPackage = z.object({
+const packageFacts = z.object({
   id,
   lot: z.string(),
   family: z.string(),
@@ -77,14 +77,80 @@ const comparedPackage = z.object({
   digest: sha256Hex.nullable(),
 });
 
+export type ComparedPackage = z.output<typeof packageFacts>;
+
 export const comparison = pageOf(comparedDevice).extend({
-  from: comparedPackage,
-  to: comparedPackage,
+  from: packageFacts,
+  to: packageFacts,
   counts: changeCounts.meta({ description: "Over all serials, not only those of the page" }),
   fields: z.array(fieldSummary).meta({ description: "Changed fields, over all serials" }),
 });
 
 export type Comparison = z.output<typeof comparison>;
+
+const twoPackages = {
+  from: id.meta({ description: "The older package" }),
+  to: id.meta({ description: "The newer package, of whatever lot" }),
+};
+
+export const overviewQuery = z.object(twoPackages);
+
+const histogram = z.object({
+  in: z.enum(["steps", "unit"]).meta({ description: "Whether edges are stored steps or in the field's unit" }),
+  from: z.number().meta({ description: "Lower edge of the first bin" }),
+  width: z.number().positive(),
+  counts: z.array(count),
+});
+
+export const comparisonOverview = z.object({
+  from: packageFacts,
+  to: packageFacts,
+  counts: changeCounts,
+  fields: z.array(
+    fieldSummary.extend({
+      parameter: z.boolean().meta({ description: "Carries a value: no version number, no checksum" }),
+      histogram: histogram
+        .nullable()
+        .meta({ description: "Of the difference, newer less older, over the serials in which it differs" }),
+    }),
+  ),
+});
+
+export type ComparisonOverview = z.output<typeof comparisonOverview>;
+
+const selection = {
+  ...twoPackages,
+  change: z.enum(CHANGES).optional(),
+  field: z.string().max(64).optional().meta({ description: "Only serials in which this field differs" }),
+  least: z.coerce.number().min(0).optional().meta({
+    description: "And by at least so much: in stored steps where the field has them, else in its unit",
+  }),
+  search: z.string().trim().max(32).optional().meta({ description: "Part of a serial" }),
+  sort: z.string().max(65).default("serial").meta({
+    description: "serial, largest (the largest step of any parameter), or a field's name; a minus before it: falling",
+    example: "-largest",
+  }),
+};
+
+export const changedSerialsQuery = z.object({
+  ...selection,
+  offset: z.coerce.number().int().min(0).max(200_000).default(0),
+  limit: z.coerce.number().int().min(1).max(500).default(200),
+});
+
+export type ChangedSerialsQuery = z.output<typeof changedSerialsQuery>;
+
+export const changedSerials = z.object({
+  total: count.nullable().meta({ description: "Serials selected; null while not all are compared yet" }),
+  offset: count,
+  items: z.array(comparedDevice),
+});
+
+export type ChangedSerials = z.output<typeof changedSerials>;
+
+export const comparisonExportQuery = z.object({ ...selection, format: z.enum(["csv", "json"]) });
+
+export type ComparisonExportQuery = z.output<typeof comparisonExportQuery>;
 
 export const compareImagesQuery = z.object({
   from: id.meta({ description: "The older package" }),
@@ -100,6 +166,24 @@ export const imageComparison = z.object({
   fields: z.array(fieldDifference),
   bytes: z.array(byteDifference),
 });
+
+export const compareFileQuery = z.object({
+  package: id.meta({ description: "Package that holds the image" }),
+  serial: code,
+});
+
+export const fileComparison = z.object({
+  image,
+  file: z.object({
+    bytes: z.string().meta({ description: "The layout's memory out of the file, as hex" }),
+    checksums: z.array(z.object({ name: z.string(), ok: z.boolean() })),
+  }),
+  change: z.enum(["same", "values", "version-only"]),
+  fields: z.array(fieldDifference).meta({ description: "from: the image; to: the file" }),
+  bytes: z.array(byteDifference),
+});
+
+export type FileComparison = z.output<typeof fileComparison>;
 
 export const compareLayoutsQuery = z.object({ family: code, from: version, to: version });
 

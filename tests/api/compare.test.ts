@@ -166,6 +166,161 @@ describe("GET /compare", () => {
   });
 });
 
+describe("GET /compare/serials", () => {
+  const serials = (query: Record<string, string | number> = {}, as: "reviewer" | "operator" = "reviewer") =>
+    api.call("GET", "/compare/serials", { as, query: { from: first.id, to: second.id, ...query } });
+  const named = async (query: Record<string, string | number>) =>
+    ((await serials(query)).body.items as Device[]).map((device) => device.serial);
+
+  it("answers the same devices as the pages do, wherever a part begins", async () => {
+    const whole = (await compare(first.id, second.id)).body.items as Device[];
+    const { body } = await serials();
+    expect(body).toMatchObject({ total: 28, offset: 0 });
+    expect(body.items).toEqual(whole);
+    const part = (await serials({ offset: 26, limit: 10 })).body;
+    expect(part).toMatchObject({ total: 28, offset: 26 });
+    expect(part.items).toEqual(whole.slice(26));
+    expect((await serials({ offset: 99 })).body).toMatchObject({ total: 28, items: [] });
+  });
+
+  it("gives the first ones before all are counted", async () => {
+    const query = { from: second.id, to: other.id, limit: 3 };
+    const { body } = await api.call("GET", "/compare/serials", { as: "auditor", query });
+    expect(body.total).toBeNull();
+    expect(body.items.map((device: Device) => device.serial)).toEqual([
+      "MW20-2609-00001",
+      "MW20-2609-00002",
+      "MW20-2609-00003",
+    ]);
+    const counted = await api.call("GET", "/compare/serials", { as: "auditor", query: { ...query, sort: "-serial" } });
+    expect(counted.body.total).toBe(41);
+  });
+
+  it("puts the largest step first and filters by field and step", async () => {
+    expect((await named({ sort: "-largest", limit: 2 })).sort()).toEqual(CHANGED);
+    expect(await named({ sort: "-largest", offset: 27 })).toEqual([HELD]);
+    expect(await named({ field: "gainTc" })).toEqual(CHANGED);
+    expect(await named({ field: "gainTc", least: STEPS })).toEqual(CHANGED);
+    expect(await named({ field: "gainTc", least: STEPS + 1 })).toEqual([]);
+    expect(await named({ change: "removed" })).toEqual([HELD]);
+    expect(await named({ search: "-00005" })).toEqual([HELD]);
+  });
+
+  it("refuses strangers, operators and nonsense", async () => {
+    expect((await serials({}, "operator")).status).toBe(403);
+    expect((await serials({ limit: 501 })).status).toBe(422);
+    expect((await serials({ change: "moved" })).status).toBe(422);
+    const query = { from: first.id, to: second.id };
+    expect((await api.call("GET", "/compare/serials", { query })).status).toBe(401);
+    const unknown = { from: first.id, to: uuidv7() };
+    expect((await api.call("GET", "/compare/serials", { query: unknown, as: "auditor" })).status).toBe(404);
+  });
+});
+
+describe("GET /compare/overview", () => {
+  it("tells how each field's difference is distributed, and which are parameters", async () => {
+    const query = { from: first.id, to: second.id };
+    const { body } = await api.call("GET", "/compare/overview", { as: "auditor", query });
+    expect(body.counts).toEqual({ added: 0, removed: 1, values: 2, "version-only": 25, same: 0 });
+    const parameters = body.fields.filter((field: { parameter: boolean }) => field.parameter);
+    expect(parameters).toEqual([
+      {
+        name: "gainTc",
+        unit: "1/K",
+        devices: 2,
+        stepsMin: STEPS,
+        stepsMax: STEPS,
+        parameter: true,
+        histogram: { in: "steps", from: STEPS - 0.5, width: 1, counts: [2] },
+      },
+    ]);
+    expect((await api.call("GET", "/compare/overview", { as: "operator", query })).status).toBe(403);
+    expect((await api.call("GET", "/compare/overview", { query })).status).toBe(401);
+  });
+});
+
+describe("GET /compare/export", () => {
+  const exported = (query: Record<string, string | number>) =>
+    api.call("GET", "/compare/export", { as: "auditor", query: { from: first.id, to: second.id, ...query } });
+
+  it("writes a line of CSV for each field that differs, at full precision", async () => {
+    const { headers, body } = await exported({ format: "csv", change: "values" });
+    expect(headers.get("content-disposition")).toBe('attachment; filename="MW20-2609-1.0.0-to-1.1.0.csv"');
+    const lines = body.trim().split("\n");
+    expect(lines[0]).toBe("serial,change,field,unit,from,to,steps,bytes_changed");
+    const items = (await compare(first.id, second.id, { change: "values" })).body.items as Device[];
+    const expected = items.flatMap((device) =>
+      device.fields.map(({ name, unit, from, to, steps }) =>
+        [device.serial, "values", name, unit ?? "", from, to, steps ?? "", device.bytes.length].join(","),
+      ),
+    );
+    expect(lines.slice(1)).toEqual(expected);
+  });
+
+  it("writes JSON with the overview before the serials", async () => {
+    const { headers, body } = await exported({ format: "json", sort: "-largest" });
+    expect(headers.get("content-type")).toBe("application/json");
+    const whole = typeof body === "string" ? JSON.parse(body) : body;
+    expect(whole.items).toHaveLength(28);
+    expect(whole.items.at(-1)).toMatchObject({ serial: HELD, change: "removed" });
+    expect(whole.counts.values).toBe(2);
+  });
+
+  it("refuses strangers, operators and other formats", async () => {
+    const query = { from: first.id, to: second.id, format: "csv" };
+    expect((await api.call("GET", "/compare/export", { query })).status).toBe(401);
+    expect((await api.call("GET", "/compare/export", { query, as: "operator" })).status).toBe(403);
+    expect((await exported({ format: "xls" })).status).toBe(422);
+  });
+});
+
+describe("POST /compare/file", () => {
+  const serial = "MW20-2609-00001";
+  const file = (body: string | Uint8Array<ArrayBuffer>, type: string, as: "auditor" | "operator" = "auditor") =>
+    api.call("POST", "/compare/file", {
+      as,
+      query: { package: first.id, serial },
+      body,
+      headers: { "content-type": type },
+    });
+  const image = async () => (await api.call("GET", `/packages/${first.id}/images/${serial}`, { as: "auditor" })).body;
+  const hexOf = async () =>
+    (
+      await api.call("GET", `/packages/${first.id}/images/${serial}`, {
+        as: "auditor",
+        headers: { accept: "text/x-intel-hex" },
+      })
+    ).body as string;
+
+  it("finds the image's own HEX equal, and its raw bytes", async () => {
+    const { status, body } = await file(await hexOf(), "text/x-intel-hex");
+    expect(status).toBe(200);
+    expect(body).toMatchObject({ change: "same", fields: [], bytes: [], image: { serial } });
+    const raw = Buffer.from((await image()).bytes, "hex");
+    expect((await file(new Uint8Array(raw), "application/octet-stream")).body.change).toBe("same");
+  });
+
+  it("names the field, the bytes and the checksum of one flipped bit", async () => {
+    const { bytes, fields } = await image();
+    const raw = Buffer.from(bytes, "hex");
+    const { at } = fields.find((field: { name: string }) => field.name === "zero");
+    raw[at] = (raw[at] as number) ^ 1;
+    const { body } = await file(new Uint8Array(raw), "application/octet-stream");
+    expect(body.change).toBe("values");
+    expect(body.fields.map((field: { name: string }) => field.name)).toEqual(["zero"]);
+    expect(body.bytes).toEqual([{ at, from: (raw[at] as number) ^ 1, to: raw[at] }]);
+    expect(body.file.checksums).toEqual([{ name: "imageCrc", ok: false }]);
+  });
+
+  it("says why a file can't be read", async () => {
+    const bad = (await hexOf()).replace(/..\n/, "00\n");
+    expect((await file(bad, "text/x-intel-hex")).body.code).toBe("hex.bad_checksum");
+    expect((await file(new Uint8Array(5), "application/octet-stream")).body.code).toBe("dump.wrong_length");
+    expect((await file("S9030000FC\n", "text/plain")).body.code).toBe("dump.incomplete");
+    expect((await file(await hexOf(), "text/x-intel-hex", "operator")).status).toBe(403);
+  });
+});
+
 describe("GET /compare/images", () => {
   it("shows two images side by side and what differs", async () => {
     const [serial] = CHANGED;

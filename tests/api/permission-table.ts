@@ -101,6 +101,7 @@ images.list                    401    yes  yes  role yes  yes  yes  role    yes 
 images.get                     401    yes  yes  role yes  yes  yes  role    yes      yes      yes
 packages.build                 401    yes  role role role role role role    yes      role     role
 packages.submit                401    yes  role role role role role role    yes      role     role
+packages.cancel                401    yes  role role role role role role    yes      role     role
 packages.take-back             401    yes  role role role role role role    yes      role     role
 packages.rebuild               401    yes  yes  role role role role role    yes      session  role
 packages.waive                 401    role yes  role role role role role    role     session  role
@@ -113,7 +114,11 @@ reinstatements.ask             401    yes  yes  role role role role role    sess
 reinstatements.decide          401    role yes  role role role role role    role     session  role
 
 compare.packages               401    yes  yes  role yes  yes  yes  role    yes      yes      yes
+compare.overview               401    yes  yes  role yes  yes  yes  role    yes      yes      yes
+compare.serials                401    yes  yes  role yes  yes  yes  role    yes      yes      yes
+compare.export                 401    yes  yes  role yes  yes  yes  role    yes      yes      yes
 compare.images                 401    yes  yes  role yes  yes  yes  role    yes      yes      yes
+compare.file                   401    yes  yes  role yes  yes  yes  role    yes      yes      yes
 compare.layouts                401    yes  yes  role yes  yes  yes  role    yes      yes      yes
 
 stations.list                  401    yes  yes  role yes  yes  yes  role    yes      yes      yes

@@ -8,7 +8,7 @@ import { StateMark } from "@/app/_components/state/state-mark";
 import { formatFieldChange } from "@/lib/domain/format/field-value";
 import { formatNumberOf } from "@/lib/domain/format/figure";
 import type { PersonCtx } from "@/lib/services/context";
-import { compareDeviceImages } from "@/lib/services/packages/compare-device-images";
+import { compareDeviceImages } from "@/lib/services/compare/compare-device-images";
 import type { ImageView } from "@/schemas/api/images";
 import { type Chosen, packageIdOf, serialOf } from "./chosen";
 import { comparedOrWhy } from "./compare-packages";

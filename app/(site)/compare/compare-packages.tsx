@@ -10,7 +10,7 @@ import { stateOf } from "@/app/_components/state/state-of";
 import { AppError } from "@/lib/errors";
 import type { PersonCtx } from "@/lib/services/context";
 import { getLayout } from "@/lib/services/layouts/get-layout";
-import { comparePackages } from "@/lib/services/packages/compare-packages";
+import { comparePackages } from "@/lib/services/compare/compare-packages";
 import type { Comparison } from "@/schemas/api/compare";
 import type { LayoutDocument } from "@/schemas/documents/layout";
 import { type Chosen, packageIdOf, serialOf } from "./chosen";

@@ -1,5 +1,6 @@
 import { READERS } from "@/lib/domain/roles";
 import { command } from "@/lib/http/command";
+import { textStreamOf } from "@/lib/http/stream";
 import * as ledger from "@/lib/services/ledger/list-events";
 import { verifyLedger as verify } from "@/lib/services/ledger/verify-ledger";
 import { ledgerEntryPage, ledgerHead, ledgerPage, ledgerQuery, ledgerVerdict } from "@/schemas/api/ledger";
@@ -61,7 +62,7 @@ export const exportLedger = command({
   },
   handle: async (ctx) => {
     const { head, lines } = await ledger.openExport(ctx);
-    return new Response(streamOf(lines), {
+    return new Response(textStreamOf(lines), {
       headers: {
         "content-type": "application/x-ndjson",
         "content-disposition": 'attachment; filename="ledger.ndjson"',
@@ -71,20 +72,5 @@ export const exportLedger = command({
     });
   },
 });
-
-/** Text as a stream that asks for the next part when the client has taken the last one. */
-function streamOf(parts: AsyncGenerator<string>): ReadableStream<Uint8Array> {
-  const encoder = new TextEncoder();
-  return new ReadableStream({
-    pull: async (controller) => {
-      const { done, value } = await parts.next();
-      if (done) controller.close();
-      else controller.enqueue(encoder.encode(value));
-    },
-    cancel: async () => {
-      await parts.return(undefined);
-    },
-  });
-}
 
 export const ledgerCommands = [listLedger, listLedgerEntries, verifyLedger, getLedgerHead, exportLedger];

@@ -1,9 +1,7 @@
 import { sha256Hex } from "@/builders/bundle/sha256";
 import { type CompiledLayout, compileLayout } from "@/builders/codec/compile-layout";
 import { compareImages } from "@/builders/codec/difference";
-import { assembleImage } from "@/builders/codec/hex-image";
 import { checkChecksums, type DecodedField, decodeImage, imageDigestBytes } from "@/builders/codec/image";
-import { readIntelHex } from "@/builders/codec/intel-hex-read";
 import { findDevicesBySerial } from "@/db/queries/devices";
 import { findImagesBySha256, listImagesOfDevice } from "@/db/queries/images";
 import { listLayoutsInUse } from "@/db/queries/package-layouts";
@@ -11,8 +9,8 @@ import { AppError } from "@/lib/errors";
 import type { Ctx } from "@/lib/services/context";
 import { layoutsOfPackages } from "@/lib/services/devices/layouts-of-packages";
 import type { DumpResult } from "@/schemas/api/devices";
+import { type DumpFile, memoryOf, readDumpFile, wrongShape } from "./dump-file";
 
-type Dump = { raw: Buffer } | { hex: ReturnType<typeof readIntelHex> };
 type KnownImage = Awaited<ReturnType<typeof listImagesOfDevice>>[number];
 
 interface Candidate {
@@ -30,13 +28,13 @@ export async function checkDump(
   ctx: Ctx,
   input: { serial?: string; format: "hex" | "raw"; bytes: Buffer },
 ): Promise<DumpResult> {
-  const dump = readDump(input);
+  const dump = readDumpFile(input);
   if (input.serial !== undefined) return checkAgainstDevice(ctx, input.serial, dump);
   const known = await findByDigest(ctx, dump);
   if (known) return checkAgainstDevice(ctx, known, dump);
   for (const { document } of await listLayoutsInUse(ctx.db)) {
     const layout = compileLayout(document);
-    const bytes = findBytes(layout, dump);
+    const bytes = memoryOf(layout, dump);
     const serial = bytes && serialIn(layout, bytes);
     if (serial && (await findDevicesBySerial(ctx.db, [serial])).length === 1)
       return checkAgainstDevice(ctx, serial, dump);
@@ -47,13 +45,7 @@ export async function checkDump(
   );
 }
 
-/** @throws AppError `hex.*` with the line, `dump.empty` */
-function readDump({ format, bytes }: { format: "hex" | "raw"; bytes: Buffer }): Dump {
-  if (bytes.length === 0) throw new AppError("dump.empty", { message: "The file is empty. Read the memory again." });
-  return format === "hex" ? { hex: readIntelHex(bytes.toString("latin1")) } : { raw: bytes };
-}
-
-async function checkAgainstDevice(ctx: Ctx, serial: string, dump: Dump): Promise<DumpResult> {
+async function checkAgainstDevice(ctx: Ctx, serial: string, dump: DumpFile): Promise<DumpResult> {
   const [device] = await findDevicesBySerial(ctx.db, [serial]);
   if (!device) throw new AppError("device.not_found", { serial, message: `No device has the serial ${serial}.` });
   const images = await listImagesOfDevice(ctx.db, device.id);
@@ -63,7 +55,7 @@ async function checkAgainstDevice(ctx: Ctx, serial: string, dump: Dump): Promise
   );
   const fitting = images.flatMap((image): Candidate[] => {
     const layout = layouts.get(image.packageId);
-    const bytes = layout && findBytes(layout, dump);
+    const bytes = layout && memoryOf(layout, dump);
     return layout && bytes ? [{ image, layout, bytes }] : [];
   });
   const exact = preferred(fitting.filter(isExact));
@@ -124,38 +116,15 @@ function nearestOf(candidates: readonly Candidate[]): Candidate | undefined {
   return counted.sort((a, b) => a.count - b.count || rankOf(a.candidate) - rankOf(b.candidate))[0]?.candidate;
 }
 
-async function findByDigest(ctx: Ctx, dump: Dump): Promise<string | null> {
+async function findByDigest(ctx: Ctx, dump: DumpFile): Promise<string | null> {
   for (const { document } of await listLayoutsInUse(ctx.db)) {
     const layout = compileLayout(document);
-    const bytes = findBytes(layout, dump);
+    const bytes = memoryOf(layout, dump);
     if (!bytes) continue;
     const [image] = await findImagesBySha256(ctx.db, Buffer.from(sha256Hex(imageDigestBytes(layout, bytes)), "hex"));
     if (image) return image.serial;
   }
   return null;
-}
-
-/** The layout's memory out of a dump, null where the dump does not hold all of it; kept bytes may be missing. */
-function findBytes(layout: CompiledLayout, dump: Dump): Uint8Array | null {
-  if ("raw" in dump) return dump.raw.length === layout.bytes ? dump.raw : null;
-  const { bytes, missing } = assembleImage(layout, dump.hex.segments);
-  return missing.length === 0 ? bytes : null;
-}
-
-function wrongShape(layout: CompiledLayout, dump: Dump): AppError {
-  if ("raw" in dump) {
-    const facts = { expected: layout.bytes, actual: dump.raw.length };
-    return new AppError("dump.wrong_length", {
-      ...facts,
-      message: `A raw dump of this device has ${facts.expected} bytes; this one has ${facts.actual}. Read the whole memory, or send Intel HEX.`,
-    });
-  }
-  const { missing } = assembleImage(layout, dump.hex.segments);
-  const address = (offset: number) => `0x${(layout.baseAddress + offset).toString(16).toUpperCase().padStart(4, "0")}`;
-  return new AppError("dump.incomplete", {
-    missing: missing.map(([from, to]) => ({ from: address(from), to: address(to) })),
-    message: `The dump does not hold all ${layout.bytes} bytes from ${address(0)}: the first one missing is at ${address(missing[0]?.[0] ?? 0)}. Read the whole memory.`,
-  });
 }
 
 const checksumsOf = (layout: CompiledLayout, bytes: Uint8Array) =>

@@ -5,9 +5,9 @@ import { changedParameters, comparedFields } from "@/app/_components/difference/
 import { ComparisonFacts } from "@/app/_components/difference/comparison-facts";
 import { ComparisonView } from "@/app/_components/difference/comparison-view";
 import { orNotFound, pageContext } from "@/lib/http/page-context";
+import { comparePackages } from "@/lib/services/compare/compare-packages";
 import { getLayout } from "@/lib/services/layouts/get-layout";
 import { chooseAgainst } from "@/lib/services/packages/choose-against";
-import { comparePackages } from "@/lib/services/packages/compare-packages";
 import { id as packageId } from "@/schemas/api/common";
 import type { LayoutDocument } from "@/schemas/documents/layout";
 import { loadPackage, type PackageParams } from "../load-package";

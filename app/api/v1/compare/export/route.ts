@@ -1,0 +1,4 @@
+import { compareExport } from "@/lib/http/commands/compare";
+import { route } from "@/lib/http/route";
+
+export const GET = route(compareExport);

@@ -1,0 +1,4 @@
+import { compareSerials } from "@/lib/http/commands/compare";
+import { route } from "@/lib/http/route";
+
+export const GET = route(compareSerials);
