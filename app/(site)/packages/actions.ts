@@ -15,6 +15,7 @@ export interface Signed {
 const moves = {
   submit: command.submitPackage,
   "take-back": command.takeBackPackage,
+  cancel: command.cancelPackageBuild,
   release: command.releasePackage,
   withdraw: command.withdrawPackage,
 };
@@ -32,7 +33,7 @@ export async function buildPackageAction(
   return result;
 }
 
-/** Submits, takes back, releases or withdraws a package. */
+/** Cancels the build of a package, or submits, takes back, releases or withdraws it. */
 export async function movePackageAction(id: string, move: keyof typeof moves, signed: Signed): Promise<ActionResult> {
   return packageChanged(id, await runAction(moves[move], { params: { id }, body: signed }));
 }

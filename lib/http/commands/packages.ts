@@ -1,5 +1,6 @@
 import { READERS } from "@/lib/domain/roles";
 import { decidePackage as decide } from "@/lib/services/packages/decide-package";
+import { cancelBuild } from "@/lib/services/packages/end-build";
 import { getPackageView, listLotPackages } from "@/lib/services/packages/get-package";
 import { releasePackage as release, withdrawPackage as withdraw } from "@/lib/services/packages/release-package";
 import { startBuild } from "@/lib/services/packages/start-build";
@@ -66,6 +67,21 @@ export const getPackage = command({
   reply: { status: 200, schema: packageView },
   errors: ["package.not_found"],
   handle: (ctx, { params }) => getPackageView(ctx, params.id),
+});
+
+export const cancelPackageBuild = command({
+  id: "packages.cancel",
+  method: "POST",
+  path: "/packages/{id}/cancel",
+  summary: "Stop a build that is not wanted any more; the package ends as failed and its number is passed over",
+  access: engineer,
+  params: byId,
+  reply: { status: 200, schema: packageView },
+  errors: ["package.not_found", "package.wrong_state"],
+  handle: async (ctx, { params }) => {
+    await cancelBuild(ctx, params);
+    return getPackageView(ctx, params.id);
+  },
 });
 
 export const waivePackageCheck = command({
@@ -187,6 +203,7 @@ export const packageCommands = [
   listPackages,
   buildPackage,
   getPackage,
+  cancelPackageBuild,
   waivePackageCheck,
   submitPackage,
   takeBackPackage,

@@ -45,7 +45,7 @@ async function build(ctx: Ctx, inputs: PackageInputs): Promise<Built> {
   const tell = progressOf(ctx.db, pkg.id, packed.length);
   const parts: ImagePart[] = [];
   let liveBytes = new Map<string, Buffer>();
-  await tell("encoding", 0);
+  await tell("composing and checking", 0);
   const composed = await composePackage(ctx.db, inputs, partsOf(packed), {
     beforePart: async (devices) => {
       liveBytes = live
@@ -59,7 +59,7 @@ async function build(ctx: Ctx, inputs: PackageInputs): Promise<Built> {
     onImage: (image) => checker.add(image, liveBytes.get(image.device.serial)),
     onPart: (part) => {
       parts.push(part);
-      return tell("encoding", part.devices.length);
+      return tell("composing and checking", part.devices.length);
     },
   });
   const repeated = await repeat(ctx.db, inputs, parts, tell);
@@ -86,7 +86,7 @@ async function build(ctx: Ctx, inputs: PackageInputs): Promise<Built> {
 async function repeat(db: Ctx["db"], inputs: PackageInputs, parts: readonly ImagePart[], tell: Tell) {
   const differing: string[] = [];
   let at = 0;
-  await tell("repeating", 0);
+  await tell("composing again", 0);
   const { digest } = await composePackage(
     db,
     inputs,
@@ -95,7 +95,7 @@ async function repeat(db: Ctx["db"], inputs: PackageInputs, parts: readonly Imag
       onPart: (again) => {
         const first = parts[at++] as ImagePart;
         differing.push(...differingSerials(first, again).slice(0, EVIDENCE_MAX - differing.length));
-        return tell("repeating", again.devices.length);
+        return tell("composing again", again.devices.length);
       },
     },
   );
@@ -113,7 +113,7 @@ function differingSerials(first: ImagePart, again: ImagePart): string[] {
 }
 
 /** Takes a step and how many devices more are through it. */
-type Tell = (step: "encoding" | "repeating" | "storing", more: number) => Promise<void>;
+type Tell = (step: "composing and checking" | "composing again" | "storing", more: number) => Promise<void>;
 
 /**
  * Tells how far a build is, and hears at the same time whether it is still wanted.

@@ -8,6 +8,7 @@ import { type Confirmation, confirmIdentity } from "@/lib/services/people/confir
 import { packageEventData } from "./package-event";
 import { assertNoPackageMaker, assertPackageState, assertSetsApproved, lockLotAndPackage } from "./package-rules";
 import { reviewDigestOf } from "./review-digest";
+import { tellSubmitter } from "./tell-people";
 
 export interface PackageDecision extends Confirmation {
   decision: "approve" | "refuse";
@@ -55,6 +56,7 @@ export async function decidePackage(ctx: PersonCtx, input: PackageDecision & { i
       at,
     });
     await movePackage(trx, pkg.id, approve ? { state: "approved", approvedAt: at } : { state: "refused" });
+    if (!approve) await tellSubmitter(ctx, trx, pkg, input.reason ?? "");
     await appendEvent(ctx, trx, {
       action: approve ? "package.approved" : "package.refused",
       subject: pkg.id,

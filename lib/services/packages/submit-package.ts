@@ -8,6 +8,7 @@ import { appendEvent } from "@/lib/services/ledger/append-event";
 import { packageEventData } from "./package-event";
 import { assertPackageState, assertSetsApproved, lockLotAndPackage } from "./package-rules";
 import { reviewDigestOf } from "./review-digest";
+import { tellPackageDeciders } from "./tell-people";
 
 /**
  * Asks a second person to decide over a draft; who asks is a maker from then on.
@@ -23,6 +24,8 @@ export async function submitPackage(ctx: PersonCtx, { id }: { id: string }): Pro
     await assertSetsApproved(trx, pkg.id);
     await addSubmitter(ctx, trx, pkg);
     const { reviewDigest, against } = await reviewDigestOf(trx, pkg);
+    const waivers = (await listWaivers(trx, pkg.id)).length;
+    await tellPackageDeciders(ctx, trx, pkg, waivers);
     await movePackage(trx, pkg.id, {
       state: "in-review",
       reviewDigest,

@@ -31,6 +31,15 @@ interface Move {
 }
 
 const moves: Record<ActionName, Move> = {
+  cancel: {
+    button: () => "Cancel the build",
+    look: "danger",
+    title: (version) => `Cancel the build of ${version}`,
+    description: "Nothing of it is kept, and its number is not used again. Another build can be started at once.",
+    reason: "none",
+    password: false,
+    done: (version) => `The build of ${version} is cancelled`,
+  },
   submit: {
     button: () => "Ask for review",
     look: "primary",

@@ -2,7 +2,7 @@ import type { ButtonLook } from "@/app/_components/button";
 import type { Role } from "@/lib/domain/roles";
 import type { PackageView } from "@/schemas/api/packages";
 
-export type ActionName = "submit" | "take-back" | "release" | "withdraw" | "reinstate";
+export type ActionName = "cancel" | "submit" | "take-back" | "release" | "withdraw" | "reinstate";
 
 /** A button of the title row: a move, perhaps with what stands against it, or a link. */
 export type ShownAction =
@@ -24,6 +24,8 @@ export function movesOf(pkg: PackageForMoves, roles: readonly Role[], reinstatem
   const bundle: ShownAction = { href: `/api/v1/packages/${pkg.id}/bundle`, words: "Download bundle", download: true };
   const takeBack: ShownAction[] = pkg.mayTakeBack ? [{ move: "take-back" }] : [];
   switch (pkg.state) {
+    case "building":
+      return engineer ? [{ move: "cancel" }] : [];
     case "draft":
       return engineer ? [...again, { move: "submit", hindrance: hindranceOf(pkg) }] : [];
     case "in-review":

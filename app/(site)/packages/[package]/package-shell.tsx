@@ -114,6 +114,13 @@ function BuildState({ view }: { view: PackageView }) {
   }
   if (!view.failure) return null;
   const { code, message, serial, field } = view.failure;
+  if (code === "package.cancelled")
+    return (
+      <Notice tone="caution" title="The build was cancelled">
+        Nothing was stored, and the number {view.version} is not used again.{" "}
+        <Link href={`/lots/${view.lot}/packages#build`}>Build another</Link>
+      </Notice>
+    );
   const named = serial !== undefined && message.includes(serial);
   return (
     <Notice tone="bad" title="The build did not finish">
