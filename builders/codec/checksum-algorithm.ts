@@ -43,23 +43,6 @@ export function crcParametersOf({ width, poly, init, refin, refout, xorout }: Cr
   };
 }
 
-/** The algorithm in words, for people and to tell two apart: equal definitions give equal texts, however they are written. */
-export function algorithmText(algorithm: ChecksumAlgorithm): string {
-  if (typeof algorithm === "string") return algorithm;
-  const complement = "poly" in algorithm ? "none" : (algorithm.complement ?? "none");
-  const tail = complement === "none" ? "" : `, ${complement === "ones" ? "ones'" : "two's"} complement`;
-  if ("sum" in algorithm) return `sum of bytes, ${algorithm.sum} bits${tail}`;
-  if ("xor" in algorithm) return `exclusive or of bytes${tail}`;
-  const { width, refin, refout } = algorithm;
-  const { poly, init, xorout } = crcParametersOf(algorithm);
-  const hex = (value: number) =>
-    value
-      .toString(16)
-      .toUpperCase()
-      .padStart(width / 4, "0");
-  return `CRC of ${width} bits, poly ${hex(poly)}, init ${hex(init)}, refin ${refin}, refout ${refout}, xorout ${hex(xorout)}`;
-}
-
 /** The ranges that a checksum covers, in the order in which it runs through them. */
 export function rangesOf(over: LayoutChecksum["over"]): ByteRange[] {
   return isRangeList(over) ? over : [over];

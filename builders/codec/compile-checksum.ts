@@ -1,5 +1,6 @@
-import { algorithmText, findChecksumWidth, makeChecksum, rangesOf } from "@/builders/codec/checksum-algorithm";
+import { findChecksumWidth, makeChecksum, rangesOf } from "@/builders/codec/checksum-algorithm";
 import type { Crc } from "@/builders/codec/crc";
+import { algorithmText } from "@/lib/domain/checksum-text";
 import type { ByteRange, LayoutChecksum, LayoutDocument } from "@/schemas/documents/layout";
 
 export interface CompiledChecksum {

@@ -1,9 +1,16 @@
 import { isFirmwareWithin } from "@/lib/domain/firmware-range";
+import {
+  byteFacts,
+  type Facts,
+  factsText,
+  memoryFacts,
+  omit,
+  type Part,
+  TEXT_MEMBERS,
+} from "@/lib/domain/layout-byte-facts";
 import type { StepReason } from "@/lib/domain/semver-step";
-import type { LayoutChecksum, LayoutDocument, LayoutField } from "@/schemas/documents/layout";
+import type { LayoutDocument } from "@/schemas/documents/layout";
 
-type Part = LayoutField | LayoutChecksum;
-type Facts = Record<string, unknown>;
 type Step = StepReason["step"];
 
 /** Every difference between two layouts that asks for a version step, in words; the version itself is none. */
@@ -40,6 +47,7 @@ const HEAD_WORDS: Readonly<Record<string, string>> = {
   baseAddress: "the base address",
   fill: "the fill",
   byteOrder: "the memory's byte order",
+  segments: "where segments lie",
 };
 
 /** Members with rules of their own, or that ask for no step. */
@@ -63,10 +71,19 @@ function headChanges(previous: LayoutDocument, next: LayoutDocument): StepReason
   });
   return [
     ...objectChanges("", omit(previous, OWN_RULES), omit(next, OWN_RULES), previous),
-    ...objectChanges("/memory", { ...previous.memory }, { ...next.memory }, previous),
+    ...objectChanges("/memory", memoryFacts(previous), memoryFacts(next), previous),
     ...kept,
     ...told,
+    ...segmentNames(previous, next),
   ];
+}
+
+/** Names of segments are for people. */
+function segmentNames(previous: LayoutDocument, next: LayoutDocument): StepReason[] {
+  const namesOf = ({ memory }: LayoutDocument) => memory.segments?.map(({ name }) => name ?? null);
+  const [before, after] = [namesOf(previous), namesOf(next)];
+  if (before?.length !== after?.length || isSame(before, after)) return [];
+  return [{ path: "/memory/segments", step: "patch", message: "the names of segments changed" }];
 }
 
 function objectChanges(path: string, before: Facts, after: Facts, previous: LayoutDocument): StepReason[] {
@@ -78,9 +95,6 @@ function objectChanges(path: string, before: Facts, after: Facts, previous: Layo
       message: `${HEAD_WORDS[key] ?? `“${key}”`} is ${shown(after[key])} instead of ${shown(before[key])}: ${misread(previous)}`,
     }));
 }
-
-const omit = (object: object, names: readonly string[]): Facts =>
-  Object.fromEntries(Object.entries(object).filter(([name]) => !names.includes(name)));
 
 const keptText = ({ kept = [] }: LayoutDocument) =>
   kept.length === 0 ? "nothing" : kept.map((range) => shown(range)).join(" and ");
@@ -189,62 +203,8 @@ const FACT_WORDS: Readonly<Record<string, string>> = {
   value: "the source",
   algorithm: "the algorithm",
   over: "the range",
+  forbid: "what is forbidden",
+  instead: "what is stored instead of a forbidden value",
   min: "the lower limit",
   max: "the upper limit",
 };
-
-/** Members that no byte follows from. */
-const TEXT_MEMBERS = ["min", "max", "description", "enum"];
-
-/** What counts where a member is left out. */
-const DEFAULTS: Facts = { scale: 1, bias: 0, count: 1, signed: false, fraction: 0 };
-
-/**
- * What firmware reads by: every member that is not a text for people, so that a member this code does not know counts. One
- * left out counts as its default, and one byte has no order.
- */
-function byteFacts(part: Part, layout: LayoutDocument): Facts {
-  const facts = omit(part, ["name", ...TEXT_MEMBERS]);
-  for (const [name, value] of Object.entries(DEFAULTS)) if (isSame(facts[name], value)) delete facts[name];
-  facts.byteOrder = isOneByte(part) ? undefined : (part.byteOrder ?? layout.memory.byteOrder);
-  if ("value" in part) facts.value = valueFacts(part);
-  return facts;
-}
-
-function factsText(part: Part, layout: LayoutDocument): string {
-  return JSON.stringify(Object.entries(byteFacts(part, layout)).sort(([a], [b]) => (a < b ? -1 : 1)));
-}
-
-/** Elements of one byte have no byte order. */
-function isOneByte(part: Part): boolean {
-  const { algorithm, type, bits, length } = part as unknown as Facts;
-  if (typeof algorithm === "string") return algorithm.startsWith("CRC-8/");
-  if (typeof algorithm === "object" && algorithm !== null) {
-    const { width, sum, xor } = algorithm as Facts;
-    return Number(width ?? sum ?? xor) <= 8;
-  }
-  if (type === "fixed") return bits === 8;
-  return type === "bcd" ? length === 1 : ["u8", "i8", "ascii", "bytes"].includes(type as string);
-}
-
-/** Where the value comes from, constants as they are stored: hex digits in one case, names by their numbers. */
-function valueFacts(field: LayoutField): unknown {
-  const value = field.value as Facts;
-  if (Array.isArray(value.bits)) return { bits: value.bits.map((part: LayoutField) => bitFacts(part)) };
-  if (!("const" in value)) return value;
-  const constants = [value.const].flat().map((one) => storedConstant(one, field));
-  return { const: constants.length === 1 ? constants[0] : constants };
-}
-
-function bitFacts(part: LayoutField): Facts {
-  const facts = omit(part, ["name", ...TEXT_MEMBERS]);
-  for (const [name, value] of Object.entries(DEFAULTS)) if (isSame(facts[name], value)) delete facts[name];
-  return { ...facts, value: valueFacts(part) };
-}
-
-function storedConstant(constant: unknown, field: LayoutField): unknown {
-  if (typeof constant !== "string") return constant;
-  const names = (field as unknown as { enum?: Record<string, number> }).enum ?? {};
-  if (Object.hasOwn(names, constant)) return names[constant];
-  return field.type === "bytes" ? constant.toUpperCase() : constant;
-}
