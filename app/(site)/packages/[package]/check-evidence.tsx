@@ -6,7 +6,22 @@ import { formatField, formatFieldChange } from "@/lib/domain/format/field-value"
 import { formatCount, formatFigure } from "@/lib/domain/format/figure";
 import { formatQuantity } from "@/lib/domain/format/quantity";
 import { leftOutWords } from "../left-out-words";
+import {
+  DecidedSets,
+  type DecidedSetsEvidence,
+  EqualImages,
+  type EqualImagesEvidence,
+  Firmware,
+  type FirmwareEvidence,
+  HexReading,
+  type HexReadingEvidence,
+  Repeatability,
+  type RepeatabilityEvidence,
+  ReservedBytes,
+  type ReservedEvidence,
+} from "./byte-evidence";
 import { Evidence } from "./evidence";
+import { LiveDifference, type LiveDifferenceEvidence, type OutlierEvidence, Outliers } from "./lot-evidence";
 import { type Named, NamedSerials } from "./named-serials";
 import {
   PredictionEvidence,
@@ -40,12 +55,6 @@ interface RoundTripEvidence {
   checksums: number;
   faults: { count: number; items: Record<string, unknown>[] };
   largestErrors: { field: string; unit: string | null; error: number; serial: string }[];
-}
-
-interface HexReadingEvidence {
-  devices: number;
-  reader: string;
-  faults: { count: number; items: Record<string, unknown>[] };
 }
 
 interface ProvenRangeEvidence {
@@ -84,6 +93,20 @@ export function CheckEvidence({ code, evidence }: { code: string; evidence: unkn
       return <PredictionEvidence {...(evidence as TwinEvidence)} />;
     case "hex-reading":
       return <HexReading {...(evidence as HexReadingEvidence)} />;
+    case "decided-sets":
+      return <DecidedSets {...(evidence as DecidedSetsEvidence)} />;
+    case "firmware":
+      return <Firmware {...(evidence as FirmwareEvidence)} />;
+    case "reserved-bytes":
+      return <ReservedBytes {...(evidence as ReservedEvidence)} />;
+    case "equal-images":
+      return <EqualImages {...(evidence as EqualImagesEvidence)} />;
+    case "repeatability":
+      return <Repeatability {...(evidence as RepeatabilityEvidence)} />;
+    case "outliers":
+      return <Outliers {...(evidence as OutlierEvidence)} />;
+    case "live-difference":
+      return <LiveDifference {...(evidence as LiveDifferenceEvidence)} />;
     case "proven-range":
       return <ProvenRange {...(evidence as ProvenRangeEvidence)} />;
     default:
@@ -206,22 +229,6 @@ function Pooling({ derivations }: PoolingEvidence) {
       </p>
     </div>
   ));
-}
-
-function HexReading({ devices, reader, faults }: HexReadingEvidence) {
-  return (
-    <div className="flex flex-col gap-3">
-      <Facts
-        small
-        facts={[
-          { label: "HEX files", value: formatCount(devices) },
-          { label: "reader", value: reader },
-          { label: "read otherwise", value: formatCount(faults.count) },
-        ]}
-      />
-      {faults.count > 0 ? <Evidence value={{ faults: faults.items }} /> : null}
-    </div>
-  );
 }
 
 const rangeText = (range: readonly [number, number]) =>

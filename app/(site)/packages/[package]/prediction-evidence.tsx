@@ -2,7 +2,8 @@ import Link from "next/link";
 import { Facts } from "@/app/_components/facts";
 import { LegalNote } from "@/app/_components/legal-note";
 import { DataTable } from "@/app/_components/table/data-table";
-import { formatCount, formatNumberOf } from "@/lib/domain/format/figure";
+import { formatCount, formatFigure, formatNumberOf } from "@/lib/domain/format/figure";
+import { formatQuantityWithUnit } from "@/lib/domain/format/quantity";
 import { type Named, NamedSerials } from "./named-serials";
 
 export interface VerificationFacts {
@@ -14,7 +15,23 @@ export interface VerificationFacts {
   }[];
 }
 
+interface AtDevice {
+  serial: string;
+  atC: number;
+}
+
+/** Packages of before say nothing of temperatures, rounding and the family's range. */
 export interface TwinEvidence {
+  span?: { serial: string; spanRatio: number; spanAtC: number | null; spanRoundingPpm: number | null } | null;
+  zero?: { serial: string; zeroShiftRatio: number; zeroBetweenC: [number, number] | null } | null;
+  rounding?: { serial: string; ppm: number } | null;
+  range?: {
+    overflows: (AtDevice & { quantity: string })[];
+    overflowCount: number;
+    spanRounding: (AtDevice & { ppm: number }) | null;
+    zeroRounding: (AtDevice & { mvV: number }) | null;
+  };
+  withoutReadings: number;
   judged: number;
   spanJudged: number;
   zeroJudged: number;
@@ -65,7 +82,8 @@ const errorColumns = [
 ] as const;
 
 /** The decoded values applied to the lot's own readings, device by device. */
-export function PredictionEvidence({ judged, spanJudged, zeroJudged, neverLoaded, outside, worst }: TwinEvidence) {
+export function PredictionEvidence(evidence: TwinEvidence) {
+  const { judged, spanJudged, zeroJudged, neverLoaded, withoutReadings, outside, worst } = evidence;
   return (
     <div className="flex flex-col gap-3">
       <Facts
@@ -75,8 +93,10 @@ export function PredictionEvidence({ judged, spanJudged, zeroJudged, neverLoaded
           { label: "judged on span", value: formatCount(spanJudged) },
           { label: "judged on zero", value: formatCount(zeroJudged) },
           { label: "never loaded", value: formatCount(neverLoaded.count) },
+          { label: "without readings", value: formatCount(withoutReadings) },
         ]}
       />
+      <WorstCases {...evidence} />
       <NamedSerials words="predicted outside the envelope" {...outside} />
       <DataTable
         name="predictions"
@@ -88,6 +108,12 @@ export function PredictionEvidence({ judged, spanJudged, zeroJudged, neverLoaded
           { key: "serial", header: "Serial", format: { as: "code" } },
           ...errorColumns,
           {
+            key: "spanRoundingPpm",
+            header: "of it rounding",
+            title: "Less what the coefficients before they were stored would give at the same reading, ppm",
+            format: { as: "quantity", name: "spanErrorPpm", sign: "always" },
+          },
+          {
             key: "independent",
             header: "Span judged",
             title: "On a loaded point that the gain was not taken from",
@@ -98,5 +124,68 @@ export function PredictionEvidence({ judged, spanJudged, zeroJudged, neverLoaded
       />
       <LegalNote />
     </div>
+  );
+}
+
+const celsius = (value: number | null | undefined) => `${formatFigure(value, { digits: 1 })} °C`;
+
+/** The worst device and temperature, what rounding has to do with it, and what is known beyond the readings. */
+function WorstCases({ span, zero, rounding, range }: TwinEvidence) {
+  const { overflowCount = 0, spanRounding = null, zeroRounding = null } = range ?? {};
+  const rows = [
+    span && {
+      what: "Largest span error",
+      value: `${formatFigure(span.spanRatio)} of the limit, ${formatFigure(span.spanRoundingPpm, { digits: 2, sign: "always" })} ppm of it rounding`,
+      where: celsius(span.spanAtC),
+      serial: span.serial,
+    },
+    zero && {
+      what: "Largest zero shift",
+      value: `${formatFigure(zero.zeroShiftRatio)} of the limit`,
+      where: zero.zeroBetweenC ? zero.zeroBetweenC.map(celsius).join(" to ") : "—",
+      serial: zero.serial,
+    },
+    rounding && {
+      what: "Largest rounding at a reading",
+      value: `${formatFigure(rounding.ppm, { digits: 2 })} ppm`,
+      where: "readings",
+      serial: rounding.serial,
+    },
+    spanRounding && {
+      what: "Largest rounding of the span over the family's range",
+      value: `${formatFigure(spanRounding.ppm, { digits: 2 })} ppm`,
+      where: celsius(spanRounding.atC),
+      serial: spanRounding.serial,
+    },
+    zeroRounding && {
+      what: "Largest rounding of zero over the family's range",
+      value: formatQuantityWithUnit("zero", zeroRounding.mvV),
+      where: celsius(zeroRounding.atC),
+      serial: zeroRounding.serial,
+    },
+  ].filter((row) => row !== null && row !== undefined);
+  if (rows.length === 0) return null;
+  return (
+    <>
+      <DataTable
+        name="worst cases"
+        urlName="twinworst"
+        rows={rows}
+        rowHref="/trace/{serial}"
+        columns={[
+          { key: "what", header: "What" },
+          { key: "value", header: "Value", align: "right", format: { as: "code" } },
+          { key: "where", header: "At", align: "right", format: { as: "code" } },
+          { key: "serial", header: "Serial", format: { as: "code" } },
+        ]}
+        empty={{ title: "Nothing to judge" }}
+      />
+      {overflowCount > 0 ? (
+        <p className="text-sm">
+          {formatCount(overflowCount)} devices overflow over the family's temperatures:{" "}
+          {range?.overflows.map((one) => `${one.serial}, ${one.quantity} at ${celsius(one.atC)}`).join("; ")}
+        </p>
+      ) : null}
+    </>
   );
 }
