@@ -3,7 +3,9 @@ import {
   decisiveLoads,
   maximumPermissibleError,
   poolingLimit,
+  spanErrorAtStepEnds,
   spanErrorLimit,
+  spanRatio,
   zeroShiftRatio,
   zeroTcLimit,
 } from "@/lib/domain/compensation/envelope";
@@ -40,6 +42,34 @@ describe("OIML R 60-1:2021, table 4", () => {
     expect(maximumPermissibleError(first + 1, rules)).toBeCloseTo(0.7, 12);
     expect(maximumPermissibleError(second, rules)).toBeCloseTo(0.7, 12);
     expect(maximumPermissibleError(second + 1, rules)).toBeCloseTo(1.05, 12);
+  });
+
+  it.each([
+    ["A", 500_000, 0.5 / 50_000],
+    ["B", 100_000, 1.5 / 100_000],
+    ["C", 10_000, 1.5 / 10_000],
+    ["D", 1_000, 1.5 / 1_000],
+  ] as const)(
+    "leaves class %s with n = %i the span error that its tightest step end does",
+    (accuracyClass, intervals) => {
+      const rules = { accuracyClass, intervals, pLc: 0.7 };
+      const ends = spanErrorAtStepEnds(1e-6, rules);
+      expect(ends.map((end) => end.load)).toEqual(decisiveLoads(rules));
+      const limit = Math.min(...ends.map((end) => end.limit / end.load));
+      expect(spanErrorLimit(rules)).toBe(limit);
+      expect(spanRatio(limit, rules)).toBeCloseTo(1, 12);
+      expect(spanRatio(-2 * limit, rules)).toBeCloseTo(2, 12);
+      // The same class with no more than its first step: half an interval is then the limit.
+      const short = { ...rules, intervals: decisiveLoads(rules)[0] as number };
+      expect(spanErrorLimit(short)).toBeCloseTo((0.7 * 0.5) / short.intervals, 15);
+    },
+  );
+
+  /** The figures that R 60-1:2021, 5.5.1 works for class C, n = 3000, Dmax = Emax, p_LC 0.7. */
+  it("allows 0.735 v of creep in 30 minutes, 0.1575 v of it in the last ten", () => {
+    const mpe = maximumPermissibleError(3000, classC);
+    expect(0.7 * mpe).toBeCloseTo(0.735, 12);
+    expect(0.15 * mpe).toBeCloseTo(0.1575, 12);
   });
 
   it("judges at the ends below n, and at n", () => {

@@ -1,5 +1,6 @@
 import { describe, expect, it } from "vitest";
 import {
+  betaCdf,
   chiSquareCdf,
   chiSquareQuantile,
   noncentralTCdf,
@@ -8,9 +9,16 @@ import {
   studentCdf,
   studentQuantile,
 } from "@/lib/domain/compensation/distributions";
-import { findGrubbsStatistic, grubbsCritical } from "@/lib/domain/compensation/grubbs";
-import { devicesToShow, shareShown } from "@/lib/domain/compensation/share-shown";
-import { howeFactor, oneSidedFactor, toleranceFactor } from "@/lib/domain/compensation/tolerance";
+import { findGrubbsStatistic, grubbsCritical, grubbsPower } from "@/lib/domain/compensation/grubbs";
+import { devicesToShow, shareShown, shareShownWithFailures } from "@/lib/domain/compensation/share-shown";
+import { incompleteGamma } from "@/lib/domain/compensation/special-functions";
+import {
+  howeFactor,
+  oneSidedFactor,
+  toleranceConfidence,
+  toleranceCoverage,
+  toleranceFactor,
+} from "@/lib/domain/compensation/tolerance";
 import { readPublished } from "./published-tables";
 
 /** The tables print fixed decimals: equal when no further off than half a unit of the last one (and a little). */
@@ -34,6 +42,45 @@ describe("distributions against tables", () => {
         printed(studentQuantile((1 + two) / 2, df), row[name] as number, 6);
       for (const p of ["0_025", "0_05", "0_95", "0_975"])
         printed(chiSquareQuantile(Number(p.replace("_", ".")), df), row[`chi2_${p}`] as number, 6);
+    }
+  });
+
+  it("holds the interval of a standard deviation, √(ν/χ²), of the same table", () => {
+    for (const row of readPublished("t-chi2.csv").rows) {
+      const df = row.df as number;
+      printed(Math.sqrt(df / chiSquareQuantile(0.975, df)), row.sd_ci95_lower_factor as number, 6);
+      printed(Math.sqrt(df / chiSquareQuantile(0.025, df)), row.sd_ci95_upper_factor as number, 6);
+    }
+  });
+
+  it("holds t for k = 2 of GUM (JCGM 100:2008) table G.2, from memory", () => {
+    printed(studentQuantile(0.97725, 5), 2.65, 2);
+    printed(studentQuantile(0.97725, 9), 2.32, 2);
+  });
+
+  /** Abramowitz and Stegun 26.5.27 and 26.5.24: t and the binomial are incomplete beta functions. */
+  it("holds the beta distribution to those that it is made of", () => {
+    for (const [t, df] of [
+      [0.7, 3],
+      [2.2622, 9],
+      [5, 40],
+    ] as const)
+      expect(betaCdf(df / (df + t * t), df / 2, 0.5)).toBeCloseTo(2 * studentCdf(-t, df), 13);
+    const [n, p] = [7, 0.3];
+    const choose = [1, 7, 21, 35, 35, 21, 7, 1];
+    let atLeast = 0;
+    for (let k = n; k >= 1; k--) {
+      atLeast += (choose[k] as number) * p ** k * (1 - p) ** (n - k);
+      expect(betaCdf(p, k, n - k + 1)).toBeCloseTo(atLeast, 13);
+    }
+  });
+
+  /** Two ways of our own that share nothing: rational approximations, and the incomplete gamma function. */
+  it("takes the normal distribution from the error function as from χ² with one degree", () => {
+    for (let z = -30; z <= 8; z += 0.37) {
+      const { lower, upper } = incompleteGamma(0.5, 0.5 * z * z);
+      const other = z < 0 ? 0.5 * upper : 0.5 + 0.5 * lower;
+      expect(Math.abs(normalCdf(z) / other - 1)).toBeLessThan(1e-12);
     }
   });
 
@@ -81,6 +128,25 @@ describe("tolerance factors", () => {
     printed(oneSidedFactor(question), 1.874, 4);
     printed(97.07 - howeFactor(question) * 0.0268, 97.0106, 4);
     printed(97.07 + howeFactor(question) * 0.0268, 97.1294, 4);
+    // The page's approximation on one side, as a comparison: k = (z_p + √(z_p² − a·b))/a. Ours above is exact.
+    const [zp, zc] = [normalQuantile(0.9), normalQuantile(0.99)];
+    const a = 1 - zc ** 2 / (2 * 42);
+    const b = zp ** 2 - zc ** 2 / 43;
+    printed(a, 0.9355727, 6);
+    printed(b, 1.5165164, 6);
+    const approximate = (zp + Math.sqrt(zp ** 2 - a * b)) / a;
+    printed(approximate, 1.8752, 4);
+    printed(97.07 + approximate * 0.0268, 97.1203, 4);
+    printed(97.07 - approximate * 0.0268, 97.0197, 4);
+  });
+
+  it("answers the questions asked the other way round", () => {
+    for (const row of readPublished("normal-tolerance-k.csv").rows.slice(0, 60)) {
+      const [n, coverage, confidence] = [row.n as number, row.P as number, row.C as number];
+      const k = toleranceFactor({ n, coverage, confidence });
+      expect(toleranceConfidence({ n, coverage, k })).toBeCloseTo(confidence, 10);
+      expect(toleranceCoverage({ n, k, confidence })).toBeCloseTo(coverage, 10);
+    }
   });
 
   it("goes to the normal quantile for many values", () => {
@@ -96,6 +162,12 @@ describe("outliers", () => {
     expect(found?.g).toBeCloseTo(2.46876461, 8);
     expect(grubbsCritical(8, 0.05, 1)).toBeCloseTo(2.031652, 6);
     expect(grubbsCritical(8, 0.05, 2)).toBeCloseTo(2.1266451, 7);
+  });
+
+  it("has no room on three values: G ends at 1.1547, the critical value lies at 1.1543", () => {
+    const { greatest, critical } = grubbsPower(3, 0.05);
+    printed(greatest, 1.1547, 4);
+    printed(critical, 1.1543, 4);
   });
 
   it("holds the table of critical values", () => {
@@ -118,5 +190,27 @@ describe("share shown by passing devices", () => {
     expect(shareShown(5, 0.95)).toBeCloseTo(0.5493, 4);
     expect(devicesToShow(0.95, 0.95)).toBe(59);
     expect(devicesToShow(0.9, 0.9)).toBe(22);
+  });
+
+  it("gives back for every count the share that it shows", () => {
+    for (let count = 1; count <= 300; count++) expect(devicesToShow(shareShown(count, 0.95), 0.95)).toBe(count);
+  });
+
+  /** Clopper and Pearson's bound, by its definition: that many or more pass with a probability of 1 − confidence. */
+  it("bounds a share with failures by the exact binomial sum", () => {
+    const choose = (n: number, k: number): number => (k === 0 ? 1 : (choose(n - 1, k - 1) * n) / k);
+    for (const [passed, count] of [
+      [4, 5],
+      [9, 10],
+      [18, 20],
+      [55, 60],
+    ] as const) {
+      const p = shareShownWithFailures(passed, count, 0.95);
+      let atLeast = 0;
+      for (let k = passed; k <= count; k++) atLeast += choose(count, k) * p ** k * (1 - p) ** (count - k);
+      expect(atLeast).toBeCloseTo(0.05, 12);
+    }
+    expect(shareShownWithFailures(0, 5, 0.95)).toBe(0);
+    expect(() => shareShownWithFailures(6, 5, 0.95)).toThrow(expect.objectContaining({ code: "share.invalid" }));
   });
 });
