@@ -4,11 +4,12 @@ import { trimDevice } from "./device-gain";
 import { assertFamilyRules } from "./envelope";
 import { makeFinding } from "./findings";
 import { verdictOf } from "./judge";
-import { findGainTcOutlier, poolGain, SAMPLE_MIN } from "./pooled";
+import { poolGain, SAMPLE_MIN } from "./pooled";
 import { provenRange } from "./proven-range";
 import { listRunFindings } from "./run-findings";
-import { collectDevices, selectRuns } from "./run-selection";
+import { collectDevices, listTwiceMeasured, selectRuns } from "./run-selection";
 import { shareShown } from "./share-shown";
+import { checkSiblings } from "./sibling-checks";
 import type {
   DerivationInput,
   DerivationResult,
@@ -23,7 +24,7 @@ import type {
  * Version of this arithmetic. It enters a derivation's digest: raise it with any change that can move a coefficient, a
  * verdict or a finding.
  */
-export const COMPENSATION_ENGINE = "1";
+export const COMPENSATION_ENGINE = "2";
 
 /** Marks the excluded and names exclusions that fit no device. */
 function exclude(devices: readonly FittedDevice[], { exclude: exclusions }: DerivationInput): Finding[] {
@@ -54,18 +55,21 @@ function pool(
   const pooled = poolGain(trims, order, family);
   const n = trims.length;
   if (n < SAMPLE_MIN) findings.push(makeFinding("sample.too_small", { data: { n, needed: SAMPLE_MIN } }));
-  const outlier = findGainTcOutlier(trims);
-  if (outlier) {
-    const { result, trim } = sample[outlier.index] as FittedDevice;
-    const data = { gainTc: trim?.coefficients.gainTc, g: outlier.g, critical: outlier.critical };
-    result.findings.push(makeFinding("coefficient.outlier", { serial: result.serial, data }));
-  }
   if (pooled?.verdict === "outside") {
     const { limit, coverage, confidence, toleranceFactor, sd } = pooled;
     const data = { limit, coverage, confidence, halfWidth: (toleranceFactor ?? 0) * (sd ?? 0) };
     findings.push(makeFinding("pooled.limit_exceeded", { data }));
   }
   return pooled;
+}
+
+/** Compares the devices that were not excluded with each other. */
+function siblingFindings(devices: readonly FittedDevice[], { method, family }: DerivationInput): Finding[] {
+  const pooled = method === "pooled-gain";
+  const included = devices.filter(({ result }) => result.role !== "excluded" && !isBlocked(result));
+  const trimmed = included.filter(({ result, trim }) => trim && (!pooled || result.role === "sample"));
+  const results = (list: readonly FittedDevice[]) => list.map(({ result }) => result);
+  return checkSiblings(results(included), results(trimmed), pooled, family);
 }
 
 /** What the verification devices prove about a pooled gain; a failure counts whatever the method. */
@@ -123,6 +127,7 @@ export function derive(input: DerivationInput): DerivationResult {
     for (const finding of listRunFindings(family, run.purpose, run.readings))
       findings.push({ ...finding, data: { ...finding.data, run: run.id } });
 
+  findings.push(...listTwiceMeasured(records));
   const devices = records.map((record) => fitDevice(record, family, order));
   findings.push(...exclude(devices, input));
   const pooled = method === "pooled-gain" ? pool(devices, input, findings) : null;
@@ -130,6 +135,7 @@ export function derive(input: DerivationInput): DerivationResult {
     for (const device of devices)
       if (device.result.role !== "excluded" && !isBlocked(device.result))
         trimDevice(device, pooled ?? undefined, family, order);
+  findings.push(...siblingFindings(devices, input));
 
   const results = devices.map(({ result }) => result);
   const verification = results.filter(({ role }) => role === "verification").map(verdictOf);

@@ -4,11 +4,8 @@ import { findGainTrim, findThermometer, findZero, type GainTrim, type Order, tem
 import type { PlacedPoint } from "./judge";
 import { groupByTemperature } from "./points";
 import { distanceK } from "./predict";
-import type { DeviceRecord } from "./run-selection";
+import { type DeviceRecord, HOME_PURPOSES } from "./run-selection";
 import type { DevicePoint, DeviceResult, FamilyRules, Role } from "./types";
-
-/** Purposes a device's thermometer and zero may come from, in the order in which they count. */
-const HOME_PURPOSES = ["sample", "zero", "verification"] as const;
 
 /** A device as far as its own readings go, before the lot's gain. */
 export interface FittedDevice {

@@ -1,4 +1,5 @@
 import { AppError } from "@/lib/errors";
+import { rowsByDevice } from "./reading-groups";
 import type { DevicePoint, Purpose, Reading } from "./types";
 
 /** Temperatures closer than this count as one, K. */
@@ -23,30 +24,29 @@ export interface DeviceRows {
   hardwareId: string | null;
 }
 
-/** Sums the rows of a run by device and point, in one pass. Rows may come in any order. */
+/** Sums the rows of a run by device and point. Rows may come in any order. */
 export function gatherReadings(readings: readonly Reading[]): Map<string, DeviceRows> {
   const devices = new Map<string, DeviceRows>();
-  for (const reading of readings) {
-    let device = devices.get(reading.serial);
-    if (!device) {
-      device = { points: new Map(), hardwareId: null };
-      devices.set(reading.serial, device);
-    }
+  for (const [serial, byPoint] of rowsByDevice(readings)) {
+    const device: DeviceRows = { points: new Map(), hardwareId: null };
+    for (const [point, rows] of byPoint) device.points.set(point, sumRows(rows, device));
+    devices.set(serial, device);
+  }
+  return devices;
+}
+
+function sumRows(rows: readonly Reading[], device: DeviceRows): PointSums {
+  const sums: PointSums = {
+    row: rows[0]?.row ?? 0,
+    rows: rows.length,
+    chamberC: 0,
+    deviceTemp: 0,
+    unloaded: 0,
+    unloadedSignal: 0,
+    loaded: [],
+  };
+  for (const reading of rows) {
     device.hardwareId ??= reading.hardwareId ?? null;
-    let sums = device.points.get(reading.point);
-    if (!sums) {
-      sums = {
-        row: reading.row,
-        rows: 0,
-        chamberC: 0,
-        deviceTemp: 0,
-        unloaded: 0,
-        unloadedSignal: 0,
-        loaded: [],
-      };
-      device.points.set(reading.point, sums);
-    }
-    sums.rows++;
     sums.chamberC += reading.chamberC;
     sums.deviceTemp += reading.deviceTemp;
     if (reading.loadKg === 0) {
@@ -56,7 +56,7 @@ export function gatherReadings(readings: readonly Reading[]): Map<string, Device
       sums.loaded.push(reading.signalMvV, reading.loadKg);
     }
   }
-  return devices;
+  return sums;
 }
 
 /**

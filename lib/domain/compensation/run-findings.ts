@@ -1,8 +1,11 @@
+import { checkDrift, checkDwell, checkZeroReturn, type PointSummary, summarise } from "./drift-checks";
 import { maximumPermissibleError } from "./envelope";
 import { FindingGatherer } from "./finding-gatherer";
 import { makeFinding } from "./findings";
 import { findGrubbsStatistic, grubbsCritical } from "./grubbs";
+import { checkClock, checkDuplicates, checkPointOrder } from "./order-checks";
 import { groupByTemperature } from "./points";
+import { type DeviceRows, rowsByDevice } from "./reading-groups";
 import { spreadOf } from "./sample-statistics";
 import type { FamilyRules, Finding, Purpose, Reading } from "./types";
 
@@ -14,42 +17,6 @@ const SPAN_NEAR_K = 5;
 const REPEATS_MIN = 5;
 const OUTLIER_ALPHA = 0.01;
 
-type DeviceRows = Map<number, Reading[]>;
-
-interface PointSummary {
-  point: number;
-  chamberC: number;
-  deviceTemp: number;
-  loaded: boolean;
-}
-
-function byDevice(readings: readonly Reading[]): Map<string, DeviceRows> {
-  const devices = new Map<string, DeviceRows>();
-  for (const reading of readings) {
-    let points = devices.get(reading.serial);
-    if (!points) {
-      points = new Map();
-      devices.set(reading.serial, points);
-    }
-    const rows = points.get(reading.point);
-    if (rows) rows.push(reading);
-    else points.set(reading.point, [reading]);
-  }
-  return devices;
-}
-
-function summarise(point: number, rows: readonly Reading[]): PointSummary {
-  let chamberC = 0;
-  let deviceTemp = 0;
-  let loaded = false;
-  for (const row of rows) {
-    chamberC += row.chamberC / rows.length;
-    deviceTemp += row.deviceTemp / rows.length;
-    loaded ||= row.loadKg > 0;
-  }
-  return { point, chamberC, deviceTemp, loaded };
-}
-
 function checkRow(reading: Reading, family: FamilyRules, found: FindingGatherer): void {
   const { serial, point, soakMin, loadKg, row } = reading;
   const { minSoakMinutes, minLoadFraction, capacityKg } = family;
@@ -59,29 +26,6 @@ function checkRow(reading: Reading, family: FamilyRules, found: FindingGatherer)
   if (loadKg > 0 && loadKg < minLoadKg * (1 - 1e-12))
     found.add("load.below_threshold", serial, point, -loadKg, { loadKg, minLoadKg, row });
   if (loadKg > capacityKg) found.add("load.above_capacity", serial, point, loadKg, { loadKg, capacityKg, row });
-}
-
-/** Whether soak and time rise together as they stand; texts of one form and offset compare as their times do. */
-function isInOrder(rows: readonly Reading[]): boolean {
-  for (let i = 1; i < rows.length; i++) {
-    const [before, row] = [rows[i - 1] as Reading, rows[i] as Reading];
-    const offset = row.takenAt.endsWith("Z") ? "Z" : row.takenAt.slice(-6);
-    if (row.takenAt.length !== before.takenAt.length || !before.takenAt.endsWith(offset)) return false;
-    if (row.soakMin < before.soakMin || row.takenAt < before.takenAt) return false;
-  }
-  return true;
-}
-
-function checkClock(rows: readonly Reading[], found: FindingGatherer): void {
-  if (isInOrder(rows)) return;
-  const timed = rows.map((reading) => ({ reading, time: Date.parse(reading.takenAt) }));
-  timed.sort((a, b) => a.reading.soakMin - b.reading.soakMin || a.time - b.time);
-  let latest = Number.NEGATIVE_INFINITY;
-  for (const { reading, time } of timed) {
-    const { serial, point, row } = reading;
-    if (time < latest) found.add("clock.backwards", serial, point, latest - time, { row });
-    else latest = time;
-  }
 }
 
 function checkChamber(rows: readonly Reading[], found: FindingGatherer): void {
@@ -235,7 +179,7 @@ function usualPoints(devices: ReadonlyMap<string, DeviceRows>): number[] {
  */
 export function listRunFindings(family: FamilyRules, purpose: Purpose, readings: readonly Reading[]): Finding[] {
   const found = new FindingGatherer();
-  const devices = byDevice(readings);
+  const devices = rowsByDevice(readings);
   const usual = usualPoints(devices);
   const severalTemperatures = purpose === "sample" || purpose === "zero" || purpose === "verification";
   const loadedRun = purpose === "sample" || purpose === "span" || purpose === "verification";
@@ -245,15 +189,23 @@ export function listRunFindings(family: FamilyRules, purpose: Purpose, readings:
   for (const [serial, rowsByPoint] of devices) {
     const points: PointSummary[] = [];
     for (const [point, rows] of rowsByPoint) {
-      points.push(summarise(point, rows));
-      checkClock(rows, found);
+      const summary = summarise(point, rows);
+      points.push(summary);
+      checkClock(serial, summary, found);
+      checkDuplicates(serial, summary, found);
       checkChamber(rows, found);
       for (const repeats of repeatsOf(rows, family)) {
         checkScatter(repeats, family, found);
         if (repeats.values.length >= REPEATS_MIN) manyRepeats.push(repeats);
       }
     }
-    if (severalTemperatures) returned = checkTemperatures(serial, points, family, found) || returned;
+    checkPointOrder(serial, points, found);
+    if (severalTemperatures) {
+      returned = checkTemperatures(serial, points, family, found) || returned;
+      checkDrift(serial, points, found);
+      checkDwell(serial, points, found);
+      checkZeroReturn(serial, points, family, found);
+    }
     if (loadedRun) checkLoads(serial, points, purpose, family, found);
     for (const point of usual) if (!rowsByPoint.has(point)) found.add("point.missing", serial, point, 0, {});
   }

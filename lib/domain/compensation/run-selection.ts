@@ -3,6 +3,9 @@ import { makeFinding } from "./findings";
 import { type DeviceRows, gatherReadings, pointMeans } from "./points";
 import type { DevicePoint, Finding, Purpose, RunReadings } from "./types";
 
+/** Purposes a device's thermometer and zero may come from, in the order in which they count. */
+export const HOME_PURPOSES = ["sample", "zero", "verification"] as const;
+
 /** Everything the runs say about one device. */
 export interface DeviceRecord {
   serial: string;
@@ -75,4 +78,28 @@ export function collectDevices(runs: readonly RunReadings[], capacityKg: number)
     runOf.set(run.purpose, [...(runOf.get(run.purpose) ?? []), run]);
   }
   return [...records.values()].sort((a, b) => (a.serial < b.serial ? -1 : 1));
+}
+
+/** Names that a finding lists; the count is always whole. */
+const NAMED_MAX = 20;
+
+/**
+ * Devices with more than one run that could give thermometer and zero: the readings of the others are not used for them.
+ * A sample device in the verification run has a finding of its own, since that run is to prove something.
+ */
+export function listTwiceMeasured(records: readonly DeviceRecord[]): Finding[] {
+  const found = new Map<string, { used: Purpose; other: Purpose; serials: string[] }>();
+  for (const { serial, points } of records) {
+    const [used, ...others] = HOME_PURPOSES.filter((purpose) => points[purpose]);
+    for (const other of others) {
+      if (!used || (used === "sample" && other === "verification")) continue;
+      const known = found.get(`${used} ${other}`);
+      if (known) known.serials.push(serial);
+      else found.set(`${used} ${other}`, { used, other, serials: [serial] });
+    }
+  }
+  return [...found.values()].map(({ used, other, serials }) => {
+    const data = { used, other, devices: serials.length, serials: serials.slice(0, NAMED_MAX) };
+    return makeFinding("device.in_two_runs", { serial: serials.length === 1 ? serials[0] : null, data });
+  });
 }

@@ -1,5 +1,6 @@
 import type { Trx } from "@/db/executor";
 import { getRunPlan, listPlanDevices, listPlanEquipment, markPlanUsed, type RunPlanRow } from "@/db/queries/run-plans";
+import { listSetPointFindings } from "@/lib/domain/compensation/set-points";
 import type { Finding, Purpose, Reading } from "@/lib/domain/compensation/types";
 import { compareEquipment, compareWithPlan } from "@/lib/domain/run-plan/compare-run";
 import type { PlannedPoint } from "@/lib/domain/run-plan/run-plan";
@@ -32,7 +33,11 @@ export async function findUsedPlan(
     id: row.id,
     state: row.state,
     points: row.points,
-    compare: (readings, equipment) => [...compareWithPlan(plan, readings), ...compareEquipment(planned, equipment)],
+    compare: (readings, equipment) => [
+      ...compareWithPlan(plan, readings),
+      ...listSetPointFindings(readings, row.points),
+      ...compareEquipment(planned, equipment),
+    ],
   };
 }
 

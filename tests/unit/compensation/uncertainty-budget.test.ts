@@ -192,9 +192,13 @@ const TRIALS = 400;
 /** A standard deviation from 400 trials has itself a relative one of 1/√(2·400) = 3.5 %; three and a half of these. */
 const AGREES = 0.125;
 
-function expectClose(observed: number | null, predicted: number | null, what: string): void {
+/** With a pooled gain a trial takes ten times as long: fewer, and what 150 leave open. */
+const POOLED_TRIALS = 150;
+const POOLED_AGREES = 0.2;
+
+function expectClose(observed: number | null, predicted: number | null, what: string, agrees = AGREES): void {
   expect(predicted, what).toBeGreaterThan(0);
-  expect(Math.abs((observed ?? 0) / (predicted as number) - 1), what).toBeLessThan(AGREES);
+  expect(Math.abs((observed ?? 0) / (predicted as number) - 1), what).toBeLessThan(agrees);
 }
 
 /** Monte Carlo with a fixed seed: errors are drawn, the derivation is made anew, and its scatter is the prediction's. */
@@ -239,7 +243,8 @@ describe("propagation against derivations of readings with drawn errors", () => 
     const gainTc: number[] = [];
     const zeroTc: number[] = [];
     const intervals: number[] = [];
-    for (let i = 0; i < TRIALS; i++) {
+    const trials = method === "individual" ? TRIALS : POOLED_TRIALS;
+    for (let i = 0; i < trials; i++) {
       const { result } = trial(method, order, temperaturesC, cell, draw());
       const c = result.devices.find((one) => one.serial === cell.serial)?.coefficients;
       if (!c) throw new Error("no coefficients");
@@ -304,7 +309,7 @@ describe("propagation against derivations of readings with drawn errors", () => 
     const only = { ...alone, devices: alone.devices.filter((one) => one.serial === device.serial) };
     const ofDevice = uncertaintyBudget(input, only, certificates);
     const observed = observe("pooled-gain", 1, [10, 40], device, drawn, ofDevice.atC ?? 0);
-    expectClose(observed.intervals, lineOf(ofDevice, "chamber.uniformity").intervals, "intervals");
+    expectClose(observed.intervals, lineOf(ofDevice, "chamber.uniformity").intervals, "intervals", POOLED_AGREES);
     expect(ofDevice.chamber.pooled).toBe(lineOf(ofDevice, "chamber.uniformity").intervals);
     expect(budget.chamber.pooled).toBeGreaterThan(0);
   });
@@ -316,7 +321,7 @@ describe("propagation against derivations of readings with drawn errors", () => 
     if (!only.pooled) throw new Error("not pooled");
     const scattering = { ...only, pooled: { ...only.pooled, sd: 3e-6, n: 1e9 } };
     const line = lineOf(uncertaintyBudget(input, scattering, []), "sample.scatter");
-    const outputs = Array.from({ length: TRIALS }, () => {
+    const outputs = Array.from({ length: POOLED_TRIALS }, () => {
       const cell = { ...device, gainTc: device.gainTc + 3e-6 * normal() };
       const { result: drawn } = trial("pooled-gain", 1, [10, 40], cell, {});
       const c = drawn.devices.find((one) => one.serial === cell.serial)?.coefficients;
@@ -324,7 +329,7 @@ describe("propagation against derivations of readings with drawn errors", () => 
       const u = (42 - cell.tempOffset) / cell.tempSlope;
       return (correctedOutput(c, signalOf(cell, 42, 20), u, 20) / 2) * 3000;
     });
-    expectClose(standardDeviationOf(outputs), line.intervals, "intervals");
+    expectClose(standardDeviationOf(outputs), line.intervals, "intervals", POOLED_AGREES);
   });
 
   it.each(["individual", "pooled-gain"] as const)(
@@ -344,7 +349,7 @@ describe("propagation against derivations of readings with drawn errors", () => 
       const line = lineOf(uncertaintyBudget(input, { ...result, devices }, []), "device.thermometer");
       const draw = () => ({ deviceK: noise() });
       const observed = observe(method, 1, temperaturesC, cell, draw, 42, () => 0.1 * normal());
-      expectClose(observed.intervals, line.intervals, "intervals");
+      expectClose(observed.intervals, line.intervals, "intervals", method === "individual" ? AGREES : POOLED_AGREES);
       // The line that the device's thermometer gets takes the errors up: what is left is of second order.
       expect(observed.zeroTc).toBeLessThan(1e-9);
       expect(line.zeroTc).toBeLessThan(1e-12);

@@ -74,8 +74,8 @@ function endsOf(groundAt: (end: 0 | 1) => BudgetGround, range: readonly [number,
 /**
  * Uncertainty budget of a derivation: what repeatability, reference sensor, chamber uniformity, load, reader, zero
  * return and device thermometer do to gainTc, to zeroTc and to the output at capacity at the ends of the proven range.
- * Sensitivities are the exact first derivatives of the least squares of the contract's section 3; over the devices their
- * root mean square is taken, so that the budget speaks of a typical device. With a pooled gain, gainTc is the mean of the
+ * Sensitivities are the exact first derivatives of the least squares of the contract's section 3; their root mean square
+ * is taken over the sample and at most a thousand other devices, so that the budget speaks of a typical device. With a pooled gain, gainTc is the mean of the
  * sample, and what differs from device to device is in the sample's scatter, shown but not added a second time.
  * What can't be known is null with the reason, and named in `missing`; what does not enter by the algebra is 0.
  * Source: JCGM 100:2008 (GUM); the algebra is derived in the docstrings of `device-effects.ts`.
@@ -91,7 +91,7 @@ export function uncertaintyBudget(
   const range = result.provenRange;
   const ends: [number, number] = range ? [range[0] - family.referenceC, range[1] - family.referenceC] : [0, 0];
   const repeats = surveyRepeats(used, family.capacityKg);
-  const lot = lotEffects(result.devices, repeats.designs, { family, order, method, ends }, certificates);
+  const lot = lotEffects(result.devices, repeats.designOf, { family, order, method, ends }, certificates);
   const runIds = used.map((run) => run.id);
   const kind = (name: string) => certifiedKind(name, runIds, certificates);
   const certified = { sensor: kind("sensor"), chamber: kind("chamber"), load: kind("load"), reader: kind("reader") };

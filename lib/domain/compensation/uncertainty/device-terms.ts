@@ -4,7 +4,7 @@ import type { PlacedPoint } from "../judge";
 import { distanceK, gainAt } from "../predict";
 import type { Coefficients, DeviceResult, FamilyRules, Method } from "../types";
 import { fitWeights, weightsAt } from "./fit-weights";
-import type { Designs, PointDesign } from "./repeats";
+import type { FindDesign, PointDesign } from "./repeats";
 
 /** What a derivation asks of its budget. */
 export interface BudgetSetting {
@@ -85,15 +85,19 @@ function addOwnGain(device: DeviceResult, c: Coefficients, own: readonly PointTe
   });
 }
 
-/** Undefined for a device without coefficients, or whose readings are not among the designs. */
-export function deviceTerms(device: DeviceResult, designs: Designs, setting: BudgetSetting): DeviceTerms | undefined {
+/** Undefined for a device without coefficients, or whose readings are not known. */
+export function deviceTerms(
+  device: DeviceResult,
+  designOf: FindDesign,
+  setting: BudgetSetting,
+): DeviceTerms | undefined {
   const { coefficients } = device;
   if (!coefficients) return undefined;
   const placed = placeAll(device, coefficients, setting);
   const homePurpose = placed[0]?.point.purpose;
   const points: PointTerm[] = [];
   for (const place of placed) {
-    const design = designs.get(place.point.purpose)?.get(device.serial)?.get(place.point.point);
+    const design = designOf(place.point.purpose, device.serial, place.point.point);
     if (!design) return undefined;
     points.push(blankTerm(place, design, place.point.purpose === homePurpose));
   }

@@ -4,7 +4,7 @@ import type { DeviceResult } from "../types";
 import { chamberVariance, type RunCertificate } from "./certificates";
 import { type DeviceEffects, deviceEffects, type SquaredEffects } from "./device-effects";
 import { type AtEnds, type BudgetSetting, type DeviceTerms, deviceTerms } from "./device-terms";
-import type { Designs } from "./repeats";
+import type { FindDesign } from "./repeats";
 
 const KINDS = [
   "unloadedRow",
@@ -132,18 +132,27 @@ function takeMeans(lot: LotEffects, setting: BudgetSetting, chambers: { variance
   if (chambers.count > 0) lot.chamberVarianceK2 = chambers.variance / chambers.count;
 }
 
-/** Sums over the devices that got coefficients. */
+/** Sensitivities come from the way devices were read, which a lot shares: so many of them show it. */
+const SHOWN_MAX = 1000;
+
+/** The sample, which gives gainTc, whole; of the others at most a thousand, evenly over the lot. */
+function typicalDevices(devices: readonly DeviceResult[]): DeviceResult[] {
+  const step = Math.max(1, Math.ceil(devices.length / SHOWN_MAX));
+  return devices.filter((device, i) => device.role === "sample" || i % step === 0);
+}
+
+/** Sums over the sample and at most a thousand other devices that got coefficients. */
 export function lotEffects(
   devices: readonly DeviceResult[],
-  designs: Designs,
+  designOf: FindDesign,
   setting: BudgetSetting,
   certificates: readonly RunCertificate[],
 ): LotEffects {
   const lot = emptyEffects();
   const chamberOf = new Map(certificates.filter((one) => one.kind === "chamber").map((one) => [one.runId, one]));
   const chambers = { variance: 0, count: 0 };
-  for (const device of devices) {
-    const terms = deviceTerms(device, designs, setting);
+  for (const device of typicalDevices(devices)) {
+    const terms = deviceTerms(device, designOf, setting);
     if (!terms) continue;
     const chamber = chamberOf.get(terms.points[0]?.design.runId ?? "");
     const placeVariance = chamber ? chamberVariance(chamber, terms.position) : 0;

@@ -1,3 +1,4 @@
+import { rowsByDevice } from "../reading-groups";
 import type { Purpose, Reading, RunReadings } from "../types";
 
 /** A standard deviation pooled over many small sets of repeats. */
@@ -19,8 +20,8 @@ export interface PointDesign {
   runId: string;
 }
 
-/** Designs by purpose, serial and point: a device is in one run of a purpose only. */
-export type Designs = Map<Purpose, Map<string, Map<number, PointDesign>>>;
+/** How a point of a device was read in the run of a purpose; undefined where it was not. */
+export type FindDesign = (purpose: Purpose, serial: string, point: number) => PointDesign | undefined;
 
 export interface RepeatSurvey {
   /** Null where no unloaded reading was repeated. */
@@ -29,7 +30,7 @@ export interface RepeatSurvey {
   loaded: PooledDeviation | null;
   /** Mean load of the loaded rows, kg; null without one. */
   meanLoadKg: number | null;
-  designs: Designs;
+  designOf: FindDesign;
 }
 
 interface SquareSum {
@@ -48,7 +49,7 @@ function deviationOf({ squares, freedom }: SquareSum): PooledDeviation | null {
   return freedom > 0 ? { sd: Math.sqrt(squares / freedom), degreesOfFreedom: freedom } : null;
 }
 
-function designOf(rows: readonly Reading[], capacityKg: number, runId: string): PointDesign {
+function describeRows(rows: readonly Reading[], capacityKg: number, runId: string): PointDesign {
   const scales = rows.filter((row) => row.loadKg > 0).map((row) => capacityKg / row.loadKg);
   const count = scales.length;
   return {
@@ -59,21 +60,6 @@ function designOf(rows: readonly Reading[], capacityKg: number, runId: string): 
     position: rows.find((row) => row.position)?.position ?? null,
     runId,
   };
-}
-
-function byDevice(readings: readonly Reading[]): Map<string, Map<number, Reading[]>> {
-  const devices = new Map<string, Map<number, Reading[]>>();
-  for (const reading of readings) {
-    let points = devices.get(reading.serial);
-    if (!points) {
-      points = new Map();
-      devices.set(reading.serial, points);
-    }
-    const rows = points.get(reading.point);
-    if (rows) rows.push(reading);
-    else points.set(reading.point, [reading]);
-  }
-  return devices;
 }
 
 /** The signals of a point by load. */
@@ -107,18 +93,17 @@ function meanLoad(runs: readonly RunReadings[]): number | null {
 export function surveyRepeats(runs: readonly RunReadings[], capacityKg: number): RepeatSurvey {
   const unloaded: SquareSum = { squares: 0, freedom: 0 };
   const loaded: SquareSum = { squares: 0, freedom: 0 };
-  const designs: Designs = new Map();
-  for (const run of runs) {
-    const ofPurpose = designs.get(run.purpose) ?? new Map<string, Map<number, PointDesign>>();
-    designs.set(run.purpose, ofPurpose);
-    for (const [serial, points] of byDevice(run.readings)) {
-      const ofDevice = new Map<number, PointDesign>();
-      ofPurpose.set(serial, ofDevice);
-      for (const [point, rows] of points) {
-        ofDevice.set(point, designOf(rows, capacityKg, run.id));
-        for (const [load, signals] of byLoad(rows)) addRepeats(signals, load === 0 ? unloaded : loaded);
-      }
+  for (const run of runs)
+    for (const points of rowsByDevice(run.readings).values())
+      for (const rows of points.values())
+        if (rows.length > 1)
+          for (const [load, signals] of byLoad(rows)) addRepeats(signals, load === 0 ? unloaded : loaded);
+  const designOf: FindDesign = (purpose, serial, point) => {
+    for (const run of runs) {
+      const rows = run.purpose === purpose && rowsByDevice(run.readings).get(serial)?.get(point);
+      if (rows) return describeRows(rows, capacityKg, run.id);
     }
-  }
-  return { unloaded: deviationOf(unloaded), loaded: deviationOf(loaded), meanLoadKg: meanLoad(runs), designs };
+    return undefined;
+  };
+  return { unloaded: deviationOf(unloaded), loaded: deviationOf(loaded), meanLoadKg: meanLoad(runs), designOf };
 }
