@@ -29,6 +29,8 @@ export interface LintOptions {
   publishedVersions?: readonly LayoutDocument[];
   /** Length of the longest serial that the family has. */
   existingSerialLengthMax?: number;
+  /** The version whose draft the document is; naming another one in it is an error. */
+  draftVersion?: string;
 }
 
 export interface LintResult {
@@ -50,6 +52,7 @@ export function lintLayout(document: unknown, options: LintOptions = {}): LintRe
   if (!readable) return { errors, warnings: [], step: null };
   const { layout, paths } = readable;
   const versions = lintVersions(layout, options.publishedVersions ?? []);
+  errors.push(...lintDraftVersion(layout, options.draftVersion));
   const cells = layout.fields.flatMap((field, i) => listCells(field, paths.fields[i] as string));
   errors.push(...lintFamily(layout, options.family), ...lintCoefficients(layout, cells));
   errors.push(...lintKnownValues(layout, cells, options.family), ...versions.errors);
@@ -143,6 +146,12 @@ function lintSerial(layout: LayoutDocument, paths: readonly string[], options: L
   if (width === undefined || longest <= width) return [];
   const message = `“${field.name}” holds ${width} characters, the family has serials of ${longest}`;
   return [{ path: `${paths[at]}/length`, code: "field.serial_too_short", message }];
+}
+
+function lintDraftVersion({ version }: LayoutDocument, draftVersion: string | undefined): Problem[] {
+  if (draftVersion === undefined || version === draftVersion) return [];
+  const message = `This is the draft of ${draftVersion}; ${version} is another layout`;
+  return [{ path: "/version", code: "layout.version_differs", message }];
 }
 
 function lintVersions(layout: LayoutDocument, published: readonly LayoutDocument[]): LintResult {

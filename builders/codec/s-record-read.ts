@@ -24,39 +24,44 @@ interface Progress {
   /** Line of the end record; 0 before it. */
   end: number;
   start: number;
+  /** The last line counts all data records. */
+  counted: boolean;
 }
 
 /**
  * Reads S-records strictly. Takes LF and CRLF, both cases, a header as the first line, data of 16-, 24- and 32-bit
- * addresses side by side and in any order, counts of the data records before them, gaps (reported).
+ * addresses side by side and in any order, which may run on over the highest address of their type, counts of the data
+ * records before them, gaps (reported). A file ends with an end record or, as srec_cat writes it where no start address is
+ * known, with a count: both tell one that was cut short.
  * @returns `start` from the end record; null where that is 0, which says nothing.
  * @throws AppError with {line}: `srec.not_a_record`, `srec.not_hex`, `srec.wrong_length`, `srec.bad_checksum`,
  * `srec.unknown_type`, `srec.header_inside`, `srec.wrong_count` {declared, actual}, `srec.address_out_of_range`,
  * `srec.overlap` {first}, `srec.after_end`, `srec.no_end`.
  */
 export function readSRecords(text: string): HexFile {
-  const progress: Progress = { pieces: [], end: 0, start: 0 };
+  const progress: Progress = { pieces: [], end: 0, start: 0, counted: false };
   const lines = linesOf(text);
   lines.forEach((content, i) => {
     if (progress.end > 0 && content === "") return;
     if (progress.end > 0) throw refusal("srec.after_end", i + 1, "stands after the end record", { end: progress.end });
     takeRecord(parseRecord(content, i + 1), progress);
   });
-  if (progress.end === 0) throw refusal("srec.no_end", lines.length, "is the last one, and there is no end record");
+  if (progress.end === 0 && !progress.counted) {
+    throw refusal("srec.no_end", lines.length, "is the last one, and there is neither an end record nor a count");
+  }
   return { ...joinPieces(progress.pieces, "srec"), start: progress.start === 0 ? null : progress.start };
 }
 
 function takeRecord({ line, type, address, data }: SRecord, progress: Progress): void {
   const { pieces } = progress;
+  progress.counted = type === 5 || type === 6;
   if (type === 0) {
     if (line > 1) throw refusal("srec.header_inside", line, "is a header, which stands first or nowhere");
     return;
   }
   if (type <= 3) {
-    const end = address + data.length;
-    if (end > 2 ** (8 * (ADDRESS_BYTES[type] as number))) {
-      throw refusal("srec.address_out_of_range", line, "ends above the highest address of its type");
-    }
+    if (address + data.length > 2 ** 32)
+      throw refusal("srec.address_out_of_range", line, "ends above address FFFFFFFF");
     pieces.push({ line, address, bytes: data });
     return;
   }

@@ -21,6 +21,11 @@ const raiseVersion: Mender = (_problem, { layout, editor, options }) => {
 const takeFamily: Mender = (_problem, { editor, options: { family } }) =>
   family && { label: `Make it for ${family.code}`, edits: editor.set("", "family", JSON.stringify(family.code)) };
 
+const takeDraftVersion: Mender = (_problem, { editor, options: { draftVersion } }) =>
+  draftVersion === undefined
+    ? undefined
+    : { label: `Make it ${draftVersion}`, edits: editor.set("", "version", JSON.stringify(draftVersion)) };
+
 /** Only what the schema does not know is taken out; everything else of shape asks for a decision. */
 const dropUnknown: Mender = (problem, context) =>
   problem.message.endsWith("is not known here") ? fields.removeMember(problem, context) : undefined;
@@ -34,6 +39,7 @@ const MENDERS: Readonly<Record<string, Mender>> = {
   "layout.family_mismatch": takeFamily,
   "layout.step_too_small": raiseVersion,
   "layout.version_taken": raiseVersion,
+  "layout.version_differs": takeDraftVersion,
   "layout.coefficient_missing": fields.addCoefficient,
   "layout.serial_missing": fields.addSerial,
   "layout.checksum_missing": addChecksum,

@@ -60,7 +60,8 @@ describe("numbers as stored", () => {
     expect(store("i24", Number(text), "little").hex).toBe(reversed(hex.toLowerCase()));
   });
 
-  // Fixed point with n fraction bits is a scale of 2^−n.
+  // Fixed point with n fraction bits is a scale of 2^−n; formats are named by total bits, fraction bits and sign, as the
+  // customary short names count the sign in two ways.
   it.each([
     ["i24", 23, 0.5, "400000"],
     ["i24", 23, 0.1, "0ccccd"],
@@ -73,6 +74,9 @@ describe("numbers as stored", () => {
     ["i16", 15, -1, "8000"],
   ] as const)("%s with %s fraction bits of %s is %s", (type, bits, value, hex) => {
     expect(store(type, value, "big", { scale: 2 ** -bits }).hex).toBe(hex);
+    const named = { bits: Number(type.slice(1)), fraction: bits, signed: true };
+    expect(store("fixed", value, "big", named).hex).toBe(hex);
+    expect(store("fixed", value, "little", named).hex).toBe(reversed(hex));
   });
 
   it.each([
