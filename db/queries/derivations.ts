@@ -1,5 +1,6 @@
 import type { Db, Trx } from "@/db/executor";
 import type { StoredFinding } from "@/db/queries/runs";
+import type { EnvelopeSurvey } from "@/lib/domain/compensation/survey-envelope";
 import type { Finding, Method, PooledResult, VerificationResult } from "@/lib/domain/compensation/types";
 import type { UncertaintyBudget } from "@/lib/domain/compensation/uncertainty/budget-types";
 import { AppError } from "@/lib/errors";
@@ -35,6 +36,8 @@ export interface DerivationRow {
   verification: VerificationResult[];
   /** Null for imports, and for derivations of before there were budgets. */
   uncertainty: UncertaintyBudget | null;
+  /** Null where `uncertainty` is. */
+  envelope: EnvelopeSurvey | null;
   counts: DerivationCounts;
   progressDone: number;
   progressTotal: number;
@@ -70,6 +73,7 @@ function selectDerivation(db: Db) {
       "derivation.pooled",
       "derivation.verification",
       "derivation.uncertainty",
+      "derivation.envelope",
       "derivation.counts",
       "derivation.progressDone",
       "derivation.progressTotal",
@@ -218,6 +222,7 @@ export interface FinishedDerivation {
   pooled: PooledResult | null;
   verification: readonly VerificationResult[];
   uncertainty: UncertaintyBudget | null;
+  envelope: EnvelopeSurvey | null;
   counts: DerivationCounts;
   progressTotal: number;
   finishedAt: Date;
@@ -234,6 +239,7 @@ export async function finishDerivation(trx: Trx, id: string, result: FinishedDer
       pooled: result.pooled === null ? null : JSON.stringify(result.pooled),
       verification: JSON.stringify(result.verification),
       uncertainty: result.uncertainty === null ? null : JSON.stringify(result.uncertainty),
+      envelope: result.envelope === null ? null : JSON.stringify(result.envelope),
       counts: JSON.stringify(result.counts),
       progressDone: result.progressTotal,
       progressTotal: result.progressTotal,

@@ -1,5 +1,6 @@
 import { z } from "zod";
 import { code, id, pageOf, reason, sha256Hex, signed, timestamp } from "@/schemas/api/common";
+import { envelopeSurvey, uncertaintyBudget } from "@/schemas/api/derivation-statements";
 import { signedDecision } from "@/schemas/api/families";
 import { finding, purpose } from "@/schemas/api/runs";
 
@@ -54,14 +55,9 @@ export const pooled = z.object({
     .nullable()
     .optional()
     .meta({ description: "Share within the limit, were mean and sd the lot's own" }),
-  sampleNeeded: z
-    .number()
-    .int()
-    .nullable()
-    .optional()
-    .meta({
-      description: "Sample devices in total with which this sd would come out inside; null where no number does",
-    }),
+  sampleNeeded: z.number().int().nullable().optional().meta({
+    description: "Sample devices in total with which this sd would come out inside; null where no number does",
+  }),
 });
 
 export const verificationResult = z.object({
@@ -74,53 +70,6 @@ export const verificationResult = z.object({
 });
 
 const numberOrNull = z.number().nullable();
-
-const effects = z.object({
-  gainTc: numberOrNull.meta({ description: "1/K" }),
-  zeroTc: numberOrNull.meta({ description: "mV/V/K" }),
-  intervals: numberOrNull.meta({ description: "Error of the corrected output at capacity, in v" }),
-});
-
-export const uncertaintyBudget = z
-  .object({
-    formula: z.string().meta({ description: "How the lines are combined, in words and signs" }),
-    level: z.number().meta({ description: "Coverage probability of the expanded uncertainties" }),
-    atC: numberOrNull.meta({ description: "End of the proven range that the lines' intervals stand for, °C" }),
-    lines: z.array(
-      z.object({
-        source: z.string(),
-        words: z.string(),
-        distribution: z.enum(["normal", "rectangular"]),
-        value: numberOrNull.meta({ description: "As observed or certified; null where nothing is known" }),
-        unit: z.string(),
-        divisor: numberOrNull,
-        standard: numberOrNull.meta({ description: "Standard uncertainty, in the unit" }),
-        df: numberOrNull.meta({ description: "Degrees of freedom; null counts as infinitely many" }),
-        ...effects.shape,
-        within: z
-          .string()
-          .nullable()
-          .meta({ description: "Source whose gainTc contains this one's already, so that it isn't added again" }),
-      }),
-    ),
-    combined: effects.meta({ description: "Standard uncertainties" }),
-    degreesOfFreedom: effects.meta({ description: "Effective (Welch and Satterthwaite); null: infinitely many" }),
-    coverageFactor: effects,
-    expanded: effects,
-    ends: z
-      .array(
-        z.object({ temperatureC: z.number(), combined: z.number(), coverageFactor: z.number(), expanded: z.number() }),
-      )
-      .meta({ description: "Error at capacity, in v, at both ends of the proven range" }),
-    missing: z.array(z.string()).meta({ description: "Sources on which nothing is known, left out of the sums" }),
-    chamber: z.object({
-      individual: z.number().meta({ description: "What a chamber error leaves of an individual trim, v: nothing" }),
-      pooled: numberOrNull.meta({ description: "What the chamber's uniformity leaves of a pooled gain, v" }),
-      perKelvin: numberOrNull.meta({ description: "v of a pooled gain for each kelvin of error between the ends" }),
-      words: z.string(),
-    }),
-  })
-  .meta({ description: "Uncertainty of the coefficients and of the output, by source" });
 
 const counts = z.object({
   devices: z.number().int(),
@@ -145,6 +94,7 @@ const resultMembers = {
     .array(finding)
     .meta({ description: "At most 1,000, those of the lot first; all of them by /derivations/{id}/findings" }),
   verification: z.array(verificationResult),
+  envelope: envelopeSurvey.nullable(),
   uncertainty: uncertaintyBudget.nullable(),
 };
 

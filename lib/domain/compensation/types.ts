@@ -1,3 +1,4 @@
+import type { EnvelopeSurvey } from "./survey-envelope";
 import type { UncertaintyBudget } from "./uncertainty/budget-types";
 
 /**
@@ -249,4 +250,6 @@ export interface DerivationResult {
   engine: string;
   /** Filled in where the certificates of the runs' equipment are known. */
   uncertainty?: UncertaintyBudget;
+  /** Filled in with the budget. */
+  envelope?: EnvelopeSurvey;
 }

@@ -89,6 +89,7 @@ export async function importCoefficients(ctx: PersonCtx, input: ImportInput): Pr
       pooled: null,
       verification: [],
       uncertainty: null,
+      envelope: null,
       counts,
       progressTotal: count,
       finishedAt: at,

@@ -2,13 +2,14 @@ import type { Db } from "@/db/executor";
 import type { DerivationCounts } from "@/db/queries/derivations";
 import { listRunEquipment, listRunFindings } from "@/db/queries/runs";
 import { derive } from "@/lib/domain/compensation/derive";
+import { surveyEnvelope } from "@/lib/domain/compensation/survey-envelope";
 import type { DerivationInput, DerivationResult, DeviceResult, Finding } from "@/lib/domain/compensation/types";
 import { uncertaintyBudget } from "@/lib/domain/compensation/uncertainty/budget";
 
 /** Findings of a run that the arithmetic can't make anew: they rest on certificates and plans of the day of the upload. */
 const STANDING = ["equipment.", "chamber.off_set_point"];
 
-/** The result of a derivation with what its runs' equipment has to say, and its uncertainty budget. */
+/** The result of a derivation with what its runs' equipment has to say, its uncertainty budget, and its survey of the envelope. */
 export async function compute(db: Db, input: DerivationInput): Promise<DerivationResult> {
   const result = derive(input);
   const replaced = new Set(input.runs.map((run) => run.supersedes));
@@ -17,7 +18,8 @@ export async function compute(db: Db, input: DerivationInput): Promise<Derivatio
     .filter(({ code }) => STANDING.some((start) => code.startsWith(start)))
     .map(({ id, runId, ...finding }): Finding => ({ ...finding, data: { ...finding.data, run: runId } }));
   const uncertainty = uncertaintyBudget(input, result, await listRunEquipment(db, used));
-  return { ...result, findings: [...result.findings, ...standing], uncertainty };
+  const envelope = surveyEnvelope(result.devices, input.family, result.provenRange);
+  return { ...result, findings: [...result.findings, ...standing], uncertainty, envelope };
 }
 
 /** Everything of a device's result that is not kept in columns of its own or as findings. */

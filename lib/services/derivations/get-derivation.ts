@@ -59,6 +59,7 @@ export async function getDerivationView(ctx: Ctx, id: string): Promise<Derivatio
     },
     findings: await listDerivationFindings(ctx.db, id, { limit: SHOWN_MAX }),
     verification: row.verification,
+    envelope: row.envelope,
     uncertainty: row.uncertainty,
     runs: runs.map((run) => ({
       id: run.id,

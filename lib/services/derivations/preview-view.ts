@@ -41,6 +41,7 @@ export function previewOf(
     counts: { ...counts, states: counts.withValues > 0 ? { proposed: counts.withValues } : {} },
     findings: listAllFindings(result).slice(0, SHOWN_MAX).map(withId),
     verification: result.verification,
+    envelope: result.envelope ?? null,
     uncertainty: result.uncertainty ?? null,
     devices: result.devices.slice(0, SHOWN_MAX).map(viewOf),
   };

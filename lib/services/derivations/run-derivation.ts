@@ -87,12 +87,13 @@ async function store(
     if (locked.state !== "working") return;
     await insertSets(trx, id, sets, ctx.now());
     await insertDerivationFindings(trx, id, findings);
-    const { provenRange, pooled, verification, uncertainty = null } = result;
+    const { provenRange, pooled, verification, uncertainty = null, envelope = null } = result;
     await finishDerivation(trx, id, {
       provenRange,
       pooled,
       verification,
       uncertainty,
+      envelope,
       counts,
       progressTotal,
       finishedAt: ctx.now(),
