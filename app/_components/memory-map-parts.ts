@@ -1,7 +1,6 @@
 import { type MapPart, tintOfSource } from "@/app/_components/memory-map-rows";
-import { findChecksumWidth, rangesOf } from "@/builders/codec/checksum-algorithm";
-import { findFieldWidth } from "@/builders/codec/field-types";
-
+import { rangesOf } from "@/builders/codec/checksum-algorithm";
+import { type LayoutPaths, listExtents } from "@/builders/codec/memory-map";
 import type { LayoutDocument } from "@/schemas/documents/layout";
 
 export interface LayoutMemory {
@@ -12,22 +11,30 @@ export interface LayoutMemory {
   parts: MapPart[];
 }
 
-/** What the memory map draws of a layout; parts whose width is not known are left out. */
-export function memoryOfLayout(layout: LayoutDocument): LayoutMemory {
+/**
+ * What the memory map draws of a layout; parts whose width is not known are left out.
+ * @param paths JSON pointers of the parts, where not all of the document can be read.
+ */
+export function memoryOfLayout(layout: LayoutDocument, paths?: LayoutPaths): LayoutMemory {
   const { bytes, pageBytes } = layout.memory;
-  const fields = layout.fields.flatMap((field): MapPart[] => {
-    const length = findFieldWidth(field);
-    if (length === undefined || length <= 0) return [];
+  const tints = new Map<string, Pick<MapPart, "tint" | "isText" | "over">>();
+  layout.fields.forEach((field, i) => {
     const tint = tintOfSource("from" in field.value ? field.value.from : undefined);
-    return [{ name: field.name, at: field.at, length, tint, isText: field.type === "ascii" }];
+    tints.set(paths?.fields[i] ?? `/fields/${i}`, { tint, isText: field.type === "ascii" });
   });
-  const checksums = layout.checksums.flatMap(({ name, at, algorithm, over }): MapPart[] => {
-    const length = findChecksumWidth(algorithm);
-    return length === undefined ? [] : [{ name, at, length, tint: "checksum", over: rangesOf(over) }];
+  layout.checksums.forEach(({ over }, i) => {
+    tints.set(paths?.checksums[i] ?? `/checksums/${i}`, { tint: "checksum", over: rangesOf(over) });
   });
-  const kept = (layout.kept ?? []).map(
-    ([from, to]): MapPart => ({ name: "kept", at: from, length: to - from + 1, tint: "kept" }),
+  const parts = listExtents(layout, paths).map(
+    ({ kind, name, at, end, path }): MapPart => ({
+      name: kind === "field" || kind === "checksum" ? name : kind,
+      at,
+      length: end - at,
+      tint: "kept",
+      path,
+      ...tints.get(path),
+    }),
   );
-  const used = [...fields, ...checksums].reduce((sum, part) => sum + part.length, 0);
-  return { bytes, pageBytes, used, parts: [...fields, ...checksums, ...kept].filter((part) => part.length > 0) };
+  const used = parts.filter(({ tint }) => tint !== "kept").reduce((sum, part) => sum + part.length, 0);
+  return { bytes, pageBytes, used, parts };
 }

@@ -9,6 +9,8 @@ export interface MapPart {
   isText?: boolean;
   /** Inclusive ranges that a checksum covers. */
   over?: readonly (readonly [number, number])[];
+  /** JSON pointer of the part in the layout document. */
+  path?: string;
 }
 
 export interface MapRow {

@@ -42,8 +42,12 @@ export function lineFinder(text: string): LineFinder {
   };
 }
 
+/** Deeper nesting is nobody's document; without an end it would use up the stack. */
+const DEPTH_MAX = 200;
+
 class Scanner {
   private at = 0;
+  private depth = 0;
   constructor(
     private readonly text: string,
     private readonly spans: Map<string, JsonSpan>,
@@ -81,10 +85,13 @@ class Scanner {
     this.at += 1;
     this.space();
     if (this.skip(close)) return true;
+    this.depth += 1;
+    if (this.depth > DEPTH_MAX) return false;
     do {
       if (!part()) return false;
       this.space();
     } while (this.skip(","));
+    this.depth -= 1;
     return this.skip(close);
   }
 

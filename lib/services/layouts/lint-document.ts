@@ -1,4 +1,4 @@
-import { type LintOptions, type LintResult, lintLayout } from "@/builders/codec/lint";
+import { joinShape, type LintOptions, type LintResult, lintLayout } from "@/builders/codec/lint";
 import type { Db } from "@/db/executor";
 import { findSerialLengthMax } from "@/db/queries/devices";
 import { type FamilyRow, findNewestPublishedRevision, getFamily, listFamilyRevisions } from "@/db/queries/families";
@@ -8,7 +8,7 @@ import { assertRole, type Ctx, type PersonCtx } from "@/lib/services/context";
 import { type LayoutDocument, parseLayout } from "@/schemas/documents/layout";
 
 /** What a family's layouts are judged against: its newest published values (else the newest), its published layouts, its serials. */
-async function getLintBasis(db: Db, family: FamilyRow): Promise<Required<Omit<LintOptions, "family">> & LintOptions> {
+async function getLintBasis(db: Db, family: FamilyRow): Promise<Required<Omit<LintOptions, "family" | "draftVersion">> & LintOptions> {
   const revision = (await findNewestPublishedRevision(db, family.id)) ?? (await listFamilyRevisions(db, family.id))[0];
   return {
     family: revision && { ...revision.document, code: family.code },
@@ -29,11 +29,10 @@ export async function lintForFamily(
   db: Db,
   family: FamilyRow,
   document: unknown,
+  options: Pick<LintOptions, "draftVersion"> = {},
 ): Promise<LintResult & { layout?: LayoutDocument }> {
   const { layout, problems = [] } = parseLayout(document);
-  const { errors, warnings, step } = lintLayout(document, await getLintBasis(db, family));
-  const judged = new Set(problems.map((problem) => problem.path));
-  return { errors: [...problems, ...errors.filter((error) => !judged.has(error.path))], warnings, step, layout };
+  return { ...joinShape(problems, lintLayout(document, { ...(await getLintBasis(db, family)), ...options })), layout };
 }
 
 /** What a document's author should know before asking for publishing. @throws AppError `family.not_found` */

@@ -376,6 +376,15 @@ const cases: Case[] = [
     mend: "Make it 1.0.1",
   },
   {
+    what: "another version than the draft's",
+    document: smallLayout({ version: "1.1.0" }),
+    options: { draftVersion: "1.0.0" },
+    level: "errors",
+    path: "/version",
+    code: "layout.version_differs",
+    mend: "Make it 1.0.0",
+  },
+  {
     what: "another family",
     document: smallLayout({ family: "OTHER" }),
     options: { family },

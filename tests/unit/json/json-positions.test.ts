@@ -24,6 +24,11 @@ describe("jsonPositions", () => {
     expect(jsonPositions("").get("")).toEqual({ from: 0, end: 0 });
   });
 
+  it("does not use up the stack on a text without end", () => {
+    expect(jsonPositions("[".repeat(1_000_000)).size).toBeGreaterThan(100);
+    expect(jsonPositions('{"a":'.repeat(200_000)).has("/a/a")).toBe(true);
+  });
+
   it("finds every value of any JSON, with exactly its text", () => {
     fc.assert(
       fc.property(fc.jsonValue({ maxDepth: 3 }), fc.constantFrom(0, 2), (value, indent) => {

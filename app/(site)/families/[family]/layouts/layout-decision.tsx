@@ -28,8 +28,8 @@ export function LayoutDecision({ family, layout, basis, oneTimeCode }: LayoutDec
           {judged.previous === null ? (
             <p className="text-sm">Nothing lower is published: all of it is new. The memory map below shows it.</p>
           ) : null}
-          <Differences judged={judged} />
-          <LintList judged={judged} />
+          <Differences against={judged.previous} reasons={judged.reasons} step={judged.step} />
+          <LintList judged={judged} basis={basis} />
         </div>
       }
       onDecide={(decision) => decideLayoutAction({ code: family, version: layout.version }, decision)}

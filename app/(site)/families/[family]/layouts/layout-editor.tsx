@@ -1,22 +1,35 @@
 "use client";
 
 import { useRouter } from "next/navigation";
-import { type ReactNode, useDeferredValue, useEffect, useMemo, useState } from "react";
+import { type ReactNode, useCallback, useDeferredValue, useEffect, useMemo, useRef, useState } from "react";
 import { callApi, type ProblemDetails, problemOf } from "@/app/_components/api-client";
-import { Button, LinkButton } from "@/app/_components/button";
+import { Button } from "@/app/_components/button";
 import { Card } from "@/app/_components/card";
+import type { EditorHandle } from "@/app/_components/editor/editor-handle";
 import { MonacoJson } from "@/app/_components/editor/monaco-json";
 import { FormError } from "@/app/_components/form/form-error";
-import { stateOf } from "@/app/_components/state/state-of";
-import { TitleRow } from "@/app/_components/title-row";
 import { useToast } from "@/app/_components/toast";
+import type { Mend } from "@/builders/codec/mend/mend-context";
+import { nearestSpan } from "@/lib/domain/json-positions";
 import type { LayoutView } from "@/lib/services/layouts/get-layout";
 import type { LintBasis } from "@/lib/services/layouts/lint-document";
 import layoutSchema from "@/schemas/documents/layout.schema.json";
-import { type Judged, judgeText } from "./judge-text";
-import { Differences, LintList, MemoryCard, SampleCard } from "./judged-cards";
+import { DifferenceCard, type OtherVersion } from "./difference-card";
+import { ConflictDialog } from "./draft/conflict-dialog";
+import { dropCopy } from "./draft/local-copy";
+import { LocalCopyNotice } from "./draft/local-copy-notice";
+import { useDraft } from "./draft/use-draft";
+import { EditorTitle } from "./editor-title";
+import { EditorTools } from "./editor-tools";
+import { judgeText, partAt } from "./judge-text";
+import { LintList, MemoryCard } from "./judged-cards";
 import { moveLayoutAction } from "./layout-actions";
 import { LayoutEnd } from "./layout-end";
+import { encodeSample } from "./sample/encode-sample";
+import { SampleCard } from "./sample/sample-card";
+import { inventedSample, useGivenDevice } from "./sample/sample-choice";
+import { PartTables } from "./table/part-tables";
+import { TemplateChoice } from "./template-choice";
 
 export interface LayoutEditorProps {
   family: string;
@@ -26,6 +39,12 @@ export interface LayoutEditorProps {
   layout?: LayoutView;
   /** Text to begin with. */
   source: string;
+  /** Other versions of the family. */
+  others: readonly OtherVersion[];
+  /** Codes of the family's lots, for the sample. */
+  lots: readonly string[];
+  /** Lots with live packages or packages under way from this layout, for the warning before it is retired. */
+  uses?: Parameters<typeof LayoutEnd>[0]["uses"];
   /** The person is an engineer. */
   mayWrite: boolean;
   /** The person asked for publishing, so may take it back. */
@@ -34,145 +53,222 @@ export interface LayoutEditorProps {
   above?: ReactNode;
 }
 
-/** A layout's text beside what it means: memory map, findings, a sample device encoded and read back. */
-export function LayoutEditor({ family, basis, layout, source, mayWrite, asked, above }: LayoutEditorProps) {
+/** A layout's text beside what it means: memory map, findings, a sample device, and its fields as a table. */
+export function LayoutEditor(props: LayoutEditorProps) {
+  const { family, layout, source, others, lots, uses = [], mayWrite, asked, above } = props;
   const router = useRouter();
   const tell = useToast();
-  const [text, setText] = useState(source);
-  const [saved, setSaved] = useState({ text: layout ? source : "", draft: layout?.draft });
-  const [pending, setPending] = useState<"save" | "submit" | "take-back">();
-  const [problem, setProblem] = useState<ProblemDetails | null>(null);
-  const judged = useMemo(() => judgeText(text, basis), [text, basis]);
-  const shown = useDeferredValue(judged);
+  const handle = useRef<EditorHandle>(null);
   const state = layout?.state ?? "draft";
   const writable = mayWrite && state === "draft";
-  const dirty = writable && text !== saved.text;
-  useLeaveWarning(dirty);
+  const version = layout?.version;
+  const draft = useDraft({
+    family,
+    version,
+    draft: layout?.draft,
+    unfinished: layout?.unfinished ?? false,
+    writable,
+  });
+  const [text, setText] = useState(source);
+  const [pending, setPending] = useState<"add" | "submit" | "take-back">();
+  const [problem, setProblem] = useState<ProblemDetails | null>(null);
+  const [later, setLater] = useState(false);
+  const [copy, setCopy] = useState<string>();
 
-  const save = async () => {
-    setPending("save");
-    try {
-      const path = `/api/v1/families/${family}/layouts`;
-      const address = layout ? `${path}/${layout.version}?draft=${saved.draft}` : path;
-      const call = { method: layout ? "PUT" : "POST", body: text, contentType: "application/json" } as const;
-      const stored = await callApi<LayoutView>(address, call);
-      setSaved({ text, draft: stored.draft });
-      setProblem(null);
-      tell({ tone: "good", title: `Layout ${stored.version} saved as a draft` });
-      if (layout) router.refresh();
-      else router.replace(`/families/${family}/layouts/${stored.version}`);
-    } catch (error) {
-      setProblem(problemOf(error));
-    }
-    setPending(undefined);
+  // Judging follows the typing, it never holds a key back.
+  const judgedText = useDeferredValue(text);
+  const basis = useMemo(
+    () => (version === undefined ? props.basis : { ...props.basis, draftVersion: version }),
+    [props.basis, version],
+  );
+  const judged = useMemo(() => judgeText(judgedText, basis), [judgedText, basis]);
+  const [origin, setOrigin] = useState(inventedSample);
+  const given = useGivenDevice(origin);
+  const sample = judged.layout && encodeSample(judged.layout, basis.family, given);
+
+  const [pointed, setPointed] = useState<string>();
+  const [offset, setOffset] = useState<number>();
+  const atCursor = useMemo(() => (offset === undefined ? undefined : partAt(judged, offset)), [judged, offset]);
+  const shown = pointed ?? atCursor;
+
+  const change = useCallback(
+    (next: string) => {
+      setText(next);
+      draft.type(next);
+    },
+    [draft.type],
+  );
+  const ready = useCallback(
+    (opened: EditorHandle) => {
+      handle.current = opened;
+      draft.open(opened.text());
+    },
+    [draft.open],
+  );
+  const show = (path: string) => handle.current?.show(nearestSpan(judged.spans, path), { focus: true });
+  const mend = ({ edits }: Mend) => {
+    // A mend is made for one text; if that has moved on, the finding is judged anew in a moment.
+    if (handle.current?.text() === judged.text) handle.current.edit(edits);
+  };
+  const replace = (next: string, words: string) => {
+    handle.current?.replace(next);
+    tell({ tone: "info", title: words, text: "One undo brings the text before it back." });
   };
 
+  const add = async () => {
+    setPending("add");
+    try {
+      const call = { method: "POST", body: text, contentType: "application/json" } as const;
+      const stored = await callApi<LayoutView>(`/api/v1/families/${family}/layouts`, call);
+      dropCopy(family, undefined);
+      tell({ tone: "good", title: `Layout ${stored.version} is a draft now; it is saved as you type` });
+      router.replace(`/families/${family}/layouts/${stored.version}`);
+    } catch (error) {
+      setProblem(problemOf(error));
+      setPending(undefined);
+    }
+  };
   const move = async (name: "submit" | "take-back") => {
     if (!layout) return;
     setPending(name);
+    if (name === "submit" && !(await draft.save())) return setPending(undefined);
     const result = await moveLayoutAction({ code: family, version: layout.version }, name);
     setPending(undefined);
     setProblem(result.ok ? null : result.problem);
     if (!result.ok) return;
-    const title = name === "submit" ? "It waits for a second person now" : "It is a draft again";
-    tell({ tone: "good", title: `Layout ${layout.version}`, text: title });
+    const words = name === "submit" ? "It waits for a second person now" : "It is a draft again";
+    tell({ tone: "good", title: `Layout ${layout.version}`, text: words });
     router.refresh();
   };
+  useSaveKey(draft.save);
+  useLeaveWarning(writable && ["typing", "saving", "offline", "refused"].includes(draft.state.status));
 
+  const { conflict } = draft.state;
   const title = layout ? `Layout ${layout.version} of ${family}` : `New layout of ${family}`;
+  const encoded = sample && "rows" in sample ? sample : null;
   return (
     <>
-      <TitleRow
-        breadcrumb={[
-          { name: "Families", href: "/families" },
-          { name: family, href: `/families/${family}` },
-          { name: layout?.version ?? "New layout" },
-        ]}
+      <EditorTitle
+        family={family}
         title={title}
-        state={stateOf("layout", state)}
-        note={noteOf(layout, dirty, shown)}
-        actions={
-          <>
-            {writable ? (
-              <Button
-                look={dirty ? "primary" : "quiet"}
-                pending={pending === "save"}
-                disabled={!dirty || shown.errors.length > 0}
-                onClick={save}
-              >
-                {layout ? "Save draft" : "Add as a draft"}
-              </Button>
-            ) : null}
-            {writable && layout ? (
-              <Button
-                look={dirty ? "quiet" : "primary"}
-                pending={pending === "submit"}
-                disabled={dirty || shown.errors.length > 0}
-                onClick={() => move("submit")}
-              >
-                Ask for publishing
-              </Button>
-            ) : null}
-            {state === "in-review" && asked ? (
-              <Button pending={pending === "take-back"} onClick={() => move("take-back")}>
-                Take back
-              </Button>
-            ) : null}
-            {mayWrite && layout && state !== "draft" ? (
-              <LinkButton href={`/families/${family}/layouts/new?from=${layout.version}`}>
-                New layout from this
-              </LinkButton>
-            ) : null}
-          </>
-        }
+        layout={layout}
+        judged={judged}
+        draft={draft.state}
+        writable={writable}
+        mayWrite={mayWrite}
+        asked={asked}
+        pending={pending}
+        onAdd={add}
+        onMove={move}
       />
       <div className="flex flex-col gap-[18px]">
-        <FormError problem={problem} />
+        <FormError problem={problem ?? draft.state.problem} />
+        {conflict && later ? (
+          <p className="flex flex-wrap items-center gap-3 text-sm">
+            {conflict.by} saved another text of this draft; yours is not saved until you choose.
+            <Button look="outline" onClick={() => setLater(false)}>
+              Choose now
+            </Button>
+          </p>
+        ) : null}
         {above}
+        {writable ? (
+          <LocalCopyNotice
+            family={family}
+            version={version}
+            draft={layout?.draft}
+            source={source}
+            onTake={(copy) => replace(copy, "The text of this browser is taken")}
+            onCompare={setCopy}
+          />
+        ) : null}
+        {writable && !layout ? <TemplateChoice family={family} onChoose={replace} /> : null}
+        <EditorTools
+          writable={writable}
+          sheet={layout && `/families/${family}/layouts/${layout.version}/sheet`}
+          fileName={`${family}-layout-${version ?? "new"}.json`}
+          text={() => handle.current?.text() ?? text}
+          onUndo={() => handle.current?.undo()}
+          onRedo={() => handle.current?.redo()}
+          onImport={(imported, name) => replace(imported, `${name} is taken`)}
+        />
         <div className="grid items-start gap-[18px] lg:grid-cols-[minmax(0,5fr)_minmax(0,6fr)]">
           <Card>
             <MonacoJson
-              value={text}
-              onChange={setText}
+              initialText={source}
+              onChange={change}
+              onReady={ready}
+              onPoint={setOffset}
+              {...(pointed !== undefined && { shown: nearestSpan(judged.spans, pointed) })}
               schema={layoutSchema}
               readOnly={!writable}
-              markers={shown.markers}
+              markers={judged.markers}
               label={`${title}, JSON`}
               height="min(760px, 80vh)"
             />
             {writable ? (
               <p className="mt-2 text-xs text-ink-soft">
-                Ctrl+Space lists what fits, Ctrl+M lets Tab leave the editor. A draft with errors can't be saved yet.
+                Ctrl+Space lists what fits, Ctrl+M lets Tab leave the editor, Ctrl+S saves at once.
               </p>
             ) : null}
           </Card>
           <div className="flex min-w-0 flex-col gap-[18px]">
-            <MemoryCard judged={shown} />
-            <LintList judged={shown} />
-            <Differences judged={shown} />
-            <SampleCard judged={shown} />
+            <MemoryCard judged={judged} sample={encoded} shown={shown} onPoint={setPointed} onChoose={show} />
+            <LintList judged={judged} basis={basis} {...(writable && { onMend: mend })} onShow={show} />
+            <SampleCard
+              layout={judged.layout}
+              sample={sample}
+              origin={origin}
+              lots={lots}
+              shown={shown}
+              onOrigin={setOrigin}
+              onPoint={setPointed}
+            />
           </div>
         </div>
-        {layout ? <LayoutEnd family={family} layout={layout} mayWrite={mayWrite} /> : null}
+        <PartTables judged={judged} handle={handle} readOnly={!writable} shown={shown} onPoint={setPointed} />
+        <DifferenceCard family={family} judged={judged} others={others} />
+        {layout ? <LayoutEnd family={family} layout={layout} uses={uses} mayWrite={mayWrite} /> : null}
       </div>
+      {conflict && !later ? (
+        <ConflictDialog
+          conflict={conflict}
+          mine={text}
+          onLater={() => setLater(true)}
+          onChoose={(chosen, words) => {
+            // Theirs goes through the editor too, so that it stands in the history beside mine.
+            handle.current?.replace(conflict.theirs);
+            draft.settle(conflict);
+            replace(chosen, words);
+          }}
+        />
+      ) : null}
+      {copy !== undefined && layout ? (
+        <ConflictDialog
+          conflict={{ base: null, theirs: source, draft: layout.draft, by: layout.updatedBy, at: layout.updatedAt }}
+          mine={copy}
+          onLater={() => setCopy(undefined)}
+          onChoose={(chosen, words) => {
+            setCopy(undefined);
+            replace(chosen, words);
+          }}
+        />
+      ) : null}
     </>
   );
 }
 
-function noteOf(
-  layout: LayoutView | undefined,
-  dirty: boolean,
-  { step, previous, errors }: Pick<Judged, "step" | "previous" | "errors">,
-): ReactNode {
-  const first =
-    errors.length > 0 ? "the step is told once nothing is left to mend" : "nothing published to compare with";
-  const parts = [
-    dirty ? "not saved" : layout ? `draft ${layout.draft} by ${layout.updatedBy}` : "not saved yet",
-    step && previous ? `step ${step} against ${previous}` : first,
-  ];
-  return layout?.state === "published" || layout?.state === "retired"
-    ? `written by ${layout.makers.join(", ")}`
-    : parts.join(" · ");
+/** Ctrl+S saves at once instead of offering the page as a file. */
+function useSaveKey(save: () => void): void {
+  useEffect(() => {
+    const press = (event: KeyboardEvent) => {
+      if (!(event.ctrlKey || event.metaKey) || event.key !== "s") return;
+      event.preventDefault();
+      save();
+    };
+    window.addEventListener("keydown", press);
+    return () => window.removeEventListener("keydown", press);
+  }, [save]);
 }
 
 /** Asks before the browser leaves a page with text that is not saved. */

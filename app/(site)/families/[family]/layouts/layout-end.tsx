@@ -9,10 +9,20 @@ import { Digest } from "@/app/_components/digest";
 import { TimeText } from "@/app/_components/time-text";
 import { useToast } from "@/app/_components/toast";
 import type { LayoutView } from "@/lib/services/layouts/get-layout";
+import type { LayoutUse } from "@/lib/services/layouts/get-layout-use";
 import { moveLayoutAction, retireLayoutAction } from "./layout-actions";
+import { LayoutUses, RetireWarning } from "./layout-uses";
 
-/** Who wrote and who decided, the digest, and the two ways out: dropping a draft, retiring what is published. */
-export function LayoutEnd({ family, layout, mayWrite }: { family: string; layout: LayoutView; mayWrite: boolean }) {
+interface LayoutEndProps {
+  family: string;
+  layout: LayoutView;
+  /** Lots with packages from this layout. */
+  uses: readonly LayoutUse[];
+  mayWrite: boolean;
+}
+
+/** Who wrote and who decided, where it is used, and the two ways out: dropping a draft, retiring what is published. */
+export function LayoutEnd({ family, layout, uses, mayWrite }: LayoutEndProps) {
   const router = useRouter();
   const tell = useToast();
   const [open, setOpen] = useState(false);
@@ -52,6 +62,7 @@ export function LayoutEnd({ family, layout, mayWrite }: { family: string; layout
           </li>
         ) : null}
       </ul>
+      {drop ? null : <LayoutUses uses={uses} />}
       <div className="mt-2 flex flex-wrap items-center justify-between gap-3">
         <Digest value={layout.sha256} name="layout digest" />
         {mayWrite && (drop || layout.state === "published") ? (
@@ -65,11 +76,7 @@ export function LayoutEnd({ family, layout, mayWrite }: { family: string; layout
         onOpenChange={setOpen}
         danger
         title={drop ? `Drop draft ${layout.version}` : `Retire layout ${layout.version}`}
-        description={
-          drop
-            ? "The draft is gone for good; its version is free again."
-            : "No package can be built from it any more, and that can't be undone. What was built from it stays as it is."
-        }
+        description={drop ? "The draft is gone for good; its version is free again." : <RetireWarning uses={uses} />}
         confirm={drop ? "Drop it" : "Retire it"}
         reason={drop ? "none" : "optional"}
         onConfirm={({ reason }) => confirm(reason)}

@@ -2,8 +2,10 @@ import type { Metadata } from "next";
 import { holds, orNotFound, pageContext } from "@/lib/http/page-context";
 import { hasOneTimeCode } from "@/lib/services/account/has-one-time-code";
 import { isMaker } from "@/lib/services/families/publishing";
-import { getLayout } from "@/lib/services/layouts/get-layout";
+import { getLayout, listLayouts } from "@/lib/services/layouts/get-layout";
+import { getLayoutUse } from "@/lib/services/layouts/get-layout-use";
 import { getEditorBasis } from "@/lib/services/layouts/lint-document";
+import { listLots } from "@/lib/services/lots/get-lot";
 import { LayoutDecision } from "../layout-decision";
 import { LayoutEditor } from "../layout-editor";
 
@@ -25,6 +27,9 @@ export default async function LayoutPage({ params }: PageProps) {
   // A published layout is not judged against itself.
   const others = basis.publishedVersions.filter((one) => one.version !== layout.version);
   const judgedAgainst = { ...basis, publishedVersions: others };
+  const versions = (await listLayouts(ctx, { family: layout.family, limit: 1_000 })).items;
+  const lots = await listLots(ctx, { family: layout.family, limit: 200 });
+  const uses = await getLayoutUse(ctx, { ...key, limit: 1_000 });
   const decides = layout.state === "in-review" && holds(ctx, "reviewer") && !(await isMaker(ctx, "layout", layout.id));
   return (
     <LayoutEditor
@@ -33,6 +38,11 @@ export default async function LayoutPage({ params }: PageProps) {
       basis={judgedAgainst}
       layout={layout}
       source={layout.source}
+      others={versions
+        .filter((one) => one.version !== layout.version)
+        .map(({ version, state }) => ({ version, state }))}
+      lots={lots.items.map((lot) => lot.code)}
+      uses={uses.items}
       mayWrite={holds(ctx, "engineer")}
       asked={layout.submittedBy === ctx.actor.name}
       above={

@@ -1,6 +1,6 @@
 import { CRC_CATALOGUE } from "@/builders/codec/crc";
 import { SOURCE_NAMES } from "@/builders/codec/sources";
-import type { LayoutChecksum, LayoutField } from "@/schemas/documents/layout";
+import type { LayoutField } from "@/schemas/documents/layout";
 import layoutSchema from "@/schemas/documents/layout.schema.json";
 import { type CellKind, numberMember, rangesMember, textMember, truthMember, valueMember } from "./write-member";
 
@@ -70,7 +70,7 @@ const SPECIAL: Readonly<Record<string, readonly string[]>> = {
 };
 
 /** Columns of the field table: what every field has, and what these fields have besides. */
-export function fieldColumns(fields: readonly LayoutField[]): Column[] {
+export function fieldColumns(fields: readonly LayoutField[] = []): Column[] {
   const used = new Set(fields.flatMap((field) => [...Object.keys(field), ...typeMembers(field.type)]));
   const special = Object.keys(SPECIAL).filter((name) => used.has(name) && propertyOf("field", name).type !== undefined);
   return [
@@ -93,7 +93,7 @@ const typeMembers = (type: string) =>
   Object.entries(SPECIAL).flatMap(([name, types]) => (types.includes(type) ? [name] : []));
 
 /** Columns of the checksum table; a checksum by its parameters is changed in the text. */
-export function checksumColumns(_checksums: readonly LayoutChecksum[]): Column[] {
+export function checksumColumns(): Column[] {
   return [
     column("checksum", "name"),
     column("checksum", "at", { figures: true, kind: numberMember("at", true) }),

@@ -1,13 +1,16 @@
 "use client";
 
+import { memo, type RefObject } from "react";
 import { ToneShape } from "@/app/_components/state/state-mark";
 import type { Problem } from "@/lib/errors";
 import { CellInput } from "./cell-input";
 import type { Column } from "./columns";
-import type { GridPlace } from "./grid-keys";
-import type { Writing } from "./part-table";
+import type { RowDeeds, Writing } from "./part-table";
 
 interface PartRowProps {
+  row: number;
+  /** JSON pointer of the field or checksum. */
+  path: string;
   part: Record<string, unknown>;
   columns: readonly Column[];
   problems: readonly Problem[];
@@ -16,20 +19,16 @@ interface PartRowProps {
   writing: Writing | undefined;
   lit: boolean;
   readOnly: boolean;
-  onPoint: () => void;
-  onGo: (column: number) => void;
-  onBegin: (column: number) => void;
-  onCommit: (entry: string, then?: GridPlace) => void;
-  onCancel: () => void;
+  deeds: RefObject<RowDeeds | null>;
 }
 
 /** One field or checksum: its members as cells, the first one its name. */
-export function PartRow(props: PartRowProps) {
-  const { part, columns, problems, here, writing, lit, readOnly, onPoint, onGo, onBegin, onCommit, onCancel } = props;
+export const PartRow = memo(function PartRow(props: PartRowProps) {
+  const { row, path, part, columns, problems, here, writing, lit, readOnly, deeds } = props;
   return (
     <tr
       aria-selected={here !== undefined}
-      onMouseEnter={onPoint}
+      onMouseEnter={() => deeds.current?.point(path)}
       className={`border-b border-rule/55 last:border-0 ${lit ? "bg-tint" : ""}`}
     >
       {columns.map((column, index) => {
@@ -47,11 +46,11 @@ export function PartRow(props: PartRowProps) {
             aria-readonly={readOnly || text === null || undefined}
             title={text === null ? "Written in the text only" : undefined}
             onFocus={() => {
-              onGo(index);
-              onPoint();
+              deeds.current?.go({ row, column: index });
+              deeds.current?.point(path);
             }}
-            onClick={() => onGo(index)}
-            onDoubleClick={() => onBegin(index)}
+            onClick={() => deeds.current?.go({ row, column: index })}
+            onDoubleClick={() => deeds.current?.begin({ row, column: index })}
             className={`h-8 px-2 text-left font-mono font-normal focus-visible:-outline-offset-2 ${column.figures ? "text-right" : ""} ${
               index === 0 ? `sticky left-0 ${lit ? "bg-tint" : "bg-raised"}` : ""
             }`}
@@ -60,8 +59,8 @@ export function PartRow(props: PartRowProps) {
               <CellInput
                 column={column}
                 writing={writing}
-                onCommit={(entry, step = 0) => onCommit(entry, { row: writing.row, column: index + step })}
-                onCancel={onCancel}
+                onCommit={(entry, step = 0) => deeds.current?.commit(entry, { row, column: index + step })}
+                onCancel={() => deeds.current?.cancel()}
               />
             ) : (
               <>
@@ -74,7 +73,7 @@ export function PartRow(props: PartRowProps) {
       })}
     </tr>
   );
-}
+});
 
 /** What stands against the row, as a shape with its words. */
 function RowMark({ problems }: { problems: readonly Problem[] }) {

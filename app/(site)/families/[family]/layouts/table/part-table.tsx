@@ -1,6 +1,6 @@
 "use client";
 
-import { type KeyboardEvent, useEffect, useRef, useState } from "react";
+import { type KeyboardEvent, useEffect, useMemo, useRef, useState } from "react";
 import { Button } from "@/app/_components/button";
 import type { Problem } from "@/lib/errors";
 import type { Column } from "./columns";
@@ -27,6 +27,27 @@ export interface PartTableProps {
   onMove: (from: number, to: number) => void;
   onUndo: () => void;
   onRedo: () => void;
+}
+
+/** What a row's cells ask of the table. */
+export interface RowDeeds {
+  point: (path: string) => void;
+  go: (place: GridPlace) => void;
+  begin: (place: GridPlace) => void;
+  commit: (entry: string, then?: GridPlace) => void;
+  cancel: () => void;
+}
+
+const none: readonly Problem[] = [];
+
+/** Findings by the row that they are about. */
+function rowsOf(problems: readonly Problem[], list: string): Map<number, Problem[]> {
+  const rows = new Map<number, Problem[]>();
+  for (const problem of problems) {
+    const row = problem.path.startsWith(`${list}/`) ? Number(problem.path.split("/")[2]) : Number.NaN;
+    if (Number.isInteger(row)) rows.set(row, [...(rows.get(row) ?? []), problem]);
+  }
+  return rows;
 }
 
 /** A cell that is being written in. */
@@ -84,6 +105,11 @@ export function PartTable(props: PartTableProps) {
     onMove(here.row, to);
     go({ ...here, row: to });
   };
+  const clear = () => {
+    const column = columns[here.column];
+    const refusal = column && onWrite(here.row, column, "");
+    if (refusal) setWriting({ ...here, entry: "", refusal });
+  };
   const add = () => go({ row: onAdd(parts.length === 0 ? -1 : here.row), column: 0 });
   const remove = () => {
     onRemove(here.row);
@@ -94,7 +120,7 @@ export function PartTable(props: PartTableProps) {
     if (deed.do === "go") return go(deed.to);
     if (readOnly) return;
     if (deed.do === "write") return begin(here, deed.entry);
-    if (deed.do === "clear") return void onWrite(here.row, columns[here.column] as Column, "");
+    if (deed.do === "clear") return clear();
     if (deed.do === "move") return moveRow(deed.by);
     if (deed.do === "add") return add();
     if (deed.do === "remove") return remove();
@@ -107,11 +133,17 @@ export function PartTable(props: PartTableProps) {
     act(deed);
   };
 
+  const byRow = useMemo(() => rowsOf(problems, list), [problems, list]);
+  // Rows are drawn again when what they show changes, not when the deeds behind them are made anew.
+  const deeds = useRef<RowDeeds>(null);
+  deeds.current = { point: onPoint, go: setAt, begin, commit, cancel };
+
   return (
     <div>
       <div className="overflow-x-auto" tabIndex={-1}>
         <table
           ref={grid}
+          // biome-ignore lint/a11y/noNoninteractiveElementToInteractiveRole: a grid of cells is a table that can be worked in
           role="grid"
           aria-label={`${noun[0]?.toUpperCase()}${noun.slice(1)}s`}
           aria-readonly={readOnly}
@@ -134,27 +166,22 @@ export function PartTable(props: PartTableProps) {
             </tr>
           </thead>
           <tbody>
-            {parts.map((part, row) => {
-              const path = `${list}/${row}`;
-              return (
-                <PartRow
-                  // biome-ignore lint/suspicious/noArrayIndexKey: two fields may have one name while they are written
-                  key={row}
-                  part={part}
-                  columns={columns}
-                  problems={problems.filter((one) => one.path === path || one.path.startsWith(`${path}/`))}
-                  here={here.row === row ? here.column : undefined}
-                  writing={writing?.row === row ? writing : undefined}
-                  lit={shown === path}
-                  readOnly={readOnly}
-                  onPoint={() => onPoint(path)}
-                  onGo={(column) => setAt({ row, column })}
-                  onBegin={(column) => begin({ row, column })}
-                  onCommit={commit}
-                  onCancel={cancel}
-                />
-              );
-            })}
+            {parts.map((part, row) => (
+              <PartRow
+                // biome-ignore lint/suspicious/noArrayIndexKey: two fields may have one name while they are written
+                key={row}
+                row={row}
+                path={`${list}/${row}`}
+                part={part}
+                columns={columns}
+                problems={byRow.get(row) ?? none}
+                here={here.row === row ? here.column : undefined}
+                writing={writing?.row === row ? writing : undefined}
+                lit={shown === `${list}/${row}`}
+                readOnly={readOnly}
+                deeds={deeds}
+              />
+            ))}
           </tbody>
         </table>
       </div>

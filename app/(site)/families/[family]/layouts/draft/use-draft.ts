@@ -1,0 +1,137 @@
+"use client";
+
+import { useCallback, useEffect, useRef, useState } from "react";
+import { callApi, type ProblemDetails, problemOf } from "@/app/_components/api-client";
+import { dropCopy, writeCopy } from "./local-copy";
+
+/** Somebody else's text, saved over the same draft. */
+export interface DraftConflict {
+  /** What both began with; null where that is not known any more. */
+  base: string | null;
+  theirs: string;
+  draft: number;
+  by: string;
+  at: string;
+}
+
+export interface DraftState {
+  /** `kept`: not stored on the server yet, but in this browser. */
+  status: "saved" | "typing" | "saving" | "offline" | "kept" | "refused";
+  /** Milliseconds of this browser's clock; undefined until something was saved here. */
+  savedAt: number | undefined;
+  draft: number | undefined;
+  unfinished: boolean;
+  problem: ProblemDetails | null;
+  conflict: DraftConflict | null;
+}
+
+interface Kept {
+  draft: number;
+  unfinished: boolean;
+}
+
+interface DraftOptions {
+  family: string;
+  /** Absent for a layout that is not stored yet. */
+  version: string | undefined;
+  draft: number | undefined;
+  unfinished: boolean;
+  writable: boolean;
+}
+
+const IDLE_MS = 1_200;
+const RETRY_MS = 5_000;
+
+/** Keeps a draft's text on the server while it is typed, and in this browser until it is there. */
+export function useDraft({ family, version, draft, unfinished, writable }: DraftOptions) {
+  const begin = { savedAt: undefined, draft, unfinished, problem: null, conflict: null };
+  const [state, setState] = useState<DraftState>({ status: "saved", ...begin });
+  // What timers and late answers need is held outside of rendering.
+  const held = useRef({ text: "", saved: "", draft, busy: undefined as Promise<boolean> | undefined, blocked: false });
+  const timer = useRef<ReturnType<typeof setTimeout>>(undefined);
+  const change = useCallback((part: Partial<DraftState>) => setState((before) => ({ ...before, ...part })), []);
+
+  /** Saves what stands. @returns whether the server has it now. */
+  const save = useCallback(async (): Promise<boolean> => {
+    const now = held.current;
+    clearTimeout(timer.current);
+    if (now.busy) await now.busy;
+    if (!version || now.blocked) return false;
+    if (now.text === now.saved) return true;
+    now.busy = send();
+    const done = await now.busy;
+    now.busy = undefined;
+    return done;
+
+    async function send(): Promise<boolean> {
+      const sent = now.text;
+      change({ status: "saving" });
+      try {
+        const path = `/api/v1/families/${family}/layouts/${version}/text?draft=${now.draft}`;
+        const kept = await callApi<Kept>(path, { method: "PUT", body: sent, contentType: "text/plain" });
+        const base = { draft: kept.draft, unfinished: kept.unfinished, problem: null, savedAt: Date.now() };
+        Object.assign(now, { saved: sent, draft: kept.draft });
+        const typing = now.text !== sent;
+        if (!typing) dropCopy(family, version);
+        else timer.current = setTimeout(() => void save(), IDLE_MS);
+        change({ ...base, status: typing ? "typing" : "saved" });
+        return !typing;
+      } catch (error) {
+        return fail(problemOf(error));
+      }
+    }
+
+    function fail(problem: ProblemDetails): false {
+      if (problem.code === "layout.draft_changed") {
+        now.blocked = true;
+        change({ status: "refused", conflict: conflictOf(problem, now.saved) });
+      } else if (problem.status === 0 || problem.status >= 500) {
+        timer.current = setTimeout(() => void save(), RETRY_MS);
+        change({ status: "offline" });
+      } else {
+        now.blocked = problem.code !== "auth.required";
+        change({ status: "refused", problem });
+      }
+      return false;
+    }
+  }, [family, version, change]);
+
+  /** The editor's text changed. */
+  const type = useCallback(
+    (text: string) => {
+      const now = held.current;
+      now.text = text;
+      if (!writable) return;
+      if (text === now.saved) return change({ status: "saved" });
+      const copied = writeCopy(family, version, {
+        text,
+        at: new Date().toISOString(),
+        ...(now.draft && { draft: now.draft }),
+      });
+      change({ status: version || !copied ? "typing" : "kept" });
+      clearTimeout(timer.current);
+      if (version && !now.blocked) timer.current = setTimeout(() => void save(), IDLE_MS);
+    },
+    [family, version, writable, save, change],
+  );
+
+  /** The editor is there with its text: nothing of it is new. */
+  const open = useCallback((text: string) => Object.assign(held.current, { text, saved: text }), []);
+
+  /** Goes on from somebody else's draft: what is typed from now on is saved over it. */
+  const settle = useCallback(
+    (conflict: DraftConflict) => {
+      Object.assign(held.current, { saved: conflict.theirs, draft: conflict.draft, blocked: false });
+      change({ conflict: null, problem: null, draft: conflict.draft, status: "typing" });
+    },
+    [change],
+  );
+
+  useEffect(() => () => clearTimeout(timer.current), []);
+  return { state, type, open, save, settle };
+}
+
+function conflictOf(problem: ProblemDetails, base: string): DraftConflict {
+  const { source, now, updatedBy, updatedAt } = problem as ProblemDetails & Record<string, unknown>;
+  return { base, theirs: String(source), draft: Number(now), by: String(updatedBy), at: String(updatedAt) };
+}

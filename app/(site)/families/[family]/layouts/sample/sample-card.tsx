@@ -1,0 +1,104 @@
+"use client";
+
+import { Card } from "@/app/_components/card";
+import { formatFigure } from "@/lib/domain/format/figure";
+import { toEngineering } from "@/lib/domain/format/quantity";
+import type { CoefficientName, LayoutDocument } from "@/schemas/documents/layout";
+import type { Sample, SampleRow } from "./encode-sample";
+import { SampleChoice, type SampleOrigin } from "./sample-choice";
+
+interface SampleCardProps {
+  layout: LayoutDocument | null;
+  sample: Sample | { refusal: string } | null;
+  origin: SampleOrigin;
+  lots: readonly string[];
+  shown: string | undefined;
+  onOrigin: (origin: SampleOrigin) => void;
+  onPoint: (path: string | undefined) => void;
+}
+
+/** A device's values, as stored and as the firmware reads them back. */
+export function SampleCard({ layout, sample, origin, lots, shown, onOrigin, onPoint }: SampleCardProps) {
+  return (
+    <Card title="Sample, encoded and read back" note={noteOf(origin)}>
+      <SampleChoice origin={origin} lots={lots} names={layout ? storedCoefficients(layout) : []} onChange={onOrigin} />
+      {sample && "rows" in sample ? (
+        <div className="overflow-x-auto">
+          <table className="w-full min-w-[520px] text-sm whitespace-nowrap" onMouseLeave={() => onPoint(undefined)}>
+            <thead>
+              <tr className="border-b border-rule text-left align-bottom">
+                <th scope="col" className="py-1.5 pr-3">
+                  Field
+                </th>
+                <th scope="col" className="px-2 text-right">
+                  value
+                </th>
+                <th scope="col" className="pr-3">
+                  unit
+                </th>
+                <th scope="col" className="px-2 text-right">
+                  stored
+                </th>
+                <th scope="col" className="px-2 text-right">
+                  read back
+                </th>
+                <th scope="col" className="pl-2 text-right">
+                  rounding
+                  <span className="block font-normal text-ink-soft">steps</span>
+                </th>
+              </tr>
+            </thead>
+            <tbody>
+              {sample.rows.map((row) => (
+                <ValueRow key={row.name} row={row} lit={row.path === shown} onPoint={onPoint} />
+              ))}
+            </tbody>
+          </table>
+        </div>
+      ) : (
+        <p className="text-sm text-ink-soft" role="status">
+          {sample ? `It can't be encoded: ${sample.refusal}` : "Shown as soon as the text has fields and checksums."}
+        </p>
+      )}
+    </Card>
+  );
+}
+
+function ValueRow({ row, lit, onPoint }: { row: SampleRow; lit: boolean; onPoint: (path: string) => void }) {
+  return (
+    <tr
+      onMouseEnter={() => onPoint(row.path)}
+      className={`border-b border-rule/55 last:border-0 ${lit ? "bg-tint" : ""}`}
+    >
+      <th scope="row" className="py-1.5 pr-3 text-left font-mono font-normal">
+        {row.name}
+      </th>
+      <td className="max-w-[170px] truncate px-2 text-right font-mono">{shownValue(row.value, row.unit)}</td>
+      <td className="pr-3 text-ink-soft">{toEngineering(0, row.unit).unit}</td>
+      <td className="max-w-[150px] truncate px-2 text-right font-mono" title={row.raw.toUpperCase()}>
+        {row.stored === null ? row.raw.toUpperCase() : formatFigure(row.stored, { digits: 0 })}
+      </td>
+      <td className="max-w-[170px] truncate px-2 text-right font-mono">{shownValue(row.readBack, row.unit)}</td>
+      <td className="pl-2 text-right font-mono">{formatFigure(row.roundingSteps, { digits: 2 })}</td>
+    </tr>
+  );
+}
+
+function noteOf({ kind }: SampleOrigin): string {
+  if (kind === "invented") return "its values are typical, not measured";
+  return kind === "typed" ? "what is left out is invented" : "the newest coefficients of a device";
+}
+
+/** Nine digits tell a stored value from its neighbours, as the coarsest have 32 bits. */
+function shownValue(value: SampleRow["value"], unit: string | null): string {
+  if (typeof value !== "number") return value ?? "—";
+  const shown = toEngineering(value, unit).value;
+  return String(Number(shown.toPrecision(9))).replace("-", "−");
+}
+
+function storedCoefficients(layout: LayoutDocument): CoefficientName[] {
+  const names = layout.fields.flatMap(({ value }) =>
+    "from" in value && value.from.startsWith("coefficients.") ? [value.from.slice(13) as CoefficientName] : [],
+  );
+  return [...new Set(names)];
+}
