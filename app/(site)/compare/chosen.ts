@@ -16,11 +16,13 @@ export interface Chosen {
   toLayout?: string;
 }
 
-export type CompareKind = "packages" | "images" | "layouts";
+export type CompareKind = "packages" | "images" | "file" | "layouts";
+
+const KINDS: readonly string[] = ["packages", "images", "file", "layouts"] satisfies CompareKind[];
 
 /** What is compared: as asked for, else by what is named. */
 export function kindOf({ kind, family, toSerial }: Chosen): CompareKind {
-  if (kind === "packages" || kind === "images" || kind === "layouts") return kind;
+  if (kind !== undefined && KINDS.includes(kind)) return kind as CompareKind;
   if (family !== undefined) return "layouts";
   return toSerial === undefined ? "packages" : "images";
 }

@@ -7,9 +7,10 @@ import { Notice } from "@/app/_components/notice";
 import { StateMark } from "@/app/_components/state/state-mark";
 import { formatFieldChange } from "@/lib/domain/format/field-value";
 import { formatNumberOf } from "@/lib/domain/format/figure";
-import type { PersonCtx } from "@/lib/services/context";
 import { compareDeviceImages } from "@/lib/services/compare/compare-device-images";
+import type { PersonCtx } from "@/lib/services/context";
 import type { ImageView } from "@/schemas/api/images";
+import { changeWords } from "./change-words";
 import { type Chosen, packageIdOf, serialOf } from "./chosen";
 import { comparedOrWhy } from "./compare-packages";
 import { PackageChoice } from "./package-choice";
@@ -39,12 +40,6 @@ export async function CompareImages({ ctx, chosen }: { ctx: PersonCtx; chosen: C
     </>
   );
 }
-
-const changeWords = {
-  same: { tone: "good", word: "the same bytes" },
-  "version-only": { tone: "idle", word: "version numbers only" },
-  values: { tone: "caution", word: "other values" },
-} as const;
 
 async function Result({
   ctx,

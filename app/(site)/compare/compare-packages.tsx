@@ -1,7 +1,6 @@
 import Link from "next/link";
 import { Card } from "@/app/_components/card";
-import { changedParameters, comparedFields } from "@/app/_components/difference/compared-fields";
-import { ComparisonFacts } from "@/app/_components/difference/comparison-facts";
+import { ComparisonSummary } from "@/app/_components/difference/comparison-summary";
 import { ComparisonView } from "@/app/_components/difference/comparison-view";
 import { Notice } from "@/app/_components/notice";
 import { SealMark } from "@/app/_components/seal-mark";
@@ -10,8 +9,8 @@ import { stateOf } from "@/app/_components/state/state-of";
 import { AppError } from "@/lib/errors";
 import type { PersonCtx } from "@/lib/services/context";
 import { getLayout } from "@/lib/services/layouts/get-layout";
-import { comparePackages } from "@/lib/services/compare/compare-packages";
-import type { Comparison } from "@/schemas/api/compare";
+import { getPackageView } from "@/lib/services/packages/get-package";
+import type { PackageView } from "@/schemas/api/packages";
 import type { LayoutDocument } from "@/schemas/documents/layout";
 import { type Chosen, packageIdOf, serialOf } from "./chosen";
 import { PackageChoice } from "./package-choice";
@@ -40,42 +39,40 @@ export async function comparedOrWhy<T>(compare: Promise<T>): Promise<T | string>
 
 async function Result({ ctx, from, to, serial }: { ctx: PersonCtx; from: string; to: string; serial?: string }) {
   if (from === to) return <Notice title="The same package twice">Choose two different ones.</Notice>;
-  const found = await comparedOrWhy(comparePackages(ctx, { from, to, limit: 1 }));
-  if (typeof found === "string") return <Notice title="These can't be compared">{found}</Notice>;
-  const layout = await getLayout(ctx, { family: found.to.family, version: found.to.layout });
-  const document = layout.document as unknown as LayoutDocument;
-  const { fields, counts } = found;
+  const sides = await comparedOrWhy(Promise.all([getPackageView(ctx, from), getPackageView(ctx, to)]));
+  if (typeof sides === "string") return <Notice title="These can't be compared">{sides}</Notice>;
+  const [older, newer] = sides;
+  const unbuilt = sides.find((side) => side.digest === null);
+  if (unbuilt) {
+    return (
+      <Notice title="These can't be compared">{`Package ${unbuilt.version} of ${unbuilt.lot} was not built.`}</Notice>
+    );
+  }
+  const layout = (await getLayout(ctx, { family: newer.family, version: newer.layout }))
+    .document as unknown as LayoutDocument;
   return (
     <>
       <Card>
         <div className="mb-4 grid gap-4 md:grid-cols-2">
-          <Side name="Older" side={found.from} />
-          <Side name="Newer" side={found.to} />
+          <Side name="Older" side={older} />
+          <Side name="Newer" side={newer} />
         </div>
-        <ComparisonFacts counts={counts} fields={changedParameters(fields, document)} />
-        {found.from.family === found.to.family && found.from.layout !== found.to.layout ? (
+        <ComparisonSummary key={`${from}${to}`} from={from} to={to} layout={layout} />
+        {older.family === newer.family && older.layout !== newer.layout ? (
           <p className="mt-3 text-sm">
             The layouts differ too:{" "}
-            <Link
-              href={`/compare?family=${found.to.family}&fromLayout=${found.from.layout}&toLayout=${found.to.layout}`}
-            >
-              {found.from.layout} → {found.to.layout}
+            <Link href={`/compare?family=${newer.family}&fromLayout=${older.layout}&toLayout=${newer.layout}`}>
+              {older.layout} → {newer.layout}
             </Link>
           </p>
         ) : null}
       </Card>
-      <ComparisonView
-        key={`${from}${to}`}
-        from={from}
-        to={to}
-        fields={comparedFields(fields, document)}
-        serial={serial}
-      />
+      <ComparisonView key={`${from}${to}`} from={from} to={to} layout={layout} serial={serial} />
     </>
   );
 }
 
-function Side({ name, side }: { name: string; side: Comparison["from"] }) {
+function Side({ name, side }: { name: string; side: PackageView }) {
   return (
     <div className="min-w-0">
       {side.digest ? (

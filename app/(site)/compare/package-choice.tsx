@@ -38,7 +38,8 @@ async function lotOfPackage(ctx: PersonCtx, text: string | undefined): Promise<s
   );
 }
 
-async function packagesOf(ctx: PersonCtx, lot: string | undefined): Promise<SelectOption[]> {
+/** Built packages of a lot as a choice, newest first. */
+export async function packagesOf(ctx: PersonCtx, lot: string | undefined): Promise<SelectOption[]> {
   if (lot === undefined) return [];
   const known = await getLot(ctx, lot).catch(() => undefined);
   if (!known) return [];

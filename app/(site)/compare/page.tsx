@@ -3,6 +3,7 @@ import { TabLinks } from "@/app/_components/tab-links";
 import { TitleRow } from "@/app/_components/title-row";
 import { pageContext } from "@/lib/http/page-context";
 import { type Chosen, kindOf } from "./chosen";
+import { CompareFile } from "./compare-file";
 import { CompareImages } from "./compare-images";
 import { CompareLayouts } from "./compare-layouts";
 import { ComparePackages } from "./compare-packages";
@@ -13,6 +14,7 @@ export const metadata: Metadata = { title: "Compare" };
 const notes = {
   packages: "Two packages, serial by serial: values old → new, and the bytes",
   images: "Two images side by side, of one serial in two packages or of two serials",
+  file: "A file against one image of a package: HEX, S-records or raw bytes",
   layouts: "Two layouts of a family, and the version step that their differences ask for",
 } as const;
 
@@ -30,12 +32,14 @@ export default async function ComparePage({ searchParams }: { searchParams: Prom
         links={[
           { href: "/compare?kind=packages", name: "Packages" },
           { href: "/compare?kind=images", name: "Images" },
+          { href: "/compare?kind=file", name: "A file" },
           { href: "/compare?kind=layouts", name: "Layouts" },
         ]}
       />
       <div className="flex flex-col gap-[18px]">
         {kind === "packages" ? <ComparePackages ctx={ctx} chosen={chosen} /> : null}
         {kind === "images" ? <CompareImages ctx={ctx} chosen={chosen} /> : null}
+        {kind === "file" ? <CompareFile ctx={ctx} chosen={chosen} /> : null}
         {kind === "layouts" ? <CompareLayouts ctx={ctx} chosen={chosen} /> : null}
       </div>
     </>

@@ -2,6 +2,7 @@
 
 import { useState } from "react";
 import { callApi, type ProblemDetails, problemOf } from "@/app/_components/api-client";
+import { dumpTypeOf } from "@/app/_components/dump-type";
 import { FileDrop } from "@/app/_components/file-drop";
 import { FormError } from "@/app/_components/form/form-error";
 import { DUMP_MAX_BYTES, type DumpResult } from "@/schemas/api/devices";
@@ -22,7 +23,7 @@ export function DumpCheck({ serial }: { serial?: string }) {
       const dump = await callApi<DumpResult>(path, {
         method: "POST",
         body: file,
-        contentType: await contentTypeOf(file),
+        contentType: await dumpTypeOf(file),
       });
       setResult({ dump, at: Date.now() });
     } catch (error) {
@@ -36,8 +37,8 @@ export function DumpCheck({ serial }: { serial?: string }) {
     <div className="flex flex-col gap-3">
       <FileDrop
         label={busy ? "Checking" : "Choose a dump"}
-        accept=".hex,.ihex,.bin,.raw,.eep"
-        help="Intel HEX, or the raw bytes of the whole memory from its base address. Nothing is stored."
+        accept=".hex,.ihex,.s19,.srec,.bin,.raw,.eep"
+        help="Intel HEX, S-records, or the raw bytes of the whole memory from its base address. Nothing is stored."
         maxBytes={DUMP_MAX_BYTES}
         onFile={(file) => void check(file)}
       />
@@ -47,10 +48,4 @@ export function DumpCheck({ serial }: { serial?: string }) {
       </div>
     </div>
   );
-}
-
-/** HEX starts with a colon; anything else is taken as raw memory. */
-async function contentTypeOf(file: File): Promise<string> {
-  const first = new Uint8Array(await file.slice(0, 1).arrayBuffer())[0];
-  return first === 0x3a ? "text/x-intel-hex" : "application/octet-stream";
 }

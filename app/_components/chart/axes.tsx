@@ -39,8 +39,10 @@ export function XAxis({ area, scale, title, ticks: given, whole }: AxisProps) {
   );
 }
 
-export function YAxis({ area, scale, title }: AxisProps) {
-  const { values, digits } = niceTicks(scale.domain, 5);
+export function YAxis({ area, scale, title, whole }: AxisProps) {
+  const nice = niceTicks(scale.domain, 5);
+  const values = whole ? nice.values.filter(Number.isInteger) : nice.values;
+  const digits = whole ? 0 : nice.digits;
   return (
     <g>
       {values.map((value) => (

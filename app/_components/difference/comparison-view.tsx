@@ -5,24 +5,25 @@ import { useState } from "react";
 import { callApi } from "@/app/_components/api-client";
 import { Button } from "@/app/_components/button";
 import { Card } from "@/app/_components/card";
-import type { ComparedField } from "@/app/_components/difference/changed-device";
 import { DifferenceTable } from "@/app/_components/difference/difference-table";
 import { ImageDifference } from "@/app/_components/difference/image-difference";
 import { Notice } from "@/app/_components/notice";
 import type { ComparedDevice } from "@/schemas/api/compare";
 import type { ImageView } from "@/schemas/api/images";
+import type { LayoutDocument } from "@/schemas/documents/layout";
 
 export interface ComparisonViewProps {
   /** Ids of the older and the newer package. */
   from: string;
   to: string;
-  fields: readonly ComparedField[];
+  /** Layout of the newer one. */
+  layout: LayoutDocument;
   /** Serial whose bytes are shown first. */
   serial?: string;
 }
 
 /** The serials that differ between two packages, and the bytes of the one that is opened. */
-export function ComparisonView({ from, to, fields, serial }: ComparisonViewProps) {
+export function ComparisonView({ from, to, layout, serial }: ComparisonViewProps) {
   const [opened, setOpened] = useState<ComparedDevice>();
   const open = (item: ComparedDevice) => {
     setOpened(item);
@@ -34,8 +35,9 @@ export function ComparisonView({ from, to, fields, serial }: ComparisonViewProps
     <>
       <Card title="Serials" note="Old → new as decoded from the bytes; open one to see its bytes">
         <DifferenceTable
-          endpoint={`/api/v1/compare?from=${from}&to=${to}`}
-          fields={fields}
+          from={from}
+          to={to}
+          layout={layout}
           opened={opened?.serial ?? serial}
           onOpen={(row) => open(row as unknown as ComparedDevice)}
         />
@@ -55,7 +57,7 @@ function LinkedSerial({ from, to, serial }: { from: string; to: string; serial: 
     queryKey: ["compared", from, to, serial],
     queryFn: ({ signal }) =>
       callApi<{ items: ComparedDevice[] }>(
-        `/api/v1/compare?from=${from}&to=${to}&limit=100&search=${encodeURIComponent(serial)}`,
+        `/api/v1/compare/serials?from=${from}&to=${to}&limit=100&search=${encodeURIComponent(serial)}`,
         { signal },
       ),
   });

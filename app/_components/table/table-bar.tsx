@@ -23,6 +23,8 @@ export interface TableBarProps {
   shown: ReadonlySet<string>;
   onShown: (keys: string[]) => void;
   onCsv: () => void;
+  /** Beside CSV: another form of the same rows. */
+  onJson?: () => void;
   note?: ReactNode;
   status?: string;
 }
@@ -62,6 +64,12 @@ export function TableBar(props: TableBarProps) {
           <Download size={14} aria-hidden />
           CSV
         </button>
+        {props.onJson ? (
+          <button type="button" onClick={props.onJson} className={`${chipLook} ${chipOff}`}>
+            <Download size={14} aria-hidden />
+            JSON
+          </button>
+        ) : null}
       </div>
     </div>
   );

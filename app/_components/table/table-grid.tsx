@@ -13,7 +13,8 @@ const rowHeight = 34;
 export interface TableGridProps {
   name: string;
   columns: readonly DataColumn[];
-  rows: readonly Row[];
+  /** A row that is not loaded yet is undefined and keeps its place. */
+  rows: readonly (Row | undefined)[];
   keyOf: (row: Row) => string;
   rowHref?: string;
   /** Opens a row beside the table; `opened` is the key of the one shown. */
@@ -22,7 +23,9 @@ export interface TableGridProps {
   sort?: { key: string; descending: boolean };
   onSort: (key: string) => void;
   /** The reader came near the last row. */
-  onEnd: () => void;
+  onEnd?: () => void;
+  /** First and last row drawn, as the reader moves. Has to stay the same function. */
+  onSight?: (first: number, last: number) => void;
   selected?: ReadonlySet<string>;
   onSelected?: (keys: ReadonlySet<string>) => void;
 }
@@ -43,10 +46,12 @@ export function TableGrid(props: TableGridProps) {
   });
   const items = isVirtual ? virtualizer.getVirtualItems() : rows.map((_, index) => ({ index, start: 0, end: 0 }));
   const lastDrawn = items.at(-1)?.index ?? 0;
-  const { onEnd } = props;
+  const firstDrawn = items[0]?.index ?? 0;
+  const { onEnd, onSight } = props;
   useEffect(() => {
-    if (lastDrawn >= rows.length - 40) onEnd();
+    if (lastDrawn >= rows.length - 40) onEnd?.();
   }, [lastDrawn, rows.length, onEnd]);
+  useEffect(() => onSight?.(firstDrawn, lastDrawn), [firstDrawn, lastDrawn, onSight]);
 
   const before = isVirtual ? (items[0]?.start ?? 0) : 0;
   const after = isVirtual ? virtualizer.getTotalSize() - (items.at(-1)?.end ?? 0) : 0;
@@ -82,12 +87,25 @@ export function TableGrid(props: TableGridProps) {
                 tabbable={index === Math.min(current, rows.length - 1)}
                 onMove={focusRow}
               />
-            ) : null;
+            ) : (
+              <WaitingRow key={`waiting ${index}`} index={index} columns={columns.length} />
+            );
           })}
         </tbody>
         <Spacer height={after} />
       </table>
     </div>
+  );
+}
+
+/** Keeps the place of a row that is still on its way. */
+function WaitingRow({ index, columns }: { index: number; columns: number }) {
+  return (
+    <tr aria-rowindex={index + 2} aria-busy="true" style={{ height: rowHeight }}>
+      <td colSpan={columns} className="border-b border-rule/55 pl-1.5 text-ink-faint">
+        …
+      </td>
+    </tr>
   );
 }
 
@@ -111,10 +129,10 @@ function Widths({
   selectable,
 }: {
   columns: readonly DataColumn[];
-  rows: readonly Row[];
+  rows: TableGridProps["rows"];
   selectable: boolean;
 }) {
-  const sample = rows.slice(0, 200);
+  const sample = rows.slice(0, 200).filter((row) => row !== undefined);
   return (
     <colgroup>
       {selectable ? <col style={{ width: 36 }} /> : null}
@@ -142,7 +160,7 @@ const headLook =
   "sticky top-0 border-b border-rule bg-raised py-1.5 pr-3 text-xs font-semibold text-ink-soft whitespace-nowrap";
 
 function TableHead({ columns, rows, keyOf, sort, onSort, selected, onSelected }: TableGridProps) {
-  const keys = selected ? rows.map(keyOf) : [];
+  const keys = selected ? rows.flatMap((row) => (row ? [keyOf(row)] : [])) : [];
   const all = keys.length > 0 && keys.every((key) => selected?.has(key));
   return (
     <thead>

@@ -90,23 +90,25 @@ export default async function RunPage({ params }: { params: Promise<{ run: strin
         <Card title="Findings" note="What the family's rules and the certificates say about it">
           <FindingsList findings={run.findings} empty="Nothing to remark." />
         </Card>
-        <Card title="Used by">
-          {uses.length === 0 ? (
-            <p className="text-sm text-ink-soft">
-              No derivation yet. <Link href={`/lots/${run.lot}/coefficients`}>Derive coefficients</Link> from it.
-            </p>
-          ) : (
-            <ul className="text-sm">
-              {uses.map((use) => (
-                <li key={use.id}>
-                  <Link href={`/derivations/${use.id}`}>Derivation of {formatDateTime(use.createdAt)}</Link>,{" "}
-                  {use.method}, order {use.order}, {use.state.replaceAll("-", " ")},{" "}
-                  {formatNumberOf(use.withValues, "set")}
-                </li>
-              ))}
-            </ul>
-          )}
-        </Card>
+        {proof ? null : (
+          <Card title="Used by">
+            {uses.length === 0 ? (
+              <p className="text-sm text-ink-soft">
+                No derivation yet. <Link href={`/lots/${run.lot}/coefficients`}>Derive coefficients</Link> from it.
+              </p>
+            ) : (
+              <ul className="text-sm">
+                {uses.map((use) => (
+                  <li key={use.id}>
+                    <Link href={`/derivations/${use.id}`}>Derivation of {formatDateTime(use.createdAt)}</Link>,{" "}
+                    {use.method}, order {use.order}, {use.state.replaceAll("-", " ")},{" "}
+                    {formatNumberOf(use.withValues, "set")}
+                  </li>
+                ))}
+              </ul>
+            )}
+          </Card>
+        )}
         <Card title="Readings">
           <DataTable
             name="readings"

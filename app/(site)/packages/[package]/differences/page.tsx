@@ -1,13 +1,12 @@
 import type { Metadata } from "next";
 import Link from "next/link";
 import { Card } from "@/app/_components/card";
-import { changedParameters, comparedFields } from "@/app/_components/difference/compared-fields";
-import { ComparisonFacts } from "@/app/_components/difference/comparison-facts";
+import { ComparisonSummary } from "@/app/_components/difference/comparison-summary";
 import { ComparisonView } from "@/app/_components/difference/comparison-view";
 import { orNotFound, pageContext } from "@/lib/http/page-context";
-import { comparePackages } from "@/lib/services/compare/compare-packages";
 import { getLayout } from "@/lib/services/layouts/get-layout";
 import { chooseAgainst } from "@/lib/services/packages/choose-against";
+import { getPackageView } from "@/lib/services/packages/get-package";
 import { id as packageId } from "@/schemas/api/common";
 import type { LayoutDocument } from "@/schemas/documents/layout";
 import { loadPackage, type PackageParams } from "../load-package";
@@ -54,10 +53,9 @@ export default async function DifferencesPage({ params, searchParams }: PageProp
       </PackageShell>
     );
   }
-  const comparison = await orNotFound(comparePackages(ctx, { from: against, to: view.id, limit: 1 }));
+  const from = await orNotFound(getPackageView(ctx, against));
   const layout = (await getLayout(ctx, { family: view.family, version: view.layout }))
     .document as unknown as LayoutDocument;
-  const { from, counts, fields } = comparison;
   return (
     <PackageShell ctx={ctx} view={view} tab="differences">
       <Card
@@ -69,7 +67,7 @@ export default async function DifferencesPage({ params, searchParams }: PageProp
         note={against === choice.chosen?.id ? `against ${reasons[choice.reason]}` : undefined}
         aside={<AgainstChoice options={choice.others} chosen={against} />}
       >
-        <ComparisonFacts counts={counts} fields={changedParameters(fields, layout)} />
+        <ComparisonSummary key={against} from={against} to={view.id} layout={layout} />
         {from.layout !== view.layout ? (
           <p className="mt-3 text-sm">
             The layout changes too:{" "}
@@ -79,13 +77,7 @@ export default async function DifferencesPage({ params, searchParams }: PageProp
           </p>
         ) : null}
       </Card>
-      <ComparisonView
-        key={against}
-        from={against}
-        to={view.id}
-        fields={comparedFields(fields, layout)}
-        serial={serial?.toUpperCase()}
-      />
+      <ComparisonView key={against} from={against} to={view.id} layout={layout} serial={serial?.toUpperCase()} />
       {choice.reason !== "live" || against === choice.chosen?.id ? (
         <SeenDifferences reviewDigest={view.reviewDigest} />
       ) : null}

@@ -1,12 +1,11 @@
 import Link from "next/link";
 import { Card } from "@/app/_components/card";
-import { changedParameters, comparedFields } from "@/app/_components/difference/compared-fields";
-import { ComparisonFacts } from "@/app/_components/difference/comparison-facts";
+import { ComparisonSummary } from "@/app/_components/difference/comparison-summary";
 import { formatDate } from "@/lib/domain/format/time";
-import { comparePackages } from "@/lib/services/compare/compare-packages";
 import type { PersonCtx } from "@/lib/services/context";
 import { getLayout } from "@/lib/services/layouts/get-layout";
 import { type Against, chooseAgainst } from "@/lib/services/packages/choose-against";
+import { getPackageView } from "@/lib/services/packages/get-package";
 import type { PackageView } from "@/schemas/api/packages";
 import type { LayoutDocument } from "@/schemas/documents/layout";
 import { contentFields } from "../content-fields";
@@ -34,11 +33,11 @@ export async function WhatChanges({ ctx, view }: { ctx: PersonCtx; view: Package
       </>
     );
   }
-  const { counts, fields, from } = await comparePackages(ctx, { from: chosen.id, to: view.id, limit: 1 });
+  const from = await getPackageView(ctx, chosen.id);
   return (
     <>
       <Card title={titleOf(chosen, reason)}>
-        <ComparisonFacts counts={counts} fields={changedParameters(fields, layout)} />
+        <ComparisonSummary from={chosen.id} to={view.id} layout={layout} />
         {from.layout === view.layout ? null : (
           <p className="mt-3 text-sm">
             The layout changes too:{" "}
@@ -52,7 +51,7 @@ export async function WhatChanges({ ctx, view }: { ctx: PersonCtx; view: Package
       <OpenDifferences
         reviewDigest={reviewDigest}
         words={`Open the differences to ${chosen.version}`}
-        comparison={{ from: chosen.id, to: view.id, fields: comparedFields(fields, layout) }}
+        comparison={{ from: chosen.id, to: view.id, layout }}
       />
     </>
   );
