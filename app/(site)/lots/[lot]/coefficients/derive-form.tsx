@@ -9,62 +9,46 @@ import { Card } from "@/app/_components/card";
 import { Checkbox } from "@/app/_components/form/checkbox";
 import { FormError } from "@/app/_components/form/form-error";
 import { Select } from "@/app/_components/form/select";
-import { TextInput } from "@/app/_components/form/text-input";
 import { formatNumberOf } from "@/lib/domain/format/figure";
 import { formatQuantity } from "@/lib/domain/format/quantity";
 import { formatDateTime } from "@/lib/domain/format/time";
-import type { DerivationPreview } from "@/schemas/api/derivations";
+import { bodyOf, type DeriveOptions, type LikeDerivation, type OfferedRun, startingOptions } from "./derive-options";
+import { Exclusions } from "./exclusions";
 import { PreviewResult } from "./preview-result";
+import { usePreview } from "./use-preview";
 
 export interface DeriveFormProps {
   lot: string;
   /** Runs that count, newest first. */
-  runs: readonly {
-    id: string;
-    purpose: string;
-    createdAt: string;
-    devices: number;
-    temperatureLowC: number | null;
-    temperatureHighC: number | null;
-  }[];
-}
-
-interface Exclusion {
-  key: number;
-  serial: string;
-  reason: string;
+  runs: readonly OfferedRun[];
+  /** A derivation whose options are carried over. */
+  like?: LikeDerivation;
+  /** Serials to leave out besides, reasons to be given. */
+  exclude: readonly string[];
 }
 
 /** Method, order, runs and exclusions of a new derivation; a preview first, if wanted. */
-export function DeriveForm({ lot, runs }: DeriveFormProps) {
+export function DeriveForm({ lot, runs, like, exclude }: DeriveFormProps) {
   const router = useRouter();
-  const [method, setMethod] = useState("pooled-gain");
-  const [order, setOrder] = useState("1");
-  const [chosen, setChosen] = useState<ReadonlySet<string>>(() => newestOfEachPurpose(runs));
-  const [exclusions, setExclusions] = useState<readonly Exclusion[]>([]);
-  const [pending, setPending] = useState<"preview" | "derive">();
+  const [options, setOptions] = useState<DeriveOptions>(() => startingOptions(runs, like, exclude));
+  const [pending, setPending] = useState(false);
   const [problem, setProblem] = useState<ProblemDetails>();
-  const [preview, setPreview] = useState<DerivationPreview>();
-
-  const path = `/api/v1/lots/${encodeURIComponent(lot)}/derivations`;
-  const call = async (what: "preview" | "derive") => {
-    const exclude = exclusions.map(({ serial, reason }) => ({ serial, reason }));
-    const json = { method, order: Number(order), runs: [...chosen], exclude };
-    setPending(what);
+  const preview = usePreview(lot, like);
+  const change = (part: Partial<DeriveOptions>) => {
+    setOptions({ ...options, ...part });
+    preview.clear();
+  };
+  const derive = async () => {
+    setPending(true);
     setProblem(undefined);
     try {
-      if (what === "preview")
-        setPreview(await callApi<DerivationPreview>(`${path}?preview=true`, { method: "POST", json }));
-      else router.push(`/derivations/${(await callApi<{ id: string }>(path, { method: "POST", json })).id}`);
+      const path = `/api/v1/lots/${encodeURIComponent(lot)}/derivations`;
+      const { id } = await callApi<{ id: string }>(path, { method: "POST", json: bodyOf(options) });
+      router.push(`/derivations/${id}`);
     } catch (error) {
-      setPreview(undefined);
       setProblem(problemOf(error));
     }
-    setPending(undefined);
-  };
-  const change = (act: () => void) => {
-    act();
-    setPreview(undefined);
+    setPending(false);
   };
 
   if (runs.length === 0) {
@@ -76,141 +60,119 @@ export function DeriveForm({ lot, runs }: DeriveFormProps) {
       </Card>
     );
   }
+  const none = options.runs.size === 0;
   return (
     <Card title="Derive coefficients" note="The same runs and options always give the same numbers">
       <form
-        className="flex flex-col gap-4"
+        id="derive"
+        className="flex scroll-mt-4 flex-col gap-4"
         onSubmit={(event) => {
           event.preventDefault();
-          void call("derive");
+          void derive();
         }}
       >
-        <div className="grid gap-4 md:grid-cols-2">
-          <Select
-            label="Gain"
-            value={method}
-            onChange={(event) => change(() => setMethod(event.currentTarget.value))}
-            options={[
-              { value: "pooled-gain", name: "Pooled: its temperature coefficient from the lot's sample" },
-              { value: "individual", name: "Individual: from each device's own loaded readings" },
-            ]}
-            help="Zero is always trimmed device by device."
-          />
-          <Select
-            label="Order"
-            value={order}
-            onChange={(event) => change(() => setOrder(event.currentTarget.value))}
-            options={[
-              { value: "1", name: "1, a straight line: 2 temperatures or more" },
-              { value: "2", name: "2, a parabola: 3 temperatures or more" },
-            ]}
-            help="Two temperatures for order 1, or three for order 2, leave no degree of freedom: the fit can't show its own error."
-          />
-        </div>
-        <fieldset className="m-0 min-w-0">
-          <legend className="mb-1 text-sm font-semibold">Runs</legend>
-          <div className="flex flex-col gap-1.5">
-            {runs.map((run) => (
-              <Checkbox
-                key={run.id}
-                checked={chosen.has(run.id)}
-                onChange={(event) => change(() => setChosen(toggled(chosen, run.id, event.currentTarget.checked)))}
-                label={
-                  <>
-                    {run.purpose}, {formatNumberOf(run.devices, "device")},{" "}
-                    {formatQuantity("temperature", run.temperatureLowC)} to{" "}
-                    {formatQuantity("temperature", run.temperatureHighC)} °C{" "}
-                    <Link href={`/runs/${run.id}`} className="text-sm">
-                      {formatDateTime(run.createdAt)}
-                    </Link>
-                  </>
-                }
-              />
-            ))}
-          </div>
-        </fieldset>
-        <Exclusions exclusions={exclusions} onChange={(next) => change(() => setExclusions(next))} />
-        <FormError problem={problem} />
+        {like ? <CarriedOver like={like} kept={options.runs} /> : null}
+        <MethodFields options={options} onChange={change} />
+        <RunChoice runs={runs} chosen={options.runs} onChange={(chosen) => change({ runs: chosen })} />
+        <Exclusions exclusions={options.exclusions} onChange={(exclusions) => change({ exclusions })} />
+        <FormError problem={problem ?? preview.problem} />
         <div className="flex flex-wrap gap-2.5">
           <Button
             look="outline"
-            disabled={chosen.size === 0}
-            pending={pending === "preview"}
+            disabled={none}
+            pending={preview.pending}
             pendingText="Computing"
-            onClick={() => void call("preview")}
+            onClick={(event) => event.currentTarget.form?.reportValidity() && void preview.show(options)}
           >
             Preview
           </Button>
-          <Button
-            type="submit"
-            look="primary"
-            disabled={chosen.size === 0}
-            pending={pending === "derive"}
-            pendingText="Starting"
-          >
-            Derive and propose
+          <Button type="submit" look="primary" disabled={none} pending={pending} pendingText="Starting">
+            {preview.previewed ? "Derive with these options" : "Derive and propose"}
           </Button>
         </div>
       </form>
-      <div role="status">{preview ? <PreviewResult preview={preview} /> : null}</div>
+      <div role="status">{preview.previewed ? <PreviewResult {...preview.previewed} /> : null}</div>
     </Card>
   );
 }
 
-/** The newest run of each purpose: what is most often derived from. */
-function newestOfEachPurpose(runs: DeriveFormProps["runs"]): Set<string> {
-  const ids = new Map<string, string>();
-  for (const { id, purpose } of runs) if (!ids.has(purpose)) ids.set(purpose, id);
-  return new Set(ids.values());
+function CarriedOver({ like, kept }: { like: LikeDerivation; kept: ReadonlySet<string> }) {
+  const gone = like.runs.filter((id) => !kept.has(id)).length;
+  return (
+    <p className="text-sm text-ink-soft">
+      Runs, options and exclusions are those of the{" "}
+      <Link href={`/derivations/${like.id}`}>{like.title.toLowerCase()}</Link>; a preview is held against it.
+      {gone > 0 ? ` ${formatNumberOf(gone, "of its runs is", "of its runs are")} not chosen.` : ""}
+    </p>
+  );
 }
 
-function toggled(set: ReadonlySet<string>, id: string, on: boolean): Set<string> {
-  const next = new Set(set);
-  if (on) next.add(id);
-  else next.delete(id);
-  return next;
+interface PartProps {
+  options: DeriveOptions;
+  onChange: (part: Partial<DeriveOptions>) => void;
 }
 
-function Exclusions({
-  exclusions,
-  onChange,
-}: {
-  exclusions: readonly Exclusion[];
-  onChange: (next: Exclusion[]) => void;
-}) {
-  const put = (index: number, part: Partial<Exclusion>) =>
-    onChange(exclusions.map((one, at) => (at === index ? { ...one, ...part } : one)));
+function MethodFields({ options, onChange }: PartProps) {
+  return (
+    <div className="grid gap-4 md:grid-cols-2">
+      <Select
+        label="Gain"
+        value={options.method}
+        onChange={(event) => onChange({ method: event.currentTarget.value })}
+        options={[
+          { value: "pooled-gain", name: "Pooled: its temperature coefficient from the lot's sample" },
+          { value: "individual", name: "Individual: from each device's own loaded readings" },
+        ]}
+        help="Zero is always trimmed device by device."
+      />
+      <Select
+        label="Order"
+        value={options.order}
+        onChange={(event) => onChange({ order: event.currentTarget.value })}
+        options={[
+          { value: "1", name: "1, a straight line: 2 temperatures or more" },
+          { value: "2", name: "2, a parabola: 3 temperatures or more" },
+        ]}
+        help="Two temperatures for order 1, or three for order 2, leave no degree of freedom: the fit can't show its own error."
+      />
+    </div>
+  );
+}
+
+interface RunChoiceProps {
+  runs: readonly OfferedRun[];
+  chosen: ReadonlySet<string>;
+  onChange: (chosen: ReadonlySet<string>) => void;
+}
+
+function RunChoice({ runs, chosen, onChange }: RunChoiceProps) {
+  const toggled = (id: string, on: boolean) => {
+    const next = new Set(chosen);
+    if (on) next.add(id);
+    else next.delete(id);
+    onChange(next);
+  };
   return (
     <fieldset className="m-0 min-w-0">
-      <legend className="mb-1 text-sm font-semibold">Devices left out</legend>
-      <p className="mb-2 text-xs text-ink-soft">
-        An excluded device gets no coefficients; it stays visible with the reason, and who excludes can't approve.
-      </p>
-      <div className="flex flex-col gap-2.5">
-        {exclusions.map((one, index) => (
-          <div key={one.key} className="grid items-end gap-2.5 sm:grid-cols-[14rem_1fr_auto]">
-            <TextInput
-              label="Serial"
-              code
-              required
-              value={one.serial}
-              onChange={(event) => put(index, { serial: event.currentTarget.value })}
-            />
-            <TextInput
-              label="Reason"
-              required
-              maxLength={2000}
-              value={one.reason}
-              onChange={(event) => put(index, { reason: event.currentTarget.value })}
-            />
-            <Button onClick={() => onChange(exclusions.filter((other) => other !== one))}>Keep it in</Button>
-          </div>
+      <legend className="mb-1 text-sm font-semibold">Runs</legend>
+      <div className="flex flex-col gap-1.5">
+        {runs.map((run) => (
+          <Checkbox
+            key={run.id}
+            checked={chosen.has(run.id)}
+            onChange={(event) => toggled(run.id, event.currentTarget.checked)}
+            label={
+              <>
+                {run.purpose}, {formatNumberOf(run.devices, "device")},{" "}
+                {formatQuantity("temperature", run.temperatureLowC)} to{" "}
+                {formatQuantity("temperature", run.temperatureHighC)} °C{" "}
+                <Link href={`/runs/${run.id}`} className="text-sm">
+                  {formatDateTime(run.createdAt)}
+                </Link>
+              </>
+            }
+          />
         ))}
-        <div>
-          <Button onClick={() => onChange([...exclusions, { key: Date.now(), serial: "", reason: "" }])}>
-            Exclude a device
-          </Button>
-        </div>
       </div>
     </fieldset>
   );

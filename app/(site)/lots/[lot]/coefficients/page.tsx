@@ -5,18 +5,35 @@ import { Card } from "@/app/_components/card";
 import { LotThread } from "@/app/_components/lot-thread";
 import { DataTable } from "@/app/_components/table/data-table";
 import { TitleRow } from "@/app/_components/title-row";
+import { formatDate } from "@/lib/domain/format/time";
 import { holds, orNotFound, pageContext } from "@/lib/http/page-context";
-import { listLotDerivations } from "@/lib/services/derivations/get-derivation";
+import type { PersonCtx } from "@/lib/services/context";
+import { getDerivationView, listLotDerivations } from "@/lib/services/derivations/get-derivation";
 import { getLotThread } from "@/lib/services/lots/get-lot-thread";
 import { getRulesOfLot } from "@/lib/services/lots/lot-rules";
 import { listLotRuns } from "@/lib/services/runs/get-run";
 import { DeriveForm } from "./derive-form";
+import { type LikeDerivation, likeOf } from "./derive-options";
 import { ImportPanel } from "./import-panel";
 
 export const metadata: Metadata = { title: "Coefficients" };
 
-export default async function CoefficientsPage({ params }: { params: Promise<{ lot: string }> }) {
+interface PageProps {
+  params: Promise<{ lot: string }>;
+  /** `like`: a derivation whose options are carried over. `exclude`: serials to leave out besides. */
+  searchParams: Promise<{ like?: string; exclude?: string }>;
+}
+
+/** The derivation that the form starts from, if it is one of the lot. */
+async function findLike(ctx: PersonCtx, lot: string, id: string | undefined): Promise<LikeDerivation | undefined> {
+  if (!id) return undefined;
+  const view = await orNotFound(getDerivationView(ctx, id));
+  return view.lot === lot ? likeOf(view, `Derivation of ${formatDate(view.createdAt)}`) : undefined;
+}
+
+export default async function CoefficientsPage({ params, searchParams }: PageProps) {
   const ctx = await pageContext();
+  const asked = await searchParams;
   const thread = await orNotFound(getLotThread(ctx, decodeURIComponent((await params).lot)));
   const { lot } = thread;
   const derivations = (await listLotDerivations(ctx, lot, { limit: 1_000 })).items;
@@ -36,7 +53,10 @@ export default async function CoefficientsPage({ params }: { params: Promise<{ l
       <div className="flex flex-col gap-[18px]">
         {isEngineer ? (
           <DeriveForm
+            key={`${asked.like} ${asked.exclude}`}
             lot={lot}
+            like={await findLike(ctx, lot, asked.like)}
+            exclude={(asked.exclude ?? "").split(",").filter(Boolean)}
             runs={runs
               .filter((run) => run.supersededBy === null && run.purpose !== "proof")
               .map(({ id, purpose, createdAt, devices, temperatureLowC, temperatureHighC }) => ({

@@ -2,10 +2,11 @@ import { FindingsList } from "@/app/_components/findings-list";
 import { PooledFacts } from "@/app/_components/pooled-facts";
 import { formatNumberOf } from "@/lib/domain/format/figure";
 import { formatQuantity } from "@/lib/domain/format/quantity";
-import type { DerivationPreview } from "@/schemas/api/derivations";
+import { Effect } from "./effect";
+import type { Previewed } from "./use-preview";
 
 /** What a derivation would give, before anything is stored. */
-export function PreviewResult({ preview }: { preview: DerivationPreview }) {
+export function PreviewResult({ preview, against }: Previewed) {
   const { counts, pooled, provenRange, verification } = preview;
   const passed = verification.filter((device) => device.passed).length;
   return (
@@ -22,8 +23,10 @@ export function PreviewResult({ preview }: { preview: DerivationPreview }) {
         .
       </p>
       {pooled ? <PooledFacts pooled={pooled} /> : null}
+      {against ? <Effect name={against.name} before={against.result} after={preview} /> : null}
       <div className="mt-3">
-        <FindingsList findings={preview.findings.slice(0, 100)} empty="No findings." />
+        <h4 className="mb-1 font-semibold">Findings</h4>
+        <FindingsList findings={preview.findings} empty="No findings." />
       </div>
     </section>
   );
