@@ -1,6 +1,5 @@
 import type { Metadata } from "next";
 import Link from "next/link";
-import { Suspense } from "react";
 import { LinkButton } from "@/app/_components/button";
 import { Card } from "@/app/_components/card";
 import { LotThread } from "@/app/_components/lot-thread";
@@ -81,11 +80,7 @@ export default async function DerivationPage({ params }: { params: Promise<{ der
             <Link href={`/lots/${view.lot}/coefficients?like=${view.id}`}>derive with other runs or options</Link>.
           </Notice>
         ) : null}
-        {view.finishedAt && !view.failure ? (
-          <Suspense fallback={<p className="py-8 text-center text-sm text-ink-soft">Drawing …</p>}>
-            <Result ctx={ctx} view={view} />
-          </Suspense>
-        ) : null}
+        {view.finishedAt && !view.failure ? <Result view={view} /> : null}
         <Origin view={view} />
       </div>
     </>

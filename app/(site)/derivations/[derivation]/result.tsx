@@ -3,9 +3,8 @@ import { FindingsList } from "@/app/_components/findings-list";
 import { LegalNote } from "@/app/_components/legal-note";
 import { PooledFacts } from "@/app/_components/pooled-facts";
 import { formatCount } from "@/lib/domain/format/figure";
-import { holds } from "@/lib/http/page-context";
+import { holds, pageContext } from "@/lib/http/page-context";
 import { hasOneTimeCode } from "@/lib/services/account/has-one-time-code";
-import type { PersonCtx } from "@/lib/services/context";
 import { type DerivationChart, getDerivationChart } from "@/lib/services/derivations/get-derivation-chart";
 import { listDeciderNames } from "@/lib/services/derivations/list-deciders";
 import { listSetPackages } from "@/lib/services/derivations/list-set-packages";
@@ -17,10 +16,12 @@ import { DriftCharts } from "./drift-charts";
 import { ResidualChart } from "./residual-chart";
 import { residualDevices } from "./residual-devices";
 import { SelectionProvider } from "./selection";
+import { UncertaintyCard } from "./uncertainty-card";
 import { VerificationCard } from "./verification-card";
 
 /** Everything that a finished derivation says, and what may be decided over it. */
-export async function Result({ ctx, view }: { ctx: PersonCtx; view: DerivationView }) {
+export async function Result({ view }: { view: DerivationView }) {
+  const ctx = await pageContext();
   const chart = await getDerivationChart(ctx, view.id);
   const packages = (await listSetPackages(ctx, view.id)).items;
   const deciders = await listDeciderNames(ctx, view.id);
@@ -44,6 +45,7 @@ export async function Result({ ctx, view }: { ctx: PersonCtx; view: DerivationVi
         <>
           <DriftCharts chart={chart} />
           <ResidualChart devices={residualDevices(chart, view.method === "pooled-gain")} note={drawnNote(chart)} />
+          {view.uncertainty ? <UncertaintyCard budget={view.uncertainty} /> : null}
           <LegalNote />
         </>
       )}

@@ -1,16 +1,18 @@
 import type { Metadata } from "next";
+import { LinkButton } from "@/app/_components/button";
 import { Card } from "@/app/_components/card";
-import { LineChart } from "@/app/_components/chart/line-chart";
-import { Facts } from "@/app/_components/facts";
 import { FindingsList } from "@/app/_components/findings-list";
 import { LegalNote } from "@/app/_components/legal-note";
 import { stateOf } from "@/app/_components/state/state-of";
-import { DataTable } from "@/app/_components/table/data-table";
 import { TitleRow } from "@/app/_components/title-row";
-import { COEFFICIENT_QUANTITIES, formatQuantity, type QuantityName, quantities } from "@/lib/domain/format/quantity";
-import { orNotFound, pageContext } from "@/lib/http/page-context";
+import { holds, orNotFound, pageContext } from "@/lib/http/page-context";
 import { getDerivationView, getDerivedDevice } from "@/lib/services/derivations/get-derivation";
-import type { DerivedDeviceDetail } from "@/schemas/api/derivations";
+import { type DeviceEvidence, getDeviceEvidence } from "@/lib/services/derivations/get-device-evidence";
+import { getRulesOfLot } from "@/lib/services/lots/lot-rules";
+import { Curves } from "./curves";
+import { PointsCard } from "./points-card";
+import { ReadingsCard } from "./readings-card";
+import { ValuesCard } from "./values-card";
 
 export const metadata: Metadata = { title: "Device of a derivation" };
 
@@ -26,9 +28,12 @@ interface PageProps {
 
 export default async function DerivedDevicePage({ params }: PageProps) {
   const ctx = await pageContext();
-  const { derivation, serial } = await params;
+  const { derivation, serial: asked } = await params;
+  const serial = decodeURIComponent(asked).toUpperCase();
   const view = await orNotFound(getDerivationView(ctx, derivation));
-  const device = await orNotFound(getDerivedDevice(ctx, derivation, decodeURIComponent(serial).toUpperCase()));
+  const device = await orNotFound(getDerivedDevice(ctx, derivation, serial));
+  const evidence = await getDeviceEvidence(ctx, derivation, serial);
+  const mayExclude = holds(ctx, "engineer") && view.method !== "import" && device.role !== "excluded";
   return (
     <>
       <TitleRow
@@ -42,107 +47,53 @@ export default async function DerivedDevicePage({ params }: PageProps) {
         code
         state={device.state ? stateOf("coefficient-set", device.state) : { tone: "idle", word: "no coefficients" }}
         note={`${device.role}${device.gainFrom ? `, gain ${SOURCES[device.gainFrom]}` : ""}`}
+        actions={
+          <>
+            <LinkButton href={`/trace/${encodeURIComponent(device.serial)}`}>Trace</LinkButton>
+            {mayExclude ? (
+              <LinkButton
+                look="outline"
+                href={`/lots/${view.lot}/coefficients?like=${view.id}&exclude=${encodeURIComponent(device.serial)}`}
+              >
+                Try without it
+              </LinkButton>
+            ) : null}
+          </>
+        }
       />
+      <Neighbours derivation={view.id} evidence={evidence} />
       <div className="flex flex-col gap-[18px]">
-        <Values device={device} />
-        {device.curves ? <Curves curves={device.curves} /> : null}
+        <ValuesCard device={device} zeroCovariance={evidence.zeroCovariance} />
+        {device.curves ? <Curves curves={device.curves} rules={await getRulesOfLot(ctx, view.lot)} /> : null}
         <Card title="Findings">
           <FindingsList findings={device.findings} empty="Nothing to remark on this device." />
         </Card>
-        {device.points.length > 0 ? <Points device={device} /> : null}
+        {device.points.length > 0 ? <PointsCard device={device} /> : null}
+        <ReadingsCard readings={evidence.readings} />
         {device.curves ? <LegalNote /> : null}
       </div>
     </>
   );
 }
 
-function Values({ device }: { device: DerivedDeviceDetail }) {
-  const { coefficients, uncertainty } = device;
-  if (!coefficients) return null;
-  const errors: Partial<Record<QuantityName, number | null>> = uncertainty ?? {};
+/** The devices before and after this one, in the order of the serials. */
+function Neighbours({ derivation, evidence }: { derivation: string; evidence: DeviceEvidence }) {
+  const { previous, next } = evidence;
+  const href = (serial: string) => `/derivations/${derivation}/${encodeURIComponent(serial)}`;
   return (
-    <Card title="Coefficients" note="± is one standard error; none is stated without a degree of freedom">
-      <Facts
-        small
-        facts={COEFFICIENT_QUANTITIES.filter((name) => coefficients[name] !== undefined).map((name) => ({
-          label: `${name}, ${quantities[name].unit}`,
-          value: `${formatQuantity(name, coefficients[name])}${errors[name] ? ` ±${formatQuantity(name, errors[name])}` : ""}`,
-        }))}
-      />
-    </Card>
-  );
-}
-
-type Curve = NonNullable<DerivedDeviceDetail["curves"]>["spanPpm"];
-
-function seriesOf({ before, after }: Curve) {
-  const points = (values: Curve["before"]) => values.map(({ chamberC, value }) => [chamberC, value] as const);
-  return [
-    { name: "before", tone: "ink" as const, dashed: true, draw: "both" as const, points: points(before) },
-    { name: "after", tone: "copper" as const, draw: "both" as const, points: points(after) },
-  ];
-}
-
-function Curves({ curves }: { curves: NonNullable<DerivedDeviceDetail["curves"]> }) {
-  return (
-    <div className="grid gap-[18px] xl:grid-cols-2">
-      <Card title="Unloaded output over temperature">
-        <LineChart
-          label="Drift of the unloaded output before and after compensation"
-          xTitle="chamber, °C"
-          yTitle="output, intervals (v)"
-          series={seriesOf(curves.zeroIntervals)}
-        />
-      </Card>
-      <Card title="Span error over temperature">
-        {curves.spanPpm.after.length > 0 ? (
-          <LineChart
-            label="Span error before and after compensation"
-            xTitle="chamber, °C"
-            yTitle="error, ppm"
-            yDigits={1}
-            series={seriesOf(curves.spanPpm)}
-          />
-        ) : (
-          <p className="py-8 text-sm text-ink-soft">The device was never loaded: nothing is said on its span.</p>
-        )}
-      </Card>
-    </div>
-  );
-}
-
-function Points({ device }: { device: DerivedDeviceDetail }) {
-  const home = device.points[0]?.purpose;
-  let at = 0;
-  const rows = device.points.map((point) => {
-    const own = point.purpose === home ? at++ : undefined;
-    return {
-      ...point,
-      key: `${point.purpose} ${point.point}`,
-      temperatureResidual: own === undefined ? null : (device.residuals?.temperature[own] ?? null),
-      zeroResidual: own === undefined ? null : (device.residuals?.zero[own] ?? null),
-    };
-  });
-  return (
-    <Card
-      title="Points and residuals"
-      note="Means over the readings of a point; measured less fitted, of the run that thermometer and zero come from"
-    >
-      <DataTable
-        name="points"
-        rows={rows}
-        rowKey="key"
-        columns={[
-          { key: "key", header: "Run and point" },
-          { key: "chamberC", header: "Chamber", unit: "°C", format: { as: "figure", digits: 3 } },
-          { key: "deviceTemp", header: "Device temperature", unit: "own unit", format: { as: "figure", digits: 2 } },
-          { key: "temperatureResidual", header: "Residual", unit: "K", format: { as: "figure", digits: 4 } },
-          { key: "zeroMvV", header: "Zero", format: { as: "quantity", name: "zero" } },
-          { key: "zeroResidual", header: "Residual", format: { as: "quantity", name: "zero" } },
-          { key: "spanMvV", header: "Span at capacity", format: { as: "quantity", name: "signal" } },
-        ]}
-        empty={{ title: "No points" }}
-      />
-    </Card>
+    <nav aria-label="Devices of this derivation" className="mb-4 flex flex-wrap gap-2.5 print:hidden">
+      {previous ? (
+        <LinkButton href={href(previous)}>
+          <span aria-hidden="true">←</span> <span className="sr-only">Device before: </span>
+          <span className="font-mono text-sm">{previous}</span>
+        </LinkButton>
+      ) : null}
+      {next ? (
+        <LinkButton href={href(next)}>
+          <span className="sr-only">Device after: </span>
+          <span className="font-mono text-sm">{next}</span> <span aria-hidden="true">→</span>
+        </LinkButton>
+      ) : null}
+    </nav>
   );
 }
