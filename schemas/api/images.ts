@@ -17,6 +17,7 @@ export const decodedField = z.object({
   raw: z.string().meta({ description: "Lower-case hex of the stored bytes" }),
   value: z.union([z.number(), z.string()]).nullable().meta({ description: "Null where the bytes hold no value" }),
   unit: z.string().nullable(),
+  source: z.string().nullable().meta({ description: "Where the value comes from; null for constants and checksums" }),
 });
 
 export type DecodedFieldView = z.output<typeof decodedField>;

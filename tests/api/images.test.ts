@@ -1,6 +1,8 @@
 import { createHash } from "node:crypto";
 import { v7 as uuidv7 } from "uuid";
 import { beforeAll, describe, expect, it } from "vitest";
+import { readIntelHex } from "@/builders/codec/intel-hex-read";
+import { readSRecords } from "@/builders/codec/s-record-read";
 import { startBuild } from "@/lib/services/packages/start-build";
 import { insertAccessKey } from "../support/access-key";
 import { openTestApi, type TestApi } from "../support/api";
@@ -125,6 +127,28 @@ describe("GET /packages/{id}/images/{serial}", () => {
     expect(headers.get("content-disposition")).toBe(`attachment; filename="${FIRST}-1.0.0.hex"`);
     expect(headers.get("vary")).toBe("accept");
     expect(headers.get("etag")).toBe(`"${sha256(body)}"`);
+  });
+
+  it("answers S-records with the same bytes, by their own digest", async () => {
+    const { status, headers, body } = await get(FIRST, "text/x-motorola-srecord");
+    expect(status).toBe(200);
+    expect(headers.get("content-type")).toBe("text/x-motorola-srecord");
+    expect(headers.get("content-disposition")).toBe(`attachment; filename="${FIRST}-1.0.0.srec"`);
+    expect(headers.get("etag")).toBe(`"${sha256(body)}"`);
+    const { segments } = readSRecords(body);
+    expect(segments).toEqual(readIntelHex(first.read(`images/${FIRST}.hex`).toString()).segments);
+  });
+
+  it("leaves what the device keeps out of S-records as out of the HEX", async () => {
+    const path = `/packages/${builtSecond.id}/images/MW300-2610-00001`;
+    const [hex, records] = await Promise.all(
+      ["text/x-intel-hex", "text/x-motorola-srecord"].map((accept) =>
+        api.call("GET", path, { as: "service", headers: { accept } }),
+      ),
+    );
+    const read = readSRecords(records?.body);
+    expect(read.gaps.length).toBeGreaterThan(0);
+    expect(read.segments).toEqual(readIntelHex(hex?.body).segments);
   });
 
   it("answers the bytes as they lie in memory, in ranges too", async () => {

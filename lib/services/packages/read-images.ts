@@ -1,4 +1,6 @@
+import { sha256Hex } from "@/builders/bundle/sha256";
 import { type CompiledLayout, compileLayout } from "@/builders/codec/compile-layout";
+import { writeImageSRecords } from "@/builders/codec/hex-image";
 import { toHex } from "@/builders/codec/hex-text";
 import { checkChecksums, decodeImage } from "@/builders/codec/image";
 import { type Extent, listExtents, listGaps } from "@/builders/codec/memory-map";
@@ -66,6 +68,17 @@ export async function getImageHex(ctx: Ctx, packageId: string, serial: string): 
   });
 }
 
+/** One device's image as S-records: the bytes of the HEX at the same addresses. @throws AppError as {@link getImageView} */
+export async function getImageSRecords(ctx: Ctx, packageId: string, serial: string): Promise<StoredBytes> {
+  const { pkg, row, layout } = await openImage(ctx, packageId, serial);
+  const text = Buffer.from(writeImageSRecords(layout, row.bytes), "latin1");
+  return heldBytes(text, {
+    sha256: sha256Hex(text),
+    mediaType: "text/x-motorola-srecord",
+    fileName: `${row.serial}-${pkg.version}.srec`,
+  });
+}
+
 /** One device's image as it lies in memory; kept ranges are fill. @throws AppError as {@link getImageView} */
 export async function getImageBytes(ctx: Ctx, packageId: string, serial: string): Promise<StoredBytes> {
   const { pkg, row } = await openImage(ctx, packageId, serial);
@@ -105,7 +118,9 @@ function factsOf(row: ImageRow, derivations: ReadonlyMap<string, string>): Image
 
 /** Fields and checksums of an image as read. */
 export function fieldsOf(layout: CompiledLayout, bytes: Uint8Array): DecodedFieldView[] {
-  return decodeImage(layout, bytes).map((field) => ({ ...field, length: field.raw.length / 2 }));
+  return decodeImage(layout, bytes).map((field, i) => {
+    return { ...field, length: field.raw.length / 2, source: layout.fields[i]?.source ?? null };
+  });
 }
 
 function extentOf(layout: CompiledLayout, { kind, name, at, end }: Extent): ImageView["extents"][number] {

@@ -6,8 +6,19 @@ import { Button } from "@/app/_components/button";
 import { useToast } from "@/app/_components/toast";
 
 const kinds = {
-  hex: { accept: "text/x-intel-hex", name: "HEX" },
-  bin: { accept: "application/octet-stream", name: "raw bytes" },
+  hex: { accept: "text/x-intel-hex", name: "HEX", label: "Download HEX", hint: "Intel HEX, as in the bundle" },
+  srec: {
+    accept: "text/x-motorola-srecord",
+    name: "S-records",
+    label: "S-records",
+    hint: "The same bytes at the same addresses",
+  },
+  bin: {
+    accept: "application/octet-stream",
+    name: "raw bytes",
+    label: "Raw bytes",
+    hint: "The image without addresses; what the device keeps is fill",
+  },
 } as const;
 
 /** The image as files: the API tells them apart by what is asked for, so a plain link would not do. */
@@ -27,8 +38,8 @@ export function ImageDownloads({ endpoint, fileName }: { endpoint: string; fileN
   };
 
   return (Object.keys(kinds) as (keyof typeof kinds)[]).map((kind) => (
-    <Button key={kind} pending={pending === kind} onClick={() => void save(kind)}>
-      {kind === "hex" ? "Download HEX" : "Raw bytes"}
+    <Button key={kind} title={kinds[kind].hint} pending={pending === kind} onClick={() => void save(kind)}>
+      {kinds[kind].label}
     </Button>
   ));
 }

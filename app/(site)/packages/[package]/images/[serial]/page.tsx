@@ -124,11 +124,10 @@ function ImageFacts({ image }: { image: ImageView }) {
 }
 
 function FieldsCard({ image }: { image: ImageView }) {
-  const sources = new Map(image.extents.map((extent) => [extent.name, extent]));
+  const checksums = new Set(image.checksums.map(({ name }) => name));
   const rows = image.fields.map((field) => {
     const { text, unit } = formatField(field.value, field.unit);
-    const extent = sources.get(field.name);
-    const source = extent?.kind === "checksum" ? "checksum" : (extent?.source ?? "constant");
+    const source = checksums.has(field.name) ? "checksum" : (field.source ?? "constant");
     return { name: field.name, text, unit, raw: field.raw.toUpperCase(), address: formatAddress(field.at), source };
   });
   return (
