@@ -89,27 +89,42 @@ function readingAt({ tempOffset, tempSlope }: Coefficients, temperatureC: number
   return (temperatureC - tempOffset) / tempSlope;
 }
 
-/**
- * A thermometer that reads otherwise than its siblings at an end of the measured range: the calibration takes it up, but
- * it is rarer than a slipped row or a board on another cell, and then the output would be off by what is told.
- */
-function checkThermometers(devices: readonly DeviceResult[], family: FamilyRules): void {
-  const { referenceC, intervals, nominalMvV } = family;
+/** What of the thermometers is compared, in their own unit, and how a finding says where. */
+interface ThermometerMeasure {
+  readings: number[];
+  where: { atC: number; fromC?: number };
+}
+
+/** Readings at the ends of the measured range, and by how much they rise between these. */
+function thermometerMeasures(devices: readonly DeviceResult[]): ThermometerMeasure[] {
   const low = medianOf(devices.map((device) => device.measuredRangeC[0]));
   const high = medianOf(devices.map((device) => device.measuredRangeC[1]));
+  const readings = (atC: number) => devices.map((device) => readingAt(device.coefficients as Coefficients, atC));
+  const [atLow, atHigh] = [readings(low), readings(high)];
+  return [
+    { readings: atLow, where: { atC: low } },
+    { readings: atHigh, where: { atC: high } },
+    { readings: atHigh.map((value, i) => value - (atLow[i] as number)), where: { atC: high, fromC: low } },
+  ];
+}
+
+/**
+ * A thermometer that reads otherwise than its siblings: the calibration takes it up, but it is rarer than a slipped row
+ * or a board on another cell, and then the output would be off by what is told.
+ */
+function checkThermometers(devices: readonly DeviceResult[], { intervals, nominalMvV }: FamilyRules): void {
   const perCount = medianOf(devices.map((device) => (device.coefficients as Coefficients).tempSlope));
-  const found = new Map<DeviceResult, { awayK: number; data: Record<string, unknown> }>();
-  for (const atC of [low, high]) {
-    const readings = devices.map((device) => readingAt(device.coefficients as Coefficients, atC));
+  const found = new Map<DeviceResult, { away: number; data: Record<string, unknown> }>();
+  for (const { readings, where } of thermometerMeasures(devices)) {
     const { median, outliers } = findOutliers(readings, LEVELS);
     for (const { index, score, threshold, g, critical } of outliers) {
       const device = devices[index] as DeviceResult;
       const awayK = ((readings[index] as number) - median) * perCount;
       const { gainTc, zeroTc } = device.coefficients as Coefficients;
-      const perK = (Math.abs(gainTc) + Math.abs(zeroTc) / nominalMvV) * intervals;
-      if (Math.abs(awayK) * perK < SLIGHT_V || Math.abs(awayK) <= Math.abs(found.get(device)?.awayK ?? 0)) continue;
+      const effect = Math.abs(awayK) * (Math.abs(gainTc) + Math.abs(zeroTc) / nominalMvV) * intervals;
+      if (effect < SLIGHT_V || Math.abs(awayK) <= (found.get(device)?.away ?? 0)) continue;
       const tests = score === null ? { score: g, threshold: critical } : { score, threshold };
-      found.set(device, { awayK, data: { atC, awayK, ...tests, intervals: Math.abs(awayK) * perK, referenceC } });
+      found.set(device, { away: Math.abs(awayK), data: { ...where, awayK, ...tests, intervals: effect } });
     }
   }
   for (const [device, { data }] of found)

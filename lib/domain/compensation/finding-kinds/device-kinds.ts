@@ -71,7 +71,8 @@ export const DEVICE_KINDS = {
   "thermometer.off_siblings": {
     severity: "soft",
     words: (f) =>
-      `At ${show(f.atC)} °C the device's thermometer reads ${show(f.awayK)} K off its siblings (score ${show(f.score)}, ` +
+      `${typeof f.fromC === "number" ? `From ${show(f.fromC)} to ${show(f.atC)} °C` : `At ${show(f.atC)} °C`} the device's ` +
+      `thermometer reads ${show(f.awayK)} K off its siblings (score ${show(f.score)}, ` +
       `limit ${show(f.threshold)}); were it another device's, that would be ${show(f.intervals)} v.`,
   },
   "verification.in_sample": {
