@@ -1,7 +1,7 @@
 import { Card } from "@/app/_components/card";
 import { StateMark } from "@/app/_components/state/state-mark";
 import { DataTable } from "@/app/_components/table/data-table";
-import { devicesToShow, shareShown } from "@/lib/domain/compensation/share-shown";
+import { devicesToShow, shareShown, shareShownWithFailures } from "@/lib/domain/compensation/share-shown";
 import { formatFigure, formatNumberOf, formatPercent } from "@/lib/domain/format/figure";
 import type { DerivationView } from "@/schemas/api/derivations";
 
@@ -62,8 +62,15 @@ function verdictOf(passed: number, judged: number) {
 /** What the count really shows: no more than luck allows. */
 function shownText(passed: number, judged: number, confidence: number, coverage: number): string {
   if (judged === 0) return "No verification device has a loaded reading beside the ones its gain was taken from.";
-  if (passed < judged) return "One outside is enough to doubt the pooled coefficient: find out what sets it apart.";
-  const share = formatFigure(Math.floor(shareShown(judged, confidence) * 1000) / 10, { digits: 1 });
+  // Cut, not rounded: a share shown must not look larger than it is.
+  const cut = (share: number) => formatFigure(Math.floor(share * 1000) / 10, { digits: 1 });
+  if (passed < judged)
+    return (
+      "One outside is enough to doubt the pooled coefficient: find out what sets it apart. " +
+      `${passed} of ${judged} passing shows only that at least ${cut(shareShownWithFailures(passed, judged, confidence))} % of ` +
+      `the lot would (${formatPercent(confidence)} confidence).`
+    );
+  const share = cut(shareShown(judged, confidence));
   const needed = devicesToShow(coverage, confidence);
   return (
     `${passed} of ${judged} passing shows at least ${share} % of the lot at ${formatPercent(confidence)} confidence, and no more. ` +
