@@ -1,21 +1,43 @@
 /**
- * Cuts a stream of bytes anew, into pieces of one length; only the last may be shorter.
- * @param size bytes of a piece, at least 1.
+ * Cuts bytes that come in pieces of any length anew, into pieces of one length; only the last may be shorter.
  */
-export function* cutPieces(stream: Iterable<Uint8Array>, size: number): Generator<Uint8Array> {
-  let piece = new Uint8Array(size);
-  let filled = 0;
-  for (const part of stream) {
-    for (let at = 0; at < part.length; ) {
-      const taken = part.subarray(at, at + size - filled);
-      piece.set(taken, filled);
-      filled += taken.length;
-      at += taken.length;
-      if (filled < size) continue;
-      yield piece;
-      piece = new Uint8Array(size);
-      filled = 0;
-    }
+export class PieceCutter {
+  readonly #size: number;
+  #piece: Uint8Array;
+  #filled = 0;
+
+  /** @param size bytes of a piece, at least 1. */
+  constructor(size: number) {
+    this.#size = size;
+    this.#piece = new Uint8Array(size);
   }
-  if (filled > 0) yield piece.subarray(0, filled);
+
+  /** Takes more bytes. @returns the pieces that they filled. */
+  add(part: Uint8Array): Uint8Array[] {
+    const full: Uint8Array[] = [];
+    for (let at = 0; at < part.length; ) {
+      const taken = part.subarray(at, at + this.#size - this.#filled);
+      this.#piece.set(taken, this.#filled);
+      this.#filled += taken.length;
+      at += taken.length;
+      if (this.#filled < this.#size) continue;
+      full.push(this.#piece);
+      this.#piece = new Uint8Array(this.#size);
+      this.#filled = 0;
+    }
+    return full;
+  }
+
+  /** What is left; undefined where nothing is. */
+  rest(): Uint8Array | undefined {
+    return this.#filled > 0 ? this.#piece.subarray(0, this.#filled) : undefined;
+  }
+}
+
+/** A stream of bytes cut into pieces of one length. @param size bytes of a piece, at least 1. */
+export function* cutPieces(stream: Iterable<Uint8Array>, size: number): Generator<Uint8Array> {
+  const cutter = new PieceCutter(size);
+  for (const part of stream) yield* cutter.add(part);
+  const rest = cutter.rest();
+  if (rest) yield rest;
 }

@@ -1,3 +1,4 @@
+import { crc32 } from "@/builders/bundle/crc32";
 import { byCodeUnits } from "@/builders/bundle/manifest";
 import {
   CENTRAL,
@@ -8,7 +9,6 @@ import {
   LOCAL_BYTES,
   ZIP_EPOCH_DOS_DATE,
 } from "@/builders/bundle/zip-records";
-import { getCrc } from "@/builders/codec/crc";
 import { AppError } from "@/lib/errors";
 
 /** Largest count of entries and of bytes that a zip without the Zip64 records can tell. */
@@ -21,7 +21,6 @@ const MADE_BY = (3 << 8) | 30;
 /** A plain file that its owner may write and all may read, in the upper half. */
 const ATTRIBUTES = (0o100644 << 16) >>> 0;
 
-const crc32 = getCrc("CRC-32/ISO-HDLC");
 const encoder = new TextEncoder();
 
 interface Entry {
@@ -51,26 +50,52 @@ function* writeEntries(
   paths: readonly string[],
   files: ReadonlyMap<string, Uint8Array | string>,
 ): Generator<Uint8Array> {
-  const entries: Entry[] = [];
-  let offset = 0;
+  const zip = new PlainZip();
   for (const path of paths) {
     const given = files.get(path) as Uint8Array | string;
     const content = typeof given === "string" ? encoder.encode(given) : given;
-    const name = encoder.encode(path);
-    const entry = { name, crc: crc32(content, 0, content.length), size: content.length, offset };
-    entries.push(entry);
-    offset += LOCAL_BYTES + name.length + content.length;
-    assertFits(offset);
-    yield localHead(entry);
+    yield zip.head(path, [content]);
     yield content;
   }
-  let directory = 0;
-  for (const entry of entries) {
-    directory += CENTRAL_BYTES + entry.name.length;
-    yield centralHead(entry);
+  yield* zip.end();
+}
+
+/** The records of a plain zip as {@link zipPieces} makes it, for contents that come one after the other. */
+export class PlainZip {
+  readonly #entries: Entry[] = [];
+  #offset = 0;
+  #last = "";
+
+  /**
+   * What stands in front of an entry's content. Entries are given by path, rising in UTF-16 code units.
+   * @param content the bytes that will follow, in any number of pieces.
+   * @throws AppError `bundle.bad_path` {path}, `bundle.too_many_files`, `bundle.too_large`; Error for one out of order
+   */
+  head(path: string, content: readonly Uint8Array[]): Uint8Array {
+    if (!isPlainPath(path)) throw new AppError("bundle.bad_path", { path });
+    if (path <= this.#last) throw new Error(`${path} after ${this.#last}: entries are added by path`);
+    if (this.#entries.length === ENTRIES_MAX)
+      throw new AppError("bundle.too_many_files", { files: ENTRIES_MAX + 1, limit: ENTRIES_MAX });
+    this.#last = path;
+    const name = encoder.encode(path);
+    const size = content.reduce((sum, piece) => sum + piece.length, 0);
+    const entry = { name, crc: crc32(content), size, offset: this.#offset };
+    this.#entries.push(entry);
+    this.#offset += LOCAL_BYTES + name.length + size;
+    assertFits(this.#offset);
+    return localHead(entry);
   }
-  assertFits(offset + directory);
-  yield endRecord(entries.length, directory, offset);
+
+  /** The directory and the end record, once all contents are written. @throws AppError `bundle.too_large` */
+  *end(): Generator<Uint8Array> {
+    let directory = 0;
+    for (const entry of this.#entries) {
+      directory += CENTRAL_BYTES + entry.name.length;
+      yield centralHead(entry);
+    }
+    assertFits(this.#offset + directory);
+    yield endRecord(this.#entries.length, directory, this.#offset);
+  }
 }
 
 /** What stands in front of an entry's content and, two bytes later, in the directory: from the version needed to the length of the name. */

@@ -111,6 +111,32 @@ export async function* eachImageBytes(
   }
 }
 
+/** Serials of a package's images, rising. */
+export async function listSerials(db: Db, packageId: string): Promise<string[]> {
+  const rows = await db
+    .selectFrom("image")
+    .select("serial")
+    .where("packageId", "=", packageId)
+    .orderBy("serial")
+    .execute();
+  return rows.map((row) => row.serial);
+}
+
+/** Images of some serials in a package, by serial. */
+export async function listImagesOfSerials(
+  db: Db,
+  packageId: string,
+  serials: readonly string[],
+): Promise<Map<string, ImageRow>> {
+  const rows = await db
+    .selectFrom("image")
+    .select(imageColumns)
+    .where("packageId", "=", packageId)
+    .where(sql<boolean>`serial = any(${serials as string[]}::text[])`)
+    .execute();
+  return new Map(rows.map((row) => [row.serial, row]));
+}
+
 /** Bytes of the images of some serials in a package, by serial. */
 export async function listBytesOfSerials(
   db: Db,

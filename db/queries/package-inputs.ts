@@ -32,6 +32,58 @@ export async function listSetsById(
   );
 }
 
+/** A device as the choice of its set sees it. */
+export interface DeviceToPack {
+  id: string;
+  serial: string;
+  hardwareId: string | null;
+  held: boolean;
+  scrapped: boolean;
+}
+
+/** Devices of a lot by serial, at most `limit` after a serial. */
+export function listDevicesToPack(
+  db: Db,
+  lotId: string,
+  page: { after: string; limit: number },
+): Promise<DeviceToPack[]> {
+  return db
+    .selectFrom("device")
+    .select(["id", "serial", "hardwareId", "held", "scrapped"])
+    .where("lotId", "=", lotId)
+    .where("serial", ">", page.after)
+    .orderBy("serial")
+    .limit(page.limit)
+    .execute();
+}
+
+/** A coefficient set as the choice between several sees it. */
+export interface SetToChoose {
+  deviceId: string;
+  setId: string;
+  derivationId: string;
+  familyRevisionId: string;
+  order: 1 | 2;
+  state: "proposed" | "approved" | "refused" | "stale" | "revoked";
+}
+
+/** The newest set with values of each of some devices, among those in one of the states where they are given; by device. */
+export async function listSetsToChoose(
+  db: Db,
+  deviceIds: readonly string[],
+  states?: readonly SetToChoose["state"][],
+): Promise<Map<string, SetToChoose>> {
+  const { rows } = await sql<SetToChoose>`
+    select distinct on (s.device_id) s.device_id, s.id as set_id, s.derivation_id, d.family_revision_id,
+      d.fit_order as "order", s.state
+    from coefficient_set s join derivation d on d.id = s.derivation_id
+    where s.device_id = any(${deviceIds as string[]}::uuid[]) and s.gain is not null
+      and (${states === undefined} or s.state = any(${(states ?? []) as string[]}::text[]))
+    order by s.device_id, d.created_at desc, d.id desc
+  `.execute(db);
+  return new Map(rows.map((row) => [row.deviceId, row]));
+}
+
 /** Devices of a lot that a derivation left out by name. */
 export async function listExcludedDeviceIds(db: Db, lotId: string): Promise<Set<string>> {
   const rows = await db

@@ -1,21 +1,22 @@
 import { createHash } from "node:crypto";
-import { previewFiles, releasedFiles } from "@/builders/bundle/bundle";
-import { cutPieces } from "@/builders/bundle/pieces";
-import { zipPieces } from "@/builders/bundle/zip";
+import { PieceCutter } from "@/builders/bundle/pieces";
+import { notReleasedText, previewVerifyText, verifyText } from "@/builders/bundle/verify-text";
+import { PlainZip } from "@/builders/bundle/zip";
 import type { Db, Trx } from "@/db/executor";
 import * as query from "@/db/queries/bundles";
 import { findNewestRelease, type LivePeriodRow } from "@/db/queries/live-periods";
-import { getPackage, type PackageRow } from "@/db/queries/packages";
+import { getPackage, getPackageFile, type PackageRow } from "@/db/queries/packages";
 import { getSigningKey } from "@/db/queries/signing-keys";
 import type { Ctx } from "@/lib/services/context";
-import { readPackageContent } from "./package-content";
+import { eachHexFile, openContent, readValues } from "./package-content";
 
 /** Sequence under which a preview's pieces are stored; releases begin at 1. */
 const PREVIEW = 0;
 
 /**
  * The stored bundle of a package as it stands: of its newest release, or a preview where it never was released. Made here where
- * nobody made it yet; whoever asks meanwhile waits for that one.
+ * nobody made it yet; whoever asks meanwhile waits for that one. It is made some devices at a time, so that a web process that
+ * has to do it goes on answering.
  * @throws AppError `package.not_found`, `package.not_built`, `package.bytes_differ`
  */
 export async function assembleBundle(ctx: Ctx, packageId: string): Promise<query.BundleRow> {
@@ -37,34 +38,94 @@ async function makeBundle(
   madeAt: Date,
 ): Promise<query.BundleRow> {
   const sequence = release?.sequence ?? PREVIEW;
-  const files = await bundleFiles(trx, pkg, release);
-  const digest = createHash("sha256");
-  let byteCount = 0;
-  let position = 0;
-  for (const piece of cutPieces(zipPieces(files), query.BUNDLE_CHUNK_BYTES)) {
-    digest.update(piece);
-    byteCount += piece.length;
-    await query.insertBundleChunk(trx, {
-      packageId: pkg.id,
-      sequence,
-      position: position++,
-      content: Buffer.from(piece),
-    });
-  }
-  const bundle = { packageId: pkg.id, sequence, byteCount, sha256: digest.digest(), madeAt };
+  const store = new PieceStore(trx, pkg.id, sequence);
+  for await (const part of bundleParts(trx, pkg, release)) await store.add(part);
+  const bundle = { packageId: pkg.id, sequence, madeAt, ...(await store.finish()) };
   await query.insertBundle(trx, bundle);
   return bundle;
 }
 
-async function bundleFiles(db: Db, pkg: PackageRow, release: LivePeriodRow | undefined) {
-  const content = await readPackageContent(db, pkg);
-  if (!release?.releaseDocument || !release.signature || !release.keyId) {
-    return previewFiles(content, { lot: pkg.lotCode, version: pkg.version });
+/** Stores a stream of bytes in pieces of one length. */
+class PieceStore {
+  readonly #trx: Trx;
+  readonly #bundle: { packageId: string; sequence: number };
+  readonly #cutter = new PieceCutter(query.BUNDLE_CHUNK_BYTES);
+  readonly #digest = createHash("sha256");
+  #byteCount = 0;
+  #position = 0;
+
+  constructor(trx: Trx, packageId: string, sequence: number) {
+    this.#trx = trx;
+    this.#bundle = { packageId, sequence };
   }
-  const { publicPem } = await getSigningKey(db, release.keyId);
-  return releasedFiles(content, {
-    release: release.releaseDocument,
-    signature: release.signature,
-    publicKeyPem: publicPem,
-  });
+
+  async add(part: Uint8Array): Promise<void> {
+    for (const piece of this.#cutter.add(part)) await this.#store(piece);
+  }
+
+  async finish(): Promise<{ byteCount: number; sha256: Buffer }> {
+    const rest = this.#cutter.rest();
+    if (rest) await this.#store(rest);
+    return { byteCount: this.#byteCount, sha256: this.#digest.digest() };
+  }
+
+  async #store(piece: Uint8Array): Promise<void> {
+    this.#digest.update(piece);
+    this.#byteCount += piece.length;
+    const content = Buffer.from(piece.buffer, piece.byteOffset, piece.byteLength);
+    await query.insertBundleChunk(this.#trx, { ...this.#bundle, position: this.#position++, content });
+  }
+}
+
+interface NamedFile {
+  path: string;
+  content: Buffer[];
+}
+
+/** The zip, in parts of any length (contract, section 5). Entries come by path. */
+async function* bundleParts(db: Db, pkg: PackageRow, release: LivePeriodRow | undefined): AsyncGenerator<Uint8Array> {
+  const zip = new PlainZip();
+  const built = await openContent(db, pkg);
+  const manifest = await getPackageFile(db, pkg.id, "manifest.json");
+  const sums = await getPackageFile(db, pkg.id, "SHA256SUMS");
+  const { before, after } = await filesAround(db, pkg, release);
+  const first = [...before, file("SHA256SUMS", sums.content), file("VERIFY.txt", verifyTextFor(release))];
+  for (const one of first) yield* entry(zip, one);
+  yield* entry(zip, { path: "images.jsonl", content: await readValues(db, built) });
+  for await (const hexes of eachHexFile(db, built)) {
+    // One buffer a page: 100,000 small ones would each take their turn through the stream.
+    yield Buffer.concat(hexes.flatMap(({ path, content }) => [zip.head(path, [content]), content]));
+  }
+  for (const one of [file("manifest.json", manifest.content), ...after]) yield* entry(zip, one);
+  yield Buffer.concat([...zip.end()]);
+}
+
+function* entry(zip: PlainZip, { path, content }: NamedFile): Generator<Uint8Array> {
+  yield zip.head(path, content);
+  yield* content;
+}
+
+const file = (path: string, content: Buffer | string): NamedFile => ({ path, content: [Buffer.from(content)] });
+
+const signedOf = (release: LivePeriodRow | undefined) =>
+  release?.releaseDocument && release.signature && release.keyId
+    ? { document: release.releaseDocument, signature: release.signature, keyId: release.keyId }
+    : undefined;
+
+const verifyTextFor = (release: LivePeriodRow | undefined) => (signedOf(release) ? verifyText() : previewVerifyText());
+
+/** What stands beside the package's own files: the three of a release, or the note that it was none. */
+async function filesAround(db: Db, pkg: PackageRow, release: LivePeriodRow | undefined) {
+  const signed = signedOf(release);
+  if (!signed) {
+    const note = notReleasedText({ lot: pkg.lotCode, version: pkg.version });
+    return { before: [file("NOT-RELEASED.txt", note)], after: [] };
+  }
+  const { publicPem } = await getSigningKey(db, signed.keyId);
+  const after = [
+    file("release.json", signed.document),
+    file("release.sig", signed.signature),
+    file("signing-key.pem", publicPem),
+  ];
+  return { before: [], after };
 }

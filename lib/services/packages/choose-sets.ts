@@ -1,9 +1,14 @@
 import { createHash } from "node:crypto";
 import { byCodeUnits } from "@/builders/bundle/manifest";
 import type { Db } from "@/db/executor";
-import { listNewestSets, type NewestSetRow } from "@/db/queries/coefficients";
-import { type DeviceRow, listAllDevices } from "@/db/queries/devices";
-import { listExcludedDeviceIds, listMeasuredBoards } from "@/db/queries/package-inputs";
+import {
+  type DeviceToPack,
+  listDevicesToPack,
+  listExcludedDeviceIds,
+  listMeasuredBoards,
+  listSetsToChoose,
+  type SetToChoose,
+} from "@/db/queries/package-inputs";
 import { chooseSet, type LeftOutReason, type PackageRequirements } from "@/lib/domain/package-selection";
 
 /** One device of a package and the set that it carries: everything that a build repeats from. */
@@ -24,36 +29,58 @@ export interface Selection {
   newerUndecided: string[];
   /** Serials packed although another board is reported in the device than the one that was measured. */
   otherBoard: string[];
+  /** Derivations whose sets are packed, rising. */
+  derivationIds: string[];
 }
+
+/** Devices looked at at a time: how long the event loop is held. */
+const PAGE_DEVICES = 2_000;
+
+const DECIDED = ["approved", "stale", "revoked"] as const;
 
 /** What a lot's package would take now, and what it would leave out. */
 export async function chooseSets(db: Db, lotId: string, needs: PackageRequirements): Promise<Selection> {
-  const devices = await listAllDevices(db, lotId);
-  const newest = bySerial(await listNewestSets(db, lotId));
-  const decided = bySerial(await listNewestSets(db, lotId, { states: ["approved", "stale", "revoked"] }));
   const excludedIds = await listExcludedDeviceIds(db, lotId);
   const selection: Selection = {
-    lotDevices: devices.length,
+    lotDevices: 0,
     packed: [],
     leftOut: [],
     newerUndecided: [],
     otherBoard: [],
+    derivationIds: [],
   };
-  const taken: { device: DeviceRow; set: NewestSetRow }[] = [];
-  for (const device of devices.sort((a, b) => byCodeUnits(a.serial, b.serial))) {
-    const { serial } = device;
-    const excluded = excludedIds.has(device.id);
-    const choice = chooseSet({ ...device, excluded }, newest.get(serial), decided.get(serial), needs);
-    if ("leftOut" in choice) selection.leftOut.push({ serial, reason: choice.leftOut });
-    else {
-      taken.push({ device, set: choice.set });
-      if (choice.newerUndecided) selection.newerUndecided.push(serial);
+  const taken: Taken[] = [];
+  for (let after = "", more = true; more; ) {
+    const devices = await listDevicesToPack(db, lotId, { after, limit: PAGE_DEVICES });
+    const ids = devices.map((device) => device.id);
+    const newest = await listSetsToChoose(db, ids);
+    const decided = await listSetsToChoose(db, ids, DECIDED);
+    for (const device of devices) {
+      const { serial } = device;
+      const excluded = excludedIds.has(device.id);
+      const choice = chooseSet({ ...device, excluded }, newest.get(device.id), decided.get(device.id), needs);
+      if ("leftOut" in choice) selection.leftOut.push({ serial, reason: choice.leftOut });
+      else taken.push({ device, set: choice.set });
+      if ("set" in choice && choice.newerUndecided) selection.newerUndecided.push(serial);
     }
+    selection.lotDevices += devices.length;
+    after = devices.at(-1)?.serial ?? after;
+    more = devices.length === PAGE_DEVICES;
   }
-  const boards = await measuredBoards(
-    db,
-    taken.map(({ set }) => set),
-  );
+  await addPacked(db, selection, taken);
+  return selection;
+}
+
+interface Taken {
+  device: DeviceToPack;
+  set: SetToChoose;
+}
+
+/** Packs what was taken, each with the board that its coefficients were found on. */
+async function addPacked(db: Db, selection: Selection, taken: readonly Taken[]): Promise<void> {
+  selection.derivationIds = [...new Set(taken.map(({ set }) => set.derivationId))].sort(byCodeUnits);
+  const rows = await listMeasuredBoards(db, selection.derivationIds);
+  const boards = new Map(rows.map((row) => [`${row.derivationId} ${row.deviceId}`, row.hardwareId]));
   for (const { device, set } of taken) {
     const { id: deviceId, serial } = device;
     const measured = boards.get(`${set.derivationId} ${deviceId}`) ?? null;
@@ -61,16 +88,8 @@ export async function chooseSets(db: Db, lotId: string, needs: PackageRequiremen
     if (measured !== null && device.hardwareId !== null && device.hardwareId !== measured)
       selection.otherBoard.push(serial);
   }
-  return selection;
-}
-
-function bySerial(sets: readonly NewestSetRow[]): Map<string, NewestSetRow> {
-  return new Map(sets.map((set) => [set.serial, set]));
-}
-
-async function measuredBoards(db: Db, sets: readonly NewestSetRow[]): Promise<Map<string, string>> {
-  const rows = await listMeasuredBoards(db, [...new Set(sets.map((set) => set.derivationId))]);
-  return new Map(rows.map((row) => [`${row.derivationId} ${row.deviceId}`, row.hardwareId]));
+  // The database orders by its own rules; bundles go by code units.
+  selection.packed.sort((a, b) => byCodeUnits(a.serial, b.serial));
 }
 
 /** One value for a package's list of devices, so that two lists are compared without being read. */

@@ -1,52 +1,86 @@
-import type { PackageContent } from "@/builders/bundle/bundle";
-import { imageLine } from "@/builders/bundle/images-jsonl";
+import { hexPath } from "@/builders/bundle/bundle";
+import { ByteSink } from "@/builders/bundle/byte-sink";
+import { HexTemplate } from "@/builders/bundle/hex-template";
+import { byCodeUnits } from "@/builders/bundle/manifest";
 import { sha256Hex } from "@/builders/bundle/sha256";
+import { ValuesTemplate } from "@/builders/bundle/values-template";
 import { type CompiledLayout, compileLayout } from "@/builders/codec/compile-layout";
 import { writeImageHex } from "@/builders/codec/hex-image";
-import { decodeImage } from "@/builders/codec/image";
 import type { Db } from "@/db/executor";
-import { eachImages, type ImageRow, listDerivationsOfSets } from "@/db/queries/images";
+import {
+  eachImages,
+  type ImageRow,
+  listDerivationsOfSets,
+  listImagesOfSerials,
+  listSerials,
+} from "@/db/queries/images";
 import { getLayoutById } from "@/db/queries/layouts";
 import { listPackageFiles } from "@/db/queries/package-provenance";
-import { getPackageFile } from "@/db/queries/packages";
 import { AppError } from "@/lib/errors";
 
+/** Images read at a time: bounds memory and how long the event loop is held. */
+const PAGE_IMAGES = 500;
+
+export interface BuiltFrom {
+  id: string;
+  layout: CompiledLayout;
+}
+
+/** A built package with its layout, ready for its bytes to be made again. */
+export async function openContent(db: Db, pkg: { id: string; layoutId: string }): Promise<BuiltFrom> {
+  return { id: pkg.id, layout: compileLayout((await getLayoutById(db, pkg.layoutId)).document) };
+}
+
 /**
- * The bytes of a built package, made from its stored images and held against the digests of what was built, so that what the
- * code of today would write otherwise is refused instead of handed out. Making `images.jsonl` again takes a third of the time
- * of reading the stored one.
+ * `images.jsonl` in pieces, made from the stored images and held against the digest of what was built, so that what the code
+ * of today would write otherwise is refused instead of handed out. Making it again takes a third of the time of reading the
+ * stored one.
  * @throws AppError `package.not_built`, `package.bytes_differ` {path}
  */
-export async function readPackageContent(db: Db, pkg: { id: string; layoutId: string }): Promise<PackageContent> {
-  const manifest = await getPackageFile(db, pkg.id, "manifest.json");
-  const layout = compileLayout((await getLayoutById(db, pkg.layoutId)).document);
-  const hexes = new Map<string, string>();
-  const lines: Buffer[] = [];
-  for await (const images of eachImages(db, pkg.id)) {
-    for (const image of images) hexes.set(image.serial, hexOf(layout, image));
-    lines.push(await linesOf(db, layout, images));
+export async function readValues(db: Db, { id, layout }: BuiltFrom): Promise<Buffer[]> {
+  const sink = new ByteSink();
+  const template = new ValuesTemplate(layout);
+  for await (const images of eachImages(db, id, PAGE_IMAGES)) {
+    const setIds = images.map((image) => image.coefficientSetId);
+    const derivations = await listDerivationsOfSets(db, setIds);
+    for (const { serial, sha256, bytes, coefficientSetId } of images) {
+      const derivation = derivations.get(coefficientSetId) as string;
+      const line = template.line({ serial, derivation, sha256: sha256.toString("hex") }, bytes);
+      sink.add(line.room, line.write);
+    }
   }
-  const values = Buffer.concat(lines);
-  await assertAsBuilt(db, pkg.id, "images.jsonl", values);
-  return { manifest: manifest.content, values, hexes };
+  const values = sink.finish();
+  const built = (await listPackageFiles(db, id)).find((file) => file.name === "images.jsonl");
+  if (built?.sha256.toString("hex") !== values.sha256) throw bytesDiffer("images.jsonl");
+  return values.pieces;
 }
 
-/** Lines of `images.jsonl`. */
-async function linesOf(db: Db, layout: CompiledLayout, images: readonly ImageRow[]): Promise<Buffer> {
-  const setIds = images.map((image) => image.coefficientSetId);
-  const derivations = await listDerivationsOfSets(db, setIds);
-  let lines = "";
-  for (const { serial, sha256, bytes, coefficientSetId } of images) {
-    const derivation = derivations.get(coefficientSetId) as string;
-    const fields = decodeImage(layout, bytes);
-    lines += imageLine({ serial, derivation, sha256: sha256.toString("hex"), fields });
-  }
-  return Buffer.from(lines);
+/** A HEX file of a bundle. */
+export interface HexFile {
+  path: string;
+  content: Buffer;
 }
 
-async function assertAsBuilt(db: Db, packageId: string, name: string, content: Buffer): Promise<void> {
-  const built = (await listPackageFiles(db, packageId)).find((file) => file.name === name);
-  if (built?.sha256.toString("hex") !== sha256Hex(content)) throw bytesDiffer(name);
+/**
+ * All HEX files of a package by path, some at a time, each held against the digest of what was built.
+ * @throws AppError `package.bytes_differ` {path}
+ */
+export async function* eachHexFile(db: Db, { id, layout }: BuiltFrom): AsyncGenerator<HexFile[]> {
+  const template = new HexTemplate(layout);
+  // By path: a dot stands after a hyphen, and so "A.hex" after "A-1.hex".
+  const serials = (await listSerials(db, id)).sort((a, b) => byCodeUnits(hexPath(a), hexPath(b)));
+  for (let from = 0; from < serials.length; from += PAGE_IMAGES) {
+    const page = serials.slice(from, from + PAGE_IMAGES);
+    const images = await listImagesOfSerials(db, id, page);
+    yield page.map((serial) => {
+      const image = images.get(serial);
+      const path = hexPath(serial);
+      if (!image) throw bytesDiffer(path);
+      const content = template.bytesOf(image.bytes);
+      if (sha256Hex(content) !== image.hexSha256.toString("hex")) throw bytesDiffer(path);
+      return { path, content };
+    });
+  }
 }
 
 /** An image as Intel HEX. @throws AppError `package.bytes_differ` where it is not the text that was built */

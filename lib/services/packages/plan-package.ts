@@ -1,5 +1,4 @@
 import { countDevices } from "@/db/queries/devices";
-import { listDerivationsOfSets } from "@/db/queries/images";
 import { listPublishedLayoutDocuments } from "@/db/queries/layouts";
 import { getLot } from "@/db/queries/lots";
 import { listMakers } from "@/db/queries/makers";
@@ -50,15 +49,14 @@ export async function planPackage(ctx: PersonCtx, lotCode: string): Promise<Pack
   }));
   layouts.sort((a, b) => b.version.localeCompare(a.version, "en", { numeric: true }));
   const content: PackagePlan["content"] = {};
-  const sets: string[] = [];
+  const derivations = new Set<string>();
   let devices = await countDevices(ctx.db, lot.id);
   for (const order of new Set(layouts.map((layout) => layout.order))) {
     const selection = await chooseSets(ctx.db, lot.id, { order, familyRevisionId: lot.familyRevisionId });
     content[order] = contentOf(selection);
-    sets.push(...selection.packed.map((one) => one.coefficientSetId));
+    for (const id of selection.derivationIds) derivations.add(id);
     devices = selection.lotDevices;
   }
-  const derivations = new Set((await listDerivationsOfSets(ctx.db, sets)).values());
   const signers = await signersOf(ctx, [...derivations]);
   return { firmware: lot.firmware, devices, layouts, content, signers };
 }

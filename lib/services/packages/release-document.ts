@@ -9,7 +9,8 @@ import {
   listExclusions,
 } from "@/db/queries/derivations";
 import { listPackageDerivationIds } from "@/db/queries/package-inputs";
-import { getPackageFile, type PackageRow } from "@/db/queries/packages";
+import { listPackageFiles } from "@/db/queries/package-provenance";
+import type { PackageRow } from "@/db/queries/packages";
 import { listRunEquipment } from "@/db/queries/runs";
 
 export interface ReleaseFacts {
@@ -32,7 +33,8 @@ export async function readReleaseFacts(
   facts: ReleaseFacts,
 ): Promise<Omit<ReleaseRecord, "ledgerHead">> {
   const derivationIds = await listPackageDerivationIds(db, pkg.id);
-  const sums = await getPackageFile(db, pkg.id, "SHA256SUMS");
+  const files = await listPackageFiles(db, pkg.id);
+  const sums = files.find((file) => file.name === "SHA256SUMS") as (typeof files)[number];
   const waivers = await listWaivers(db, pkg.id);
   return {
     format: "trimwright/release@1",
