@@ -115,6 +115,18 @@ describe("importing coefficients", () => {
     ]);
   });
 
+  it("tells values that hold the cell's effect in the place of its correction, and asks for an acknowledgement", async () => {
+    const reply = await importCsv(`${HEADER}\n${ROW.replace("-0.00041", "0.00041")}\n`);
+    const found = reply.body.findings.filter((one: Reply) => one.severity === "soft");
+    expect(found.map((one: Reply) => [one.code, one.data.coefficient, one.data.compared])).toContainEqual([
+      "import.sign_opposite",
+      "gainTc",
+      1,
+    ]);
+    expect(reply.body).toMatchObject({ envelope: null, uncertainty: null, counts: { findings: { hard: 0 } } });
+    expect(reply.body.counts.findings.soft).toBe(found.length);
+  });
+
   it.each([
     ["another reference", { referenceC: 23, capacityKg: 20 }, 409, "coefficients.reference_differs"],
     ["another capacity", { referenceC: 20, capacityKg: 30 }, 409, "coefficients.reference_differs"],

@@ -7,7 +7,7 @@ import { gainAt, gainShape } from "./predict";
 import type { Coefficients, FamilyRules, GainCoefficients, GainSource, PooledResult } from "./types";
 
 /** Beyond this distance of gain from 1 a wrong load or capacity is likelier than a cell (common practice, no source). */
-const GAIN_FROM_ONE = 0.2;
+export const GAIN_FROM_ONE = 0.2;
 
 /** A gain and where it came from. */
 interface ChosenGain {
@@ -51,6 +51,7 @@ function ownGain(device: FittedDevice, order: Order): ChosenGain | undefined {
   }
   result.uncertainty.gain = trim.gainStandardError;
   result.uncertainty.gainTc = trim.gainTcStandardError;
+  if (order === 2) result.uncertainty.gainTc2 = trim.gainTc2StandardError;
   result.uncertainty.residualSdGain = trim.residualSd;
   result.uncertainty.degreesOfFreedomGain = trim.degreesOfFreedom;
   // Without a point to spare the errors are zero by construction and say nothing.
@@ -105,7 +106,10 @@ export function trimDevice(
   const [zeroMvV, zeroTc, zeroTc2] = zero.coefficients as [number, number, number | undefined];
   const { gain, gainTc, gainTc2 } = chosen.gain;
   const coefficients: Coefficients = { tempOffset, tempSlope, zero: zeroMvV, zeroTc, gain, gainTc };
-  if (zeroTc2 !== undefined) coefficients.zeroTc2 = zeroTc2;
+  if (zeroTc2 !== undefined) {
+    coefficients.zeroTc2 = zeroTc2;
+    result.uncertainty.zeroTc2 = zero.standardErrors?.[2] ?? null;
+  }
   if (gainTc2 !== undefined) coefficients.gainTc2 = gainTc2;
   const { serial } = result;
   if (!(gain > 0) || !Object.values(coefficients).every(Number.isFinite)) {

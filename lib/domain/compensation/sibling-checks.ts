@@ -2,10 +2,16 @@ import { makeFinding } from "./findings";
 import { findOutliers, medianOf, type Outlier, type OutlierLevels } from "./outliers";
 import type { Coefficients, DeviceResult, FamilyRules, Finding } from "./types";
 
+/** What of a device is compared with others; `findings` takes what is found. */
+export type Sibling = Pick<
+  DeviceResult,
+  "serial" | "coefficients" | "individual" | "gainFrom" | "measuredRangeC" | "findings"
+>;
+
 /** Devices in a lot's coefficients and the effect of a difference on the output, v at capacity at the range's end. */
 interface Compared {
   coefficient: "zero" | "zeroTc" | "gain" | "gainTc";
-  devices: DeviceResult[];
+  devices: Sibling[];
   values: number[];
   intervalsPer: number;
   levels: OutlierLevels;
@@ -39,7 +45,7 @@ function outlierFindings({ coefficient, devices, values, intervalsPer, levels }:
   }
   for (const outlier of weighty) {
     const { index, score, threshold, g, critical, caveat } = outlier;
-    const device = devices[index] as DeviceResult;
+    const device = devices[index] as Sibling;
     const data = {
       coefficient,
       value: values[index],
@@ -54,7 +60,7 @@ function outlierFindings({ coefficient, devices, values, intervalsPer, levels }:
 }
 
 /** Largest distance from the reference that the devices were measured at, K. */
-function reachOf(devices: readonly DeviceResult[], referenceC: number): number {
+function reachOf(devices: readonly Sibling[], referenceC: number): number {
   return devices.reduce(
     (reach, { measuredRangeC: [low, high] }) =>
       Math.max(reach, Math.abs(low - referenceC), Math.abs(high - referenceC)),
@@ -79,7 +85,7 @@ function signFindings({ devices, values, intervalsPer }: Compared): void {
     if (Math.sign(gainTc) !== -sign || Math.abs(gainTc) * intervalsPer < SLIGHT_V) return;
     const others = values.length - 1;
     if (alike < ALIKE_MIN || alike < ALIKE * others) return;
-    const { serial, findings } = devices[i] as DeviceResult;
+    const { serial, findings } = devices[i] as Sibling;
     findings.push(makeFinding("coefficient.sign_unlike", { serial, data: { gainTc, alike, others, median } }));
   });
 }
@@ -96,7 +102,7 @@ interface ThermometerMeasure {
 }
 
 /** Readings at the ends of the measured range, and by how much they rise between these. */
-function thermometerMeasures(devices: readonly DeviceResult[]): ThermometerMeasure[] {
+function thermometerMeasures(devices: readonly Sibling[]): ThermometerMeasure[] {
   const low = medianOf(devices.map((device) => device.measuredRangeC[0]));
   const high = medianOf(devices.map((device) => device.measuredRangeC[1]));
   const readings = (atC: number) => devices.map((device) => readingAt(device.coefficients as Coefficients, atC));
@@ -112,13 +118,13 @@ function thermometerMeasures(devices: readonly DeviceResult[]): ThermometerMeasu
  * A thermometer that reads otherwise than its siblings: the calibration takes it up, but it is rarer than a slipped row
  * or a board on another cell, and then the output would be off by what is told.
  */
-function checkThermometers(devices: readonly DeviceResult[], { intervals, nominalMvV }: FamilyRules): void {
+function checkThermometers(devices: readonly Sibling[], { intervals, nominalMvV }: FamilyRules): void {
   const perCount = medianOf(devices.map((device) => (device.coefficients as Coefficients).tempSlope));
-  const found = new Map<DeviceResult, { away: number; data: Record<string, unknown> }>();
+  const found = new Map<Sibling, { away: number; data: Record<string, unknown> }>();
   for (const { readings, where } of thermometerMeasures(devices)) {
     const { median, outliers } = findOutliers(readings, LEVELS);
     for (const { index, score, threshold, g, critical } of outliers) {
-      const device = devices[index] as DeviceResult;
+      const device = devices[index] as Sibling;
       const awayK = ((readings[index] as number) - median) * perCount;
       const { gainTc, zeroTc } = device.coefficients as Coefficients;
       const effect = Math.abs(awayK) * (Math.abs(gainTc) + Math.abs(zeroTc) / nominalMvV) * intervals;
@@ -138,8 +144,8 @@ function checkThermometers(devices: readonly DeviceResult[], { intervals, nomina
  * individual derivation. @param pooled whether that gainTc stands for the lot.
  */
 export function checkSiblings(
-  devices: readonly DeviceResult[],
-  trimmed: readonly DeviceResult[],
+  devices: readonly Sibling[],
+  trimmed: readonly Sibling[],
   pooled: boolean,
   family: FamilyRules,
 ): Finding[] {
@@ -148,11 +154,7 @@ export function checkSiblings(
   const own = valued.filter((device) => device.gainFrom !== "sample-mean");
   const reach = reachOf(devices, referenceC);
   const perMvV = intervals / nominalMvV;
-  const of = (
-    list: readonly DeviceResult[],
-    coefficient: "zero" | "zeroTc" | "gain",
-    intervalsPer: number,
-  ): Compared => ({
+  const of = (list: readonly Sibling[], coefficient: "zero" | "zeroTc" | "gain", intervalsPer: number): Compared => ({
     coefficient,
     devices: [...list],
     values: list.map((device) => (device.coefficients as Coefficients)[coefficient]),

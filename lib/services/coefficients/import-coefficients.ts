@@ -1,18 +1,21 @@
 import { derivationDigest } from "@/builders/bundle/manifest";
 import { sha256Hex } from "@/builders/bundle/sha256";
-import { insertSets } from "@/db/queries/coefficients";
+import type { Db } from "@/db/executor";
+import { insertSets, listSetValues } from "@/db/queries/coefficients";
 import {
+  type DerivationState,
   finishDerivation,
   insertDerivation,
   insertDerivationFindings,
   insertImportFile,
+  listDerivationsOfLot,
 } from "@/db/queries/derivations";
 import { listAllDevices } from "@/db/queries/devices";
 import { getLot, type LotRow } from "@/db/queries/lots";
 import { insertMakers } from "@/db/queries/makers";
-import { makeFinding } from "@/lib/domain/compensation/findings";
-import type { FamilyRules, Finding } from "@/lib/domain/compensation/types";
-import { type ParsedCoefficients, parseCoefficientsCsv } from "@/lib/domain/readings/parse-coefficients-csv";
+import { type DerivedBefore, listImportFindings } from "@/lib/domain/compensation/import-findings";
+import type { Coefficients, FamilyRules } from "@/lib/domain/compensation/types";
+import { parseCoefficientsCsv } from "@/lib/domain/readings/parse-coefficients-csv";
 import { RowErrorList } from "@/lib/domain/readings/row-error-list";
 import { AppError } from "@/lib/errors";
 import { assertRole, type PersonCtx } from "@/lib/services/context";
@@ -30,8 +33,8 @@ export interface ImportInput {
   bytes: Buffer;
 }
 
-/** Beyond this distance of gain from 1 something else than a cell's spread is likelier (common practice, no source). */
-const GAIN_FROM_ONE = 0.2;
+/** States of a derivation whose values have something to say. */
+const DERIVED: readonly DerivationState[] = ["proposed", "approved", "partly-approved"];
 
 /**
  * Takes coefficients that were found elsewhere into a lot, as a derivation with method import that a second person decides.
@@ -50,7 +53,8 @@ export async function importCoefficients(ctx: PersonCtx, input: ImportInput): Pr
   const engine = `import:${fileSha256}`;
   const family = { code: lot.familyCode, revision: revision.number, sha256: revision.sha256.toString("hex") };
   const sha256 = derivationDigest({ method: "import", order: parsed.order, family, runs: [], exclude: [], engine });
-  const findings = listImportFindings(parsed).map((finding) => ({ ...finding, id: ctx.newId() }));
+  const before = await findDerivedBefore(ctx.db, lot.id);
+  const findings = listImportFindings(parsed.sets, rules, before).map((one) => ({ ...one, id: ctx.newId() }));
   const sets = parsed.sets.map(({ serial, coefficients }) => ({
     id: ctx.newId(),
     deviceId: deviceIds.get(serial) as string,
@@ -129,13 +133,14 @@ async function readFile(ctx: PersonCtx, lot: LotRow, bytes: Buffer) {
   throw new AppError("coefficients.invalid", { errors: errors.list(), errorCount, message });
 }
 
-function listImportFindings({ sets }: ParsedCoefficients): Finding[] {
-  const message = "Imported values: no readings of this lot stand behind them, and nothing is said on their errors.";
-  const findings: Finding[] = [{ code: "import.not_measured", severity: "note", serial: null, point: null, message }];
-  for (const { serial, coefficients } of sets) {
-    const { gain } = coefficients;
-    if (Math.abs(gain - 1) > GAIN_FROM_ONE)
-      findings.push(makeFinding("gain.far_from_nominal", { serial, data: { gain } }));
-  }
-  return findings;
+/** Sets of the lot's newest derivation from readings; null where there is none. */
+async function findDerivedBefore(db: Db, lotId: string): Promise<DerivedBefore | null> {
+  const derivation = (await listDerivationsOfLot(db, lotId)).find(
+    ({ method, state }) => method !== "import" && DERIVED.includes(state),
+  );
+  if (!derivation) return null;
+  const values = new Map<string, Coefficients>();
+  for (const { serial, coefficients } of await listSetValues(db, derivation.id))
+    if (coefficients) values.set(serial, coefficients);
+  return { values, pooled: derivation.pooled };
 }

@@ -1,4 +1,4 @@
-import { coefficient, type Kind, outlierTests, ppm, show } from "./words";
+import { coefficient, devices, type Kind, outlierTests, ppm, show } from "./words";
 
 /** Findings on one device of a derivation. */
 export const DEVICE_KINDS = {
@@ -49,7 +49,10 @@ export const DEVICE_KINDS = {
   },
   "gain.far_from_nominal": {
     severity: "soft",
-    words: (f) => `Gain ${show(f.gain)} is far from 1: check load, capacity and nominal output.`,
+    words: (f) => {
+      const many = typeof f.devices === "number" && f.devices > 1 ? ` (${devices(f)}, this the furthest)` : "";
+      return `Gain ${show(f.gain)} is far from 1${many}: check load, capacity and nominal output.`;
+    },
   },
   "sample.trim_missing": {
     severity: "soft",
