@@ -162,6 +162,8 @@ const deviceMembers = {
       zeroTc: numberOrNull,
       gain: numberOrNull,
       gainTc: numberOrNull,
+      zeroTc2: numberOrNull.optional(),
+      gainTc2: numberOrNull.optional(),
       residualSdTemperature: numberOrNull,
       residualSdZero: numberOrNull,
       residualSdGain: numberOrNull,

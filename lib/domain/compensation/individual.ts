@@ -35,13 +35,23 @@ export interface GainTrim {
   coefficients: GainCoefficients;
   gainStandardError: number | null;
   gainTcStandardError: number | null;
+  /** Null in order 1. */
+  gainTc2StandardError: number | null;
   residualSd: number | null;
   degreesOfFreedom: number;
 }
 
 /**
+ * Standard error of the ratio b_i/b0 of two coefficients, of first order in the errors of both, with their covariance.
+ * @param ratio b_i/b0.
+ */
+function ratioError(covariance: readonly (readonly number[])[], i: 1 | 2, ratio: number, b0: number): number {
+  const [v0, v0i, vi] = [covariance[0]?.[0], covariance[0]?.[i], covariance[i]?.[i]] as [number, number, number];
+  return Math.sqrt(Math.max(0, vi - 2 * ratio * v0i + ratio * ratio * v0)) / b0;
+}
+
+/**
  * Individual trim: least squares of the needed gain N/S on d, written as gain·(1 + gainTc·d (+ gainTc2·d²)).
- * The standard error of gainTc = b1/b0 is of first order in the errors of both, with their covariance.
  * @param d K, as many as span signals. @param spansMvV span signals S > 0 scaled to capacity.
  * @returns undefined where the points do not fix the curve or gain would not be positive.
  */
@@ -63,15 +73,13 @@ export function findGainTrim(
   const coefficients: GainCoefficients = { gain, gainTc };
   if (square !== undefined) coefficients.gainTc2 = square / gain;
   if (!Object.values(coefficients).every(Number.isFinite)) return undefined;
-  const { residualSd, degreesOfFreedom, covariance } = fit;
-  if (!covariance)
-    return { coefficients, gainStandardError: null, gainTcStandardError: null, residualSd, degreesOfFreedom };
-  const [v00, v01, v11] = [covariance[0]?.[0], covariance[0]?.[1], covariance[1]?.[1]] as [number, number, number];
-  const variance = (v11 - 2 * gainTc * v01 + gainTc * gainTc * v00) / (gain * gain);
+  const { residualSd, degreesOfFreedom, covariance, standardErrors } = fit;
+  const { gainTc2 } = coefficients;
   return {
     coefficients,
-    gainStandardError: Math.sqrt(v00),
-    gainTcStandardError: Math.sqrt(Math.max(0, variance)),
+    gainStandardError: standardErrors?.[0] ?? null,
+    gainTcStandardError: covariance ? ratioError(covariance, 1, gainTc, gain) : null,
+    gainTc2StandardError: covariance && gainTc2 !== undefined ? ratioError(covariance, 2, gainTc2, gain) : null,
     residualSd,
     degreesOfFreedom,
   };

@@ -145,6 +145,10 @@ export interface DeviceUncertainty {
   zeroTc: number | null;
   gain: number | null;
   gainTc: number | null;
+  /** Order 2 only; missing from results of before it was kept. */
+  zeroTc2?: number | null;
+  /** Order 2 with a gain of the device's own only. */
+  gainTc2?: number | null;
   residualSdTemperature: number | null;
   residualSdZero: number | null;
   residualSdGain: number | null;

@@ -7,8 +7,8 @@ import { chanceInside, shareInside } from "@/lib/domain/compensation/sample-plan
 import { meanOf, standardDeviationOf } from "@/lib/domain/compensation/sample-statistics";
 import { shareShown, shareShownWithFailures } from "@/lib/domain/compensation/share-shown";
 import { oneSidedFactor, toleranceFactor } from "@/lib/domain/compensation/tolerance";
+import { drawValues, expectAtLeast, expectShare, normalSource, shareOf } from "@/tests/support/normal-source";
 import { readFamily } from "@/tests/unit/compensation/golden-example";
-import { drawValues, expectAtLeast, expectShare, normalSource, shareOf } from "./normal-source";
 
 /**
  * Monte Carlo with a fixed seed: intervals are drawn over and over from a population that is known, and have to cover
