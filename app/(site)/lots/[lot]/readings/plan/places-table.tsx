@@ -42,14 +42,14 @@ export function PlacesTable({ devices, findings, onPlace }: PlacesTableProps) {
         <tbody>
           {shown.map(({ serial, position }) => (
             <tr key={serial} className="border-b border-rule/55 last:border-0">
-              <td className="w-32 px-3 py-1">
+              <td className="px-3 py-1">
                 <input
                   aria-label={`Place of ${serial}`}
                   value={position}
                   maxLength={32}
                   aria-invalid={about.get(serial)?.some((one) => one.code.startsWith("plan.position")) || undefined}
                   onChange={(event) => onPlace(serial, event.currentTarget.value)}
-                  className={`${inputLook} h-8 font-mono text-sm`}
+                  className={`${inputLook} h-8 min-w-28 font-mono text-sm`}
                 />
               </td>
               <td className="px-3 py-1 font-mono text-sm whitespace-nowrap">{serial}</td>

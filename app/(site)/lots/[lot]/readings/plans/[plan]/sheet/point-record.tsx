@@ -1,3 +1,4 @@
+import { ScrollRegion } from "@/app/_components/scroll-region";
 import { formatNumberOf } from "@/lib/domain/format/figure";
 import type { PlannedDevice, PlannedPoint } from "@/lib/domain/run-plan/run-plan";
 import { plainFigure } from "../points-table";
@@ -5,6 +6,9 @@ import { WriteLine } from "./sheet-parts";
 
 /** Columns to write signals into that fit beside place and serial on an upright sheet. */
 const COLUMNS_MAX = 6;
+
+/** Devices of a point that stay on one sheet with its heading. */
+const KEPT_TOGETHER_MAX = 24;
 
 const cell = "border border-rule px-1.5 py-1";
 
@@ -16,7 +20,7 @@ export function PointRecord({ point, devices }: { point: PlannedPoint; devices: 
   const parts = [];
   for (let from = 0; from < columns.length; from += COLUMNS_MAX) parts.push(columns.slice(from, from + COLUMNS_MAX));
   return (
-    <div className="mt-6">
+    <div className={`mt-6 ${devices.length <= KEPT_TOGETHER_MAX ? "break-inside-avoid" : ""}`}>
       <h2 className="flex flex-wrap items-baseline gap-x-3 border-b border-rule pb-1 text-sm font-[650]">
         Point {plainFigure(point.point)}: {plainFigure(point.setC)} °C
         <span className="text-xs font-normal text-ink-soft">
@@ -25,11 +29,11 @@ export function PointRecord({ point, devices }: { point: PlannedPoint; devices: 
           {formatNumberOf(point.repeats, "repeat")}
         </span>
       </h2>
-      <div className="my-2 grid grid-cols-4 gap-x-5 break-inside-avoid">
-        <WriteLine label="Steady since, date and time" />
+      <div className="my-2 grid grid-cols-2 gap-x-5 sm:grid-cols-4 print:grid-cols-4 break-inside-avoid break-after-avoid">
+        <WriteLine label="Steady since" />
         <WriteLine label="Readings begun" />
-        <WriteLine label="Reference sensor then, °C" />
-        <WriteLine label="Reference sensor at the end, °C" />
+        <WriteLine label="Reference then, °C" />
+        <WriteLine label="Reference at the end, °C" />
       </div>
       {parts.map((part, index) => (
         <SignalTable
@@ -51,39 +55,41 @@ interface SignalTableProps {
 
 function SignalTable({ columns, devices, withTemperature }: SignalTableProps) {
   return (
-    <table className="mb-2 w-full table-fixed text-xs">
-      <thead>
-        <tr className="text-left">
-          <th scope="col" className={`${cell} w-[13%]`}>
-            Place
-          </th>
-          <th scope="col" className={`${cell} w-[24%]`}>
-            Serial
-          </th>
-          {withTemperature ? (
-            <th scope="col" className={cell}>
-              Device temp.
+    <ScrollRegion label="Readings of this point" className="overflow-x-auto print:overflow-visible">
+      <table className="mb-2 w-full min-w-[600px] table-fixed text-xs print:min-w-0">
+        <thead>
+          <tr className="text-left">
+            <th scope="col" className={`${cell} w-[10%]`}>
+              Place
             </th>
-          ) : null}
-          {columns.map(({ repeat, load }) => (
-            <th key={`${repeat} ${load}`} scope="col" className={`${cell} font-normal`}>
-              <b>{load === 0 ? "0" : plainFigure(load)} kg</b>, {repeat}
+            <th scope="col" className={`${cell} w-[21%]`}>
+              Serial
             </th>
-          ))}
-        </tr>
-      </thead>
-      <tbody>
-        {devices.map(({ serial, position }) => (
-          <tr key={serial} className="h-7">
-            <td className={`${cell} font-mono break-all`}>{position}</td>
-            <td className={`${cell} font-mono break-all`}>{serial}</td>
-            {withTemperature ? <td className={cell} /> : null}
+            {withTemperature ? (
+              <th scope="col" className={cell}>
+                Device temp.
+              </th>
+            ) : null}
             {columns.map(({ repeat, load }) => (
-              <td key={`${repeat} ${load}`} className={cell} />
+              <th key={`${repeat} ${load}`} scope="col" className={`${cell} font-normal`}>
+                <b>{load === 0 ? "0" : plainFigure(load)} kg</b>, {repeat}
+              </th>
             ))}
           </tr>
-        ))}
-      </tbody>
-    </table>
+        </thead>
+        <tbody>
+          {devices.map(({ serial, position }) => (
+            <tr key={serial} className="h-7">
+              <td className={`${cell} font-mono break-all`}>{position}</td>
+              <td className={`${cell} font-mono break-all`}>{serial}</td>
+              {withTemperature ? <td className={cell} /> : null}
+              {columns.map(({ repeat, load }) => (
+                <td key={`${repeat} ${load}`} className={cell} />
+              ))}
+            </tr>
+          ))}
+        </tbody>
+      </table>
+    </ScrollRegion>
   );
 }
