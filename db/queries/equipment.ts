@@ -70,17 +70,28 @@ export async function listEquipment(
   return rows.map(rowOf);
 }
 
-/** A piece of equipment, locked until commit. @throws AppError `equipment.not_found` */
-export async function lockEquipment(trx: Trx, codeOrId: string): Promise<EquipmentRow> {
-  const row = await trx
+const notFound = (equipment: string) =>
+  new AppError("equipment.not_found", { equipment, message: `There is no equipment ${equipment}.` });
+
+function selectOne(db: Db, codeOrId: string) {
+  return db
     .selectFrom("equipment")
     .select(equipmentColumns)
-    .where(isUuid(codeOrId) ? "id" : "code", "=", isUuid(codeOrId) ? codeOrId : codeOrId.trim().toUpperCase())
-    .forUpdate()
-    .executeTakeFirstOrThrow(
-      () => new AppError("equipment.not_found", { equipment: codeOrId, message: `There is no equipment ${codeOrId}.` }),
-    );
-  return rowOf(row);
+    .where(isUuid(codeOrId) ? "id" : "code", "=", isUuid(codeOrId) ? codeOrId : codeOrId.trim().toUpperCase());
+}
+
+/** A piece of equipment by its code (any case) or UUID. @throws AppError `equipment.not_found` */
+export async function getEquipment(db: Db, codeOrId: string): Promise<EquipmentRow> {
+  return rowOf(await selectOne(db, codeOrId).executeTakeFirstOrThrow(() => notFound(codeOrId)));
+}
+
+/** A piece of equipment, locked until commit. @throws AppError `equipment.not_found` */
+export async function lockEquipment(trx: Trx, codeOrId: string): Promise<EquipmentRow> {
+  return rowOf(
+    await selectOne(trx, codeOrId)
+      .forUpdate()
+      .executeTakeFirstOrThrow(() => notFound(codeOrId)),
+  );
 }
 
 /** @throws constraint `equipment_code_unique` → `equipment.exists` */

@@ -11,6 +11,8 @@ export interface RunRow {
   purpose: Purpose;
   /** Of the bytes as uploaded. */
   sha256: Buffer;
+  /** Of the file that the bytes were made from, null where they are it. */
+  sourceSha256: Buffer | null;
   byteCount: number;
   rowCount: number;
   deviceCount: number;
@@ -42,6 +44,7 @@ function selectRun(db: Db) {
       "lot.code as lotCode",
       "run.purpose",
       "run.sha256",
+      "run.sourceSha256",
       "run.byteCount",
       "run.rowCount",
       "run.deviceCount",
@@ -100,6 +103,7 @@ export interface NewRun {
   lotId: string;
   purpose: Purpose;
   sha256: Buffer;
+  sourceSha256: Buffer | null;
   byteCount: number;
   rowCount: number;
   deviceCount: number;

@@ -16,6 +16,7 @@ import { openApiCommands } from "./commands/openapi";
 import { packageCommands } from "./commands/packages";
 import { peopleCommands } from "./commands/people";
 import { proofCommands } from "./commands/proofs";
+import { readingMappingCommands } from "./commands/reading-mappings";
 import { rebuildCommands } from "./commands/rebuilds";
 import { reinstatementCommands } from "./commands/reinstatements";
 import { runPlanCommands } from "./commands/run-plans";
@@ -30,6 +31,7 @@ export const commands: readonly AnyCommand[] = [
   ...familyCommands,
   ...layoutCommands,
   ...equipmentCommands,
+  ...readingMappingCommands,
   ...lotCommands,
   ...sampleCommands,
   ...runPlanCommands,

@@ -39,6 +39,9 @@ export const newRunQuery = z
     reason: reason.optional().meta({ description: "Why the earlier run is replaced" }),
     plan: id.optional().meta({ description: "Planned run that these are the readings of" }),
     fileName: z.string().trim().max(255).optional(),
+    sourceSha256: sha256Hex
+      .optional()
+      .meta({ description: "Of the file that these bytes were made from by column mapping" }),
   })
   .refine((query) => query.supersedes === undefined || query.reason !== undefined, {
     path: ["reason"],
@@ -50,6 +53,9 @@ const runMembers = {
   lot: z.string(),
   purpose,
   sha256: sha256Hex,
+  sourceSha256: sha256Hex
+    .nullable()
+    .meta({ description: "Of the file that the bytes were made from, null where they are it" }),
   bytes: z.number().int(),
   rows: z.number().int(),
   devices: z.number().int(),

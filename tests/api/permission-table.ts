@@ -50,8 +50,12 @@ layouts.decide                 401    role yes  role role role role role    role
 layouts.retire                 401    yes  yes  role role role role role    yes      session  role
 
 equipment.list                 401    yes  yes  role yes  yes  yes  role    yes      yes      yes
+equipment.get                  401    yes  yes  role yes  yes  yes  role    yes      yes      yes
 equipment.add                  401    yes  role role role role role role    yes      role     role
 equipment.change               401    yes  role role role role role role    yes      role     role
+
+readingMappings.get            401    yes  yes  role yes  yes  yes  role    yes      yes      yes
+readingMappings.set            401    yes  role role role role role role    yes      role     role
 
 lots.list                      401    yes  yes  role yes  yes  yes  role    yes      yes      yes
 lots.get                       401    yes  yes  role yes  yes  yes  role    yes      yes      yes

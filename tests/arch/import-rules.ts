@@ -22,12 +22,12 @@ export const RULES: readonly Rule[] = [
   { area: "lib/process-state", ours: [], packages: ["node:"] },
   { area: "lib/log", ours: ["lib/env"], packages: ["pino"] },
   { area: "lib/domain", ours: ["lib/errors"], types: ["schemas"], packages: ["semver", "canonicalize"] },
-  // Reading a CSV is a pure function of its bytes, with a parser and a UTF-8 test that are not ours.
+  // Reading a CSV or a workbook is a pure function of its bytes, with parsers and a UTF-8 test that are not ours.
   {
     area: "lib/domain/readings",
     ours: ["lib/domain", "lib/errors"],
     types: ["schemas"],
-    packages: ["csv-parse", "csv-parse/sync", "node:buffer"],
+    packages: ["csv-parse/sync", "csv-parse/browser/esm/sync", "jszip", "saxes", "node:buffer"],
   },
   {
     area: "builders",

@@ -154,7 +154,13 @@ describe("readings in the database", () => {
     const none = { fileName: null, temperatureLowC: null, temperatureHighC: null, supersedesId: null, reason: null };
     await inTransaction(async (trx) => {
       const sizes = { byteCount: 1, rowCount: readings.length, deviceCount: devices.size };
-      const made = { createdAt: at, createdBy: person, planId: null, sha256: Buffer.alloc(32, readings.length) };
+      const made = {
+        createdAt: at,
+        createdBy: person,
+        planId: null,
+        sha256: Buffer.alloc(32, readings.length),
+        sourceSha256: null,
+      };
       await insertRun(trx, { id, lotId, purpose: "zero", ...sizes, ...none, ...made }, Buffer.from("x"));
       await insertReadings(trx, id, readings, devices);
     });

@@ -13,6 +13,8 @@ import { openTestDatabase } from "./database";
 import { drainJobs } from "./jobs";
 import { addPeople, type PersonName, type TestPeople } from "./people";
 
+export type { CallOptions, Method, Reply } from "./call-route";
+
 export interface TestApi {
   /** As the app connects. */
   db: Db;

@@ -41,6 +41,11 @@ export class ReadingsGatherer {
     return true;
   }
 
+  /** Leaves a row out of which nothing can be told and which is named as wrong elsewhere. */
+  skip(): void {
+    this.badRows.push({});
+  }
+
   done(): ParsedReadings {
     if (!this.columns && this.errors.total === 0) {
       this.errors.add({ row: 1, column: "", code: "file.empty", message: "The file has no header row." });

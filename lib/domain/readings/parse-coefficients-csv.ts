@@ -15,6 +15,8 @@ export interface ParsedCoefficients {
   /** At most 200 of `errorCount`. */
   errors: RowError[];
   errorCount: number;
+  /** Cells as they stand in the file, the header first, each with its line. */
+  records: readonly { record: string[]; line: number }[];
 }
 
 /**
@@ -24,7 +26,8 @@ export interface ParsedCoefficients {
 export function parseCoefficientsCsv(bytes: Buffer): ParsedCoefficients {
   const errors = new RowErrorList();
   const sets: ParsedCoefficients["sets"] = [];
-  const [header, ...rows] = readRecords(bytes, errors);
+  const records = readRecords(bytes, errors);
+  const [header, ...rows] = records;
   const columns = header ? readHeader(header.record, errors) : undefined;
   const order = columns?.includes("zeroTc2") ? 2 : 1;
   const seen = new Map<string, number>();
@@ -41,7 +44,7 @@ export function parseCoefficientsCsv(bytes: Buffer): ParsedCoefficients {
   if (errors.total === 0 && sets.length === 0) {
     errors.add({ row: 1, column: "", code: "file.empty", message: "The file has no row with values." });
   }
-  return { order, sets, errors: errors.list(), errorCount: errors.total };
+  return { order, sets, errors: errors.list(), errorCount: errors.total, records };
 }
 
 function readRecords(bytes: Buffer, errors: RowErrorList): { record: string[]; line: number }[] {

@@ -15,6 +15,18 @@ export const listEquipment = command({
   handle: (ctx, { query }) => service.listEquipment(ctx, query),
 });
 
+export const getEquipment = command({
+  id: "equipment.get",
+  method: "GET",
+  path: "/equipment/{code}",
+  summary: "A piece of equipment with its certificate",
+  access: { who: "person", roles: READERS },
+  params: byCodeOrId,
+  reply: { status: 200, schema: equipment },
+  errors: ["equipment.not_found"],
+  handle: (ctx, { params }) => service.getEquipment(ctx, params.code),
+});
+
 export const addEquipment = command({
   id: "equipment.add",
   method: "POST",
@@ -41,4 +53,4 @@ export const changeEquipment = command({
   handle: (ctx, { params, body }) => service.changeEquipment(ctx, params.code, body),
 });
 
-export const equipmentCommands = [listEquipment, addEquipment, changeEquipment];
+export const equipmentCommands = [listEquipment, getEquipment, addEquipment, changeEquipment];

@@ -19,6 +19,11 @@ export async function listEquipment(ctx: Ctx, page: { limit: number; cursor?: st
   return pageOf(rows.map(viewOf), page.limit, (row) => row.code);
 }
 
+/** A piece of equipment. @throws AppError `equipment.not_found` */
+export async function getEquipment(ctx: Ctx, codeOrId: string): Promise<EquipmentView> {
+  return viewOf(await query.getEquipment(ctx.db, codeOrId));
+}
+
 /** Adds a piece of equipment. @throws AppError `equipment.exists`, `auth.forbidden` */
 export async function addEquipment(ctx: PersonCtx, input: NewEquipment): Promise<EquipmentView> {
   assertRole(ctx, "engineer");

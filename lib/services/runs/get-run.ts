@@ -64,6 +64,7 @@ function viewOf(row: RunRow, equipment: readonly RunEquipmentRow[], findings: re
     lot: row.lotCode,
     purpose: row.purpose,
     sha256: row.sha256.toString("hex"),
+    sourceSha256: row.sourceSha256?.toString("hex") ?? null,
     bytes: row.byteCount,
     rows: row.rowCount,
     devices: row.deviceCount,

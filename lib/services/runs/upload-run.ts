@@ -33,6 +33,8 @@ export interface NewRunInput {
   /** Planned run that these are the readings of. */
   plan?: string;
   fileName?: string;
+  /** Of the file that the bytes were made from by column mapping, lower-case hex. */
+  sourceSha256?: string;
   bytes: Buffer;
 }
 
@@ -89,6 +91,7 @@ export async function uploadRun(ctx: PersonCtx, input: NewRunInput) {
         lot: lot.code,
         purpose: input.purpose,
         sha256: sha256.toString("hex"),
+        ...(input.sourceSha256 !== undefined && { sourceSha256: input.sourceSha256 }),
         rows: file.readings.length,
         devices: file.deviceIds.size,
         added: file.unknown.length,
@@ -162,6 +165,7 @@ function runRowOf(ctx: PersonCtx, id: string, lot: LotRow, sha256: Buffer, input
     lotId: lot.id,
     purpose: input.purpose,
     sha256,
+    sourceSha256: input.sourceSha256 === undefined ? null : Buffer.from(input.sourceSha256, "hex"),
     byteCount: input.bytes.length,
     rowCount: file.readings.length,
     deviceCount: file.deviceIds.size,

@@ -7,7 +7,10 @@ import { DataTable } from "@/app/_components/table/data-table";
 import { TitleRow } from "@/app/_components/title-row";
 import { holds, orNotFound, pageContext } from "@/lib/http/page-context";
 import { listEquipment } from "@/lib/services/equipment/keep-equipment";
+import { getLot } from "@/lib/services/lots/get-lot";
 import { getLotThread } from "@/lib/services/lots/get-lot-thread";
+import { getRulesOfLot } from "@/lib/services/lots/lot-rules";
+import { getReadingMapping } from "@/lib/services/reading-mappings/keep-reading-mapping";
 import { listRunPlans } from "@/lib/services/run-plans/get-run-plan";
 import { listLotRuns } from "@/lib/services/runs/get-run";
 import type { RunView } from "@/schemas/api/runs";
@@ -42,6 +45,9 @@ export default async function ReadingsPage({ params, searchParams }: PageProps) 
   const runs = items.map(rowOf);
   const plans = (await listRunPlans(ctx, { lot: thread.lot, limit: 1_000 })).items;
   const isEngineer = holds(ctx, "engineer");
+  const { family } = await getLot(ctx, thread.lot);
+  const rules = await getRulesOfLot(ctx, thread.lot);
+  const kept = (await getReadingMapping(ctx, family)).mapping;
   const equipment = isEngineer ? (await listEquipment(ctx, { limit: 1_000 })).items : [];
   const today = ctx.now().toISOString().slice(0, 10);
   return (
@@ -109,6 +115,9 @@ export default async function ReadingsPage({ params, searchParams }: PageProps) 
               <UploadPanel
                 key={`${plan} ${supersedes}`}
                 lot={thread.lot}
+                family={family}
+                rules={rules}
+                kept={kept}
                 start={{ plan, supersedes }}
                 plans={plans
                   .filter((one) => one.state === "planned")

@@ -1,4 +1,5 @@
-import { changeEquipment } from "@/lib/http/commands/equipment";
+import { changeEquipment, getEquipment } from "@/lib/http/commands/equipment";
 import { route } from "@/lib/http/route";
 
+export const GET = route(getEquipment);
 export const PATCH = route(changeEquipment);
