@@ -125,7 +125,7 @@ describe("tolerance intervals", () => {
 
   it.each([1, 3])("bound the share within ±%d deviations from below at 95 %", (limit) => {
     const normal = normalSource(SEED);
-    const trials = 500;
+    const trials = 300;
     const bounded = shareOf(trials, () => {
       const { mean, sd } = summary(drawValues(normal, 6));
       const { lowerBound } = shareInside({ n: 6, sd, limit, confidence: 0.95 });
