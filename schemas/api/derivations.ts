@@ -209,6 +209,11 @@ export const derivedDeviceDetail = z.object({
       spanMvV: numberOrNull,
     }),
   ),
+  covariance: z
+    .object({ zero: z.array(z.array(z.number())).nullable(), gain: z.array(z.array(z.number())).nullable() })
+    .meta({
+      description: "Of zero, zeroTc (, zeroTc2) and of gain, gainTc (, gainTc2); null without a degree of freedom",
+    }),
   curves: z
     .object({ zeroIntervals: curve, spanPpm: curve })
     .nullable()

@@ -132,6 +132,7 @@ describe("golden lot MW20-2609, pooled gain", () => {
     expect(reply.status).toBe(200);
     expect(reply.body.points).toHaveLength(2);
     expect(reply.body.curves.spanPpm.after).toHaveLength(2);
+    expect(reply.body.covariance).toEqual({ zero: null, gain: null });
     expect((await api.call("GET", `/derivations/${id}/devices/NOBODY`, { as: "service" })).status).toBe(404);
   });
 
@@ -146,9 +147,28 @@ describe("golden lot MW20-2609, pooled gain", () => {
     expect(reply.status).toBe(200);
     expect(reply.body.devices).toHaveLength(28);
     expect(reply.body.pooled.n).toBe(10);
+    const { lines, combined, expanded, coverageFactor, missing, chamber, ends } = reply.body.uncertainty;
+    expect(lines.map((one: Reply) => one.source)).toContain("sample.scatter");
+    // The golden runs name no equipment, have no return, and two temperatures: none of that is known, and none is 0.
+    expect(missing).toEqual([
+      "sensor.common",
+      "sensor.independent",
+      "chamber.uniformity",
+      "load.certificate",
+      "reader.certificate",
+      "zero.return",
+      "device.thermometer",
+    ]);
+    expect(expanded.gainTc).toBe(combined.gainTc * coverageFactor.gainTc);
+    expect(ends.map((one: Reply) => one.temperatureC)).toEqual(reply.body.provenRange);
+    expect(chamber).toMatchObject({ individual: 0, pooled: null, perKelvin: expect.closeTo(1.137, 3) });
+    expect(reply.body.envelope.before.span.ratio).toBeGreaterThan(1);
+    expect(reply.body.envelope.after.span.ratio).toBeLessThan(1);
     expect(await api.db.selectFrom("derivation").select("id").execute()).toHaveLength(before.length);
     const stored = await derive(read.lot, body);
     expect(stored.body.sha256).toBe(reply.body.sha256);
+    expect(stored.body.uncertainty).toEqual(reply.body.uncertainty);
+    expect(stored.body.envelope).toEqual(reply.body.envelope);
   });
 });
 

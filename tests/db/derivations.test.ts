@@ -50,6 +50,21 @@ describe("what the database refuses whatever the code does", () => {
     await expect(move).rejects.toThrow("coefficients.not_approved");
   });
 
+  it.each([
+    ["uncertainty budget", { uncertainty: JSON.stringify({}) }],
+    ["envelope survey", { envelope: null }],
+  ])("another %s once a derivation is proposed", async (_, change) => {
+    const update = api.db.updateTable("derivation").set(change).where("id", "=", derived.derivation);
+    await expect(update.execute()).rejects.toThrow("derivation.immutable");
+    const row = await api.db
+      .selectFrom("derivation")
+      .select(["uncertainty", "envelope"])
+      .where("id", "=", derived.derivation)
+      .executeTakeFirstOrThrow();
+    expect(row.uncertainty).toMatchObject({ level: 0.9545 });
+    expect(row.envelope).toMatchObject({ notProvenC: [] });
+  });
+
   it("a decision by someone without the role, by a maker, or over another digest", async () => {
     await expect(approve(await approvalBy("engineer"))).rejects.toThrow("auth.forbidden");
     const maker = {

@@ -13,6 +13,7 @@ import {
 import { getLot } from "@/db/queries/lots";
 import { listMakers } from "@/db/queries/makers";
 import { listRunsById } from "@/db/queries/runs";
+import { deviceCovariance } from "@/lib/domain/compensation/device-covariance";
 import { driftCurves } from "@/lib/domain/compensation/predict";
 import type { Ctx } from "@/lib/services/context";
 import { getLotRules } from "@/lib/services/lots/lot-rules";
@@ -146,6 +147,10 @@ export async function getDerivedDevice(ctx: Ctx, id: string, serial: string): Pr
   return {
     ...deviceViewOf(set, findings),
     points,
+    covariance:
+      set.coefficients && points.length > 0
+        ? deviceCovariance(points, set.coefficients, derivation.order, rules)
+        : { zero: null, gain: null },
     curves: set.coefficients && points.length > 0 ? driftCurves(points, set.coefficients, rules) : null,
   };
 }
