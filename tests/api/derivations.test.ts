@@ -230,6 +230,57 @@ describe("the other golden examples", () => {
   });
 });
 
+describe("what stands on the runs", () => {
+  it("comes to who decides: the chamber off its plan, equipment overdue, and its share of the budget by place", async () => {
+    const lot = "MW20-26P1";
+    await api.call("POST", "/lots", { as: "engineer", body: { code: lot, family: "MW-20", firmware: "2.3.0" } });
+    const [head = "", ...rows] = firstGolden().read("readings-three-points.csv").toString().trim().split(/\r?\n/);
+    const csv = [`${head},position`, ...rows.map((row) => `${row.replace("26Q2", "26P1")},A1`)].join("\n");
+    const serials = [...new Set(rows.map((row) => row.slice(0, row.indexOf(",")).replace("26Q2", "26P1")))];
+    expect((await api.call("POST", `/lots/${lot}/devices`, { as: "engineer", body: { serials } })).status).toBe(200);
+    const positions = [{ position: "A1", deviationK: 0.3, uncertaintyK: 0.8 }];
+    const chamber = {
+      code: "CH-P1",
+      kind: "chamber",
+      certificate: "K-9",
+      calibratedUntil: "2020-01-01",
+      uncertainty: 1,
+    };
+    await api.call("POST", "/equipment", { as: "engineer", body: { ...chamber, coverageFactor: 2, positions } });
+    const point = (n: number, setC: number) => {
+      return { point: n, setC, soakMin: 90, loadsKg: [12], repeats: 2, dwellS: 30 };
+    };
+    const devices = serials.map((serial, i) => ({ serial, position: `A${i + 1}` }));
+    const plan = await api.call("POST", `/lots/${lot}/run-plans`, {
+      as: "engineer",
+      body: {
+        name: "three",
+        purpose: "sample",
+        devices,
+        points: [point(1, 13), point(2, 25), point(3, 40)],
+        equipment: [],
+      },
+    });
+    expect(plan.status, JSON.stringify(plan.body)).toBe(201);
+    const run = await api.call("POST", `/lots/${lot}/runs`, {
+      as: "engineer",
+      query: { purpose: "sample", equipment: "CH-P1", plan: plan.body.id },
+      headers: { "content-type": "text/csv" },
+      body: csv,
+    });
+    expect(run.status, JSON.stringify(run.body)).toBe(201);
+    const { body } = await derive(lot, { method: "individual", order: 2, runs: [run.body.id] });
+    const codes = body.findings.map((one: Reply) => `${one.severity} ${one.code} ${one.point}`);
+    expect(codes).toContain("soft chamber.off_set_point 1");
+    expect(codes).toContain("soft equipment.overdue null");
+    expect(codes).toContain("soft plan.position_differs null");
+    expect(codes).not.toContain("soft chamber.off_set_point 2");
+    const place = body.uncertainty.lines.find((one: Reply) => one.source === "chamber.uniformity");
+    expect(place).toMatchObject({ standard: expect.closeTo(0.5, 9), intervals: 0, gainTc: expect.any(Number) });
+    expect(body.uncertainty.chamber.pooled).toBeGreaterThan(0);
+  });
+});
+
 describe("asking for a derivation", () => {
   const body = () => ({ method: "pooled-gain", order: 1, runs: [read.runs.sample] });
   const ask = (change: object, as: "engineer" | "reviewer" = "engineer") =>

@@ -7,7 +7,7 @@ import type { DerivationInput, DerivationResult, DeviceResult, Finding } from "@
 import { uncertaintyBudget } from "@/lib/domain/compensation/uncertainty/budget";
 
 /** Findings of a run that the arithmetic can't make anew: they rest on certificates and plans of the day of the upload. */
-const STANDING = ["equipment.", "chamber.off_set_point"];
+const STANDING = ["equipment.", "plan.", "chamber.off_set_point"];
 
 /** The result of a derivation with what its runs' equipment has to say, its uncertainty budget, and its survey of the envelope. */
 export async function compute(db: Db, input: DerivationInput): Promise<DerivationResult> {
