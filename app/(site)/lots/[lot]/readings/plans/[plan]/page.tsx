@@ -101,10 +101,9 @@ export default async function PlanPage({ params }: PlanParams) {
             name={`devices of ${plan.name}`}
             rows={plan.devices}
             rowKey="serial"
-            rowHref="/trace/{serial}"
             columns={[
               { key: "position", header: "Place", format: { as: "code" } },
-              { key: "serial", header: "Serial", format: { as: "code" } },
+              { key: "serial", header: "Serial", format: { as: "link", href: "/trace/{serial}" } },
             ]}
             empty={{ title: "No devices" }}
           />

@@ -20,6 +20,11 @@ export const metadata: Metadata = { title: "Run sheet" };
 const PRINTED =
   "print:border-0 print:bg-transparent print:p-0 print:[--ink-soft:var(--ink)] print:[--rule:var(--ink-faint)]";
 
+/** What stands under every sheet, so that loose ones find together: lot, plan, number. Codes and ids have no sign to escape. */
+const pageFooter = (lot: string, plan: string) =>
+  `@page { @bottom-left { content: "${lot}, plan ${plan}"; font: 8pt monospace }` +
+  ` @bottom-right { content: counter(page) " of " counter(pages); font: 8pt monospace } }`;
+
 export default async function RunSheetPage({ params }: PlanParams) {
   const ctx = await pageContext();
   const { id } = await loadPlan(ctx, params);
@@ -47,6 +52,7 @@ export default async function RunSheetPage({ params }: PlanParams) {
           }
         />
       </div>
+      <style>{pageFooter(plan.lot, plan.id)}</style>
       <article
         className={`mx-auto max-w-[210mm] rounded border border-rule bg-raised px-6 py-6 text-sm md:px-10 ${PRINTED}`}
       >
@@ -89,7 +95,7 @@ export default async function RunSheetPage({ params }: PlanParams) {
             load after its dwell; the dwell is the same at each temperature.
           </p>
         </Block>
-        <EquipmentBoxes equipment={plan.equipment} />
+        <EquipmentBoxes equipment={plan.equipment} today={ctx.now().toISOString().slice(0, 10)} />
         {plan.notes ? (
           <Block title="Notes">
             <p className="whitespace-pre-line">{plan.notes}</p>

@@ -31,7 +31,7 @@ export function WriteLine({ label, className = "" }: { label: string; className?
 }
 
 /** Equipment to be used, to be ticked, with its certificate and date. */
-export function EquipmentBoxes({ equipment }: { equipment: RunPlanView["equipment"] }) {
+export function EquipmentBoxes({ equipment, today }: { equipment: RunPlanView["equipment"]; today: string }) {
   return (
     <Block title="Equipment">
       {equipment.length === 0 ? <p>None was planned. Write down what is used:</p> : null}
@@ -42,6 +42,7 @@ export function EquipmentBoxes({ equipment }: { equipment: RunPlanView["equipmen
             <span>
               <span className="font-mono">{one.code}</span>, {one.kind}, certificate {one.certificate}, due{" "}
               {formatDate(one.calibratedUntil)}
+              {one.calibratedUntil < today ? <b>, past its date</b> : null}
             </span>
           </li>
         ))}
