@@ -11,7 +11,7 @@ import {
   useDifferenceFilter,
   useSettled,
 } from "@/app/_components/difference/difference-filter";
-import { useComparison } from "@/app/_components/difference/use-comparison";
+import { serialsOf, useComparison } from "@/app/_components/difference/use-comparison";
 import { EmptyState } from "@/app/_components/empty-state";
 import { Notice } from "@/app/_components/notice";
 import type { FilterChip, Row } from "@/app/_components/table/column";
@@ -55,7 +55,7 @@ export function DifferenceTable({ from, to, layout, opened, onOpen }: Difference
   const selection = queryOf({ ...state, text: settled.text }, { ...filter, least: settled.least });
   const known = selection === "" ? totalOf(overview?.counts) : null;
   const query = `from=${from}&to=${to}${selection}`;
-  const loaded = useWindows(`/api/v1/compare/serials?${query}`, known, toRow);
+  const loaded = useWindows(serialsOf(from, to) + selection, known, toRow);
   const shown = columns.filter((column, i) => i === 0 || (state.columns?.includes(column.key) ?? !column.hidden));
   const save = (format: "csv" | "json") => window.location.assign(`/api/v1/compare/export?${query}&format=${format}`);
   if (loaded.total === 0 && selection === "") {

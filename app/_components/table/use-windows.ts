@@ -72,7 +72,8 @@ export function useWindows(endpoint: string, known: number | null, toRow: (row: 
   };
 }
 
-function windowQuery(endpoint: string, at: number) {
+/** One window of such a list, for whoever needs to wait for it. */
+export function windowQuery(endpoint: string, at: number) {
   return {
     queryKey: ["window", endpoint, at],
     queryFn: ({ signal }: { signal: AbortSignal }) => callApi<Part>(addressOf(endpoint, at), { signal }),

@@ -14,7 +14,7 @@ export async function comparePackages(ctx: Ctx, query: CompareQuery): Promise<Co
   const two = await openTwoPackages(ctx, query.from, query.to);
   const index = await indexOf(ctx, two);
   const found: ComparedDevice[] = [];
-  for await (const device of eachDifference(ctx, two, query.cursor)) {
+  for await (const device of eachDifference(ctx, two, { after: query.cursor })) {
     if (!isWanted(device, query)) continue;
     found.push(device);
     if (found.length > query.limit) break;

@@ -1,8 +1,7 @@
-import { selectSerials } from "@/lib/domain/comparison/select-serials";
 import type { Ctx } from "@/lib/services/context";
 import type { ComparedDevice, ComparisonExportQuery } from "@/schemas/api/compare";
 import { getComparisonOverview } from "./compare-packages";
-import { indexOf } from "./known-indexes";
+import { indexOf, selectedOf } from "./known-indexes";
 import { compareSerials, selectionOf } from "./list-changed-serials";
 import { openTwoPackages } from "./two-packages";
 
@@ -24,7 +23,7 @@ export async function exportComparison(ctx: Ctx, query: ComparisonExportQuery): 
   const { format, from, to } = query;
   const two = await openTwoPackages(ctx, from, to);
   const index = await indexOf(ctx, two);
-  const places = selectSerials(index, selectionOf({ ...query, offset: 0, limit: 1 }));
+  const places = await selectedOf(ctx, two, selectionOf({ ...query, offset: 0, limit: 1 }));
   const parts = async function* (): AsyncGenerator<ComparedDevice[]> {
     for (let at = 0; at < places.length; at += SERIALS_A_PIECE) {
       const serials = places.slice(at, at + SERIALS_A_PIECE).map((place) => index.serials[place] as string);

@@ -1,9 +1,9 @@
 import { listImageBytes } from "@/db/queries/package-layouts";
-import { type SerialSelection, selectSerials } from "@/lib/domain/comparison/select-serials";
+import type { SerialSelection } from "@/lib/domain/comparison/select-serials";
 import { log } from "@/lib/log";
 import type { Ctx } from "@/lib/services/context";
 import type { ChangedSerials, ChangedSerialsQuery, ComparedDevice } from "@/schemas/api/compare";
-import { findIndex, indexOf } from "./known-indexes";
+import { findIndex, indexOf, selectedOf } from "./known-indexes";
 import { differenceOf, eachDifference, openTwoPackages, type TwoPackages } from "./two-packages";
 
 /** So far from the start a part in the order of serials is found faster by walking than by waiting for the index. */
@@ -17,11 +17,13 @@ const WALKED_MAX = 1_000;
 export async function listChangedSerials(ctx: Ctx, query: ChangedSerialsQuery): Promise<ChangedSerials> {
   const two = await openTwoPackages(ctx, query.from, query.to);
   if (!findIndex(two) && isPlainStart(query)) {
+    const items = await walk(ctx, two, query);
+    // Only now: counting would stand in the way of the first rows.
     indexOf(ctx, two).catch((error: unknown) => log.warn({ err: error }, "a comparison could not be counted"));
-    return { total: null, offset: query.offset, items: await walk(ctx, two, query) };
+    return { total: null, offset: query.offset, items };
   }
   const index = await indexOf(ctx, two);
-  const places = selectSerials(index, selectionOf(query));
+  const places = await selectedOf(ctx, two, selectionOf(query));
   const serials = places.slice(query.offset, query.offset + query.limit).map((at) => index.serials[at] as string);
   return { total: places.length, offset: query.offset, items: await compareSerials(ctx, two, serials) };
 }
@@ -39,7 +41,7 @@ function isPlainStart({ change, field, search, sort, offset, limit }: ChangedSer
 async function walk(ctx: Ctx, two: TwoPackages, { offset, limit }: ChangedSerialsQuery): Promise<ComparedDevice[]> {
   const items: ComparedDevice[] = [];
   let before = 0;
-  for await (const { change, ...device } of eachDifference(ctx, two)) {
+  for await (const { change, ...device } of eachDifference(ctx, two, { size: offset + limit })) {
     if (change === "same" || before++ < offset) continue;
     items.push({ ...device, change });
     if (items.length === limit) break;

@@ -10,11 +10,16 @@ export interface PairedImages {
 
 /**
  * Walks two packages side by side in the order of their serials, after a serial; only some rows of each are held at a time.
- * @param after serial after which to begin.
+ * @param options.after serial after which to begin. @param options.size rows of each that are read at a time.
  */
-export async function* pairImages(db: Db, fromId: string, toId: string, after?: string): AsyncGenerator<PairedImages> {
-  const olds = rowsOf(eachImageBytes(db, fromId, { after }));
-  const news = rowsOf(eachImageBytes(db, toId, { after }));
+export async function* pairImages(
+  db: Db,
+  fromId: string,
+  toId: string,
+  options: { after?: string; size?: number } = {},
+): AsyncGenerator<PairedImages> {
+  const olds = rowsOf(eachImageBytes(db, fromId, options));
+  const news = rowsOf(eachImageBytes(db, toId, options));
   let from = (await olds.next()).value;
   let to = (await news.next()).value;
   while (from || to) {

@@ -32,9 +32,13 @@ export async function openTwoPackages(ctx: Ctx, fromId: string, toId: string): P
 }
 
 /** Every serial of either package in rising order, after one where it is given; some images are held at a time. */
-export async function* eachDifference(ctx: Ctx, two: TwoPackages, after?: string): AsyncGenerator<DeviceDifference> {
+export async function* eachDifference(
+  ctx: Ctx,
+  two: TwoPackages,
+  options: { after?: string; size?: number } = {},
+): AsyncGenerator<DeviceDifference> {
   const { from, to } = two;
-  for await (const pair of pairImages(ctx.db, from.pkg.id, to.pkg.id, after)) yield differenceOf(two, pair);
+  for await (const pair of pairImages(ctx.db, from.pkg.id, to.pkg.id, options)) yield differenceOf(two, pair);
 }
 
 /** What differs for one serial. */
