@@ -95,16 +95,6 @@ export function chanceInside(n: number, question: SampleQuestion): number {
   return chiSquareCdf((n - 1) * (largest / sd) ** 2, n - 1);
 }
 
-/**
- * Largest deviation of gainTc, 1/K, with which a sample of n comes out inside the limit: limit / k(n).
- * @throws AppError `plan.invalid`, `tolerance.invalid`.
- */
-export function largestDeviation(n: number, question: Omit<SampleQuestion, "sd">): number {
-  assertQuestion({ ...question, sd: 0 });
-  const { limit, coverage, confidence } = question;
-  return limit / toleranceFactor({ n, coverage, confidence });
-}
-
 /** A share as asked for, with the decimals it has: 95 %, 99.99 %. */
 function percent(share: number): string {
   return `${Number((share * 100).toPrecision(6))} %`;

@@ -1,8 +1,9 @@
 import { describe, expect, it } from "vitest";
 import { normalCdf, studentQuantile } from "@/lib/domain/compensation/distributions";
-import { type Fit, fitLine, fitQuadratic, predictFit } from "@/lib/domain/compensation/fit";
+import { type Fit, fitLine, fitQuadratic } from "@/lib/domain/compensation/fit";
 import { findGrubbsStatistic, grubbsCritical } from "@/lib/domain/compensation/grubbs";
 import { poolGain } from "@/lib/domain/compensation/pooled";
+import { predictFit } from "@/lib/domain/compensation/predict-fit";
 import { chanceInside, shareInside } from "@/lib/domain/compensation/sample-plan";
 import { meanOf, standardDeviationOf } from "@/lib/domain/compensation/sample-statistics";
 import { shareShown, shareShownWithFailures } from "@/lib/domain/compensation/share-shown";

@@ -1,6 +1,7 @@
 import fc from "fast-check";
 import { describe, expect, it } from "vitest";
-import { fitLine, fitQuadratic, predictFit } from "@/lib/domain/compensation/fit";
+import { fitLine, fitQuadratic } from "@/lib/domain/compensation/fit";
+import { predictFit } from "@/lib/domain/compensation/predict-fit";
 
 const degenerate = expect.objectContaining({ code: "fit.degenerate" });
 

@@ -4,7 +4,6 @@ import { poolGain } from "@/lib/domain/compensation/pooled";
 import {
   chanceInside,
   findSampleSize,
-  largestDeviation,
   planSample,
   SAMPLE_MIN,
   SAMPLE_PLAN_MAX,
@@ -108,12 +107,6 @@ describe("plan of a sample", () => {
     const chances = [9, 15, 30, 60].map((n) => chanceInside(n, { sd: 2e-6, limit, ...at95 }));
     expect([...chances].sort((a, b) => a - b)).toEqual(chances);
     expect(chanceInside(9, { sd: 0, limit, ...at95 })).toBe(1);
-  });
-
-  it("turns a sample's size into the deviation it bears", () => {
-    const sd = largestDeviation(10, { limit, ...at95 });
-    expect(sd).toBeCloseTo(limit / 3.3934, 9);
-    expect(findSampleSize({ sd: sd * (1 - 1e-9), limit, ...at95 })).toBe(10);
   });
 });
 
