@@ -1,4 +1,4 @@
-import { isCount, isObject, isRange, type Loose } from "@/builders/codec/lint-shape";
+import { isCount, isObject, isRange, type Loose } from "@/builders/codec/json-shape";
 
 /** Hex digits of up to 32 bits. */
 export const isHexNumber = (value: unknown): value is string =>

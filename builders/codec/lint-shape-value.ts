@@ -1,4 +1,4 @@
-import { isCount, isObject, type Loose, wrongInNumbers } from "@/builders/codec/lint-shape";
+import { isCount, isObject, type Loose } from "@/builders/codec/json-shape";
 
 const WRONG = "“value” must be {from: a source}, {const: a number, text or list} or {bits: a list of parts}";
 
@@ -38,4 +38,20 @@ function isPlainValue(value: Loose): boolean {
 
 function isConstant(value: unknown): boolean {
   return typeof value === "string" || (typeof value === "number" && Number.isFinite(value));
+}
+
+function isNumberOrAbsent(value: unknown): boolean {
+  return value === undefined || (typeof value === "number" && Number.isFinite(value));
+}
+
+/** The numbers that tell a value's meaning: of a field and of a part of its bits. */
+export function wrongInNumbers(part: Loose): string | null {
+  const wrong = ["scale", "bias", "min", "max"].find((key) => !isNumberOrAbsent(part[key]));
+  if (wrong !== undefined) return `“${wrong}” must be a number`;
+  if (part.enum === undefined) return null;
+  const named =
+    isObject(part.enum) &&
+    Object.keys(part.enum).length > 0 &&
+    Object.values(part.enum).every((stored) => Number.isSafeInteger(stored));
+  return named ? null : "“enum” must name whole numbers, such as {“linear”: 1}";
 }

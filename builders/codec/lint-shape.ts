@@ -1,6 +1,7 @@
 import { isFieldType } from "@/builders/codec/field-types";
+import { isByteOrder, isCount, isObject, isRange, type Loose } from "@/builders/codec/json-shape";
 import { wrongInAlgorithm, wrongInCovered, wrongInForbidden } from "@/builders/codec/lint-shape-checksum";
-import { wrongInValue } from "@/builders/codec/lint-shape-value";
+import { wrongInNumbers, wrongInValue } from "@/builders/codec/lint-shape-value";
 import type { LayoutPaths } from "@/builders/codec/memory-map";
 import type { Problem } from "@/lib/errors";
 import type { ByteRange, LayoutChecksum, LayoutDocument, LayoutField } from "@/schemas/documents/layout";
@@ -10,9 +11,6 @@ export interface ReadableLayout {
   layout: LayoutDocument;
   paths: LayoutPaths;
 }
-
-/** Any JSON object. */
-export type Loose = Record<string, unknown>;
 
 /** Most elements of an array: each is a value of its own in lists and comparisons. */
 const COUNT_MAX = 1024;
@@ -55,22 +53,6 @@ export function readLayout(document: unknown): { readable?: ReadableLayout; prob
   return { readable: { layout: { ...(document as unknown as LayoutDocument), ...parts }, paths }, problems };
 }
 
-export function isObject(value: unknown): value is Loose {
-  return typeof value === "object" && value !== null && !Array.isArray(value);
-}
-
-export function isCount(value: unknown, min: number, max: number): boolean {
-  return Number.isInteger(value) && (value as number) >= min && (value as number) <= max;
-}
-
-export function isRange(value: unknown): boolean {
-  return Array.isArray(value) && value.length === 2 && value.every((end) => isCount(end, 0, 65535));
-}
-
-function isByteOrder(value: unknown): boolean {
-  return value === "little" || value === "big";
-}
-
 function isMemory(memory: unknown): memory is Loose {
   return (
     isObject(memory) &&
@@ -87,22 +69,6 @@ function isSegments(segments: unknown): boolean {
   const isSegment = (one: unknown) =>
     isObject(one) && isCount(one.at, 1, 65535) && isCount(one.baseAddress, 0, 2 ** 32 - 1);
   return Array.isArray(segments) && segments.every(isSegment);
-}
-
-function isNumberOrAbsent(value: unknown): boolean {
-  return value === undefined || (typeof value === "number" && Number.isFinite(value));
-}
-
-/** The numbers that tell a value's meaning: of a field and of a part of its bits. */
-export function wrongInNumbers(part: Loose): string | null {
-  const wrong = ["scale", "bias", "min", "max"].find((key) => !isNumberOrAbsent(part[key]));
-  if (wrong !== undefined) return `“${wrong}” must be a number`;
-  if (part.enum === undefined) return null;
-  const named =
-    isObject(part.enum) &&
-    Object.keys(part.enum).length > 0 &&
-    Object.values(part.enum).every((stored) => Number.isSafeInteger(stored));
-  return named ? null : "“enum” must name whole numbers, such as {“linear”: 1}";
 }
 
 function wrongInField(field: unknown): string | null {

@@ -75,12 +75,15 @@ const MENDERS: Readonly<Record<string, Mender>> = {
 };
 
 /**
- * The one-click mend of a finding of the lint: edits of the author's own text that clear it and touch nothing else.
- * @returns undefined where only the author can say what is meant, or nothing is free.
+ * The one-click mends of findings of the lint: edits of the author's own text that clear one and touch nothing else. Findings
+ * where only the author can say what is meant, or nothing is free, have none.
  */
-export function findMend(problem: Problem, text: string, options: LintOptions = {}): Mend | undefined {
-  const mender = MENDERS[problem.code];
-  const context = mender && mendContextOf(text, options);
-  const mend = context && mender(problem, context);
-  return mend && mend.edits.length > 0 ? mend : undefined;
+export function findMends(problems: readonly Problem[], text: string, options: LintOptions = {}): Map<Problem, Mend> {
+  const mends = new Map<Problem, Mend>();
+  const context = problems.length > 0 ? mendContextOf(text, options) : undefined;
+  for (const problem of problems) {
+    const mend = context && MENDERS[problem.code]?.(problem, context);
+    if (mend && mend.edits.length > 0) mends.set(problem, mend);
+  }
+  return mends;
 }

@@ -16,22 +16,33 @@ export interface PlaceWish {
 }
 
 /** The first offset from `from` on, then from the start, where so many bytes are free; undefined where there is none. */
-export function findFreePlace({ layout, extents }: MendContext, wish: PlaceWish): number | undefined {
+export function findFreePlace(context: MendContext, wish: PlaceWish): number | undefined {
   const { width, from = 0, number = false, except, outside } = wish;
-  const { bytes, pageBytes, baseAddress } = layout.memory;
-  const others = extents.filter((part) => part.path !== except);
+  const { bytes, pageBytes, baseAddress } = context.layout.memory;
+  const claims = claimsOf(context, except);
   const fits = (at: number) => {
-    if (at + width > bytes) return false;
     if (outside && at <= outside[1] && at + width > outside[0]) return false;
     const address = baseAddress + at;
     if (number && address % alignmentOf(width) !== 0) return false;
     const onePage = Math.floor(address / pageBytes) === Math.floor((address + width - 1) / pageBytes);
     if (number && width <= pageBytes && pageBytes > 1 && !onePage) return false;
-    return !others.some((part) => part.at < at + width && part.end > at);
+    for (let i = at; i < at + width; i++) if (claims[i] !== 0) return false;
+    return true;
   };
-  for (let at = from; at < bytes; at++) if (fits(at)) return at;
-  for (let at = 0; at < Math.min(from, bytes); at++) if (fits(at)) return at;
+  const last = bytes - width;
+  for (let at = from; at <= last; at++) if (fits(at)) return at;
+  for (let at = 0; at < Math.min(from, last + 1); at++) if (fits(at)) return at;
   return undefined;
+}
+
+/** How many parts claim each byte of the memory, one part left out. */
+function claimsOf({ layout, extents }: MendContext, except: string | undefined): Uint16Array {
+  const claims = new Uint16Array(layout.memory.bytes);
+  for (const { path, at, end } of extents) {
+    if (path === except) continue;
+    for (let i = Math.max(0, at); i < Math.min(end, claims.length); i++) claims[i] = (claims[i] as number) + 1;
+  }
+  return claims;
 }
 
 /** True where nothing else claims the bytes from `at` on. */
