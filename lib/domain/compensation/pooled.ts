@@ -1,15 +1,11 @@
 import { studentQuantile } from "./distributions";
 import { poolingLimit } from "./envelope";
-import { findGrubbsStatistic, type GrubbsPower, grubbsPower } from "./grubbs";
 import { findSampleSize, shareInside } from "./sample-plan";
 import { standardDeviationOf } from "./sample-statistics";
 import { toleranceFactor } from "./tolerance";
 import type { FamilyRules, GainCoefficients, PooledResult } from "./types";
 
 export { SAMPLE_MIN } from "./sample-plan";
-
-/** Two-sided level of the outlier test on the sample's gainTc. */
-const OUTLIER_ALPHA = 0.05;
 
 /** Sum over count: these means are stored in images, whose bytes have to be those of any program that takes a mean. */
 function plainMean(values: readonly number[]): number {
@@ -64,19 +60,4 @@ export function poolGain(trims: readonly GainCoefficients[], order: 1 | 2, famil
   pooled.shareEstimate = share.estimate;
   pooled.sampleNeeded = findSampleSize({ sd, limit, coverage, confidence });
   return pooled;
-}
-
-/** A sample device whose gainTc stands out. */
-export interface GainTcOutlier extends GrubbsPower {
-  /** Position among the trims. */
-  index: number;
-  g: number;
-}
-
-/** The device whose gainTc stands out from the sample by Grubbs' test (two-sided, 5 %), if one does. */
-export function findGainTcOutlier(trims: readonly GainCoefficients[]): GainTcOutlier | undefined {
-  const found = findGrubbsStatistic(trims.map((trim) => trim.gainTc));
-  if (!found) return undefined;
-  const power = grubbsPower(trims.length, OUTLIER_ALPHA);
-  return found.g > power.critical ? { ...found, ...power } : undefined;
 }

@@ -1,6 +1,5 @@
 import { describe, expect, it } from "vitest";
 import { findGrubbsStatistic, grubbsCritical, grubbsPower } from "@/lib/domain/compensation/grubbs";
-import { findGainTcOutlier } from "@/lib/domain/compensation/pooled";
 
 describe("Grubbs' statistic", () => {
   const values = [1, 2, 3, 4, 9];
@@ -66,16 +65,5 @@ describe("what the test is worth", () => {
     [Number.NaN, 0.05],
   ])("refuses n %d at %d", (n, alpha) => {
     expect(() => grubbsPower(n, alpha)).toThrow(expect.objectContaining({ code: "grubbs.invalid" }));
-  });
-});
-
-describe("a sample device that stands out", () => {
-  const trims = (values: number[]) => values.map((value) => ({ gain: 1, gainTc: value * 1e-6 }));
-
-  it("is named with what the test is worth", () => {
-    const outlier = findGainTcOutlier(trims([-417, -419, -418.2, -418.8, -417.6, -390]));
-    expect(outlier).toMatchObject({ index: 5, critical: grubbsCritical(6, 0.05), words: grubbsPower(6, 0.05).words });
-    expect(findGainTcOutlier(trims([-417, -419, -418.2, -418.8, -417.6, -418]))).toBeUndefined();
-    expect(findGainTcOutlier(trims([-417, -390]))).toBeUndefined();
   });
 });

@@ -1,4 +1,5 @@
 import { describe, expect, it } from "vitest";
+import { grubbsPower } from "@/lib/domain/compensation/grubbs";
 import { findOutliers, medianOf, modifiedScoreLimit } from "@/lib/domain/compensation/outliers";
 import { seededNormal } from "./made-up-run";
 
@@ -30,7 +31,12 @@ describe("outliers by the median and by Grubbs", () => {
     ]);
   });
 
-  it("keeps Grubbs for small samples, where the median is known too badly", () => {
+  it("keeps Grubbs for small samples, where the median is known too badly, with what the test is worth", () => {
+    const sample = (last: number) =>
+      findOutliers([-417, -419, -418.2, -418.8, -417.6, last], { robust: 0.01, grubbs: 0.05 });
+    const { critical, words } = grubbsPower(6, 0.05);
+    expect(sample(-390).outliers).toMatchObject([{ index: 5, critical, caveat: words }]);
+    expect(sample(-418).outliers).toEqual([]);
     const { outliers } = findOutliers([10, 10.1, 9.9, 10.05, 11], { robust: 0.01, grubbs: 0.05 });
     expect(outliers).toMatchObject([{ index: 4, score: null, caveat: expect.stringContaining("On 5 values") }]);
   });
