@@ -1,7 +1,8 @@
 import { describe, expect, it } from "vitest";
 import { type LintOptions, lintLayout } from "@/builders/codec/lint";
-import { findMend } from "@/builders/codec/mend/find-mend";
+import { findMends } from "@/builders/codec/mend/find-mend";
 import { applyEdits } from "@/lib/domain/json-edits";
+import type { Problem } from "@/lib/errors";
 import type { LayoutDocument, LayoutField } from "@/schemas/documents/layout";
 import { firstGolden, secondGolden } from "../../support/scenario/golden";
 import { oneFieldLayout, smallLayout } from "./layouts";
@@ -434,7 +435,10 @@ describe("lintLayout", () => {
   });
 });
 
-describe("findMend", () => {
+const findMend = (problem: Problem, text: string, options?: LintOptions) =>
+  findMends([problem], text, options).get(problem);
+
+describe("findMends", () => {
   it.each(cases.filter((one) => one.mend !== undefined))(
     "$mend, against $what",
     ({ document, options, level, path, code, mend }) => {

@@ -1,5 +1,6 @@
 "use client";
 
+import { useMemo } from "react";
 import { Button } from "@/app/_components/button";
 import { Card } from "@/app/_components/card";
 import { MemoryMap } from "@/app/_components/memory-map";
@@ -7,7 +8,7 @@ import { StateMark } from "@/app/_components/state/state-mark";
 import type { Tone } from "@/app/_components/state/tone";
 import type { LintOptions } from "@/builders/codec/lint";
 import type { Resolution } from "@/builders/codec/lint-resolution";
-import { findMend } from "@/builders/codec/mend/find-mend";
+import { findMends } from "@/builders/codec/mend/find-mend";
 import type { Mend } from "@/builders/codec/mend/mend-context";
 import { formatFigure, formatNumberOf } from "@/lib/domain/format/figure";
 import { toEngineering } from "@/lib/domain/format/quantity";
@@ -64,8 +65,12 @@ export function LintList({ judged, basis, onMend, onShow }: LintListProps) {
   const title = `${errors.length === 0 ? "No errors" : formatNumberOf(errors.length, "error")}, ${
     warnings.length === 0 ? "no warnings" : formatNumberOf(warnings.length, "warning")
   }`;
+  const mends = useMemo(
+    () => findMends([...errors.slice(0, SHOWN), ...warnings.slice(0, SHOWN)], text, basis),
+    [errors, warnings, text, basis],
+  );
   const row = (tone: Tone, word: string) => (problem: Problem) => {
-    const mend = onMend ? findMend(problem, text, basis) : undefined;
+    const mend = mends.get(problem);
     const key = problem.path + problem.code + problem.message;
     return (
       <LintRow key={key} problem={problem} tone={tone} word={word} onShow={onShow}>
