@@ -2,6 +2,7 @@ import type { CompiledLayout } from "@/builders/codec/compile-layout";
 import { assembleImage } from "@/builders/codec/hex-image";
 import { readIntelHex } from "@/builders/codec/intel-hex-read";
 import { readSRecords } from "@/builders/codec/s-record-read";
+import { addressAt } from "@/builders/codec/segments";
 import { AppError } from "@/lib/errors";
 
 /** A memory dump as read: raw from the base address on, or pieces with their addresses. */
@@ -35,7 +36,8 @@ export function wrongShape(layout: CompiledLayout, dump: DumpFile): AppError {
     });
   }
   const { missing } = assembleImage(layout, dump.file.segments);
-  const address = (offset: number) => `0x${(layout.baseAddress + offset).toString(16).toUpperCase().padStart(4, "0")}`;
+  const address = (offset: number) =>
+    `0x${addressAt(layout.pieces, offset).toString(16).toUpperCase().padStart(4, "0")}`;
   return new AppError("dump.incomplete", {
     missing: missing.map(([from, to]) => ({ from: address(from), to: address(to) })),
     message: `The dump does not hold all ${layout.bytes} bytes from ${address(0)}: the first one missing is at ${address(missing[0]?.[0] ?? 0)}. Read the whole memory.`,
