@@ -12,9 +12,10 @@ import { formatCount, formatNumberOf } from "@/lib/domain/format/figure";
 import { formatQuantity } from "@/lib/domain/format/quantity";
 import { formatSize } from "@/lib/domain/format/size";
 import { formatDate, formatDateTime } from "@/lib/domain/format/time";
-import { orNotFound, pageContext } from "@/lib/http/page-context";
+import { holds, orNotFound, pageContext } from "@/lib/http/page-context";
 import { listRunUses } from "@/lib/services/derivations/get-derivation";
 import { getProofRun } from "@/lib/services/proofs/judge-proof-run";
+import { countStaleSets } from "@/lib/services/runs/count-stale-sets";
 import { getRunView } from "@/lib/services/runs/get-run";
 import { ProofCard } from "./proof-card";
 
@@ -25,7 +26,10 @@ export default async function RunPage({ params }: { params: Promise<{ run: strin
   const run = await orNotFound(getRunView(ctx, (await params).run));
   const uses = await listRunUses(ctx, run.id);
   const proof = run.purpose === "proof" ? await getProofRun(ctx, run.id) : null;
+  const stale = await countStaleSets(ctx, run.id);
+  const staleCount = [...stale.values()].reduce((sum, count) => sum + count, 0);
   const path = `/api/v1/runs/${run.id}`;
+  const readings = `/lots/${encodeURIComponent(run.lot)}/readings`;
   return (
     <>
       <TitleRow
@@ -43,21 +47,34 @@ export default async function RunPage({ params }: { params: Promise<{ run: strin
         }
         note={`Uploaded by ${run.createdBy}${run.fileName ? ` from ${run.fileName}` : ""}`}
         actions={
-          <LinkButton href={`${path}/file`} download>
-            File as uploaded
-          </LinkButton>
+          <>
+            {run.supersededBy === null && holds(ctx, "engineer") ? (
+              <LinkButton href={`${readings}?supersedes=${run.id}#upload`}>Replace with a corrected file</LinkButton>
+            ) : null}
+            <LinkButton href={`${path}/file`} download>
+              File as uploaded
+            </LinkButton>
+          </>
         }
       />
       <div className="flex flex-col gap-[18px]">
         {run.supersededBy ? (
           <Notice tone="caution" title="Superseded">
-            <Link href={`/runs/${run.supersededBy}`}>Another run</Link> replaced it; coefficients that rest on it are
-            stale.
+            <Link href={`/runs/${run.supersededBy}`}>Another run</Link> replaced it.{" "}
+            {staleCount > 0
+              ? `${formatNumberOf(staleCount, "coefficient set")} that ${staleCount === 1 ? "rests" : "rest"} on it became stale: derive anew.`
+              : "No coefficients rested on it."}
           </Notice>
         ) : null}
         {run.supersedes ? (
           <Notice>
             It replaces <Link href={`/runs/${run.supersedes}`}>an earlier run</Link>: {run.reason}
+          </Notice>
+        ) : null}
+        {run.plan ? (
+          <Notice>
+            Read as planned in <Link href={`${readings}/plans/${run.plan.id}`}>{run.plan.name}</Link>; what differs
+            stands among the findings.
           </Notice>
         ) : null}
         <Card title="What it holds">
@@ -103,6 +120,7 @@ export default async function RunPage({ params }: { params: Promise<{ run: strin
                     <Link href={`/derivations/${use.id}`}>Derivation of {formatDateTime(use.createdAt)}</Link>,{" "}
                     {use.method}, order {use.order}, {use.state.replaceAll("-", " ")},{" "}
                     {formatNumberOf(use.withValues, "set")}
+                    {stale.has(use.id) ? `, ${formatCount(stale.get(use.id))} of them stale` : ""}
                   </li>
                 ))}
               </ul>
