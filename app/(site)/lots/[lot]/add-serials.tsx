@@ -7,23 +7,29 @@ import { callApi, type ProblemDetails, problemOf } from "@/app/_components/api-c
 import { Button } from "@/app/_components/button";
 import { Card } from "@/app/_components/card";
 import { FormError } from "@/app/_components/form/form-error";
+import { TextArea } from "@/app/_components/form/text-area";
 import { useToast } from "@/app/_components/toast";
 import { formatCount, formatNumberOf } from "@/lib/domain/format/figure";
-import { PasteSerials, RuleSerials, type SerialsGiven } from "./serials-given";
+import { PasteSerials, RuleSerials, type SerialsGiven, TableSerials } from "./serials-given";
 
 interface Added {
   added: number;
   known: number;
+  batchesSet?: number;
 }
+
+const WAYS = { paste: "Type or paste", table: "With batches, from a table", rule: "Number by a rule" } as const;
+type Way = keyof typeof WAYS;
 
 const nothing: SerialsGiven = { serials: [], hint: "" };
 
-/** Adds serials, pasted or numbered by a rule, after showing what they will be. */
+/** Adds serials, pasted, from a table with their batches, or numbered by a rule, after showing what they will be. */
 export function AddSerials({ lot, open }: { lot: string; open: boolean }) {
   const router = useRouter();
   const lists = useQueryClient();
   const tell = useToast();
-  const [way, setWay] = useState<"paste" | "rule">("paste");
+  const [way, setWay] = useState<Way>("paste");
+  const [reason, setReason] = useState("");
   const [given, setGiven] = useState(nothing);
   const [pending, setPending] = useState(false);
   const [problem, setProblem] = useState<ProblemDetails | null>(null);
@@ -34,11 +40,18 @@ export function AddSerials({ lot, open }: { lot: string; open: boolean }) {
     try {
       // By the API and not by an action: 60,000 serials are more than an action's body takes.
       const path = `/api/v1/lots/${lot}/devices`;
-      const { added, known } = await callApi<Added>(path, { method: "POST", json: { serials: given.serials } });
-      const text = known > 0 ? `${formatNumberOf(known, "serial")} stood in the lot before.` : undefined;
+      const json = given.devices
+        ? { devices: given.devices, ...(reason.trim() !== "" && { reason }) }
+        : { serials: given.serials };
+      const { added, known, batchesSet = 0 } = await callApi<Added>(path, { method: "POST", json });
+      const before = known > 0 ? `${formatNumberOf(known, "serial")} stood in the lot before` : "";
+      const set =
+        batchesSet > 0 ? `, ${formatNumberOf(batchesSet, "of them got its batches", "of them got their batches")}` : "";
+      const text = before ? `${before}${set}.` : undefined;
       tell({ tone: "good", title: `${formatNumberOf(added, "serial")} added to ${lot}`, text });
       setProblem(null);
       setGiven(nothing);
+      setReason("");
       setRound(round + 1);
       await lists.invalidateQueries({ queryKey: ["list", path] });
       router.refresh();
@@ -47,8 +60,9 @@ export function AddSerials({ lot, open }: { lot: string; open: boolean }) {
     }
     setPending(false);
   };
-  const choose = (next: "paste" | "rule") => {
+  const choose = (next: Way) => {
     setWay(next);
+    setReason("");
     setGiven(nothing);
     setProblem(null);
   };
@@ -59,7 +73,7 @@ export function AddSerials({ lot, open }: { lot: string; open: boolean }) {
       <Card>
         <fieldset className="mb-3 flex flex-wrap gap-x-6 gap-y-1">
           <legend className="sr-only">How the serials are given</legend>
-          {(["paste", "rule"] as const).map((one) => (
+          {(Object.keys(WAYS) as Way[]).map((one) => (
             <label key={one} className="flex items-center gap-2">
               <input
                 type="radio"
@@ -68,17 +82,26 @@ export function AddSerials({ lot, open }: { lot: string; open: boolean }) {
                 onChange={() => choose(one)}
                 className="accent-copper"
               />
-              {one === "paste" ? "Type or paste" : "Number by a rule"}
+              {WAYS[one]}
             </label>
           ))}
         </fieldset>
-        {way === "paste" ? (
-          <PasteSerials key={`p${round}`} onGiven={setGiven} />
-        ) : (
-          <RuleSerials key={`r${round}`} lot={lot} onGiven={setGiven} />
-        )}
+        {way === "paste" ? <PasteSerials key={`p${round}`} onGiven={setGiven} /> : null}
+        {way === "table" ? <TableSerials key={`t${round}`} onGiven={setGiven} /> : null}
+        {way === "rule" ? <RuleSerials key={`r${round}`} lot={lot} onGiven={setGiven} /> : null}
         <Preview given={given} />
         <FormError problem={problem} />
+        {problem?.code === "device.batch_differs" ? (
+          <div className="mt-3">
+            <TextArea
+              label="Why the batches told before are corrected"
+              maxLength={2000}
+              value={reason}
+              onChange={(event) => setReason(event.currentTarget.value)}
+              help="Stands in the ledger for ever; then add them again."
+            />
+          </div>
+        ) : null}
         <div className="mt-3 flex justify-end">
           <Button look="primary" disabled={given.serials.length === 0} pending={pending} onClick={add}>
             {given.serials.length === 0 ? "Add serials" : `Add ${formatNumberOf(given.serials.length, "serial")}`}

@@ -71,6 +71,13 @@ export default async function LotPage({ params }: PageProps) {
                 format: { as: "code" },
                 title: "Hardware id of the board in it, as last reported",
               },
+              { key: "gaugeBatch", header: "Gauge batch", format: { as: "code" }, title: "Of its strain gauges" },
+              {
+                key: "materialBatch",
+                header: "Material batch",
+                format: { as: "code" },
+                title: "Of its body's material",
+              },
               { key: "addedAt", header: "Added", format: { as: "time" } },
             ]}
             chips={[
@@ -81,7 +88,7 @@ export default async function LotPage({ params }: PageProps) {
             empty={{
               title: "No serials yet",
               text: engineer
-                ? "Add them above: pasted from a list, or numbered by a rule. Then a temperature test can be uploaded."
+                ? "Add them above: pasted from a list, from a table with their batches, or numbered by a rule. Then a temperature test can be uploaded."
                 : "An engineer adds them.",
             }}
           />

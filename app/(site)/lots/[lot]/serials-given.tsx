@@ -1,9 +1,12 @@
 "use client";
 
 import { useState } from "react";
+import { FileDrop } from "@/app/_components/file-drop";
 import { NumberInput } from "@/app/_components/form/number-input";
 import { TextArea } from "@/app/_components/form/text-area";
 import { TextInput } from "@/app/_components/form/text-input";
+import type { GivenDevice } from "@/lib/domain/batches";
+import { readDeviceTable } from "@/lib/domain/device-table";
 import { formatNumberOf } from "@/lib/domain/format/figure";
 import { numberSerials, readSerials } from "@/lib/domain/serials";
 import { AppError } from "@/lib/errors";
@@ -11,8 +14,13 @@ import { AppError } from "@/lib/errors";
 /** Serials as they will be added, and what was left out of what was typed. */
 export interface SerialsGiven {
   serials: string[];
+  /** With batches, where they were given. */
+  devices?: GivenDevice[];
   hint: string;
 }
+
+/** Lines of 60,000 devices with both batches. */
+const FILE_MAX_BYTES = 8 * 1024 * 1024;
 
 type OnGiven = (given: SerialsGiven) => void;
 
@@ -37,6 +45,39 @@ export function PasteSerials({ onGiven }: { onGiven: OnGiven }) {
       onChange={(event) => read(event.target.value)}
       help="One a line, or parted by spaces, commas or tabs; a column of a table can be pasted as it is."
     />
+  );
+}
+
+/** Lines of serial, gauge batch and material batch, pasted or from a file. */
+export function TableSerials({ onGiven }: { onGiven: OnGiven }) {
+  const [text, setText] = useState("");
+  const read = (next: string) => {
+    setText(next);
+    const { devices, refused } = readDeviceTable(next);
+    const [first] = refused;
+    const hint = first
+      ? `${formatNumberOf(refused.length, "line")} can't be taken: line ${first.line} ${first.why}. Mend or remove it.`
+      : "";
+    onGiven({ serials: first ? [] : devices.map((device) => device.serial), devices, hint });
+  };
+  return (
+    <div className="flex flex-col gap-4">
+      <FileDrop
+        label="Choose a CSV"
+        accept=".csv,.txt"
+        maxBytes={FILE_MAX_BYTES}
+        onFile={(file) => void file.text().then(read)}
+        help="Columns serial, gauge_batch, material_batch; a batch may be empty. UTF-8."
+      />
+      <TextArea
+        label="Or paste the lines"
+        code
+        rows={6}
+        value={text}
+        onChange={(event) => read(event.target.value)}
+        help="serial,gauge_batch,material_batch, one device a line; a spreadsheet's columns can be pasted as they are. Known serials get their batches too."
+      />
+    </div>
   );
 }
 
