@@ -85,6 +85,24 @@ export const equipment = z.object({
 
 export const equipmentList = pageOf(equipment);
 
+/** A run that used a piece of equipment, with its certificate as it stood then. */
+export const equipmentUse = z.object({
+  run: id,
+  lot: z.string(),
+  purpose: z.string(),
+  createdAt: timestamp,
+  devices: z.number().int(),
+  counted: z.boolean().meta({ description: "False where a later run superseded it" }),
+  certificate: z.string(),
+  calibratedUntil: z.string(),
+  uncertainty: z.number(),
+  coverageFactor: z.number(),
+  positions: z.array(chamberPosition),
+});
+
+export const equipmentUsePage = pageOf(equipmentUse);
+
+export type EquipmentUse = z.output<typeof equipmentUse>;
 export type ChamberPosition = z.output<typeof chamberPosition>;
 export type NewEquipment = z.output<typeof newEquipment>;
 export type EquipmentChange = z.output<typeof equipmentChange>;

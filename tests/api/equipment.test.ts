@@ -1,5 +1,8 @@
 import { afterAll, beforeAll, describe, expect, it } from "vitest";
+import { uploadRun } from "@/lib/services/runs/upload-run";
 import { openTestApi, type TestApi } from "../support/api";
+import { PASSWORD } from "../support/people";
+import { arrangeFamilyLot } from "../support/scenario/family-lot";
 
 let api: TestApi;
 beforeAll(async () => {
@@ -42,6 +45,27 @@ describe("equipment", () => {
     const list = await api.call("GET", "/equipment", { as: "auditor" });
     const factors = list.body.items.map((one: { coverageFactor: number }) => one.coverageFactor);
     expect(factors).toEqual([2, 2.05, 2]);
+  });
+
+  it("is told by its code or id, with the runs that used it, newest first", async () => {
+    const one = await api.call("GET", "/equipment/pt-01", { as: "service" });
+    expect(one.body).toMatchObject({ code: "PT-01", coverageFactor: 2 });
+    expect((await api.call("GET", `/equipment/${one.body.id}`, { as: "auditor" })).body).toEqual(one.body);
+    const people = { engineer: api.ctx("engineer"), reviewer: api.ctx("reviewer"), password: PASSWORD };
+    const { lot, read } = await arrangeFamilyLot(people);
+    const runs: string[] = [];
+    for (const purpose of ["zero", "span"] as const) {
+      const bytes = read(`readings-${purpose}.csv`);
+      const run = await uploadRun(people.engineer, { lot, purpose, equipment: ["PT-01"], addDevices: false, bytes });
+      runs.push(run.id);
+    }
+    await change("PT-01", { uncertainty: 0.05 });
+    const used = await api.call("GET", "/equipment/PT-01/runs", { as: "auditor", query: { limit: 1 } });
+    expect(used.body.items).toMatchObject([{ run: runs[1], lot, purpose: "span", uncertainty: 0.03, counted: true }]);
+    const rest = await api.call("GET", "/equipment/PT-01/runs", { as: "auditor", query: { cursor: used.body.next } });
+    expect([rest.body.items[0].run, rest.body.next]).toEqual([runs[0], null]);
+    expect((await api.call("GET", "/equipment/NONE", { as: "auditor" })).body.code).toBe("equipment.not_found");
+    expect((await api.call("GET", "/equipment/NONE/runs", { as: "auditor" })).status).toBe(404);
   });
 
   it("stands in the ledger with old and new values", async () => {

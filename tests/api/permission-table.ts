@@ -51,6 +51,7 @@ layouts.retire                 401    yes  yes  role role role role role    yes 
 
 equipment.list                 401    yes  yes  role yes  yes  yes  role    yes      yes      yes
 equipment.get                  401    yes  yes  role yes  yes  yes  role    yes      yes      yes
+equipment.list-runs            401    yes  yes  role yes  yes  yes  role    yes      yes      yes
 equipment.add                  401    yes  role role role role role role    yes      role     role
 equipment.change               401    yes  role role role role role role    yes      role     role
 

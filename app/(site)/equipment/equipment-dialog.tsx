@@ -13,16 +13,13 @@ import { NumberInput } from "@/app/_components/form/number-input";
 import { Select } from "@/app/_components/form/select";
 import { TextInput } from "@/app/_components/form/text-input";
 import { useToast } from "@/app/_components/toast";
+import { EQUIPMENT_NAMES, UNCERTAINTY_UNITS } from "@/lib/domain/format/certificate";
 import type { EquipmentView } from "@/lib/services/equipment/keep-equipment";
 import { type NewEquipment, newEquipment } from "@/schemas/api/equipment";
 import { addEquipmentAction, changeEquipmentAction } from "./actions";
+import { PositionsField } from "./positions-field";
 
-const kinds = [
-  { value: "sensor", name: "Reference sensor" },
-  { value: "chamber", name: "Climate chamber" },
-  { value: "load", name: "Load" },
-  { value: "reader", name: "Reader of the signal" },
-];
+const kinds = Object.entries(EQUIPMENT_NAMES).map(([value, name]) => ({ value, name }));
 
 export interface EquipmentDialogProps {
   /** The one that gets a new certificate; left out for a new piece. */
@@ -35,16 +32,24 @@ export function EquipmentDialog({ equipment, onClose }: EquipmentDialogProps) {
   const router = useRouter();
   const tell = useToast();
   const [problem, setProblem] = useState<ProblemDetails | null>(null);
-  const { register, handleSubmit, setError, formState } = useForm<z.input<typeof newEquipment>, unknown, NewEquipment>({
+  const { register, control, watch, handleSubmit, setError, formState } = useForm<
+    z.input<typeof newEquipment>,
+    unknown,
+    NewEquipment
+  >({
     resolver: zodResolver(newEquipment),
-    defaultValues: equipment ? valuesOf(equipment) : { kind: "sensor" },
+    defaultValues: equipment ? valuesOf(equipment) : { kind: "sensor", coverageFactor: 2, positions: [] },
   });
   const { errors, isSubmitting } = formState;
+  const kind = watch("kind");
 
-  const send = async ({ code, kind, ...certificate }: NewEquipment) => {
+  const send = async (given: NewEquipment) => {
+    const { code, kind: ofKind, ...certificate } = given;
+    // Places entered before another kind was chosen belong to no one.
+    const positions = ofKind === "chamber" ? given.positions : [];
     const result = equipment
-      ? await changeEquipmentAction(code, certificate)
-      : await addEquipmentAction({ code, kind, ...certificate });
+      ? await changeEquipmentAction(code, { ...certificate, positions })
+      : await addEquipmentAction({ ...given, positions });
     if (!result.ok) {
       setProblem(result.problem);
       if (result.problem.code === "equipment.exists")
@@ -88,12 +93,24 @@ export function EquipmentDialog({ equipment, onClose }: EquipmentDialogProps) {
           type="date"
           error={errors.calibratedUntil?.message}
         />
-        <NumberInput
-          {...register("uncertainty", { setValueAs: toNumber })}
-          label="Uncertainty"
-          help="Expanded, as the certificate gives it: °C for sensor and chamber, kg for load, mV/V for reader."
-          error={errors.uncertainty?.type === "invalid_type" ? "Takes a number." : errors.uncertainty?.message}
-        />
+        <div className="grid gap-3 sm:grid-cols-2">
+          <NumberInput
+            {...register("uncertainty", { setValueAs: toNumber })}
+            label="Uncertainty"
+            unit={UNCERTAINTY_UNITS[kind]}
+            help="Expanded, as the certificate gives it."
+            error={errors.uncertainty?.type === "invalid_type" ? "Takes a number." : errors.uncertainty?.message}
+          />
+          <NumberInput
+            {...register("coverageFactor", { setValueAs: toNumber })}
+            label="Coverage factor k"
+            help="2 unless the certificate says otherwise."
+            error={errors.coverageFactor?.message}
+          />
+        </div>
+        {kind === "chamber" ? (
+          <PositionsField control={control} register={register} errors={errors.positions} toNumber={toNumber} />
+        ) : null}
         <FormError problem={problem} />
         <div className="flex flex-wrap justify-end gap-2.5">
           <Button onClick={onClose}>Leave it</Button>

@@ -3,9 +3,10 @@
 import { useState } from "react";
 import { Button } from "@/app/_components/button";
 import { Card } from "@/app/_components/card";
-import { StateMark } from "@/app/_components/state/state-mark";
 import { DataTable } from "@/app/_components/table/data-table";
+import { dueState, EQUIPMENT_NAMES, formatUncertainty } from "@/lib/domain/format/certificate";
 import type { EquipmentView } from "@/lib/services/equipment/keep-equipment";
+import { DueMark } from "./due-mark";
 import { EquipmentDialog } from "./equipment-dialog";
 
 export interface EquipmentListProps {
@@ -15,12 +16,17 @@ export interface EquipmentListProps {
   mayWrite: boolean;
 }
 
-/** All equipment, what is past its date marked. */
+/** All equipment, what is past its date or soon will be marked. */
 export function EquipmentList({ items, today, mayWrite }: EquipmentListProps) {
-  const [edited, setEdited] = useState<EquipmentView | "new">();
-  const rows = items.map((item) => ({ ...item, valid: item.calibratedUntil >= today }));
+  const [adding, setAdding] = useState(false);
+  const rows = items.map((item) => ({
+    ...item,
+    kindName: EQUIPMENT_NAMES[item.kind],
+    due: dueState(item.calibratedUntil, today),
+    uncertaintyText: formatUncertainty(item.kind, item.uncertainty, item.coverageFactor),
+  }));
   const add = mayWrite ? (
-    <Button look="primary" onClick={() => setEdited("new")}>
+    <Button look="primary" onClick={() => setAdding(true)}>
       Add equipment
     </Button>
   ) : undefined;
@@ -30,56 +36,36 @@ export function EquipmentList({ items, today, mayWrite }: EquipmentListProps) {
         name="equipment"
         rows={rows}
         rowKey="code"
+        rowHref="/equipment/{code}"
         sort={{ key: "code", descending: false }}
         columns={[
           { key: "code", header: "Equipment", format: { as: "code" } },
-          { key: "kind", header: "Kind" },
+          { key: "kindName", header: "Kind" },
           { key: "certificate", header: "Certificate" },
           { key: "calibratedUntil", header: "Calibrated until", format: { as: "date" } },
           {
-            key: "valid",
+            key: "due",
             header: "Certificate is",
-            format: { as: "yes-no", yes: "in date", no: "past its date" },
-            cell: (row) => (
-              <StateMark tone={row.valid ? "good" : "bad"} word={row.valid ? "in date" : "past its date"} />
-            ),
+            cell: (row) => <DueMark calibratedUntil={String(row.calibratedUntil)} today={today} />,
           },
           {
-            key: "uncertainty",
+            key: "uncertaintyText",
             header: "Uncertainty",
-            unit: "°C, kg or mV/V",
-            // Kilograms of a mass and degrees of a chamber share the column: each stands with the digits of its certificate.
+            title: "Expanded, as the certificate gives it, with its coverage factor k",
             format: { as: "code" },
-            align: "right",
-            title: "Expanded, as the certificate gives it: °C for sensor and chamber, kg for load, mV/V for reader",
           },
-          ...(mayWrite
-            ? [
-                {
-                  key: "id",
-                  header: "Change",
-                  sortable: false,
-                  cell: (row: Record<string, unknown>) => (
-                    <Button onClick={() => setEdited(items.find((item) => item.id === row.id))}>New certificate</Button>
-                  ),
-                },
-              ]
-            : []),
         ]}
-        chips={[{ id: "past", name: "Past its date", key: "valid", in: [false] }]}
+        chips={[
+          { id: "past", name: "Past its date", key: "due", in: ["overdue"] },
+          { id: "soon", name: "Due within 30 days", key: "due", in: ["due-soon"] },
+        ]}
         empty={{
           title: "No equipment yet",
           text: "Runs name the sensor, chamber, loads and reader that they were taken with, so that a bad certificate can be traced to devices.",
           action: add,
         }}
       />
-      {edited ? (
-        <EquipmentDialog
-          key={edited === "new" ? "new" : edited.id}
-          equipment={edited === "new" ? undefined : edited}
-          onClose={() => setEdited(undefined)}
-        />
-      ) : null}
+      {adding ? <EquipmentDialog onClose={() => setAdding(false)} /> : null}
     </Card>
   );
 }

@@ -1,8 +1,9 @@
 import { READERS } from "@/lib/domain/roles";
 import { command } from "@/lib/http/command";
 import * as service from "@/lib/services/equipment/keep-equipment";
-import { byCodeOrId, pageQuery } from "@/schemas/api/common";
-import { equipment, equipmentChange, equipmentList, newEquipment } from "@/schemas/api/equipment";
+import * as use from "@/lib/services/equipment/list-equipment-use";
+import { byCodeOrId, idPageQuery, pageQuery } from "@/schemas/api/common";
+import { equipment, equipmentChange, equipmentList, equipmentUsePage, newEquipment } from "@/schemas/api/equipment";
 
 export const listEquipment = command({
   id: "equipment.list",
@@ -25,6 +26,19 @@ export const getEquipment = command({
   reply: { status: 200, schema: equipment },
   errors: ["equipment.not_found"],
   handle: (ctx, { params }) => service.getEquipment(ctx, params.code),
+});
+
+export const listEquipmentUse = command({
+  id: "equipment.list-runs",
+  method: "GET",
+  path: "/equipment/{code}/runs",
+  summary: "Runs that used a piece of equipment, newest first, with its certificate as of each",
+  access: { who: "person", roles: READERS },
+  params: byCodeOrId,
+  query: idPageQuery,
+  reply: { status: 200, schema: equipmentUsePage },
+  errors: ["equipment.not_found"],
+  handle: (ctx, { params, query }) => use.listEquipmentUse(ctx, params.code, query),
 });
 
 export const addEquipment = command({
@@ -53,4 +67,4 @@ export const changeEquipment = command({
   handle: (ctx, { params, body }) => service.changeEquipment(ctx, params.code, body),
 });
 
-export const equipmentCommands = [listEquipment, getEquipment, addEquipment, changeEquipment];
+export const equipmentCommands = [listEquipment, getEquipment, listEquipmentUse, addEquipment, changeEquipment];
