@@ -1,7 +1,8 @@
 import { READERS } from "@/lib/domain/roles";
 import { importCoefficients } from "@/lib/services/coefficients/import-coefficients";
 import { listLotCoefficients, writeLotCoefficientsCsv } from "@/lib/services/coefficients/list-coefficients";
-import { importQuery, newestSetPage } from "@/schemas/api/coefficients";
+import { previewImport } from "@/lib/services/coefficients/preview-import";
+import { importPreview, importQueryWithPreview, newestSetPage } from "@/schemas/api/coefficients";
 import { byCode, pageQuery } from "@/schemas/api/common";
 import { derivation } from "@/schemas/api/derivations";
 import { chooseMediaType } from "../accept";
@@ -14,15 +15,22 @@ export const importSets = command({
   id: "coefficients.import",
   method: "POST",
   path: "/lots/{code}/coefficients",
-  summary: "Import coefficients as a derivation with method import",
+  summary:
+    "Import coefficients as a derivation with method import; with ?preview=true answers 200 with rows, errors and findings and stores nothing",
   access: { who: "person", roles: ["engineer"] },
   params: byCode,
-  query: importQuery,
+  query: importQueryWithPreview,
   body: { upload: { contentTypes: ["text/csv"], maxBytes: IMPORT_MAX_BYTES } },
   reply: { status: 201, schema: derivation },
   errors: ["lot.not_found", "coefficients.reference_differs", "coefficients.invalid"],
   idempotent: true,
-  handle: (ctx, { params, query, body }) => importCoefficients(ctx, { ...query, lot: params.code, bytes: body.bytes }),
+  handle: async (ctx, { params, query, body }) => {
+    const { referenceC, capacityKg } = query;
+    const input = { lot: params.code, referenceC, capacityKg, bytes: body.bytes };
+    if (query.preview !== "true") return importCoefficients(ctx, input);
+    const preview = importPreview.parse(await previewImport(ctx, input));
+    return Response.json(preview, { headers: { "cache-control": "no-store" } });
+  },
 });
 
 export const listCoefficients = command({
