@@ -13,6 +13,7 @@ import { DerivationCharts, drawnNote } from "./charts";
 import { DecisionPanel } from "./decision-panel";
 import { DevicesCard } from "./devices-card";
 import { DriftCharts } from "./drift-charts";
+import { EnvelopeCard } from "./envelope-card";
 import { ResidualChart } from "./residual-chart";
 import { residualDevices } from "./residual-devices";
 import { SelectionProvider } from "./selection";
@@ -46,7 +47,7 @@ export async function Result({ view }: { view: DerivationView }) {
           <DriftCharts chart={chart} />
           <ResidualChart devices={residualDevices(chart, view.method === "pooled-gain")} note={drawnNote(chart)} />
           {view.uncertainty ? <UncertaintyCard budget={view.uncertainty} /> : null}
-          <LegalNote />
+          {view.envelope ? null : <LegalNote />}
         </>
       )}
       <DecisionPanel
@@ -70,6 +71,7 @@ function Statements({ view, chart }: { view: DerivationView; chart: DerivationCh
           <PooledFacts pooled={view.pooled} />
         </Card>
       ) : null}
+      {view.envelope ? <EnvelopeCard derivation={view.id} rules={chart.rules} envelope={view.envelope} /> : null}
       <VerificationCard derivation={view.id} results={view.verification} confidence={confidence} coverage={coverage} />
     </>
   );
