@@ -2,10 +2,10 @@ import { v7 as uuidv7 } from "uuid";
 import { afterAll, beforeAll, describe, expect, it } from "vitest";
 import { openTestApi, type TestApi } from "../support/api";
 import { PASSWORD } from "../support/people";
-import { arrangeDerived } from "../support/scenario/derived";
+import { arrangeDerived, type DerivedLot } from "../support/scenario/derived";
 import type { ScenarioPeople } from "../support/scenario/family-lot";
 import { firstGolden } from "../support/scenario/golden";
-import { arrangeReleased } from "../support/scenario/packaged";
+import { arrangeReleased, buildGolden } from "../support/scenario/packaged";
 import { arrangeStation, reportOf, sendWrites, type TestStation } from "../support/scenario/station";
 
 const golden = firstGolden();
@@ -21,12 +21,13 @@ let api: TestApi;
 let people: ScenarioPeople;
 let station: TestStation;
 let live: string;
+let derived: DerivedLot;
 let sampleRun: string;
 
 beforeAll(async () => {
   api = await openTestApi();
   people = { engineer: api.ctx("engineer"), reviewer: api.ctx("reviewer"), password: PASSWORD };
-  const derived = await arrangeDerived(people);
+  derived = await arrangeDerived(people);
   sampleRun = derived.runs.sample;
   live = (await arrangeReleased(people, derived)).id;
   station = await arrangeStation(api, "Line 1");
@@ -152,6 +153,15 @@ describe("proof of written devices", () => {
     expect((await lotProofs()).live).toMatchObject({ state: "agrees", differed: 0 });
     const { body: today } = await api.call("GET", "/today", { as: "engineer" });
     expect(today.trouble.map((item: { title: string }) => item.title)).not.toContain(`Proof of ${LOT}`);
+  });
+
+  it("stands among the checks of packages built with the same layout for the same firmware", async () => {
+    const { id } = await buildGolden(people, derived);
+    const { checks } = (await api.call("GET", `/packages/${id}`, { as: "reviewer" })).body;
+    const check = checks.find((one: { code: string }) => one.code === "first-off");
+    expect(check).toMatchObject({ verdict: "pass", evidence: { state: "agrees", differed: 0 } });
+    const first = (await api.call("GET", `/packages/${live}`, { as: "reviewer" })).body.checks;
+    expect(first.map((one: { code: string }) => one.code)).not.toContain("first-off");
   });
 
   it("answers 409 for a run that is no proof, 404 for none, 401 without a session", async () => {

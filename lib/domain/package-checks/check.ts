@@ -16,6 +16,7 @@ export const CHECK_CODES = [
   "verification",
   "proven-range",
   "twin",
+  "first-off",
   "live-difference",
 ] as const;
 

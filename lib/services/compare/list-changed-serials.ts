@@ -1,6 +1,5 @@
 import { listImageBytes } from "@/db/queries/package-layouts";
 import type { SerialSelection } from "@/lib/domain/comparison/select-serials";
-import { log } from "@/lib/log";
 import type { Ctx } from "@/lib/services/context";
 import type { ChangedSerials, ChangedSerialsQuery, ComparedDevice } from "@/schemas/api/compare";
 import { findIndex, indexOf, selectedOf } from "./known-indexes";
@@ -18,8 +17,6 @@ export async function listChangedSerials(ctx: Ctx, query: ChangedSerialsQuery): 
   const two = await openTwoPackages(ctx, query.from, query.to);
   if (!findIndex(two) && isPlainStart(query)) {
     const items = await walk(ctx, two, query);
-    // Only now: counting would stand in the way of the first rows.
-    indexOf(ctx, two).catch((error: unknown) => log.warn({ err: error }, "a comparison could not be counted"));
     return { total: null, offset: query.offset, items };
   }
   const index = await indexOf(ctx, two);

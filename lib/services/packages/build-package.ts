@@ -6,6 +6,7 @@ import { EVIDENCE_MAX } from "@/lib/domain/package-checks/check";
 import { AppError } from "@/lib/errors";
 import type { Ctx } from "@/lib/services/context";
 import { layoutsOfPackages } from "@/lib/services/devices/layouts-of-packages";
+import { findFirstOff } from "@/lib/services/proofs/list-lot-proofs";
 import { PackageChecker } from "./check-package";
 import type { LivePackage } from "./checking/difference-gatherer";
 import { composePackage, type ImagePart, type PackageInputs, partsOf, readPackageInputs } from "./compose-package";
@@ -28,12 +29,20 @@ export async function buildPackage(ctx: Ctx, { packageId }: { packageId: string 
     const inputs = await readPackageInputs(ctx.db, pkg);
     await storePackage(ctx, inputs, await build(ctx, inputs));
   } catch (error) {
-    if (appErrorFromDatabase(error)?.code === "database.unavailable") throw error;
+    if (mayPass(error)) throw error;
     const known = error instanceof AppError ? error : undefined;
     const message = "Something went wrong here; the log of the worker says what.";
     await failBuild(ctx, pkg, known ?? new AppError("server.fault", { message }));
     if (!known) throw error;
   }
+}
+
+/** Statement timeout, serialization failure, deadlock and lock timeout (PostgreSQL, appendix A): the next try may do. */
+const PASSING: readonly unknown[] = ["57014", "40001", "40P01", "55P03"];
+
+function mayPass(error: unknown): boolean {
+  if (appErrorFromDatabase(error)?.code === "database.unavailable") return true;
+  return typeof error === "object" && error !== null && "code" in error && PASSING.includes(error.code);
 }
 
 async function build(ctx: Ctx, inputs: PackageInputs): Promise<Built> {
@@ -78,6 +87,7 @@ async function build(ctx: Ctx, inputs: PackageInputs): Promise<Built> {
     repeatability: { digest: composed.digest, ...repeated },
     derivations: composed.derivations,
     provenRange: composed.provenRange,
+    firstOff: await findFirstOff(ctx, pkg),
   });
   return { selection, parts, composed, checks };
 }

@@ -3,11 +3,13 @@ import { CHECK_CODES, type CheckCode, type PackageCheck } from "@/lib/domain/pac
 import { type CoverageFacts, checkCoverage } from "@/lib/domain/package-checks/coverage";
 import { checkDecidedSets, type DecidedSetsFacts } from "@/lib/domain/package-checks/decided-sets";
 import { checkFirmware, type FirmwareFacts } from "@/lib/domain/package-checks/firmware";
+import { checkFirstOff } from "@/lib/domain/package-checks/first-off";
 import { checkPooling } from "@/lib/domain/package-checks/pooling";
 import { checkProvenRange } from "@/lib/domain/package-checks/proven-range";
 import { checkRepeatability, type RepeatabilityFacts } from "@/lib/domain/package-checks/repeatability";
 import { thresholdsOf } from "@/lib/domain/package-checks/thresholds";
 import { checkVerification } from "@/lib/domain/package-checks/verification";
+import type { FirstOffProof } from "@/lib/domain/proof/first-off";
 import { ByteGatherer } from "./checking/byte-gatherer";
 import { DifferenceGatherer, type LivePackage } from "./checking/difference-gatherer";
 import { TwinGatherer } from "./checking/twin-gatherer";
@@ -22,6 +24,8 @@ export interface WholePackage {
   repeatability: Omit<RepeatabilityFacts, "devices">;
   derivations: readonly DerivationRow[];
   provenRange: readonly [number, number] | null;
+  /** What proof runs of the lot show of its layout and firmware; null where none judged a device. */
+  firstOff: FirstOffProof | null;
 }
 
 /**
@@ -66,7 +70,7 @@ export class PackageChecker {
     const { coverage, derivations, repeatability } = whole;
     const packed = this.#devices;
     const { newerUndecided, leftOut } = coverage;
-    const checks: Record<CheckCode, () => PackageCheck> = {
+    const checks: Record<CheckCode, () => PackageCheck | null> = {
       coverage: () => checkCoverage(coverage),
       "decided-sets": () => checkDecidedSets({ packed, newerUndecided, leftOut, ...whole.decidedSets }),
       firmware: () =>
@@ -82,9 +86,10 @@ export class PackageChecker {
       verification: () => checkVerification(derivations, revision.document.confidence),
       "proven-range": () => this.#provenRange(whole),
       twin: () => this.#twin.twin(),
+      "first-off": () => checkFirstOff(whole.firstOff),
       "live-difference": () => this.#difference.liveDifference(thresholds),
     };
-    return CHECK_CODES.map((code) => checks[code]());
+    return CHECK_CODES.map((code) => checks[code]()).filter((check) => check !== null);
   }
 
   #provenRange({ derivations, provenRange }: WholePackage): PackageCheck {

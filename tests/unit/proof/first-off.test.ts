@@ -1,5 +1,6 @@
 import { describe, expect, it } from "vitest";
-import { type DeviceProof, summariseProofs } from "@/lib/domain/proof/first-off";
+import { checkFirstOff } from "@/lib/domain/package-checks/first-off";
+import { type DeviceProof, openFirstOff, summariseProofs } from "@/lib/domain/proof/first-off";
 
 const proof = (change: Partial<DeviceProof> = {}): DeviceProof => ({
   serial: "A-1",
@@ -62,5 +63,27 @@ describe("summariseProofs", () => {
     expect(agreeing).toMatchObject({ shown: ["zero", "gainTc"], notShown: [] });
     const [differing] = summariseProofs([proof(), proof({ serial: "A-2", state: "differs", shown })]);
     expect(differing).toMatchObject({ shown: ["zero"], notShown: ["gainTc"] });
+  });
+});
+
+describe("checkFirstOff", () => {
+  it("is no check where nothing was judged: not proven is no pass", () => {
+    expect(checkFirstOff(null)).toBeNull();
+    expect(checkFirstOff(openFirstOff("1.0.0", "2.3.0"))).toBeNull();
+  });
+
+  it("passes what agrees and says what was not shown", () => {
+    const [agreeing] = summariseProofs([proof()]);
+    const check = checkFirstOff(agreeing ?? null);
+    expect(check?.verdict).toBe("pass");
+    expect(check?.message).toContain("1 device read with layout 1.0.0 and firmware 2.3.0 did as predicted.");
+    expect(check?.message).toContain("Shown to be applied: zero; not shown: gainTc.");
+  });
+
+  it("warns where a device did otherwise", () => {
+    const [differing] = summariseProofs([proof(), proof({ serial: "A-2", state: "differs", worst: { ratio: 3.5 } })]);
+    const check = checkFirstOff(differing ?? null);
+    expect(check).toMatchObject({ verdict: "warn", evidence: { differed: 1 } });
+    expect(check?.message).toContain("1 device of 2 read with");
   });
 });

@@ -16,6 +16,7 @@ const names: Record<string, string> = {
   pooling: "One gain coefficient for the lot",
   verification: "Verification devices",
   "proven-range": "Temperatures proven",
+  "first-off": "Written devices compute as predicted",
   twin: "Predicted inside the envelope",
 };
 
