@@ -15,6 +15,9 @@ import { AppError } from "@/lib/errors";
 const ENTRIES_MAX = 65_534;
 const BYTES_MAX = 0xffff_ffff;
 
+/** Entries of the directory that are written at a time. */
+const HEADS_AT_ONCE = 1_000;
+
 /** Features of version 1.0, told by a maker of version 3.0 on UNIX. */
 const VERSION_NEEDED = 10;
 const MADE_BY = (3 << 8) | 30;
@@ -89,9 +92,10 @@ export class PlainZip {
   /** The directory and the end record, once all contents are written. @throws AppError `bundle.too_large` */
   *end(): Generator<Uint8Array> {
     let directory = 0;
-    for (const entry of this.#entries) {
-      directory += CENTRAL_BYTES + entry.name.length;
-      yield centralHead(entry);
+    for (let from = 0; from < this.#entries.length; from += HEADS_AT_ONCE) {
+      const heads = centralHeads(this.#entries.slice(from, from + HEADS_AT_ONCE));
+      directory += heads.length;
+      yield heads;
     }
     assertFits(this.#offset + directory);
     yield endRecord(this.#entries.length, directory, this.#offset);
@@ -117,16 +121,20 @@ function localHead(entry: Entry): Uint8Array {
   return head;
 }
 
-function centralHead(entry: Entry): Uint8Array {
-  const head = new Uint8Array(CENTRAL_BYTES + entry.name.length);
-  const view = new DataView(head.buffer);
-  view.setUint32(0, CENTRAL, true);
-  view.setUint16(4, MADE_BY, true);
-  writeHead(view, 6, entry);
-  view.setUint32(38, ATTRIBUTES, true);
-  view.setUint32(42, entry.offset, true);
-  head.set(entry.name, CENTRAL_BYTES);
-  return head;
+function centralHeads(entries: readonly Entry[]): Uint8Array {
+  const heads = new Uint8Array(entries.reduce((sum, { name }) => sum + CENTRAL_BYTES + name.length, 0));
+  const view = new DataView(heads.buffer);
+  let at = 0;
+  for (const entry of entries) {
+    view.setUint32(at, CENTRAL, true);
+    view.setUint16(at + 4, MADE_BY, true);
+    writeHead(view, at + 6, entry);
+    view.setUint32(at + 38, ATTRIBUTES, true);
+    view.setUint32(at + 42, entry.offset, true);
+    heads.set(entry.name, at + CENTRAL_BYTES);
+    at += CENTRAL_BYTES + entry.name.length;
+  }
+  return heads;
 }
 
 function endRecord(entries: number, bytes: number, offset: number): Uint8Array {

@@ -97,7 +97,7 @@ async function* bundleParts(db: Db, pkg: PackageRow, release: LivePeriodRow | un
     yield Buffer.concat(hexes.flatMap(({ path, content }) => [zip.head(path, [content]), content]));
   }
   for (const one of [file("manifest.json", manifest.content), ...after]) yield* entry(zip, one);
-  yield Buffer.concat([...zip.end()]);
+  yield* zip.end();
 }
 
 function* entry(zip: PlainZip, { path, content }: NamedFile): Generator<Uint8Array> {

@@ -68,7 +68,7 @@ export interface HexFile {
 export async function* eachHexFile(db: Db, { id, layout }: BuiltFrom): AsyncGenerator<HexFile[]> {
   const template = new HexTemplate(layout);
   // By path: a dot stands after a hyphen, and so "A.hex" after "A-1.hex".
-  const serials = (await listSerials(db, id)).sort((a, b) => byCodeUnits(hexPath(a), hexPath(b)));
+  const serials = (await listSerials(db, id)).sort((a, b) => byCodeUnits(`${a}.`, `${b}.`));
   for (let from = 0; from < serials.length; from += PAGE_IMAGES) {
     const page = serials.slice(from, from + PAGE_IMAGES);
     const images = await listImagesOfSerials(db, id, page);
