@@ -100,6 +100,12 @@ export async function listRunPlans(
   return (await query.execute()).map(rowOf);
 }
 
+/** Plans of any lot that wait for their readings, the longest waiting first. */
+export async function listWaitingRunPlans(db: Db, limit: number): Promise<RunPlanRow[]> {
+  const rows = await selectPlan(db).where("runPlan.state", "=", "planned").orderBy("runPlan.id").limit(limit).execute();
+  return rows.map(rowOf);
+}
+
 /** Devices of a plan in working order. */
 export async function listPlanDevices(db: Db, planId: string): Promise<PlannedDevice[]> {
   return db

@@ -14,6 +14,7 @@ export const todayItem = z.object({
     "role",
     "lot",
     "live",
+    "run-plan",
   ]),
   title: z.string(),
   detail: z.string().nullable(),
@@ -34,6 +35,7 @@ export const today = z.object({
   release: items.meta({ description: "Approved, to be made live" }),
   awaited: items.meta({ description: "Made or asked for by this person, to be decided by somebody else" }),
   own: items.meta({ description: "Own drafts, and own work that was refused or failed" }),
+  planned: items.meta({ description: "Planned runs that wait for their readings; engineers only" }),
   trouble: items.meta({
     description:
       "Live releases that a proof run contradicts, then newest records of serials of the last seven days that are not verified or carry a flag",

@@ -348,3 +348,15 @@ describe("dropping a plan", () => {
     expect((await api.call("GET", `/lots/${golden.lot}/run-plans`, { as: "operator" })).status).toBe(403);
   });
 });
+
+it("stands on the engineers' day until it is read or dropped", async () => {
+  const { id } = (await plan(planOf("On the day"))).body;
+  const shown = async (as: PersonName) =>
+    (await api.call("GET", "/today", { as })).body.planned.filter((one: Reply) => one.link.endsWith(id));
+  expect(await shown("engineer2")).toMatchObject([
+    { kind: "run-plan", title: "On the day", detail: `${golden.lot} · sample run · 5 devices`, who: "engineer" },
+  ]);
+  expect(await shown("auditor")).toEqual([]);
+  await drop(id);
+  expect(await shown("engineer2")).toEqual([]);
+});

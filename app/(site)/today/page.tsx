@@ -41,6 +41,11 @@ export default async function TodayPage() {
               </>
             )}
           </Card>
+          {today.planned.length > 0 ? (
+            <Card title="Planned runs" note="wait for the chamber and their readings">
+              <Shortened items={today.planned} name="planned runs" />
+            </Card>
+          ) : null}
           {today.awaited.length > 0 ? (
             <Card title="You wait for" note="a second person has to decide">
               <ItemList items={today.awaited} />

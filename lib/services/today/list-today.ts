@@ -5,6 +5,7 @@ import type { PersonCtx } from "@/lib/services/context";
 import type { Today } from "@/schemas/api/today";
 import { listFailedProofs } from "./failed-proofs";
 import { listLotSteps } from "./lot-steps";
+import { listPlannedRuns } from "./planned-runs";
 import * as item from "./today-items";
 
 /** Entries of a list at most: more than that is not looked at in a day. */
@@ -24,6 +25,7 @@ export async function listToday(ctx: PersonCtx): Promise<Today> {
     release: holds("engineer", "reviewer") ? (await query.listToRelease(db, SHOWN_MAX)).map(item.releaseItem) : [],
     awaited: holds("engineer", "reviewer") ? (await listAwaited(db, actor.id, SHOWN_MAX)).map(item.awaitedItem) : [],
     own: holds("engineer") ? (await query.listOwnWork(db, actor.id, SHOWN_MAX)).map(item.ownItem) : [],
+    planned: holds("engineer") ? await listPlannedRuns(ctx, SHOWN_MAX) : [],
     trouble: reads
       ? [
           ...(await listFailedProofs(ctx)),
