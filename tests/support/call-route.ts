@@ -9,7 +9,7 @@ export type Method = "GET" | "POST" | "PUT" | "PATCH" | "DELETE";
 export interface CallOptions {
   /** A person by their session, or whoever holds a bearer key; nobody where left out. */
   as?: PersonName | { bearer: string };
-  /** An object is sent as JSON; text and bytes as they are, with the content type of `headers`. */
+  /** An object is sent as JSON; text, bytes and streams as they are, with the content type of `headers`. */
   body?: unknown;
   headers?: Record<string, string>;
   query?: Record<string, string | number | boolean>;
@@ -39,7 +39,7 @@ export async function callRoute(
   const request = new Request(`${env().origin}${prefix}${url.pathname}${url.search}`, {
     method,
     headers: await headersOf(people, method, options),
-    ...(options.body === undefined ? {} : { body: bodyOf(options.body) }),
+    ...(options.body === undefined ? {} : { body: bodyOf(options.body), duplex: "half" }),
   });
   return readReply(await handler(request, { params: Promise.resolve(params) }));
 }
@@ -55,11 +55,13 @@ async function headersOf(people: TestPeople, method: Method, options: CallOption
   return headers;
 }
 
-function isRaw(body: unknown): body is string | Uint8Array<ArrayBuffer> {
-  return typeof body === "string" || body instanceof Uint8Array;
+type RawBody = string | Uint8Array<ArrayBuffer> | ReadableStream<Uint8Array>;
+
+function isRaw(body: unknown): body is RawBody {
+  return typeof body === "string" || body instanceof Uint8Array || body instanceof ReadableStream;
 }
 
-function bodyOf(body: unknown): string | Uint8Array<ArrayBuffer> {
+function bodyOf(body: unknown): RawBody {
   return isRaw(body) ? body : JSON.stringify(body);
 }
 

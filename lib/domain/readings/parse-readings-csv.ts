@@ -7,6 +7,7 @@ import { type ParsedReadings, ReadingsGatherer } from "./gather-readings";
 export const FILE_MAX_BYTES = 64 * 1024 * 1024;
 /** No CSV has a NUL; in UTF-16 every other byte of plain letters is one. */
 const NUL_SEARCHED_BYTES = 1024;
+const ZIP_START = Buffer.from("PK\u0003\u0004");
 
 /**
  * Reads a readings CSV (contract, section 2): UTF-8 with or without a byte order mark, columns in any order, strict
@@ -35,6 +36,11 @@ function faultError({ line: row, reason }: CsvFault): RowError {
 }
 
 function encodingError(bytes: Buffer): RowError | undefined {
+  if (bytes.subarray(0, 4).equals(ZIP_START)) {
+    const message =
+      "The file is a workbook or another zip; only CSV is taken here. The page of the lot's readings takes XLSX.";
+    return { row: 1, column: "", code: "file.not_csv", message };
+  }
   const marked = (bytes[0] === 0xff && bytes[1] === 0xfe) || (bytes[0] === 0xfe && bytes[1] === 0xff);
   if (marked || bytes.subarray(0, NUL_SEARCHED_BYTES).includes(0)) {
     return { row: 1, column: "", code: "file.not_utf8", message: "The file is in UTF-16; save it as UTF-8." };
