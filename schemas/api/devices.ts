@@ -133,7 +133,7 @@ export const rewritePage = pageOf(rewrite);
 /** Bytes of an uploaded dump at most: a memory of 64 KiB as Intel HEX, even with one byte a record. */
 export const DUMP_MAX_BYTES = 1024 * 1024;
 
-export const HEX_TYPES = ["text/x-intel-hex", "text/plain"] as const;
+export const HEX_TYPES = ["text/x-intel-hex", "text/x-motorola-srecord", "text/plain"] as const;
 export const RAW_TYPE = "application/octet-stream";
 
 export type DumpResult = z.output<typeof dumpResult>;

@@ -6,6 +6,7 @@ import { toHex } from "@/builders/codec/hex-text";
 import { decodeImage, encodeImage } from "@/builders/codec/image";
 import { roundHalfEven } from "@/builders/codec/round-half-even";
 import type { ByteOrder, FieldType, LayoutDocument } from "@/schemas/documents/layout";
+import { PYTHON, runTool } from "@/tests/support/programs";
 import { oneFieldLayout, plainSources } from "@/tests/unit/builders/layouts";
 
 const vectors = JSON.parse(
@@ -94,4 +95,62 @@ describe("numbers as stored", () => {
   ])("rounds %s to %s, ties to even (IEEE 754 roundTiesToEven)", (value, rounded) => {
     expect(roundHalfEven(value)).toBe(rounded);
   });
+
+  // Python's own arithmetic: round() goes to the nearest integer with ties to even, int.to_bytes is two's complement, struct
+  // is IEEE 754, and packed decimal is the decimal digits read as hex.
+  it("are stored as Python stores them, at random", () => {
+    const cases = [...drawNumbers(600)];
+    const script = `
+import json, struct, sys
+def stored(c):
+    order, kind, value = c["byteOrder"], c["type"], c["value"]
+    if kind in ("f32", "f64"):
+        return struct.pack((">" if order == "big" else "<") + ("f" if kind == "f32" else "d"), value)
+    step = round((value - c.get("bias", 0)) / c.get("scale", 1))
+    if kind == "bcd":
+        digits = bytes.fromhex(str(step).zfill(2 * c["length"]))
+        return digits if order == "big" else digits[::-1]
+    bits = c["bits"] if kind == "fixed" else int(kind[1:])
+    return step.to_bytes(bits // 8, order, signed=c["signed"] if kind == "fixed" else kind[0] == "i")
+print(json.dumps([stored({**c, "scale": 2.0 ** -c["fraction"]} if c["type"] == "fixed" else c).hex() for c in json.load(sys.stdin)]))`;
+    const expected = JSON.parse(runTool(PYTHON, ["-c", script], JSON.stringify(cases)).toString()) as string[];
+    const ours = cases.map(({ type, value, byteOrder, ...more }) => store(type, value, byteOrder, more).hex);
+    expect(ours).toEqual(expected);
+  });
 });
+
+/** Numbers of every type at random scales, the same every time. */
+function* drawNumbers(count: number) {
+  let state = 0x2545f491;
+  const random = () => {
+    state = (Math.imul(state, 1664525) + 1013904223) >>> 0;
+    return state / 2 ** 32;
+  };
+  const scales = [1, 1e-6, 2.5e-9, 0.125, -0.01, 1 / 3];
+  const types = ["u8", "i8", "u16", "i16", "u24", "i24", "u32", "i32", "f32", "f64", "fixed", "bcd"] as const;
+  for (let i = 0; i < count; i++) {
+    const type = types[i % types.length] as (typeof types)[number];
+    const byteOrder: ByteOrder = random() < 0.5 ? "big" : "little";
+    const scale = scales[Math.floor(random() * scales.length)] as number;
+    const bias = random() < 0.5 ? 0 : Math.round(random() * 100) / 8;
+    // Half of them lie on or half way between steps.
+    const step = (low: number, high: number) => {
+      const drawn = low + random() * (high - low);
+      return random() < 0.5 ? Math.floor(drawn * 2) / 2 : drawn;
+    };
+    if (type === "f32" || type === "f64") {
+      yield { type, byteOrder, value: (random() - 0.5) * 10 ** Math.floor(random() * 60 - 30) };
+    } else if (type === "fixed") {
+      const [bits, fraction, signed] = [8 * (1 + Math.floor(random() * 4)), Math.floor(random() * 40), random() < 0.5];
+      const top = 2 ** (signed ? bits - 1 : bits) - 1;
+      yield { type, byteOrder, bits, fraction, signed, value: step(signed ? -top : 0, top) / 2 ** fraction };
+    } else if (type === "bcd") {
+      const length = 1 + Math.floor(random() * 5);
+      yield { type, byteOrder, length, scale, bias, value: step(1, 10 ** (2 * length) - 2) * scale + bias };
+    } else {
+      const bits = Number(type.slice(1));
+      const top = 2 ** (type.startsWith("i") ? bits - 1 : bits) - 2;
+      yield { type, byteOrder, scale, bias, value: step(type.startsWith("i") ? -top : 1, top) * scale + bias };
+    }
+  }
+}
