@@ -111,9 +111,12 @@ class Scanner {
   }
 
   private space(): void {
-    while (/[ \t\r\n]/.test(this.text[this.at] ?? "")) this.at += 1;
+    for (let code = this.text.charCodeAt(this.at); isSpace(code); code = this.text.charCodeAt(this.at)) this.at += 1;
   }
 }
+
+/** Tab, line feed, carriage return or space (RFC 8259, section 2). */
+const isSpace = (code: number) => code === 32 || code === 10 || code === 13 || code === 9;
 
 function pointerToken(key: string): string {
   let name = key.slice(1, -1);

@@ -83,7 +83,12 @@ export default async function FamilyPage({ params, searchParams }: PageProps) {
         </div>
         <Card
           title="Layouts"
-          aside={engineer ? <LinkButton href={`/families/${family.code}/layouts/new`}>New layout</LinkButton> : null}
+          aside={
+            <span className="flex flex-wrap gap-2">
+              <LinkButton href={`/families/${family.code}/layouts`}>Firmware and use</LinkButton>
+              {engineer ? <LinkButton href={`/families/${family.code}/layouts/new`}>New layout</LinkButton> : null}
+            </span>
+          }
         >
           <DataTable
             name="layouts"

@@ -192,7 +192,7 @@ export function Differences({ against, reasons, step, choice, waiting = false }:
   return (
     <Card title={title} note={step && reasons.length > 0 ? stepWords[step] : undefined} aside={choice}>
       {waiting ? (
-        <p className="text-sm text-ink-soft">Told as soon as the text is a layout.</p>
+        <p className="text-sm text-ink-soft">Told as soon as both texts are there.</p>
       ) : reasons.length === 0 ? (
         <p className="text-sm text-ink-soft">Nothing but the version differs.</p>
       ) : null}

@@ -2,10 +2,9 @@
 
 import { memo, type RefObject } from "react";
 import { ToneShape } from "@/app/_components/state/state-mark";
-import type { Problem } from "@/lib/errors";
 import { CellInput } from "./cell-input";
 import type { Column } from "./columns";
-import type { RowDeeds, Writing } from "./part-table";
+import type { RowDeeds, RowProblem, Writing } from "./part-table";
 
 interface PartRowProps {
   row: number;
@@ -13,7 +12,7 @@ interface PartRowProps {
   path: string;
   part: Record<string, unknown>;
   columns: readonly Column[];
-  problems: readonly Problem[];
+  problems: readonly RowProblem[];
   /** Column of the table's focus, if it is in this row. */
   here: number | undefined;
   writing: Writing | undefined;
@@ -65,7 +64,7 @@ export const PartRow = memo(function PartRow(props: PartRowProps) {
             ) : (
               <>
                 {index === 0 ? <RowMark problems={problems} /> : null}
-                {text ?? "…"}
+                {text === null ? "…" : column.figures ? text.replace("-", "−") : text}
               </>
             )}
           </Cell>
@@ -76,12 +75,13 @@ export const PartRow = memo(function PartRow(props: PartRowProps) {
 });
 
 /** What stands against the row, as a shape with its words. */
-function RowMark({ problems }: { problems: readonly Problem[] }) {
+function RowMark({ problems }: { problems: readonly RowProblem[] }) {
   if (problems.length === 0) return null;
   const words = problems.map((problem) => problem.message).join("; ");
+  const bad = problems.some((problem) => problem.stands);
   return (
-    <span title={words} className="mr-1.5 inline-block align-baseline text-oxide">
-      <ToneShape tone="caution" size={10} />
+    <span title={words} className={`mr-1.5 inline-block align-baseline ${bad ? "text-oxide" : "text-ochre"}`}>
+      <ToneShape tone={bad ? "bad" : "caution"} size={10} />
       <span className="sr-only">{words} — </span>
     </span>
   );

@@ -15,7 +15,7 @@ export interface PartTableProps {
   /** JSON pointer of the list. */
   list: string;
   columns: readonly Column[];
-  problems: readonly Problem[];
+  problems: readonly RowProblem[];
   readOnly: boolean;
   shown: string | undefined;
   onPoint: (path: string | undefined) => void;
@@ -29,6 +29,9 @@ export interface PartTableProps {
   onRedo: () => void;
 }
 
+/** A finding; `stands` where it stands against the layout, and not only asks for a look. */
+export type RowProblem = Problem & { stands: boolean };
+
 /** What a row's cells ask of the table. */
 export interface RowDeeds {
   point: (path: string) => void;
@@ -38,11 +41,11 @@ export interface RowDeeds {
   cancel: () => void;
 }
 
-const none: readonly Problem[] = [];
+const none: readonly RowProblem[] = [];
 
 /** Findings by the row that they are about. */
-function rowsOf(problems: readonly Problem[], list: string): Map<number, Problem[]> {
-  const rows = new Map<number, Problem[]>();
+function rowsOf(problems: readonly RowProblem[], list: string): Map<number, RowProblem[]> {
+  const rows = new Map<number, RowProblem[]>();
   for (const problem of problems) {
     const row = problem.path.startsWith(`${list}/`) ? Number(problem.path.split("/")[2]) : Number.NaN;
     if (Number.isInteger(row)) rows.set(row, [...(rows.get(row) ?? []), problem]);

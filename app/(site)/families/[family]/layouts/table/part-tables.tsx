@@ -27,7 +27,13 @@ export function PartTables({ judged, handle, readOnly, shown, onPoint }: PartTab
     () => ({ fields: fieldColumns(parts?.fields as never[]), checksums: checksumColumns() }),
     [parts?.fields],
   );
-  const problems = useMemo(() => [...judged.errors, ...judged.warnings], [judged]);
+  const problems = useMemo(
+    () => [
+      ...judged.errors.map((problem) => ({ ...problem, stands: true })),
+      ...judged.warnings.map((problem) => ({ ...problem, stands: false })),
+    ],
+    [judged],
+  );
   if (!parts) {
     return (
       <Card title="Fields">
