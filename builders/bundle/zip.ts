@@ -27,7 +27,8 @@ const ATTRIBUTES = (0o100644 << 16) >>> 0;
 const encoder = new TextEncoder();
 
 interface Entry {
-  name: Uint8Array;
+  /** Plain, so that its characters are its bytes. */
+  path: string;
   crc: number;
   size: number;
   /** Of its local head, from the start of the zip. */
@@ -75,18 +76,45 @@ export class PlainZip {
    * @throws AppError `bundle.bad_path` {path}, `bundle.too_many_files`, `bundle.too_large`; Error for one out of order
    */
   head(path: string, content: readonly Uint8Array[]): Uint8Array {
+    const head = Buffer.alloc(LOCAL_BYTES + path.length);
+    this.#addHead(path, content, head, 0);
+    return head;
+  }
+
+  #addHead(path: string, content: readonly Uint8Array[], target: Buffer, at: number): void {
     if (!isPlainPath(path)) throw new AppError("bundle.bad_path", { path });
     if (path <= this.#last) throw new Error(`${path} after ${this.#last}: entries are added by path`);
     if (this.#entries.length === ENTRIES_MAX)
       throw new AppError("bundle.too_many_files", { files: ENTRIES_MAX + 1, limit: ENTRIES_MAX });
     this.#last = path;
-    const name = encoder.encode(path);
-    const size = content.reduce((sum, piece) => sum + piece.length, 0);
-    const entry = { name, crc: crc32(content), size, offset: this.#offset };
+    let size = 0;
+    for (const piece of content) size += piece.length;
+    const entry = { path, crc: crc32(content), size, offset: this.#offset };
     this.#entries.push(entry);
-    this.#offset += LOCAL_BYTES + name.length + size;
+    this.#offset += LOCAL_BYTES + path.length + size;
     assertFits(this.#offset);
-    return localHead(entry);
+    target.writeUInt32LE(LOCAL, at);
+    writeHead(target, at + 4, entry);
+    target.writeUInt16LE(0, at + LOCAL_BYTES - 2);
+    target.write(path, at + LOCAL_BYTES, "latin1");
+  }
+
+  /**
+   * Whole entries of small files in one piece: a call a file would take longer than its bytes.
+   * @throws as {@link head}
+   */
+  entries(files: readonly { path: string; content: Uint8Array }[]): Uint8Array {
+    let length = 0;
+    for (const { path, content } of files) length += LOCAL_BYTES + path.length + content.length;
+    const piece = Buffer.allocUnsafe(length);
+    let at = 0;
+    for (const { path, content } of files) {
+      this.#addHead(path, [content], piece, at);
+      at += LOCAL_BYTES + path.length;
+      piece.set(content, at);
+      at += content.length;
+    }
+    return piece;
   }
 
   /** The directory and the end record, once all contents are written. @throws AppError `bundle.too_large` */
@@ -103,36 +131,28 @@ export class PlainZip {
 }
 
 /** What stands in front of an entry's content and, two bytes later, in the directory: from the version needed to the length of the name. */
-function writeHead(view: DataView, at: number, { name, crc, size }: Entry): void {
-  view.setUint16(at, VERSION_NEEDED, true);
-  view.setUint16(at + 8, ZIP_EPOCH_DOS_DATE, true);
-  view.setUint32(at + 10, crc, true);
-  view.setUint32(at + 14, size, true);
-  view.setUint32(at + 18, size, true);
-  view.setUint16(at + 22, name.length, true);
-}
-
-function localHead(entry: Entry): Uint8Array {
-  const head = new Uint8Array(LOCAL_BYTES + entry.name.length);
-  const view = new DataView(head.buffer);
-  view.setUint32(0, LOCAL, true);
-  writeHead(view, 4, entry);
-  head.set(entry.name, LOCAL_BYTES);
-  return head;
+function writeHead(target: Buffer, at: number, { path, crc, size }: Entry): void {
+  target.writeUInt16LE(VERSION_NEEDED, at);
+  // No flags, method stored, midnight.
+  target.fill(0, at + 2, at + 8);
+  target.writeUInt16LE(ZIP_EPOCH_DOS_DATE, at + 8);
+  target.writeUInt32LE(crc, at + 10);
+  target.writeUInt32LE(size, at + 14);
+  target.writeUInt32LE(size, at + 18);
+  target.writeUInt16LE(path.length, at + 22);
 }
 
 function centralHeads(entries: readonly Entry[]): Uint8Array {
-  const heads = new Uint8Array(entries.reduce((sum, { name }) => sum + CENTRAL_BYTES + name.length, 0));
-  const view = new DataView(heads.buffer);
+  const heads = Buffer.alloc(entries.reduce((sum, { path }) => sum + CENTRAL_BYTES + path.length, 0));
   let at = 0;
   for (const entry of entries) {
-    view.setUint32(at, CENTRAL, true);
-    view.setUint16(at + 4, MADE_BY, true);
-    writeHead(view, at + 6, entry);
-    view.setUint32(at + 38, ATTRIBUTES, true);
-    view.setUint32(at + 42, entry.offset, true);
-    heads.set(entry.name, at + CENTRAL_BYTES);
-    at += CENTRAL_BYTES + entry.name.length;
+    heads.writeUInt32LE(CENTRAL, at);
+    heads.writeUInt16LE(MADE_BY, at + 4);
+    writeHead(heads, at + 6, entry);
+    heads.writeUInt32LE(ATTRIBUTES, at + 38);
+    heads.writeUInt32LE(entry.offset, at + 42);
+    heads.write(entry.path, at + CENTRAL_BYTES, "latin1");
+    at += CENTRAL_BYTES + entry.path.length;
   }
   return heads;
 }

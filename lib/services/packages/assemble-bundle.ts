@@ -93,8 +93,7 @@ async function* bundleParts(db: Db, pkg: PackageRow, release: LivePeriodRow | un
   for (const one of first) yield* entry(zip, one);
   yield* entry(zip, { path: "images.jsonl", content: await readValues(db, built) });
   for await (const hexes of eachHexFile(db, built)) {
-    // One buffer a page: 100,000 small ones would each take their turn through the stream.
-    yield Buffer.concat(hexes.flatMap(({ path, content }) => [zip.head(path, [content]), content]));
+    yield zip.entries(hexes);
   }
   for (const one of [file("manifest.json", manifest.content), ...after]) yield* entry(zip, one);
   yield* zip.end();

@@ -17,6 +17,8 @@ const LOT = "BENCH-LOT";
 const FAMILY = { referenceTemperature: 20, capacity: 20, nominalOutput: 2 };
 const DERIVATION = "01999999-0000-7000-8000-000000000001";
 const PIECE_BYTES = 1024 * 1024;
+/** HEX files that are added at a time, as where a bundle is assembled. */
+const PAGE = 500;
 
 const from = (name: string, at: number, type: string, source: string, more: Partial<LayoutField> = {}) =>
   ({ name, at, type, value: { from: source }, ...more }) as LayoutField;
@@ -131,7 +133,10 @@ export function buildModel(devices: readonly ModelDevice[], path: string): strin
   add("VERIFY.txt", [Buffer.from(previewVerifyText())]);
   add("images.jsonl", content.values.pieces);
   const hex = new HexTemplate(layout);
-  for (const { serial, image } of images) add(hexPath(serial), [hex.bytesOf(image)]);
+  for (let at = 0; at < images.length; at += PAGE) {
+    const page = images.slice(at, at + PAGE);
+    file.add(zip.entries(page.map(({ serial, image }) => ({ path: hexPath(serial), content: hex.bytesOf(image) }))));
+  }
   add("manifest.json", [content.manifest]);
   for (const part of zip.end()) file.add(part);
   file.close();
