@@ -17,7 +17,7 @@ export interface PointSummary {
 }
 
 const MINUTE = 60_000;
-/** Steady: at most this change, K, in this time: a maker's glossary on temperature effects (see DEVELOPERS.md). */
+/** Steady: at most this change, K, in this time, min. Source: a load cell maker's glossary, temperature effect on span. */
 const STEADY_K = 0.1;
 const STEADY_MIN = 15;
 /** What the noise of two readings may feign over a short time; none over the whole one (common practice, no source). */
