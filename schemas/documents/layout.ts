@@ -1,14 +1,6 @@
-/**
- * The layout document: which bytes of the EEPROM hold what (contract, section 4).
- *
- * `parseLayout` compiles the JSON Schema with ajv, which builds code at run time; it is for the server. The browser's
- * content security policy forbids that, so there the shape is judged by the editor's JSON Schema support with the same
- * `layout.schema.json`, and the meaning by `builders/codec/lint`, which tolerates documents of any shape.
- * Browser code imports the types of this file only (`import type`).
- */
-import { Ajv2020, type ErrorObject, type ValidateFunction } from "ajv/dist/2020";
+/** The layout document: which bytes of the EEPROM hold what (contract, section 4). Its shape is judged in `layout-shape.ts`. */
 import type { Problem } from "@/lib/errors";
-import layoutSchema from "@/schemas/documents/layout.schema.json";
+import { shapeProblems } from "@/schemas/documents/layout-shape";
 
 export type ByteOrder = "little" | "big";
 
@@ -179,47 +171,14 @@ export interface LayoutDocument {
   checksums: LayoutChecksum[];
 }
 
-let validate: ValidateFunction<LayoutDocument> | undefined;
-
-/** The schema compiled once, at first use. */
-function layoutValidator(): ValidateFunction<LayoutDocument> {
-  validate ??= new Ajv2020({ strict: true, allErrors: true, allowUnionTypes: true }).compile<LayoutDocument>(
-    layoutSchema,
-  );
-  return validate;
-}
-
 /**
- * Checks the shape of a layout document against `layout.schema.json`. Server only (see above).
+ * Checks the shape of a layout document against `layout.schema.json`.
  * @param json any parsed JSON.
  * @returns the same object typed, or every problem of shape with its JSON pointer (code `layout.shape`).
  */
 export function parseLayout(
   json: unknown,
 ): { layout: LayoutDocument; problems?: undefined } | { layout?: undefined; problems: Problem[] } {
-  const check = layoutValidator();
-  if (check(json)) return { layout: json };
-  return { problems: (check.errors ?? []).map(problemOf) };
-}
-
-function problemOf(error: ErrorObject): Problem {
-  const extra = error.params as { additionalProperty?: string; missingProperty?: string; allowedValues?: unknown[] };
-  const named = extra.additionalProperty ?? extra.missingProperty;
-  const path = named === undefined ? error.instancePath : `${error.instancePath}/${escapePointer(named)}`;
-  return { path, code: "layout.shape", message: messageOf(error, extra) };
-}
-
-function messageOf(
-  error: ErrorObject,
-  extra: { additionalProperty?: string; missingProperty?: string; allowedValues?: unknown[] },
-): string {
-  if (extra.additionalProperty !== undefined) return `“${extra.additionalProperty}” is not known here`;
-  if (extra.missingProperty !== undefined) return `“${extra.missingProperty}” is missing`;
-  if (extra.allowedValues !== undefined) return `must be one of ${extra.allowedValues.join(", ")}`;
-  return error.message ?? "is not valid";
-}
-
-/** RFC 6901, section 3: `~` and `/` are escaped. */
-function escapePointer(token: string): string {
-  return token.replaceAll("~", "~0").replaceAll("/", "~1");
+  const problems = shapeProblems(json);
+  return problems.length > 0 ? { problems } : { layout: json as LayoutDocument };
 }
