@@ -1,4 +1,5 @@
 import type { Db, Trx } from "@/db/executor";
+import { isUuid } from "@/db/queries/code-or-id";
 import type { StoredFinding } from "@/db/queries/runs";
 import type { EnvelopeSurvey } from "@/lib/domain/compensation/survey-envelope";
 import type { Finding, Method, PooledResult, VerificationResult } from "@/lib/domain/compensation/types";
@@ -92,8 +93,9 @@ const rowOf = (row: SelectedRow) => row as unknown as DerivationRow;
 const notFound = (id: string) =>
   new AppError("derivation.not_found", { derivation: id, message: `There is no derivation ${id}.` });
 
-/** A derivation. @throws AppError `derivation.not_found` */
+/** A derivation; an id that is none names none. @throws AppError `derivation.not_found` */
 export async function getDerivation(db: Db, id: string): Promise<DerivationRow> {
+  if (!isUuid(id)) throw notFound(id);
   const row = await selectDerivation(db)
     .where("derivation.id", "=", id)
     .executeTakeFirstOrThrow(() => notFound(id));
