@@ -1,5 +1,6 @@
 import { isPlainPath } from "@/builders/bundle/zip";
 import {
+  ATTRIBUTES,
   CENTRAL,
   CENTRAL_BYTES,
   END,
@@ -82,6 +83,7 @@ function assertSameHead(view: DataView, local: number, central: number, nameLeng
     view.getUint16(central + 32, true) === 0 &&
     view.getUint16(central + 34, true) === 0;
   assertZip(plain, central, "has a directory with extra fields or comments");
+  assertZip(view.getUint32(central + 38, true) === ATTRIBUTES, central, "has an entry that is no plain file");
 }
 
 function textOf(bytes: Uint8Array): string {

@@ -8,3 +8,5 @@ export const CENTRAL_BYTES = 46;
 export const END_BYTES = 22;
 /** 1980-01-01 as a DOS date, the first day that an entry can be dated; midnight is 0. */
 export const ZIP_EPOCH_DOS_DATE = 0x0021;
+/** A plain file that its owner may write and all may read, in the upper half. */
+export const ATTRIBUTES = (0o100644 << 16) >>> 0;

@@ -1,6 +1,7 @@
 import { crc32 } from "@/builders/bundle/crc32";
 import { byCodeUnits } from "@/builders/bundle/manifest";
 import {
+  ATTRIBUTES,
   CENTRAL,
   CENTRAL_BYTES,
   END,
@@ -21,8 +22,6 @@ const HEADS_AT_ONCE = 1_000;
 /** Features of version 1.0, told by a maker of version 3.0 on UNIX. */
 const VERSION_NEEDED = 10;
 const MADE_BY = (3 << 8) | 30;
-/** A plain file that its owner may write and all may read, in the upper half. */
-const ATTRIBUTES = (0o100644 << 16) >>> 0;
 
 const encoder = new TextEncoder();
 

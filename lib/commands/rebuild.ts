@@ -1,5 +1,6 @@
 /**
- * `npm run rebuild -- package-id …`: composes packages again from the database and compares every byte with what was built.
+ * `npm run rebuild -- package-id …`: builds packages again from the database and compares with what was built: every value derived
+ * anew from the readings as they were uploaded, and every byte composed anew from the stored coefficients.
  * Writes nothing. Ends with 1 where one differs.
  */
 import { closeDb, getDb } from "@/db/client";
@@ -10,6 +11,7 @@ import { findStartedDatabase } from "@/lib/commands/start-database";
 import { env, setEnv } from "@/lib/env";
 import { AppError } from "@/lib/errors";
 import { type RepeatDifference, repeatBuild } from "@/lib/services/packages/repeat-build";
+import type { RepeatedDerivation } from "@/lib/services/packages/repeat-derivations";
 
 const USAGE = "Usage: npm run rebuild -- package-id …";
 
@@ -41,10 +43,18 @@ async function chooseDatabase(): Promise<void> {
 async function rebuildOne(db: Db, id: string): Promise<boolean> {
   const pkg = await getPackage(db, id);
   console.log(`${pkg.lotCode} ${pkg.version} (${pkg.state}): built as ${pkg.digest?.toString("hex") ?? "nothing"}`);
-  const { same, differs } = await repeatBuild(db, pkg);
+  const { same, differs, derivations } = await repeatBuild(db, pkg);
+  for (const one of derivations) console.log(derivationLine(one));
   for (const line of differs ? linesOf(differs) : []) console.log(line);
   console.log(same ? "The same bytes." : "DIFFERS.");
   return same;
+}
+
+function derivationLine({ id, done, reason, devices, differing, serials }: RepeatedDerivation): string {
+  if (!done) return `Derivation ${id}: not derived again (${reason})`;
+  if (differing === 0)
+    return `Derivation ${id}: derived again from its readings, the same values of ${devices} devices`;
+  return `Derivation ${id}: DIFFERS in ${differing} of ${devices} devices, ${serials.join(", ")} among them`;
 }
 
 function linesOf({ repeated, files, images, serials, failure }: RepeatDifference): string[] {

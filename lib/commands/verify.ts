@@ -50,13 +50,17 @@ function trustedKey(given: string): { keyId: string; pem?: string } {
   return { keyId: keyIdOf(pem), pem };
 }
 
-/** @throws AppError `bundle.not_there` */
+/** @throws AppError `bundle.not_there`, `bundle.not_plain` */
 function verifyPath(path: string, options: VerifyOptions): VerifyResult {
   const found = statSync(path, { throwIfNoEntry: false });
   if (!found) throw new AppError("bundle.not_there", { message: `There is no file ${path}` });
   if (!found.isDirectory()) return verifyBundle(readFileSync(path), options);
-  const files = readdirSync(path, { recursive: true, withFileTypes: true })
-    .filter((entry) => !entry.isDirectory())
-    .map((entry) => join(entry.parentPath ?? entry.path, entry.name));
+  const entries = readdirSync(path, { recursive: true, withFileTypes: true }).filter((entry) => !entry.isDirectory());
+  const strange = entries.find((entry) => !entry.isFile());
+  if (strange) {
+    const message = `${strange.name} is no plain file (a link, perhaps); a bundle has plain files only`;
+    throw new AppError("bundle.not_plain", { message });
+  }
+  const files = entries.map((entry) => join(entry.parentPath ?? entry.path, entry.name));
   return verifyBundleFiles(new Map(files.map((file) => [relative(path, file), readFileSync(file)])), options);
 }

@@ -163,6 +163,7 @@ describe("rebuild", () => {
     const { status, stdout } = await run(CHECKOUT, rebuild, released.id, draft.id);
     expect(status).toBe(0);
     expect(stdout.match(/^The same bytes\.$/gm)).toHaveLength(2);
+    expect(stdout).toMatch(/^Derivation \S+: derived again from its readings, the same values of 28 devices$/m);
     expect(stdout).toContain(`MW20-2609 ${released.version} (live): built as `);
     const after = await api.db
       .selectFrom("ledgerEvent")
@@ -187,6 +188,7 @@ describe("rebuild", () => {
     const { status, stdout } = await run(CHECKOUT, rebuild, draft.id);
     expect(status).toBe(1);
     expect(stdout).toContain(`Images that differ: 1, ${image.serial} among them`);
+    expect(stdout).toContain(`DIFFERS in 1 of 28 devices, ${image.serial} among them`);
     expect(stdout).toContain("DIFFERS.");
   });
 

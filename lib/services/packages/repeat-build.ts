@@ -5,6 +5,7 @@ import { listPackageFiles } from "@/db/queries/package-provenance";
 import type { PackageRow } from "@/db/queries/packages";
 import { AppError } from "@/lib/errors";
 import { type ComposedPackage, composePackage, imageRowsOf, PART_DEVICES, readPackageInputs } from "./compose-package";
+import { type RepeatedDerivation, repeatDerivations } from "./repeat-derivations";
 
 /** Serials named at most where images differ. */
 const NAMED = 20;
@@ -24,16 +25,26 @@ export interface RepeatDifference {
 }
 
 export interface RepeatedBuild {
+  /** Whether every byte came out as it was built, and every value that was derived again as it was stored. */
   same: boolean;
+  derivations: RepeatedDerivation[];
   differs?: RepeatDifference;
 }
 
 /**
- * Composes a built package again from its layout, family revision and coefficient sets, and compares every byte with what was
- * stored then. Writes nothing, and holds some images at a time.
+ * Builds a package again from the stored inputs: derives its coefficients anew from the readings as they were uploaded, composes
+ * it from its layout, family revision and coefficient sets, and compares every value and every byte with what was stored
+ * then. Writes nothing, and holds some images at a time.
  * @throws AppError `package.not_built`
  */
 export async function repeatBuild(db: Db, pkg: PackageRow): Promise<RepeatedBuild> {
+  const composed = await repeatComposing(db, pkg);
+  const derivations = await repeatDerivations(db, pkg.id);
+  const same = composed.same && derivations.every((one) => one.differing === 0);
+  return { ...composed, same, derivations };
+}
+
+async function repeatComposing(db: Db, pkg: PackageRow): Promise<Omit<RepeatedBuild, "derivations">> {
   const stored = new Map((await listPackageFiles(db, pkg.id)).map((file) => [file.name, file.sha256.toString("hex")]));
   const built = stored.get("manifest.json");
   if (built === undefined) throw new AppError("package.not_built", { message: "The package was not built." });

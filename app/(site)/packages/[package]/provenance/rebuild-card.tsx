@@ -1,6 +1,7 @@
 "use client";
 
 import { useQuery } from "@tanstack/react-query";
+import Link from "next/link";
 import { useRouter } from "next/navigation";
 import { useEffect, useState } from "react";
 import { callApi, type ProblemDetails, problemOf } from "@/app/_components/api-client";
@@ -9,6 +10,7 @@ import { Card } from "@/app/_components/card";
 import { FormError } from "@/app/_components/form/form-error";
 import { StateMark } from "@/app/_components/state/state-mark";
 import { TimeText } from "@/app/_components/time-text";
+import { formatNumberOf } from "@/lib/domain/format/figure";
 import type { PackageView } from "@/schemas/api/packages";
 
 export interface RebuildCardProps {
@@ -57,8 +59,8 @@ export function RebuildCard({ id, rebuild, mayAsk }: RebuildCardProps) {
     <Card title="Build it once more">
       <div className="flex flex-col gap-2 text-sm" aria-live="polite">
         <p className="text-ink-soft">
-          The same inputs give the same bytes, on any machine: composing it again from them has to end at the same
-          digest.
+          The same inputs give the same bytes, on any machine: derived again from the readings as they were uploaded,
+          every value has to come out as it was approved; composed again, everything has to end at the same digest.
         </p>
         {asked ? <StateMark tone="wait" word="building it again" /> : null}
         {!asked && rebuild ? (
@@ -71,6 +73,7 @@ export function RebuildCard({ id, rebuild, mayAsk }: RebuildCardProps) {
             {at ? <TimeText at={at} /> : null}
           </p>
         ) : null}
+        {asked ? null : <RepeatedDerivations rebuild={rebuild} />}
         <FormError problem={problem} />
         {mayAsk ? (
           <div>
@@ -82,4 +85,28 @@ export function RebuildCard({ id, rebuild, mayAsk }: RebuildCardProps) {
       </div>
     </Card>
   );
+}
+
+interface Repeated {
+  id: string;
+  done: boolean;
+  reason?: string;
+  devices: number;
+  differing: number;
+  serials: string[];
+}
+
+/** What became of deriving the coefficients anew. */
+function RepeatedDerivations({ rebuild }: Pick<RebuildCardProps, "rebuild">) {
+  const derivations = (rebuild && "derivations" in rebuild ? rebuild.derivations : []) as Repeated[];
+  return derivations.map(({ id, done, reason, devices, differing, serials }) => (
+    <p key={id}>
+      <Link href={`/derivations/${id}`}>Derivation</Link>{" "}
+      {!done
+        ? `not derived again: ${reason}.`
+        : differing === 0
+          ? `derived again from its readings: the same values of ${formatNumberOf(devices, "device")}.`
+          : `derived again from its readings: other values of ${formatNumberOf(differing, "device")}, ${serials.join(", ")} among them.`}
+    </p>
+  ));
 }
