@@ -21,6 +21,8 @@ export async function insertReadings(
     const statement = insertStatement(runId, readings.slice(from, from + ROWS_A_STATEMENT), deviceIds);
     await running;
     running = statement.execute(trx);
+    // Lets the statement leave before anything else takes this thread.
+    await new Promise(setImmediate);
   }
   await running;
 }

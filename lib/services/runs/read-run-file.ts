@@ -8,7 +8,8 @@ import { type MatchedSerials, matchSerials } from "./match-serials";
 
 export interface RunFile extends MatchedSerials {
   readings: Reading[];
-  findings: Finding[];
+  /** What the rules say of the readings. @throws AppError `run.invalid` {errors, errorCount} where they contradict them */
+  judge: () => Finding[];
 }
 
 export interface RunFileInput {
@@ -20,18 +21,25 @@ export interface RunFileInput {
 }
 
 /**
- * Reads an uploaded run and checks all of it: cells, serials, and the rules of section 2.
+ * Reads an uploaded run and checks its cells and serials; the rules of section 2 are left to `judge`, which takes its time with a
+ * large file. Where something is wrong already, all that is wrong is told at once.
  * @throws AppError `run.invalid` {errors, errorCount} naming row, column, code and message; `run.too_many_rows`
  */
 export async function readRunFile(db: Db, input: RunFileInput): Promise<RunFile> {
   const parsed = await parseReadingsCsv(input.bytes);
   const errors = new RowErrorList();
   const matched = await matchSerials(db, input.lot, parsed.readings, input.addDevices, errors);
-  const { errorCount, findings } = judgeReadings(input.rules, input.purpose, parsed, errors);
-  if (errorCount === 0) return { readings: parsed.readings, findings, ...matched };
-  throw new AppError("run.invalid", {
-    errors: errors.list(),
-    errorCount,
-    message: `${errorCount === 1 ? "One error" : `${errorCount.toLocaleString("en")} errors`} in the file; nothing was stored.`,
-  });
+  const judge = () => {
+    const { errorCount, findings } = judgeReadings(input.rules, input.purpose, parsed, errors);
+    if (errorCount > 0) throw invalid(errors, errorCount);
+    return findings;
+  };
+  if (errors.total > 0 || parsed.errorCount > 0 || parsed.readings.length === 0) judge();
+  return { readings: parsed.readings, judge, ...matched };
+}
+
+function invalid(errors: RowErrorList, errorCount: number): AppError {
+  const count = errorCount === 1 ? "One error" : `${errorCount.toLocaleString("en")} errors`;
+  const message = `${count} in the file; nothing was stored.`;
+  return new AppError("run.invalid", { errors: errors.list(), errorCount, message });
 }

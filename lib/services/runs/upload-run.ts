@@ -12,7 +12,7 @@ import {
   insertRunEquipment,
   insertRunFindings,
 } from "@/db/queries/runs";
-import type { Purpose, Reading } from "@/lib/domain/compensation/types";
+import type { Finding, Purpose, Reading } from "@/lib/domain/compensation/types";
 import { AppError } from "@/lib/errors";
 import { assertRole, type PersonCtx } from "@/lib/services/context";
 import { appendEvent } from "@/lib/services/ledger/append-event";
@@ -58,8 +58,8 @@ export async function uploadRun(ctx: PersonCtx, input: NewRunInput) {
   const equipment = await requireEquipment(ctx, input.equipment);
   const { rules } = await getLotRules(ctx.db, lot);
   const file = await readRunFile(ctx.db, { ...input, lot, rules });
-  const findings = [
-    ...file.findings,
+  const judge = () => [
+    ...file.judge(),
     ...(plan?.compare(file.readings, input.equipment) ?? []),
     ...listEquipmentFindings(equipment, lastTakenAt(file.readings)),
   ];
@@ -76,12 +76,12 @@ export async function uploadRun(ctx: PersonCtx, input: NewRunInput) {
       id,
       equipment.map(({ code: _, ...one }) => one),
     );
+    const findings = await judgeMeanwhile(judge, insertReadings(trx, id, file.readings, file.deviceIds));
     await insertRunFindings(
       trx,
       id,
       findings.map((finding) => ({ ...finding, id: ctx.newId() })),
     );
-    await insertReadings(trx, id, file.readings, file.deviceIds);
     const stale = input.supersedes === undefined ? [] : await markSetsStale(trx, input.supersedes, ctx.now());
     const count = stale.reduce((sum, one) => sum + one.count, 0);
     await appendEvent(ctx, trx, {
@@ -108,6 +108,18 @@ export async function uploadRun(ctx: PersonCtx, input: NewRunInput) {
     return count;
   });
   return { ...(await getRunView(ctx, id)), added: file.unknown.length, staleSets };
+}
+
+/**
+ * Judges readings while the server stores them: neither has to wait for the other, and an error undoes the transaction. Both
+ * have ended when this returns or throws, so that nothing is sent after the end of the transaction.
+ */
+async function judgeMeanwhile(judge: () => Finding[], storing: Promise<void>): Promise<Finding[]> {
+  const judging = new Promise(setImmediate).then(judge);
+  const [judged, stored] = await Promise.allSettled([judging, storing]);
+  if (judged.status === "rejected") throw judged.reason;
+  if (stored.status === "rejected") throw stored.reason;
+  return judged.value;
 }
 
 async function assertMaySupersede(ctx: PersonCtx, lot: LotRow, input: NewRunInput): Promise<void> {
