@@ -63,7 +63,7 @@ export const DEVICE_KINDS = {
     severity: "soft",
     words: (f) =>
       `${show(f.coefficient)} ${coefficient(f.coefficient, f.value)} stands out from the other devices' (median ` +
-      `${coefficient(f.coefficient, f.median)}; ${outlierTests(f)}): ${show(f.intervals)} v at the end of the range.`,
+      `${coefficient(f.coefficient, f.median)}; ${outlierTests(f)}): ${show(f.intervals)} v of the output at capacity.`,
   },
   "coefficient.sign_unlike": {
     severity: "soft",
