@@ -34,7 +34,7 @@ const half = (interval: readonly [number, number] | null) =>
   interval === null ? "—" : `±${formatQuantity("gainTc", (interval[1] - interval[0]) / 2)}`;
 
 /** Cut, not rounded: a share shown must not look larger than it is. */
-const atLeast = (share: number) => `${formatFigure(Math.floor(share * 1000) / 10, { digits: 1 })} %`;
+const atLeast = (share: number) => `${formatFigure(Math.min(99.9, Math.floor(share * 1000) / 10), { digits: 1 })} %`;
 
 /** The lot's gain coefficient with its spread and what it says about the rest of the lot. */
 export function PooledFacts({ pooled }: { pooled: ShownPooled }) {
@@ -81,7 +81,7 @@ function ShareText({ pooled }: { pooled: ShownPooled }) {
           At least {atLeast(shareExpected)} of the lot is expected inside the limit, with {formatPercent(confidence)}{" "}
           confidence
           {typeof shareEstimate === "number"
-            ? `; were mean and s those of the whole lot, it would be ${atLeast(shareEstimate)}`
+            ? `; were mean and s those of the whole lot, it would be ${shareEstimate > 0.999 ? "over " : ""}${atLeast(shareEstimate)}`
             : ""}
           . A normal spread is assumed, and that the sample was drawn at random.
         </p>

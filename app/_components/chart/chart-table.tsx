@@ -55,15 +55,18 @@ function Opened({ table }: { table: ChartTable }) {
           Save as CSV
         </button>
       </p>
-      <ScrollRegion label="Values as a table" className="mt-2 max-h-80 overflow-auto border border-rule">
+      <ScrollRegion
+        label={`Values: ${table.name.replaceAll("-", " ")}`}
+        className="mt-2 max-h-80 overflow-auto border border-rule"
+      >
         <table className="w-full">
           <thead>
             <tr>
-              {columns.map(({ title }, index) => (
+              {columns.map(({ title, digits }) => (
                 <th
                   key={title}
                   scope="col"
-                  className={`sticky top-0 border-b border-rule bg-raised px-3 py-1.5 text-xs text-ink-soft ${index ? "text-right" : "text-left"}`}
+                  className={`sticky top-0 border-b border-rule bg-raised px-3 py-1.5 text-xs text-ink-soft ${digits === undefined ? "text-left" : "text-right"}`}
                 >
                   {title}
                 </th>
@@ -78,7 +81,7 @@ function Opened({ table }: { table: ChartTable }) {
                   <td
                     // biome-ignore lint/suspicious/noArrayIndexKey: columns are fixed
                     key={column}
-                    className={`px-3 py-1 font-mono whitespace-nowrap ${column ? "text-right" : ""}`}
+                    className={`px-3 py-1 font-mono whitespace-nowrap ${columns[column]?.digits === undefined ? "" : "text-right"}`}
                   >
                     {shown(cell, columns[column]?.digits)}
                   </td>

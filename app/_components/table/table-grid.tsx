@@ -166,7 +166,7 @@ function TableHead({ columns, rows, keyOf, sort, onSort, selected, onSelected }:
     <thead>
       <tr>
         {selected ? (
-          <th scope="col" className={`${headLook} z-10 pl-1.5 text-left`}>
+          <th scope="col" className={`${headLook} z-10 pl-1.5 text-left print:hidden`}>
             <input
               type="checkbox"
               aria-label="Select all rows shown"
@@ -260,7 +260,7 @@ function BodyRow(props: BodyRowProps) {
       className={`group focus-visible:outline-offset-[-2px] ${href || onOpen ? "cursor-pointer" : ""}`}
     >
       {selected ? (
-        <td className={`${look} pl-1.5`}>
+        <td className={`${look} pl-1.5 print:hidden`}>
           <input
             type="checkbox"
             tabIndex={-1}

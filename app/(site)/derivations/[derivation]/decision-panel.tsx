@@ -70,8 +70,12 @@ export function DecisionPanel(props: DecisionPanelProps) {
           title="Decide on these coefficients"
           digest={view.sha256}
           statement={`I have looked at readings, residuals and findings and approve the coefficients of ${devices}.`}
-          reviewed={reviewed}
-          reviewHint="Open “Findings” first; then you can sign."
+          reviewed={reviewed && hard.length === 0}
+          reviewHint={
+            hard.length > 0
+              ? "A finding blocks approval; refusing is possible all the same."
+              : "Open “Findings” first; then you can sign."
+          }
           confirm={`Approve ${devices}`}
           oneTimeCode={oneTimeCode}
           changes={

@@ -48,7 +48,8 @@ export function EnvelopeCard({ derivation, rules, envelope }: EnvelopeCardProps)
 }
 
 function Verdict({ ratio, proven }: { ratio: number; proven: boolean }) {
-  const share = `${formatQuantity("ratio", ratio)} of the limit`;
+  const share =
+    ratio <= 1 ? `${formatQuantity("ratio", ratio)} of the limit` : `${formatQuantity("ratio", ratio)} times the limit`;
   return (
     <>
       <StateMark

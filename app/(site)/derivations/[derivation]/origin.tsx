@@ -1,13 +1,14 @@
 import Link from "next/link";
 import { Card } from "@/app/_components/card";
 import { Digest } from "@/app/_components/digest";
+import { PrintButton } from "@/app/_components/print-button";
 import { TimeText } from "@/app/_components/time-text";
 import type { DerivationView } from "@/schemas/api/derivations";
 
 /** What a derivation rests on, who made it and who decided what. */
 export function Origin({ view }: { view: DerivationView }) {
   return (
-    <Card title="Where it comes from">
+    <Card title="Where it comes from" aside={<PrintButton look="quiet">Print</PrintButton>}>
       <div className="grid gap-4 text-sm lg:grid-cols-2">
         <div className="min-w-0">
           <p>

@@ -43,7 +43,7 @@ const kinds: Record<ResidualQuantity, { name: string; axis: string; column: stri
 
 /** Residuals of the devices that are drawn by themselves, device by device in the order of their serials. */
 export function ResidualChart({ devices, note }: { devices: readonly ResidualDevice[]; note?: string }) {
-  const [quantity, setQuantity] = useState<ResidualQuantity>("zero");
+  const [quantity, setQuantity] = useState<ResidualQuantity>(() => firstTelling(devices));
   const kind = kinds[quantity];
   const shown = devices.filter(({ residuals }) => (residuals[quantity] ?? []).length > 0);
   const free = shown.filter(({ freedom }) => freedom[quantity] > 0);
@@ -93,6 +93,12 @@ export function ResidualChart({ devices, note }: { devices: readonly ResidualDev
       </p>
     </Card>
   );
+}
+
+/** The first kind of which something is left after the fit. */
+function firstTelling(devices: readonly ResidualDevice[]): ResidualQuantity {
+  const order: ResidualQuantity[] = ["zero", "gain", "temperature"];
+  return order.find((quantity) => devices.some(({ freedom }) => freedom[quantity] > 0)) ?? "zero";
 }
 
 function seriesOf(devices: readonly ResidualDevice[], quantity: ResidualQuantity): LineSeries[] {

@@ -1,7 +1,7 @@
 import { Card } from "@/app/_components/card";
 import { ScrollRegion } from "@/app/_components/scroll-region";
 import { formatFigure, formatPercent } from "@/lib/domain/format/figure";
-import { formatQuantity } from "@/lib/domain/format/quantity";
+import { formatQuantity, toEngineering } from "@/lib/domain/format/quantity";
 
 interface Effects {
   gainTc: number | null;
@@ -29,16 +29,22 @@ export interface ShownBudget {
   degreesOfFreedom: Effects;
   coverageFactor: Effects;
   expanded: Effects;
-  missing: readonly string[];
   chamber: { words: string };
 }
 
-const head = "border-b border-rule px-2 py-1.5 text-right text-xs font-semibold text-ink-soft first:pl-0 last:pr-0";
-const cell = "border-b border-rule/55 px-2 py-1.5 text-right align-top font-mono first:pl-0 last:pr-0";
+const head = "border-b border-rule px-2 py-1.5 text-xs font-semibold text-ink-soft first:pl-0 last:pr-0";
+const cell = "border-b border-rule/55 px-2 py-1.5 align-top first:pl-0 last:pr-0";
+const figure = `${cell} text-right font-mono whitespace-nowrap`;
+const heading = `${cell} text-left`;
+
+/** A source that another one holds already, in words. */
+const CONTAINED: Record<string, string> = { "sample.scatter": "the scatter of the sample" };
 
 /** What the coefficients and the output are uncertain by, source by source, and how the sources are combined. */
 export function UncertaintyCard({ budget }: { budget: ShownBudget }) {
   const { combined, degreesOfFreedom, coverageFactor, expanded } = budget;
+  const known = budget.lines.filter((line) => line.standard !== null);
+  const unknown = [...new Set(budget.lines.filter((line) => line.standard === null).map((line) => line.words))];
   return (
     <Card
       title="Uncertainty budget"
@@ -46,45 +52,49 @@ export function UncertaintyCard({ budget }: { budget: ShownBudget }) {
         budget.atC === null ? undefined : `error at capacity stated at ${formatFigure(budget.atC, { digits: 1 })} °C`
       }
     >
-      <ScrollRegion label="Uncertainty budget" className="overflow-x-auto">
+      <ScrollRegion label="Uncertainty budget" className="relative overflow-x-auto">
         <table className="w-full text-sm">
           <thead>
             <tr>
               <th scope="col" className={`${head} text-left`}>
                 Source
               </th>
-              <th scope="col" className={head}>
+              <th scope="col" className={`${head} text-right`}>
                 known as
               </th>
-              <th scope="col" className={head}>
+              <th scope="col" className={`${head} text-right`}>
                 standard
               </th>
-              <th scope="col" className={head} title="Degrees of freedom; ∞ where the value is taken as known">
+              <th
+                scope="col"
+                className={`${head} text-right`}
+                title="Degrees of freedom; ∞ where the value is taken as known"
+              >
                 freedom
               </th>
-              <th scope="col" className={head} title="The correction of gain">
+              <th scope="col" className={`${head} text-right`} title="The correction of gain">
                 gainTc <span className="block font-normal">ppm/K</span>
               </th>
-              <th scope="col" className={head} title="The drift of zero">
+              <th scope="col" className={`${head} text-right`} title="The drift of zero">
                 zeroTc <span className="block font-normal">nV/V/K</span>
               </th>
-              <th scope="col" className={head}>
+              <th scope="col" className={`${head} text-right`}>
                 error at capacity <span className="block font-normal">v</span>
               </th>
             </tr>
           </thead>
           <tbody>
-            {budget.lines.map((line) => (
+            {known.map((line) => (
               <BudgetLine key={line.source} line={line} />
             ))}
             <Sum name="Combined standard uncertainty" effects={combined} freedom={degreesOfFreedom} />
             <tr>
-              <th scope="row" colSpan={4} className={`${cell} text-left font-sans font-normal`}>
+              <th scope="row" colSpan={4} className={`${heading} font-normal`}>
                 Coverage factor, {formatPercent(budget.level)}
               </th>
-              <td className={cell}>{formatFigure(coverageFactor.gainTc, { digits: 2 })}</td>
-              <td className={cell}>{formatFigure(coverageFactor.zeroTc, { digits: 2 })}</td>
-              <td className={cell}>{formatFigure(coverageFactor.intervals, { digits: 2 })}</td>
+              <td className={figure}>{formatFigure(coverageFactor.gainTc, { digits: 2 })}</td>
+              <td className={figure}>{formatFigure(coverageFactor.zeroTc, { digits: 2 })}</td>
+              <td className={figure}>{formatFigure(coverageFactor.intervals, { digits: 2 })}</td>
             </tr>
             <Sum name={`Expanded uncertainty, ${formatPercent(budget.level)}`} effects={expanded} strong />
           </tbody>
@@ -92,31 +102,41 @@ export function UncertaintyCard({ budget }: { budget: ShownBudget }) {
       </ScrollRegion>
       <p className="mt-3 text-sm">{budget.formula}</p>
       <p className="mt-2 text-sm">{budget.chamber.words}</p>
-      {budget.missing.length > 0 ? (
-        <p className="mt-2 text-sm text-ochre">
-          Nothing is known on {budget.missing.join(", ")}: left out of the sums.
-        </p>
+      {unknown.length > 0 ? (
+        <div className="mt-3 border-l-2 border-ochre pl-3 text-sm">
+          <p className="font-semibold text-ochre">Not known, and so left out of the sums</p>
+          <ul>
+            {unknown.map((words) => (
+              <li key={words}>{words}</li>
+            ))}
+          </ul>
+        </div>
       ) : null}
     </Card>
   );
 }
 
 function BudgetLine({ line }: { line: Line }) {
-  const own = (value: number | null) =>
-    value === null ? "—" : `${significant(value)}${line.unit === "1" ? "" : ` ${line.unit}`}`;
+  const own = (value: number | null) => {
+    if (value === null) return "—";
+    const shown = toEngineering(value, line.unit);
+    return `${significant(shown.value)}${shown.unit === "1" ? "" : ` ${shown.unit}`}`;
+  };
   return (
     <tr>
-      <th scope="row" className={`${cell} max-w-[26rem] min-w-[14rem] text-left font-sans font-normal`}>
+      <th scope="row" className={`${heading} max-w-[28rem] min-w-[14rem] font-normal`}>
         {line.words}
         {line.within ? (
-          <span className="block text-xs text-ink-soft">contained in {line.within}, not added again</span>
+          <span className="block text-xs text-ink-soft">
+            contained in {CONTAINED[line.within] ?? "another line"}, not added again
+          </span>
         ) : null}
       </th>
-      <td className={`${cell} whitespace-nowrap`} title={line.distribution}>
+      <td className={figure} title={line.distribution}>
         {own(line.value)}
       </td>
-      <td className={`${cell} whitespace-nowrap`}>{own(line.standard)}</td>
-      <td className={cell}>{line.standard === null ? "—" : freedomText(line.df)}</td>
+      <td className={figure}>{own(line.standard)}</td>
+      <td className={figure}>{line.standard === null ? "—" : freedomText(line.df)}</td>
       <EffectCells effects={line} />
     </tr>
   );
@@ -135,7 +155,7 @@ function Sum({
 }) {
   return (
     <tr className={strong ? "font-semibold" : ""}>
-      <th scope="row" colSpan={4} className={`${cell} text-left font-sans ${strong ? "" : "font-normal"}`}>
+      <th scope="row" colSpan={4} className={`${heading} ${strong ? "" : "font-normal"}`}>
         {name}
         {freedom ? (
           <span className="block text-xs font-normal text-ink-soft">
@@ -152,9 +172,9 @@ function Sum({
 function EffectCells({ effects }: { effects: Effects }) {
   return (
     <>
-      <td className={cell}>{formatQuantity("gainTc", effects.gainTc, { digits: 3 })}</td>
-      <td className={cell}>{formatQuantity("zeroTc", effects.zeroTc, { digits: 3 })}</td>
-      <td className={cell}>{formatFigure(effects.intervals, { digits: 3 })}</td>
+      <td className={figure}>{formatQuantity("gainTc", effects.gainTc, { digits: 3 })}</td>
+      <td className={figure}>{formatQuantity("zeroTc", effects.zeroTc, { digits: 3 })}</td>
+      <td className={figure}>{formatFigure(effects.intervals, { digits: 3 })}</td>
     </>
   );
 }

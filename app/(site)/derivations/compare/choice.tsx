@@ -1,5 +1,6 @@
 import { Button } from "@/app/_components/button";
 import { Select } from "@/app/_components/form/select";
+import { formatNumberOf } from "@/lib/domain/format/figure";
 import { formatDateTime } from "@/lib/domain/format/time";
 import type { DerivationSummary } from "@/schemas/api/derivations";
 
@@ -12,9 +13,9 @@ export interface ChoiceProps {
 
 /** Chooses the two; a plain form, so that the choice stands in the address. */
 export function Choice({ derivations, from, to }: ChoiceProps) {
-  const options = derivations.map(({ id, createdAt, method, order, state }) => ({
+  const options = derivations.map(({ id, createdAt, method, order, state, withValues }) => ({
     value: id,
-    name: `${formatDateTime(createdAt)} · ${method}, order ${order} · ${state.replaceAll("-", " ")}`,
+    name: `${formatDateTime(createdAt)} · ${method}, order ${order}, ${formatNumberOf(withValues, "device")} · ${state.replaceAll("-", " ")}`,
   }));
   return (
     <form action="/derivations/compare" className="grid items-end gap-4 md:grid-cols-[1fr_1fr_auto]">

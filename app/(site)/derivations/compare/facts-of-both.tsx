@@ -42,7 +42,7 @@ export function FactsOfBoth({ comparison: { from, to } }: { comparison: Derivati
   const lines = Object.keys(was).map((what): Line => [what, was[what] ?? "", is[what] ?? ""]);
   return (
     <Card title="What they rest on and what they give" note="What differs is marked">
-      <ScrollRegion label="Facts of both derivations" className="overflow-x-auto">
+      <ScrollRegion label="Facts of both derivations" className="relative overflow-x-auto">
         <table className="w-full text-sm">
           <thead>
             <tr className="text-xs text-ink-soft">

@@ -71,6 +71,9 @@ function certaintyOf(uncertainty: Uncertainty): string[] {
       residualSdTemperature === null ? null : `${formatFigure(residualSdTemperature, { digits: 4 })} K`,
     ),
     ...(degreesOfFreedomGain > 0 ? [part("Gain", degreesOfFreedomGain, gain)] : []),
+    ...(degreesOfFreedomGain === 0 && uncertainty.gainTc !== null
+      ? ["gainTc: its ± is the standard error of the sample's mean, the same for every device."]
+      : []),
   ];
 }
 

@@ -101,7 +101,8 @@ function CarriedOver({ like, kept }: { like: LikeDerivation; kept: ReadonlySet<s
   return (
     <p className="text-sm text-ink-soft">
       Runs, options and exclusions are those of the{" "}
-      <Link href={`/derivations/${like.id}`}>{like.title.toLowerCase()}</Link>; a preview is held against it.
+      <Link href={`/derivations/${like.id}`}>{`${like.title.slice(0, 1).toLowerCase()}${like.title.slice(1)}`}</Link>; a
+      preview is held against it.
       {gone > 0 ? ` ${formatNumberOf(gone, "of its runs is", "of its runs are")} not chosen.` : ""}
     </p>
   );
