@@ -65,13 +65,17 @@ export function lintLayout(document: unknown, options: LintOptions = {}): LintRe
   return { errors, warnings, step: versions.step };
 }
 
+/** Lists whose findings of meaning are about what is missing in them, which no finding of shape says. */
+const LISTS = ["/fields", "/checksums"];
+
 /**
  * Findings of shape and of meaning together. Where the shape is wrong, what the meaning says of the same place would only say
  * it again.
  */
 export function joinShape(shape: readonly Problem[], { errors, ...rest }: LintResult): LintResult {
   const told = new Set(shape.map((problem) => problem.path));
-  return { errors: [...shape, ...errors.filter((error) => !told.has(error.path))], ...rest };
+  const repeats = ({ path, code }: Problem) => told.has(path) && (code === "layout.shape" || !LISTS.includes(path));
+  return { errors: [...shape, ...errors.filter((error) => !repeats(error))], ...rest };
 }
 
 function lintFamily(layout: LayoutDocument, family: FamilyRulesLike | undefined): Problem[] {

@@ -54,7 +54,7 @@ const HEAD_WORDS: Readonly<Record<string, string>> = {
 const OWN_RULES = ["format", "version", "firmware", "description", "memory", "kept", "reserved", "fields", "checksums"];
 
 function headChanges(previous: LayoutDocument, next: LayoutDocument): StepReason[] {
-  const kept: StepReason[] = isSame(keptBytes(previous), keptBytes(next))
+  const kept: StepReason[] = isSame(offsetsOf(previous.kept), offsetsOf(next.kept))
     ? []
     : [
         {
@@ -63,12 +63,11 @@ function headChanges(previous: LayoutDocument, next: LayoutDocument): StepReason
           message: `what is kept is ${keptText(next)} instead of ${keptText(previous)}: ${misread(previous)}`,
         },
       ];
-  const told = (["description", "reserved"] as const).flatMap((key): StepReason[] => {
-    if (isSame((previous as unknown as Facts)[key], (next as unknown as Facts)[key])) return [];
-    const message =
-      key === "reserved" ? "what is reserved changed; its bytes stay fill" : "the description of the layout changed";
-    return [{ path: `/${key}`, step: "patch", message }];
-  });
+  const told: StepReason[] = [];
+  if (!isSame(previous.description, next.description))
+    told.push({ path: "/description", step: "patch", message: "the description of the layout changed" });
+  if (!isSame(offsetsOf(previous.reserved), offsetsOf(next.reserved)))
+    told.push({ path: "/reserved", step: "patch", message: "what is reserved changed; its bytes stay fill" });
   return [
     ...objectChanges("", omit(previous, OWN_RULES), omit(next, OWN_RULES), previous),
     ...objectChanges("/memory", memoryFacts(previous), memoryFacts(next), previous),
@@ -99,10 +98,10 @@ function objectChanges(path: string, before: Facts, after: Facts, previous: Layo
 const keptText = ({ kept = [] }: LayoutDocument) =>
   kept.length === 0 ? "nothing" : kept.map((range) => shown(range)).join(" and ");
 
-/** The kept offsets themselves, so that the same bytes written as other ranges count as equal. */
-function keptBytes(layout: LayoutDocument): number[] {
+/** The offsets themselves, so that the same bytes written as other ranges count as equal. */
+function offsetsOf(ranges: LayoutDocument["kept"]): number[] {
   const offsets = new Set<number>();
-  for (const [from, to] of layout.kept ?? []) for (let at = from; at <= to; at++) offsets.add(at);
+  for (const [from, to] of ranges ?? []) for (let at = from; at <= to; at++) offsets.add(at);
   return [...offsets].sort((a, b) => a - b);
 }
 

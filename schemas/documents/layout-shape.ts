@@ -16,19 +16,26 @@ export function shapeProblems(json: unknown): Problem[] {
 }
 
 function problemOf(error: ErrorObject): Problem {
-  const extra = error.params as { additionalProperty?: string; missingProperty?: string; allowedValues?: unknown[] };
+  const extra = error.params as ErrorParams;
   const named = extra.additionalProperty ?? extra.missingProperty;
   const path = named === undefined ? error.instancePath : `${error.instancePath}/${escapePointer(named)}`;
   return { path, code: "layout.shape", message: messageOf(error, extra) };
 }
 
-function messageOf(
-  error: ErrorObject,
-  extra: { additionalProperty?: string; missingProperty?: string; allowedValues?: unknown[] },
-): string {
+/** What ajv says of an error beside its text; each member for some keywords only. */
+interface ErrorParams {
+  additionalProperty?: string;
+  missingProperty?: string;
+  allowedValues?: unknown[];
+  limit?: number;
+}
+
+function messageOf(error: ErrorObject, extra: ErrorParams): string {
   if (extra.additionalProperty !== undefined) return `“${extra.additionalProperty}” is not known here`;
   if (extra.missingProperty !== undefined) return `“${extra.missingProperty}” is missing`;
   if (extra.allowedValues !== undefined) return `must be one of ${extra.allowedValues.join(", ")}`;
+  if (error.keyword === "minItems") return `needs at least ${extra.limit}`;
+  if (error.keyword === "maxItems") return `takes at most ${extra.limit}`;
   return error.message ?? "is not valid";
 }
 

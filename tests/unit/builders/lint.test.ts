@@ -1,5 +1,5 @@
 import { describe, expect, it } from "vitest";
-import { type LintOptions, lintLayout } from "@/builders/codec/lint";
+import { joinShape, type LintOptions, lintLayout } from "@/builders/codec/lint";
 import { findMends } from "@/builders/codec/mend/find-mend";
 import { applyEdits } from "@/lib/domain/json-edits";
 import type { Problem } from "@/lib/errors";
@@ -437,6 +437,18 @@ describe("lintLayout", () => {
 
 const findMend = (problem: Problem, text: string, options?: LintOptions) =>
   findMends([problem], text, options).get(problem);
+
+describe("joinShape", () => {
+  it("says each thing once, and keeps what is missing in an empty list", () => {
+    const shape = [
+      { path: "/version", code: "layout.shape", message: "must match pattern" },
+      { path: "/fields", code: "layout.shape", message: "needs at least 1" },
+    ];
+    const { errors } = joinShape(shape, lintLayout(smallLayout({ version: "1", fields: [] })));
+    expect(errors.filter((error) => error.path === "/version")).toEqual([shape[0]]);
+    expect(errors.filter((error) => error.code === "layout.coefficient_missing")).toHaveLength(6);
+  });
+});
 
 describe("findMends", () => {
   it.each(cases.filter((one) => one.mend !== undefined))(

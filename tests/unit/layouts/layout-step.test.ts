@@ -75,6 +75,11 @@ describe("layoutStep", () => {
     expect(judge(field("version", { scale: 1, bias: 0, byteOrder: "little" }))).toEqual(["patch"]);
     expect(judge({ firmware: "^1.0.0" })[0]).toBe("patch");
     expect(judge({ description: "A text" })[0]).toBe("patch");
+    expect(judge({ reserved: [[50, 51]] })).toEqual([
+      "patch",
+      "/reserved: what is reserved changed; its bytes stay fill",
+    ]);
+    expect(judge({ reserved: [], kept: [] })).toEqual(["patch"]);
     expect(judge({ fields: [...before.fields].reverse() })).toEqual(["patch"]);
   });
 

@@ -203,7 +203,7 @@ export function Differences({ against, reasons, step, choice, waiting = false }:
             className="flex flex-wrap items-baseline gap-x-4 border-b border-rule/55 py-1.5 text-sm last:border-0"
           >
             <span className="w-16 flex-none font-semibold">{reason.step}</span>
-            <span className="min-w-0 flex-1 first-letter:uppercase">{reason.message}</span>
+            <span className="min-w-0 flex-1">{reason.message}</span>
             <span className="font-mono text-xs text-ink-soft">{reason.path}</span>
           </li>
         ))}

@@ -32,7 +32,7 @@ export function TemplateChoice({ family, onChoose }: TemplateChoiceProps) {
         >
           Take this shape
         </Button>
-        <p className="min-w-[220px] flex-1 self-center text-sm text-ink-soft">{template?.text}</p>
+        <p className="min-w-[220px] flex-1 pb-2 text-sm text-ink-soft">{template?.text}</p>
       </div>
     </Card>
   );
