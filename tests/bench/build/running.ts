@@ -77,7 +77,7 @@ async function healthDuring(served: Served, work: () => Promise<unknown>): Promi
 type People = Parameters<typeof publishFamily>[0];
 
 /** @returns the layout's version. */
-async function arrangeLot(people: People): Promise<string> {
+export async function arrangeLot(people: People): Promise<string> {
   const golden = firstGolden();
   const { engineer } = people;
   await publishFamily(people, golden.family);
