@@ -54,6 +54,8 @@ it("takes the thresholds of the family revision, and compares with what is live"
     },
   });
   const fields = difference?.evidence.fields as { name: string; devices: number; signFlips: { count: number } }[];
+  expect(fields.map((field) => field.name)).not.toContain("packagePatch");
+  expect(fields.map((field) => field.name)).not.toContain("imageCrc");
   // Another sample gives another pooled coefficient to everybody.
   expect(fields.find((field) => field.name === "gainTc")?.devices).toBeGreaterThan(20);
   expect(fields.find((field) => field.name === "gainTc")?.signFlips.count).toBe(0);

@@ -28,11 +28,15 @@ export class DifferenceGatherer {
   readonly #layout: CompiledLayout;
   readonly #live: LivePackage | null;
   readonly #fields = new Map<string, Moves>();
+  /** Version numbers and checksums: they change with every package and say nothing of a value. */
+  readonly #numbers: ReadonlySet<string>;
   readonly #counts = { packed: 0, added: 0, values: 0, versionOnly: 0, same: 0 };
 
   constructor(layout: CompiledLayout, live: LivePackage | null) {
     this.#layout = layout;
     this.#live = live;
+    const numbers = layout.fields.filter(({ source }) => source !== null && /^(package|layout)\./.test(source));
+    this.#numbers = new Set([...numbers, ...layout.checksums].map(({ name }) => name));
   }
 
   /** @param live bytes of the live image of this serial; undefined where it has none. */
@@ -46,7 +50,8 @@ export class DifferenceGatherer {
     const from = { layout: this.#live.layout, bytes: live };
     const { change, fields } = compareImages(from, { layout: this.#layout, bytes });
     this.#counts[change === "version-only" ? "versionOnly" : change]++;
-    if (change === "values") for (const field of fields) this.#addMove(serial, field);
+    if (change !== "values") return;
+    for (const field of fields) if (!this.#numbers.has(field.name)) this.#addMove(serial, field);
   }
 
   #addMove(serial: string, { name, unit, from, to, steps }: FieldDifference): void {
