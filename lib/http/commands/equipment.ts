@@ -67,4 +67,4 @@ export const changeEquipment = command({
   handle: (ctx, { params, body }) => service.changeEquipment(ctx, params.code, body),
 });
 
-export const equipmentCommands = [listEquipment, getEquipment, listEquipmentUse, addEquipment, changeEquipment];
+export const equipmentCommands = [listEquipment, addEquipment, changeEquipment, getEquipment, listEquipmentUse];

@@ -28,7 +28,7 @@ export function FilePart({ facts, mapping, purposeChosen, checked, marked, disab
       <FileOptions {...{ facts, decimalComma, offset, offsetWrong, disabled, onReread }} onChange={mapping.change} />
       <p className="flex flex-wrap items-baseline gap-x-3 gap-y-1 text-sm">
         <span className="font-semibold">{formatNumberOf(facts.rows, "row")}</span>
-        <span className="text-ink-soft">{originText(mapping.origin)}</span>
+        <span className="text-ink-soft">{originText(mapping.origin, missing.length)}</span>
         <Verdict {...{ missing, purposeChosen, checked, marked }} />
       </p>
       {missing.length > 0 ? (
@@ -49,9 +49,10 @@ export function FilePart({ facts, mapping, purposeChosen, checked, marked, disab
   );
 }
 
-function originText(origin: "remembered" | "names" | "changed"): string {
+function originText(origin: "remembered" | "names" | "changed", missing: number): string {
   if (origin === "remembered") return "columns as accepted last for this family";
-  return origin === "changed" ? "columns as chosen here" : "columns found by their names";
+  if (origin === "changed") return "columns as chosen here";
+  return missing === 0 ? "columns found by their names" : "some columns not found by their names";
 }
 
 function Verdict({

@@ -92,7 +92,7 @@ function ColumnHead({ name, place, map, missing, disabled, onColumn }: ColumnHea
   return (
     <th
       scope="col"
-      className="sticky top-0 z-1 min-w-36 border-b border-l border-rule bg-raised px-2 py-2 text-left align-bottom"
+      className="sticky top-0 z-1 min-w-44 border-b border-l border-rule bg-raised px-2 py-2 text-left align-bottom"
     >
       <select
         aria-label={`What column ${name} is`}
