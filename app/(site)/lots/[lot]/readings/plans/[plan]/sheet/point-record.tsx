@@ -56,7 +56,7 @@ interface SignalTableProps {
 function SignalTable({ columns, devices, withTemperature }: SignalTableProps) {
   return (
     <ScrollRegion label="Readings of this point" className="overflow-x-auto print:overflow-visible">
-      <table className="mb-2 w-full min-w-[600px] table-fixed text-xs print:min-w-0">
+      <table className="mb-2 w-full min-w-[720px] table-fixed text-xs print:min-w-0">
         <thead>
           <tr className="text-left">
             <th scope="col" className={`${cell} w-[10%]`}>
