@@ -5,6 +5,9 @@ import { devicesToShow, shareShown, shareShownWithFailures } from "@/lib/domain/
 import { formatFigure, formatNumberOf, formatPercent } from "@/lib/domain/format/figure";
 import type { DerivationView } from "@/schemas/api/derivations";
 
+/** Longer lists are closed at first, unless one of the devices is outside. */
+const OPEN_MAX = 12;
+
 const JUDGED_BY: Record<string, string> = { spanRatio: "span error", zeroShiftRatio: "zero shift" };
 
 export interface VerificationCardProps {
@@ -26,30 +29,47 @@ export function VerificationCard({ derivation, results, confidence, coverage }: 
         <StateMark {...verdictOf(passed, judged.length)} />
         <p className="min-w-0">{shownText(passed, judged.length, confidence, coverage)}</p>
       </div>
-      <DataTable
-        name="verification devices"
-        urlName="verification"
-        rows={results.map((one) => ({
-          ...one,
-          judged: one.judged.map((ratio) => JUDGED_BY[ratio] ?? ratio).join(", "),
-        }))}
-        rowKey="serial"
-        rowHref={`/derivations/${derivation}/{serial}`}
-        columns={[
-          { key: "serial", header: "Serial", format: { as: "code" } },
-          {
-            key: "spanErrorPpm",
-            header: "Span error",
-            format: { as: "quantity", name: "spanErrorPpm", sign: "always" },
-          },
-          { key: "spanRatio", header: "Span", format: { as: "quantity", name: "ratio" } },
-          { key: "zeroShiftRatio", header: "Zero shift", format: { as: "quantity", name: "ratio" } },
-          { key: "judged", header: "Judged by" },
-          { key: "passed", header: "Verdict", format: { as: "yes-no", yes: "inside", no: "outside" } },
-        ]}
-        empty={{ title: "No verification device" }}
-      />
+      {results.length > OPEN_MAX ? (
+        <details open={passed < judged.length}>
+          <summary className="w-max text-sm text-slate hover:text-copper-strong">
+            The {formatNumberOf(results.length, "device")}, one by one
+          </summary>
+          <div className="mt-2">
+            <Results derivation={derivation} results={results} />
+          </div>
+        </details>
+      ) : (
+        <Results derivation={derivation} results={results} />
+      )}
     </Card>
+  );
+}
+
+function Results({ derivation, results }: Pick<VerificationCardProps, "derivation" | "results">) {
+  return (
+    <DataTable
+      name="verification devices"
+      urlName="verification"
+      rows={results.map((one) => ({
+        ...one,
+        judged: one.judged.map((ratio) => JUDGED_BY[ratio] ?? ratio).join(", "),
+      }))}
+      rowKey="serial"
+      rowHref={`/derivations/${derivation}/{serial}`}
+      columns={[
+        { key: "serial", header: "Serial", format: { as: "code" } },
+        {
+          key: "spanErrorPpm",
+          header: "Span error",
+          format: { as: "quantity", name: "spanErrorPpm", sign: "always" },
+        },
+        { key: "spanRatio", header: "Span", format: { as: "quantity", name: "ratio" } },
+        { key: "zeroShiftRatio", header: "Zero shift", format: { as: "quantity", name: "ratio" } },
+        { key: "judged", header: "Judged by" },
+        { key: "passed", header: "Verdict", format: { as: "yes-no", yes: "inside", no: "outside" } },
+      ]}
+      empty={{ title: "No verification device" }}
+    />
   );
 }
 
