@@ -1,4 +1,4 @@
-import { isFirmwareWithin } from "@/lib/domain/firmware-range";
+import { isFirmwareWithin, isRangeText } from "@/lib/domain/firmware-range";
 import {
   byteFacts,
   type Facts,
@@ -111,6 +111,8 @@ function firmwareChange(previous: LayoutDocument, next: LayoutDocument): StepRea
   const reason = (step: Step, tail: string): StepReason[] => [
     { path: "/firmware", step, message: `the firmware range is ${to} instead of ${from}${tail}` },
   ];
+  // Half-typed: what it will name is not known yet.
+  if (!isRangeText(from) || !isRangeText(to)) return reason("major", ": that is no range of versions");
   if (!isFirmwareWithin(to, from)) return reason("major", ": it names versions that it did not name before");
   return isFirmwareWithin(from, to)
     ? reason("patch", ": other words for the same versions")

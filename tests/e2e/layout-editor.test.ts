@@ -92,14 +92,15 @@ describe("a layout by keyboard alone", () => {
 
   it("writes cells, and undoes them in one history with the text", async () => {
     const engineer = page("engineer");
-    const serial = engineer.getByRole("rowheader", { name: "serial", exact: true });
+    const grid = engineer.getByRole("grid", { name: "Fields" });
+    const serial = grid.getByRole("rowheader", { name: "serial", exact: true });
     await serial.waitFor();
     await tabTo(engineer, /^serial$/);
     await engineer.keyboard.press("Enter");
     await engineer.keyboard.press("Control+A");
     await engineer.keyboard.type("serialNumber");
     await engineer.keyboard.press("Enter");
-    const renamed = engineer.getByRole("rowheader", { name: "serialNumber" });
+    const renamed = grid.getByRole("rowheader", { name: "serialNumber" });
     await renamed.waitFor();
     await engineer.keyboard.press("Control+z");
     await serial.waitFor();
@@ -111,7 +112,7 @@ describe("a layout by keyboard alone", () => {
     await engineer.keyboard.press("ArrowLeft");
     await engineer.keyboard.type("500");
     await engineer.keyboard.press("Enter");
-    await engineer.getByRole("gridcell", { name: "500", exact: true }).waitFor();
+    await grid.getByRole("gridcell", { name: "500", exact: true }).waitFor();
   });
 
   it("is added as a draft, typed in and saved by itself", async () => {

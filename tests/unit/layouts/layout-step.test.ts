@@ -83,6 +83,13 @@ describe("layoutStep", () => {
     expect(judge({ fields: [...before.fields].reverse() })).toEqual(["patch"]);
   });
 
+  it("bears a firmware range that is half-typed", () => {
+    expect(judge({ firmware: ">=1.0.0 <2.0." })).toEqual([
+      "major",
+      "/firmware: the firmware range is >=1.0.0 <2.0. instead of >=1.0.0 <2.0.0: that is no range of versions",
+    ]);
+  });
+
   it("has nothing to say without an earlier version", () => {
     expect(layoutStep(null, before)).toEqual({ step: null, reasons: [] });
   });
