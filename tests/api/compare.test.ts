@@ -276,7 +276,7 @@ describe("GET /compare/export", () => {
 
 describe("POST /compare/file", () => {
   const serial = "MW20-2609-00001";
-  const file = (body: string | Uint8Array<ArrayBuffer>, type: string, as: "auditor" | "operator" = "auditor") =>
+  const file = (body: string | Uint8Array<ArrayBuffer>, type: string, as: "service" | "auditor" = "service") =>
     api.call("POST", "/compare/file", {
       as,
       query: { package: first.id, serial },
@@ -317,7 +317,7 @@ describe("POST /compare/file", () => {
     expect((await file(bad, "text/x-intel-hex")).body.code).toBe("hex.bad_checksum");
     expect((await file(new Uint8Array(5), "application/octet-stream")).body.code).toBe("dump.wrong_length");
     expect((await file("S9030000FC\n", "text/plain")).body.code).toBe("dump.incomplete");
-    expect((await file(await hexOf(), "text/x-intel-hex", "operator")).status).toBe(403);
+    expect((await file(await hexOf(), "text/x-intel-hex", "auditor")).status).toBe(403);
   });
 });
 

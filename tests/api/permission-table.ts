@@ -123,7 +123,7 @@ compare.overview               401    yes  yes  role yes  yes  yes  role    yes 
 compare.serials                401    yes  yes  role yes  yes  yes  role    yes      yes      yes
 compare.export                 401    yes  yes  role yes  yes  yes  role    yes      yes      yes
 compare.images                 401    yes  yes  role yes  yes  yes  role    yes      yes      yes
-compare.file                   401    yes  yes  role yes  yes  yes  role    yes      yes      yes
+compare.file                   401    yes  yes  role yes  role role role    yes      yes      role
 compare.layouts                401    yes  yes  role yes  yes  yes  role    yes      yes      yes
 
 stations.list                  401    yes  yes  role yes  yes  yes  role    yes      yes      yes

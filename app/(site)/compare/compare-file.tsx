@@ -2,6 +2,8 @@ import { Button } from "@/app/_components/button";
 import { Card } from "@/app/_components/card";
 import { Select } from "@/app/_components/form/select";
 import { TextInput } from "@/app/_components/form/text-input";
+import { Notice } from "@/app/_components/notice";
+import { holds } from "@/lib/http/page-context";
 import type { PersonCtx } from "@/lib/services/context";
 import { listLots } from "@/lib/services/lots/get-lot";
 import { type Chosen, packageIdOf, serialOf } from "./chosen";
@@ -39,7 +41,15 @@ export async function CompareFile({ ctx, chosen }: { ctx: PersonCtx; chosen: Cho
           </div>
         </form>
       </Card>
-      {from && serial ? <FileDifference key={`${from}${serial}`} packageId={from} serial={serial} /> : null}
+      {from && serial ? <Against ctx={ctx} packageId={from} serial={serial} /> : null}
     </>
+  );
+}
+
+function Against({ ctx, packageId, serial }: { ctx: PersonCtx; packageId: string; serial: string }) {
+  if (holds(ctx, "engineer", "reviewer", "service"))
+    return <FileDifference key={`${packageId}${serial}`} packageId={packageId} serial={serial} />;
+  return (
+    <Notice title="Not yours to do">Engineers, reviewers and service hold files from devices against images.</Notice>
   );
 }
