@@ -45,7 +45,7 @@ export function DevicesPart({ lot, draft, read, change, findings }: PlanPartProp
         <div className="flex flex-col gap-4">
           <div className="grid grid-cols-3 gap-3">
             <TextInput
-              label="Places begin with"
+              label="Place prefix"
               code
               maxLength={20}
               value={rule.prefix}

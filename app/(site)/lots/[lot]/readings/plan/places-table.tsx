@@ -24,7 +24,7 @@ export function PlacesTable({ devices, findings, onPlace }: PlacesTableProps) {
   // What is wrong is always shown, however far down it stands.
   const shown = devices.filter(({ serial }, index) => index < SHOWN_MAX || about.has(serial)).slice(0, 2 * SHOWN_MAX);
   return (
-    <ScrollRegion label="Devices and places" className="mt-4 max-h-[420px] overflow-auto border border-rule">
+    <ScrollRegion label="Devices and places" className="relative mt-4 max-h-[420px] overflow-auto border border-rule">
       <table className="w-full">
         <thead>
           <tr>

@@ -52,7 +52,7 @@ export function PointsPart({ draft, change, findings }: PlanPartProps) {
   };
   return (
     <Card title="Temperatures and loads" note="In working order; unloaded is read first at each">
-      <ScrollRegion label="Temperatures and loads" className="overflow-x-auto">
+      <ScrollRegion label="Temperatures and loads" className="relative overflow-x-auto">
         <table className="w-full min-w-[640px] max-w-[920px]">
           <thead>
             <tr>
