@@ -57,7 +57,8 @@ export class JsonEditor {
     if (span) return this.raw(pointer) === raw ? [] : [{ from: span.from, end: span.end, text: raw }];
     const members = this.children.get(object) ?? [];
     const rank = order.indexOf(name);
-    const earlier = rank < 0 ? members : members.filter((one) => rankOf(one, order) < rank);
+    const isEarlier = (one: string) => rankOf(one, order) >= 0 && rankOf(one, order) < rank;
+    const earlier = rank < 0 ? members : members.filter(isEarlier);
     return this.insertBehind(object, earlier.at(-1), `${JSON.stringify(name)}: ${raw}`);
   }
 

@@ -52,7 +52,7 @@ const MENDERS: Readonly<Record<string, Mender>> = {
   "field.unknown_source": fields.nearestSource,
   "field.source_type": fields.nearestSource,
   "field.type_too_narrow": fields.widenType,
-  "field.const_out_of_range": fields.fitValue,
+  "field.const_out_of_range": fields.widenType,
   "field.scale_zero": fields.removeMember,
   "field.scale_not_allowed": fields.removeMember,
   "field.length_not_allowed": fields.removeMember,
@@ -72,6 +72,7 @@ const MENDERS: Readonly<Record<string, Mender>> = {
   "checksum.range_invalid": swapEnds,
   "checksum.covers_later": computeEarlier,
   "kept.range_invalid": swapEnds,
+  "reserved.range_invalid": swapEnds,
 };
 
 /**

@@ -47,7 +47,7 @@ const setRange = (context: MendContext, path: string, range: ByteRange) =>
 
 export const swapEnds: Mender = (problem, context) => {
   const path = partOf(problem.path);
-  if (path.startsWith("/kept/")) {
+  if (/^\/(?:kept|reserved)\//.test(path)) {
     const range = readPart<ByteRange>(context, path);
     const [list, index] = [path.slice(0, path.lastIndexOf("/")), path.slice(path.lastIndexOf("/") + 1)];
     return range && { label: "Swap its ends", edits: context.editor.set(list, index, `[${range[1]}, ${range[0]}]`) };

@@ -1,4 +1,4 @@
-import { findFieldWidth, findNumberType } from "@/builders/codec/field-types";
+import { findNumberType } from "@/builders/codec/field-types";
 import { fits } from "@/builders/codec/lint-field";
 import { finestNeeded, listResolutions } from "@/builders/codec/lint-resolution";
 import {
@@ -180,10 +180,4 @@ function freeName({ layout }: MendContext, name: string): string {
 export const removeField: Mender = (problem, context) => {
   const field = fieldOf(problem, context);
   return field && { label: `Take “${field.name}” out`, edits: context.editor.remove(partOf(problem.path)) };
-};
-
-/** Room for a value that a field's type takes, where its limits are what stands against it. */
-export const fitValue: Mender = (problem, context) => {
-  const field = fieldOf(problem, context);
-  return field && findFieldWidth(field) !== undefined ? widenType(problem, context) : undefined;
 };

@@ -29,7 +29,7 @@ export function LocalCopyNotice({ family, version, draft, source, onTake, onComp
   return (
     <Notice tone="info" title="This browser holds a text that was not saved">
       <p className="mb-2">
-        Typed <TimeText at={copy.at} />
+        Typed on <TimeText at={copy.at} />
         {overOlder ? `, over draft ${copy.draft}; draft ${draft} was saved since.` : "."}
       </p>
       <div className="flex flex-wrap gap-2">
