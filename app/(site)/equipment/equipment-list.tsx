@@ -40,14 +40,14 @@ export function EquipmentList({ items, today, mayWrite }: EquipmentListProps) {
         sort={{ key: "code", descending: false }}
         columns={[
           { key: "code", header: "Equipment", format: { as: "code" } },
-          { key: "kindName", header: "Kind" },
-          { key: "certificate", header: "Certificate" },
-          { key: "calibratedUntil", header: "Calibrated until", format: { as: "date" } },
           {
             key: "due",
             header: "Certificate is",
             cell: (row) => <DueMark calibratedUntil={String(row.calibratedUntil)} today={today} />,
           },
+          { key: "kindName", header: "Kind" },
+          { key: "certificate", header: "Certificate" },
+          { key: "calibratedUntil", header: "Calibrated until", format: { as: "date" } },
           {
             key: "uncertaintyText",
             header: "Uncertainty",

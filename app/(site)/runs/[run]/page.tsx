@@ -92,6 +92,14 @@ export default async function RunPage({ params }: { params: Promise<{ run: strin
           <div className="mt-4">
             <Digest value={run.sha256} name="digest of the file" />
           </div>
+          {run.sourceSha256 ? (
+            <div className="mt-2">
+              <p className="text-xs text-ink-soft">
+                Made in the browser, by column mapping, from a file of this digest
+              </p>
+              <Digest value={run.sourceSha256} name="digest of the file it was made from" />
+            </div>
+          ) : null}
           {run.equipment.length > 0 ? (
             <ul className="mt-3 text-sm">
               {run.equipment.map((one) => (

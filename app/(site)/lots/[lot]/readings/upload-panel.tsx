@@ -14,9 +14,9 @@ import type { ReadingMapping } from "@/lib/domain/readings/map-table";
 import type { ChosenEquipment } from "./equipment-choice";
 import { RowErrors, rowErrorsOf } from "./row-errors";
 import { FilePart } from "./upload/file-part";
+import type { PlacedError } from "./upload/preview-row";
 import { RunFields } from "./upload/run-fields";
 import { Stored } from "./upload/stored";
-import type { PlacedError } from "./upload/table-preview";
 import { UploadSteps } from "./upload/upload-steps";
 import { useMapping } from "./upload/use-mapping";
 import { useReadingsFile } from "./upload/use-readings-file";
@@ -68,12 +68,14 @@ export function UploadPanel({ lot, family, rules, kept, equipment, ...choices }:
     upload.clear();
     readings.open(file, kept?.sheet ? { sheet: kept.sheet } : {});
   };
+  /** A file that was sent as it stands teaches nothing about the family's other tables. */
   const keepMapping = async () => {
-    if (!facts || checked?.body === null) return;
+    if (!facts || !checked?.body) return;
+    const json = mapping.toKeep(facts);
     try {
       await callApi(`/api/v1/families/${encodeURIComponent(family)}/reading-mapping`, {
         method: "PUT",
-        json: mapping.toKeep(facts),
+        json,
       });
     } catch (error) {
       const text = problemOf(error).detail ?? "It has to be chosen again next time.";
@@ -98,8 +100,8 @@ export function UploadPanel({ lot, family, rules, kept, equipment, ...choices }:
     const { done, problem } = await upload.send(`/api/v1/lots/${encodeURIComponent(lot)}/runs?${query}`, body);
     if (problem) await markRefused(problem);
     if (!done) return;
-    await keepMapping();
     readings.clear();
+    await keepMapping();
     router.refresh();
   };
 

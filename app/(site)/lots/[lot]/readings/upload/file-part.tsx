@@ -5,7 +5,8 @@ import { StateMark } from "@/app/_components/state/state-mark";
 import { formatCount, formatNumberOf } from "@/lib/domain/format/figure";
 import type { GivenRow } from "@/lib/domain/readings/given-table";
 import { FileOptions } from "./file-options";
-import { errorCountText, type PlacedError, TablePreview } from "./table-preview";
+import type { PlacedError } from "./preview-row";
+import { errorCountText, TablePreview } from "./table-preview";
 import type { useMapping } from "./use-mapping";
 import type { Checked, TableFacts, TableOptions } from "./worker-messages";
 
@@ -39,6 +40,7 @@ export function FilePart({ facts, mapping, purposeChosen, checked, marked, disab
       <TablePreview
         facts={facts}
         map={map}
+        options={mapping.options}
         errors={marked?.errors ?? []}
         wrongRows={marked?.rows ?? []}
         disabled={disabled}

@@ -2,20 +2,12 @@
 
 import { Fragment } from "react";
 import { ScrollRegion } from "@/app/_components/scroll-region";
-import { ToneShape } from "@/app/_components/state/state-mark";
 import { formatCount } from "@/lib/domain/format/figure";
 import type { Column } from "@/lib/domain/readings/columns";
 import type { GivenRow } from "@/lib/domain/readings/given-table";
-import { ALL_COLUMNS, type ColumnMap, missingColumns } from "@/lib/domain/readings/map-table";
+import { ALL_COLUMNS, type ColumnMap, type MapOptions, missingColumns } from "@/lib/domain/readings/map-table";
+import { type PlacedError, PreviewRow } from "./preview-row";
 import type { TableFacts } from "./worker-messages";
-
-/** What is wrong in a row of the given file; `column` is one of ours. */
-export interface PlacedError {
-  row: number;
-  column: string;
-  code: string;
-  message: string;
-}
 
 const MEANINGS: Record<Column, string> = {
   serial: "serial",
@@ -35,6 +27,7 @@ const MEANINGS: Record<Column, string> = {
 export interface TablePreviewProps {
   facts: TableFacts;
   map: ColumnMap;
+  options: MapOptions;
   errors: readonly PlacedError[];
   /** Rows that errors name. */
   wrongRows: readonly GivenRow[];
@@ -43,7 +36,7 @@ export interface TablePreviewProps {
 }
 
 /** The first rows of the given table with what each column is, and the first rows that are wrong with what is wrong in them. */
-export function TablePreview({ facts, map, errors, wrongRows, disabled, onColumn }: TablePreviewProps) {
+export function TablePreview({ facts, map, options, errors, wrongRows, disabled, onColumn }: TablePreviewProps) {
   const shown = rowsShown(facts.first, wrongRows);
   const missing = new Set(missingColumns(map));
   return (
@@ -70,6 +63,7 @@ export function TablePreview({ facts, map, errors, wrongRows, disabled, onColumn
                 row={row}
                 width={facts.names.length}
                 map={map}
+                options={options}
                 errors={errors.filter((error) => error.row === row.line)}
               />
             </Fragment>
@@ -113,64 +107,6 @@ function ColumnHead({ name, place, map, missing, disabled, onColumn }: ColumnHea
         {name}
       </span>
     </th>
-  );
-}
-
-function PreviewRow({
-  row,
-  width,
-  map,
-  errors,
-}: {
-  row: GivenRow;
-  width: number;
-  map: ColumnMap;
-  errors: readonly PlacedError[];
-}) {
-  const wrong = errors.length > 0;
-  const wrongPlaces = new Set(errors.map((error) => map[error.column as Column]));
-  const used = new Set(Object.values(map));
-  return (
-    <>
-      <tr className={wrong ? "bg-oxide/8" : undefined}>
-        <th
-          scope="row"
-          className="sticky left-0 border-b border-rule/55 bg-raised px-2 py-1 text-right font-mono text-xs font-normal text-ink-soft"
-        >
-          {wrong ? (
-            <span className="inline-flex items-center gap-1 font-semibold text-oxide">
-              <ToneShape tone="bad" size={10} />
-              {row.line}
-            </span>
-          ) : (
-            row.line
-          )}
-        </th>
-        {Array.from({ length: width }, (_, place) => (
-          <td
-            // biome-ignore lint/suspicious/noArrayIndexKey: a column's place is what it is
-            key={place}
-            className={`max-w-56 truncate border-b border-l border-rule/55 px-2 py-1 font-mono ${used.has(place) ? "" : "text-ink-soft"} ${
-              wrongPlaces.has(place) ? "font-semibold text-oxide outline-2 -outline-offset-2 outline-oxide" : ""
-            }`}
-            title={row.cells[place]}
-          >
-            {row.cells[place]}
-          </td>
-        ))}
-      </tr>
-      {errors.map((error) => (
-        <tr key={`${error.column} ${error.code}`} className="bg-oxide/8">
-          <td className="sticky left-0 border-b border-rule/55 bg-raised" />
-          <td colSpan={width} className="border-b border-rule/55 px-2 py-1">
-            <span className="sticky left-14 inline-block max-w-[min(100%,70ch)] text-oxide">
-              {error.column ? <span className="font-mono font-semibold">{error.column}: </span> : null}
-              {error.message} <span className="font-mono text-xs text-ink-soft">{error.code}</span>
-            </span>
-          </td>
-        </tr>
-      ))}
-    </>
   );
 }
 
