@@ -5,14 +5,9 @@ const share = (description: string) =>
   z.coerce.number("Takes a share between 0 and 1.").gt(0).lt(1).optional().meta({ description });
 
 export const samplePlanQuery = z.object({
-  expectedSd: z.coerce
-    .number("Takes a number.")
-    .min(0)
-    .max(1)
-    .optional()
-    .meta({
-      description: "Expected standard deviation of gainTc, 1/K; that of the family's earlier lots where absent",
-    }),
+  expectedSd: z.coerce.number("Takes a number.").min(0).max(1).optional().meta({
+    description: "Expected standard deviation of gainTc, 1/K; that of the family's earlier lots where absent",
+  }),
   coverage: share("Share of the lot to be inside; the family's where absent"),
   confidence: share("The family's where absent"),
   verificationShare: share("Share of the lot that passing verification devices have to show; 0.9 where absent"),

@@ -210,10 +210,12 @@ describe("GET /lots/{code}/sample-plan", () => {
     expect((await ask({})).body.earlier).toBeNull();
   });
 
-  it.each([{ expectedSd: "x" }, { expectedSd: -1 }, { coverage: 1 }, { verificationShare: 0 }])(
-    "refuses %j",
-    async (query) => {
-      expect((await ask(query as Record<string, string | number>)).status).toBe(422);
-    },
-  );
+  it.each<Record<string, string | number>>([
+    { expectedSd: "x" },
+    { expectedSd: -1 },
+    { coverage: 1 },
+    { verificationShare: 0 },
+  ])("refuses %j", async (query) => {
+    expect((await ask(query)).status).toBe(422);
+  });
 });

@@ -8,7 +8,10 @@ import { assertRole, type Ctx, type PersonCtx } from "@/lib/services/context";
 import { type LayoutDocument, parseLayout } from "@/schemas/documents/layout";
 
 /** What a family's layouts are judged against: its newest published values (else the newest), its published layouts, its serials. */
-async function getLintBasis(db: Db, family: FamilyRow): Promise<Required<Omit<LintOptions, "family" | "draftVersion">> & LintOptions> {
+async function getLintBasis(
+  db: Db,
+  family: FamilyRow,
+): Promise<Required<Omit<LintOptions, "family" | "draftVersion">> & LintOptions> {
   const revision = (await findNewestPublishedRevision(db, family.id)) ?? (await listFamilyRevisions(db, family.id))[0];
   return {
     family: revision && { ...revision.document, code: family.code },
