@@ -49,7 +49,7 @@ export function MapCells({ row, hex, lit, over, pageStart, tabStop, onPoint, onC
     return (
       <td
         key={`${cell.at}${part.name}`}
-        data-part={part.name}
+        data-part={part.path ?? part.name}
         colSpan={cell.length}
         title={`${part.name}, ${formatAddress(part.at)} to ${formatAddress(part.at + part.length - 1)}`}
         tabIndex={i === stop ? 0 : -1}
