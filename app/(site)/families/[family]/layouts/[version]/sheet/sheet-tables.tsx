@@ -2,6 +2,7 @@ import { Facts } from "@/app/_components/facts";
 import { crcParametersOf, findChecksumWidth, rangesOf } from "@/builders/codec/checksum-algorithm";
 import { findCrcParameters } from "@/builders/codec/crc";
 import { findFieldWidth } from "@/builders/codec/field-types";
+import { addressAt, listSegments } from "@/builders/codec/segments";
 import { formatAddress, formatByte } from "@/lib/domain/format/digest";
 import { formatNumberOf } from "@/lib/domain/format/figure";
 import type {
@@ -16,11 +17,19 @@ const dash = "—";
 const hexRange = (from: number, to: number) => `${formatAddress(from)}–${formatAddress(to)}`;
 const numberText = (value: number | undefined) => (value === undefined ? dash : String(value).replace("-", "−"));
 
+/** Addresses in the device by offset of the image: one after the other, but for the jumps between segments. */
+function addressesOf(memory: LayoutDocument["memory"]): (offset: number) => number {
+  const segments = listSegments(memory);
+  return (offset) => addressAt(segments, offset);
+}
+
 /** What holds for the memory as a whole. */
 export function MemoryFacts({ document, used }: { document: LayoutDocument; used: number }) {
   const { memory, firmware, order, kept = [], reserved = [] } = document;
+  const address = addressesOf(memory);
   const ranges = (list: readonly (readonly [number, number])[]) =>
-    list.map(([from, to]) => hexRange(from, to)).join(", ") || "none";
+    list.map(([from, to]) => hexRange(address(from), address(to))).join(", ") || "none";
+  const segments = listSegments(memory);
   return (
     <Facts
       small
@@ -29,7 +38,12 @@ export function MemoryFacts({ document, used }: { document: LayoutDocument; used
         { label: "Order of the compensation", value: String(order) },
         { label: "Size", value: `${formatNumberOf(memory.bytes, "byte")}, ${used} in use` },
         { label: "Page", value: formatNumberOf(memory.pageBytes, "byte") },
-        { label: "Base address", value: formatAddress(memory.baseAddress, 8) },
+        segments.length === 1
+          ? { label: "Base address", value: formatAddress(memory.baseAddress, 8) }
+          : {
+              label: "Segments",
+              value: segments.map((one) => hexRange(one.address, one.address + one.end - one.at - 1)).join(", "),
+            },
         { label: "Fill", value: formatByte(memory.fill) },
         { label: "Byte order", value: memory.byteOrder },
         { label: "Kept by the device", value: ranges(kept) },
@@ -77,7 +91,7 @@ export function FieldSheet({ document }: { document: LayoutDocument }) {
 
 function FieldLine({ field, document: { memory } }: { field: LayoutField; document: LayoutDocument }) {
   const width = findFieldWidth(field) ?? 1;
-  const at = memory.baseAddress + field.at;
+  const at = addressesOf(memory)(field.at);
   const limits =
     field.min === undefined && field.max === undefined ? dash : `${numberText(field.min)} to ${numberText(field.max)}`;
   return (
@@ -158,8 +172,9 @@ export function ChecksumSheet({ document: { checksums, memory } }: { document: L
 function ChecksumLine({ checksum, memory }: { checksum: LayoutChecksum; memory: LayoutDocument["memory"] }) {
   const { name, at, algorithm, over, byteOrder, forbid, instead } = checksum;
   const width = findChecksumWidth(algorithm) ?? 1;
-  const address = memory.baseAddress + at;
-  const covered = rangesOf(over).map(([from, to]) => hexRange(memory.baseAddress + from, memory.baseAddress + to));
+  const addressOf = addressesOf(memory);
+  const address = addressOf(at);
+  const covered = rangesOf(over).map(([from, to]) => hexRange(addressOf(from), addressOf(to)));
   return (
     <tr className="border-b border-rule">
       <td className={`${cell} font-mono`}>
