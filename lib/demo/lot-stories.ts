@@ -8,6 +8,7 @@ import { benchFamily, floorFamily } from "./families";
 import { askForLayout, publishLayout } from "./ground";
 import { benchLayouts } from "./layouts";
 import { approveSets, type DemoLot, deriveLot, makeLot, readPooledRuns, readRun, refuseSets } from "./lot";
+import { planSampleRun } from "./plan";
 import { proveDevices } from "./proof";
 import { approvePackage, askForReview, buildLot, release } from "./release";
 import { addDemoStation, type DemoStation, type Mishaps, writeDevices } from "./stations";
@@ -306,10 +307,10 @@ const read: LotStory = {
 };
 
 const planned: LotStory = {
-  about: "MW20-2606: serials only; a layout waits for a second person",
+  about: "MW20-2606: a sample drawn and its run planned; a layout waits for a second person",
   async happen(story) {
     story.clock.to(story.today, 1, 21);
-    await makeLot(story, { ...bench, code: "MW20-2606", devices: 120 });
+    await planSampleRun(story, await makeLot(story, { ...bench, code: "MW20-2606", devices: 120 }));
     await askForLayout(story, benchLayouts.withLot);
   },
 };
