@@ -3,7 +3,14 @@ import { v7 as uuidv7 } from "uuid";
 import { beforeAll, describe, expect, it } from "vitest";
 import { appErrorFromDatabase } from "@/db/constraint-codes";
 import type { Trx } from "@/db/executor";
-import { countDevices, findDevicesBySerial, findLotsOfSerials, insertDevices, listDevices } from "@/db/queries/devices";
+import {
+  countDevices,
+  findDeviceIds,
+  findDevicesBySerial,
+  findLotsOfSerials,
+  insertDevices,
+  listDevices,
+} from "@/db/queries/devices";
 import { insertFamily, insertFamilyRevision } from "@/db/queries/families";
 import { getLot, insertLot, listLots, lockLot } from "@/db/queries/lots";
 import { insertReadings, listReadings } from "@/db/queries/readings";
@@ -170,9 +177,8 @@ describe("readings in the database", () => {
   it("come back as they were, over more than one statement", async () => {
     const id = await addLot("READ-1");
     await add(id, ["READ-1-A", "READ-1-B"]);
-    const devices = new Map(
-      (await findLotsOfSerials(database.db, ["READ-1-A", "READ-1-B"])).map((d) => [d.serial, d.id]),
-    );
+    const devices = await findDeviceIds(database.db, id, ["READ-1-A", "READ-1-B", "READ-1-C"]);
+    expect([...devices.keys()].sort()).toEqual(["READ-1-A", "READ-1-B"]);
     const readings = Array.from({ length: 10_001 }, (_, index) =>
       readingOf(index % 2 ? "READ-1-A" : "READ-1-B", index + 2),
     );
@@ -189,8 +195,14 @@ describe("readings in the database", () => {
     const [first, second] = [await addLot("READ-2"), await addLot("READ-3")];
     await add(first, ["READ-2-A"]);
     await add(second, ["READ-3-A"]);
-    const known = await findLotsOfSerials(database.db, ["READ-2-A", "READ-3-A"]);
-    const devices = new Map(known.map((device) => [device.serial, device.id]));
+    const wanted = ["READ-2-A", "READ-3-A", "READ-4-A"];
+    const lots = await findLotsOfSerials(database.db, wanted);
+    expect([...lots].sort()).toEqual([
+      ["READ-2-A", "READ-2"],
+      ["READ-3-A", "READ-3"],
+    ]);
+    const own = await findDeviceIds(database.db, first, wanted);
+    const devices = new Map([...own, ...(await findDeviceIds(database.db, second, wanted))]);
     const rows = [readingOf("READ-2-A", 2), readingOf("READ-3-A", 3)];
     await expect(store(first, rows, devices)).rejects.toThrow("reading.device_of_other_lot");
     devices.set("READ-3-A", uuidv7());

@@ -2,7 +2,7 @@ import type { RowError } from "@/lib/domain/compensation/run-checks";
 import type { Reading } from "@/lib/domain/compensation/types";
 import { AppError } from "@/lib/errors";
 import { type Column, isColumn, OPTIONAL_COLUMNS, REQUIRED_COLUMNS } from "./columns";
-import { type PartialRow, readRow, shownCell } from "./read-row";
+import { type PartialRow, type RowRules, readRow, rulesFor, shownCell } from "./read-row";
 import { RowErrorList } from "./row-error-list";
 
 /** Most rows of one run. */
@@ -22,7 +22,7 @@ export class ReadingsGatherer {
   readonly errors = new RowErrorList();
   private readonly readings: Reading[] = [];
   private readonly badRows: PartialRow[] = [];
-  private columns: Column[] | undefined;
+  private rules: RowRules | undefined;
 
   /**
    * @param line of the file, the header being 1.
@@ -30,12 +30,12 @@ export class ReadingsGatherer {
    * @throws AppError `run.too_many_rows` {rowsMax}
    */
   take(record: readonly string[], line: number): boolean {
-    if (!this.columns) {
-      this.columns = readHeader(record, this.errors);
-      return this.columns.length > 0;
+    if (!this.rules) {
+      this.rules = rulesFor(readHeader(record, this.errors));
+      return this.rules.length > 0;
     }
     if (this.readings.length + this.badRows.length >= ROWS_MAX) throw tooManyRows();
-    const row = readRow(record, this.columns, line, this.errors);
+    const row = readRow(record, this.rules, line, this.errors);
     if ("reading" in row) this.readings.push(row.reading);
     else this.badRows.push(row.partial);
     return true;
@@ -47,7 +47,7 @@ export class ReadingsGatherer {
   }
 
   done(): ParsedReadings {
-    if (!this.columns && this.errors.total === 0) {
+    if (!this.rules && this.errors.total === 0) {
       this.errors.add({ row: 1, column: "", code: "file.empty", message: "The file has no header row." });
     }
     const { readings, badRows, errors } = this;

@@ -1,5 +1,5 @@
 import type { Db } from "@/db/executor";
-import { findLotsOfSerials } from "@/db/queries/devices";
+import { findDeviceIds, findLotsOfSerials } from "@/db/queries/devices";
 import type { Reading } from "@/lib/domain/compensation/types";
 import type { RowErrorList } from "@/lib/domain/readings/row-error-list";
 
@@ -22,20 +22,20 @@ export async function matchSerials(
   errors: RowErrorList,
 ): Promise<MatchedSerials> {
   const serials = [...new Set(readings.map((reading) => reading.serial))];
-  const known = new Map((await findLotsOfSerials(db, serials)).map((device) => [device.serial, device]));
-  const deviceIds = new Map<string, string>();
-  for (const [serial, device] of known) if (device.lotId === lot.id) deviceIds.set(serial, device.id);
-  const unknown = serials.filter((serial) => !known.has(serial));
+  const deviceIds = await findDeviceIds(db, lot.id, serials);
+  const strange = serials.filter((serial) => !deviceIds.has(serial));
+  const lots = await findLotsOfSerials(db, strange);
+  if (strange.length === 0) return { deviceIds, unknown: [] };
   for (const { row, serial } of readings) {
     if (deviceIds.has(serial)) continue;
-    const other = known.get(serial);
+    const other = lots.get(serial);
     const at = { row, column: "serial" };
-    if (other) {
-      errors.add({ ...at, code: "device.in_other_lot", message: `${serial} belongs to lot ${other.lotCode}.` });
+    if (other !== undefined) {
+      errors.add({ ...at, code: "device.in_other_lot", message: `${serial} belongs to lot ${other}.` });
     } else if (!addDevices) {
       const message = `${serial} is not in lot ${lot.code}; add it to the lot, or upload with "add devices".`;
       errors.add({ ...at, code: "device.unknown", message });
     }
   }
-  return { deviceIds, unknown };
+  return { deviceIds, unknown: strange.filter((serial) => !lots.has(serial)) };
 }

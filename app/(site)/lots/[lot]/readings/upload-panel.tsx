@@ -146,7 +146,9 @@ export function UploadPanel({ lot, family, rules, kept, equipment, ...choices }:
             onReread={readings.reread}
           />
         ) : null}
-        <RunFields choice={choice} runs={choices.runs} plans={choices.plans} equipment={equipment} />
+        <fieldset disabled={upload.sending !== undefined} className="m-0 flex min-w-0 flex-col gap-4">
+          <RunFields choice={choice} runs={choices.runs} plans={choices.plans} equipment={equipment} />
+        </fieldset>
         <div role="alert">
           {upload.problem ? <Refusal problem={upload.problem} inPreview={refused !== undefined} /> : null}
         </div>
