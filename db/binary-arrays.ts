@@ -26,16 +26,17 @@ function fixedArray<T>(
   oid: number,
   width: number,
   values: readonly (T | null | undefined)[],
-  write: (buffer: Buffer, value: T, at: number) => void,
+  write: (view: DataView, value: T, at: number, buffer: Buffer) => void,
 ): Buffer {
   const buffer = headerOf(oid, values.length, values.length * (LENGTH_BYTES + width));
+  const view = new DataView(buffer.buffer, buffer.byteOffset, buffer.byteLength);
   let at = HEADER_BYTES;
   for (const value of values) {
     const isThere = value !== null && value !== undefined;
-    buffer.writeInt32BE(isThere ? width : -1, at);
+    view.setInt32(at, isThere ? width : -1);
     at += LENGTH_BYTES;
     if (!isThere) continue;
-    write(buffer, value, at);
+    write(view, value, at, buffer);
     at += width;
   }
   return values.length === 0 ? buffer : buffer.subarray(0, at);
@@ -43,28 +44,28 @@ function fixedArray<T>(
 
 /** `int4[]` from integers of 32 bits. */
 export function int4Array(values: readonly (number | null | undefined)[]): Buffer {
-  return fixedArray(OID.int4, 4, values, (buffer, value, at) => buffer.writeInt32BE(value, at));
+  return fixedArray(OID.int4, 4, values, (view, value, at) => view.setInt32(at, value));
 }
 
 /** `float8[]` from numbers, bit by bit. */
 export function float8Array(values: readonly (number | null | undefined)[]): Buffer {
-  return fixedArray(OID.float8, 8, values, (buffer, value, at) => buffer.writeDoubleBE(value, at));
+  return fixedArray(OID.float8, 8, values, (view, value, at) => view.setFloat64(at, value));
 }
 
 /** `timestamptz[]` from RFC 3339 times, to the millisecond. */
 export function timestamptzArray(values: readonly string[]): Buffer {
-  return fixedArray(OID.timestamptz, 8, values, (buffer, value, at) => {
+  return fixedArray(OID.timestamptz, 8, values, (view, value, at) => {
     const microseconds = (Date.parse(value) - EPOCH_MS) * 1000;
     const high = Math.floor(microseconds / TWO_32);
-    buffer.writeInt32BE(high, at);
-    buffer.writeUInt32BE(microseconds - high * TWO_32, at + 4);
+    view.setInt32(at, high);
+    view.setUint32(at + 4, microseconds - high * TWO_32);
   });
 }
 
 /** `uuid[]` from UUIDs as text. Runs of one value, as devices have them in a table of readings, are copied. */
 export function uuidArray(values: readonly string[]): Buffer {
   let before: string | undefined;
-  return fixedArray(OID.uuid, 16, values, (buffer, value, at) => {
+  return fixedArray(OID.uuid, 16, values, (_, value, at, buffer) => {
     if (value === before) buffer.copyWithin(at, at - 16 - LENGTH_BYTES, at - LENGTH_BYTES);
     else buffer.write(value.replaceAll("-", ""), at, "hex");
     before = value;
