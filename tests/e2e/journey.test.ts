@@ -158,8 +158,9 @@ describe("from readings to a traced device", () => {
     await engineer.locator("input[type=file]").setInputFiles(file);
     await engineer.getByLabel("Purpose").selectOption("sample");
     await engineer.getByLabel("Add devices that the lot doesn't have yet").check();
-    await engineer.getByRole("button", { name: "Upload the run" }).click();
-    await engineer.getByRole("cell", { name: "taken_at" }).waitFor();
+    // The error stands at its cell before anything is sent, and nothing can be sent with it.
+    await engineer.getByText("Takes a time with its offset (RFC 3339)").waitFor();
+    expect(await engineer.getByRole("button", { name: "Upload the run" }).isDisabled()).toBe(true);
     await engineer.reload();
     await engineer.getByText("No readings yet").waitFor();
 
