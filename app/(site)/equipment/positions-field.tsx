@@ -1,5 +1,6 @@
 "use client";
 
+import { X } from "lucide-react";
 import { type Control, type FieldErrors, type UseFormRegister, useFieldArray } from "react-hook-form";
 import type { z } from "zod";
 import { Button } from "@/app/_components/button";
@@ -54,8 +55,8 @@ export function PositionsField({ control, register, errors, toNumber }: Position
                 inputMode="decimal"
                 className={`${inputLook} h-9 text-right font-mono`}
               />
-              <Button onClick={() => remove(index)} aria-label={`Remove place ${index + 1}`}>
-                Remove
+              <Button onClick={() => remove(index)} aria-label={`Remove place ${index + 1}`} title="Remove this place">
+                <X size={16} aria-hidden />
               </Button>
               <RowError error={errors?.[index]} />
             </div>
