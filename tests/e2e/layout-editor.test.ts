@@ -13,6 +13,8 @@ const people = ["engineer", "engineer2", "reviewer"] as const;
 
 let start: RunningStart;
 let origin: string;
+/** Pages on which Tab leaves the text. */
+const tabLeaves = new WeakSet<Page>();
 const visitors = {} as Record<(typeof people)[number], Visitor>;
 const page = (who: (typeof people)[number]) => visitors[who].page;
 
@@ -22,6 +24,7 @@ beforeAll(async () => {
   for (const name of people) {
     visitors[name] = await openVisitor(origin);
     await signIn(visitors[name], `${name}@marram.example`, PASSWORD);
+    page(name).on("load", (loaded) => tabLeaves.delete(loaded));
   }
 });
 
@@ -42,14 +45,13 @@ function focused(of: Page): Promise<{ name: string; inText: boolean }> {
 
 /** Presses Tab until something of that name has the focus. @throws Error where Tab never gets there. */
 async function tabTo(of: Page, name: RegExp): Promise<void> {
-  let tabLeaves = false;
   for (let presses = 0; presses < 250; presses++) {
     const now = await focused(of);
     if (name.test(now.name)) return;
-    if (now.inText && !tabLeaves) {
-      // The text keeps Tab to itself until it is told otherwise; the page says so under it.
+    if (now.inText && !tabLeaves.has(of)) {
+      // The text keeps Tab to itself until it is told otherwise, once a loaded page; the page says so under it.
       await of.keyboard.press("Control+M");
-      tabLeaves = true;
+      tabLeaves.add(of);
     }
     await of.keyboard.press("Tab");
   }
