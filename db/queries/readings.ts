@@ -30,23 +30,24 @@ export async function insertReadings(
 function insertStatement(runId: string, rows: readonly Reading[], deviceIds: ReadonlyMap<string, string>) {
   const numbers = (of: (row: Reading) => number | null | undefined) => float8Array(valuesOf(rows, of));
   const texts = (of: (row: Reading) => string | null | undefined) => textArray(valuesOf(rows, of));
+  // Unnested side by side in the list of columns, the rows go straight into the table; in FROM they would be put aside first.
   return sql`
     insert into reading (run_id, row_number, device_id, point, chamber_c, soak_min, device_temp, load_kg, signal_mv_v,
       taken_at, position, hardware_id, dwell_s, output_mv_v)
-    select ${runId}::uuid, given.* from unnest(
-      ${int4Array(rows.map((row) => row.row))}::int4[],
-      ${uuidArray(rows.map((row) => deviceIds.get(row.serial) as string))}::uuid[],
-      ${int4Array(rows.map((row) => row.point))}::int4[],
-      ${numbers((row) => row.chamberC)}::float8[],
-      ${numbers((row) => row.soakMin)}::float8[],
-      ${numbers((row) => row.deviceTemp)}::float8[],
-      ${numbers((row) => row.loadKg)}::float8[],
-      ${numbers((row) => row.signalMvV)}::float8[],
-      ${timestamptzArray(rows.map((row) => row.takenAt))}::timestamptz[],
-      ${texts((row) => row.position)}::text[],
-      ${texts((row) => row.hardwareId)}::text[],
-      ${numbers((row) => row.dwellS)}::float8[],
-      ${numbers((row) => row.outputMvV)}::float8[]) as given
+    select ${runId}::uuid,
+      unnest(${int4Array(rows.map((row) => row.row))}::int[]),
+      unnest(${uuidArray(rows.map((row) => deviceIds.get(row.serial) as string))}::uuid[]),
+      unnest(${int4Array(rows.map((row) => row.point))}::int[]),
+      unnest(${numbers((row) => row.chamberC)}::float8[]),
+      unnest(${numbers((row) => row.soakMin)}::float8[]),
+      unnest(${numbers((row) => row.deviceTemp)}::float8[]),
+      unnest(${numbers((row) => row.loadKg)}::float8[]),
+      unnest(${numbers((row) => row.signalMvV)}::float8[]),
+      unnest(${timestamptzArray(rows.map((row) => row.takenAt))}::timestamptz[]),
+      unnest(${texts((row) => row.position)}::text[]),
+      unnest(${texts((row) => row.hardwareId)}::text[]),
+      unnest(${numbers((row) => row.dwellS)}::float8[]),
+      unnest(${numbers((row) => row.outputMvV)}::float8[])
   `;
 }
 

@@ -59,6 +59,7 @@ const RULES: Record<Column, CellRule> = {
 };
 
 const CELL_SHOWN_MAX = 40;
+const TIMES_REMEMBERED = 5_000;
 
 /** What a cell held, for a message: shortened, without control characters. */
 export function shownCell(text: string): string {
@@ -70,7 +71,22 @@ export function shownCell(text: string): string {
 export type RowRules = readonly (CellRule & { column: Column })[];
 
 export function rulesFor(columns: readonly Column[]): RowRules {
-  return columns.map((column) => ({ ...RULES[column], column }));
+  return columns.map((column) => {
+    const rule = RULES[column];
+    return { ...rule, column, read: column === "taken_at" ? remembered(rule.read) : rule.read };
+  });
+}
+
+/** Devices of one chamber share their times: a text met before needs no reading. */
+function remembered(read: CellRule["read"]): CellRule["read"] {
+  const met = new Map<string, ReturnType<CellRule["read"]>>();
+  return (text) => {
+    const before = met.get(text);
+    if (before !== undefined) return before;
+    const value = read(text);
+    if (met.size < TIMES_REMEMBERED) met.set(text, value);
+    return value;
+  };
 }
 
 type Values = Record<Exclude<CellRule["field"], "position" | "hardwareId" | "dwellS" | "outputMvV">, unknown> &
