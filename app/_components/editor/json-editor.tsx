@@ -91,6 +91,10 @@ export default function JsonEditor(props: JsonEditorProps) {
       options={{
         ariaLabel: label,
         readOnly,
+        // Text that arrives many characters at once (input methods, dictation) makes the editor look behind tokens it has not
+        // made yet, which it reports as an error of its own.
+        autoClosingBrackets: "never",
+        autoClosingQuotes: "never",
         automaticLayout: true,
         fontFamily: getComputedStyle(document.documentElement).getPropertyValue("--font-figures"),
         fontSize: 14,
