@@ -138,13 +138,10 @@ function Widths({
       {selectable ? <col style={{ width: 36 }} /> : null}
       {columns.map((column) => {
         const extra = column.format?.as === "state" ? 3 : 0;
+        // What a link leads to is a serial or a code more often than not.
+        const px = isMono(column) || column.format?.as === "link" ? MONO_PX : 8;
         const longest = Math.max(column.header.length + 2, ...sample.map((row) => textOf(column, row).length + extra));
-        return (
-          <col
-            key={column.key}
-            style={{ width: `calc(${Math.min(longest, 48) * (isMono(column) ? MONO_PX : 8)}px + 18px)` }}
-          />
-        );
+        return <col key={column.key} style={{ width: `calc(${Math.min(longest, 48) * px}px + 18px)` }} />;
       })}
     </colgroup>
   );

@@ -40,7 +40,7 @@ export function LayoutTable({ family, rows, mayRetire }: LayoutTableProps) {
     return null;
   };
   return (
-    <div className="overflow-x-auto">
+    <div className="relative overflow-x-auto">
       <table className="w-full text-sm">
         <thead>
           <tr className="border-b border-rule text-left">

@@ -52,7 +52,7 @@ export default async function LayoutsPage({ params }: PageProps) {
           A layout says which bytes of the EEPROM hold what. Packages are built from a published one.
         </EmptyState>
       ) : (
-        <div className="grid items-start gap-[18px] xl:grid-cols-2">
+        <div className="grid grid-cols-1 items-start gap-[18px] xl:grid-cols-2">
           <Card title="Firmware that reads them" note="each bar is the range of firmware versions of a layout">
             <LayoutTimeline layouts={layouts} lots={lots.items} />
           </Card>
