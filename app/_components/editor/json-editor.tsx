@@ -95,6 +95,7 @@ export default function JsonEditor(props: JsonEditorProps) {
         // made yet, which it reports as an error of its own.
         autoClosingBrackets: "never",
         autoClosingQuotes: "never",
+        autoSurround: "never",
         automaticLayout: true,
         fontFamily: getComputedStyle(document.documentElement).getPropertyValue("--font-figures"),
         fontSize: 14,
