@@ -33,11 +33,3 @@ export class PieceCutter {
     return this.#filled > 0 ? this.#piece.subarray(0, this.#filled) : undefined;
   }
 }
-
-/** A stream of bytes cut into pieces of one length. @param size bytes of a piece, at least 1. */
-export function* cutPieces(stream: Iterable<Uint8Array>, size: number): Generator<Uint8Array> {
-  const cutter = new PieceCutter(size);
-  for (const part of stream) yield* cutter.add(part);
-  const rest = cutter.rest();
-  if (rest) yield rest;
-}

@@ -138,7 +138,7 @@ export async function listImagesOfSerials(
 }
 
 /** Bytes of the images of some serials in a package, by serial. */
-export async function listBytesOfSerials(
+export async function listImageBytes(
   db: Db,
   packageId: string,
   serials: readonly string[],

@@ -28,18 +28,3 @@ export async function listLayoutsInUse(
     .execute();
   return rows.map((row) => ({ ...row, document: row.document as unknown as LayoutDocument }));
 }
-
-/** Bytes of the images of devices in a package, by serial. */
-export async function listImageBytes(
-  db: Db,
-  packageId: string,
-  serials: readonly string[],
-): Promise<Map<string, Buffer>> {
-  const rows = await db
-    .selectFrom("image")
-    .select(["serial", "bytes"])
-    .where("packageId", "=", packageId)
-    .where(sql<boolean>`serial = any(${serials as string[]}::text[])`)
-    .execute();
-  return new Map(rows.map((row) => [row.serial, row.bytes]));
-}

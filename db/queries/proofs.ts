@@ -1,5 +1,6 @@
 import { sql } from "kysely";
 import type { Db } from "@/db/executor";
+import { decidingWriteBy } from "@/db/queries/writes";
 
 /** A device of a proof run with what decided its memory when it was first read there. */
 export interface ProvenDeviceRow {
@@ -36,13 +37,7 @@ export async function listProvenDevices(db: Db, runIds: readonly string[]): Prom
           group by run_id, device_id) read
     join device d on d.id = read.device_id
     join lot on lot.id = d.lot_id
-    left join lateral (
-      select newest.* from (
-        select distinct on (r.station_id) r.* from write_record r
-        where r.serial = d.serial and r.outcome <> 'failed' and r.finished_at <= read.read_at
-        order by r.station_id, r.counter desc, r.finished_at desc, r.received_at desc
-      ) newest order by newest.finished_at desc, newest.received_at desc limit 1
-    ) w on true
+    left join lateral ${decidingWriteBy(sql`read.read_at`)} w on true
     left join package p on p.id = w.package_id
     left join layout l on l.id = p.layout_id
     order by read.run_id, d.serial

@@ -1,4 +1,4 @@
-import { sql } from "kysely";
+import { type RawBuilder, sql } from "kysely";
 import type { Db, Trx } from "@/db/executor";
 
 export type WriteOutcome = "verified" | "mismatch" | "failed" | "interrupted" | "unknown-image" | "unknown-serial";
@@ -248,16 +248,19 @@ export interface CarriedRow {
 }
 
 /**
- * The deciding record of a device `d`: of each station the one with the highest counter that touched the memory (not `failed`),
- * of those the last finished. Found by serial, so that what was reported before the serial was known counts too.
+ * The deciding record of a device `d` up to a time: of each station the one with the highest counter that touched the memory
+ * (not `failed`), of those the last finished. Found by serial, so that what was reported before the serial was known counts too.
  */
-export const decidingWrite = sql`(
+export const decidingWriteBy = (until: RawBuilder<unknown>) => sql`(
   select newest.* from (
     select distinct on (r.station_id) r.* from write_record r
-    where r.serial = d.serial and r.outcome <> 'failed'
+    where r.serial = d.serial and r.outcome <> 'failed' and r.finished_at <= ${until}
     order by r.station_id, r.counter desc, r.finished_at desc, r.received_at desc
   ) newest order by newest.finished_at desc, newest.received_at desc limit 1
 )`;
+
+/** The deciding record of a device `d` as of now. */
+export const decidingWrite = decidingWriteBy(sql`'infinity'::timestamptz`);
 
 /** What each device of a lot carries by its deciding record. */
 export async function listCarried(

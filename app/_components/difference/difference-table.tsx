@@ -13,8 +13,8 @@ import {
 } from "@/app/_components/difference/difference-filter";
 import { serialsOf, useComparison } from "@/app/_components/difference/use-comparison";
 import { EmptyState } from "@/app/_components/empty-state";
-import { Notice } from "@/app/_components/notice";
 import type { FilterChip, Row } from "@/app/_components/table/column";
+import { RowsFailed } from "@/app/_components/table/rows-failed";
 import { TableBar } from "@/app/_components/table/table-bar";
 import { TableGrid } from "@/app/_components/table/table-grid";
 import { type TableState, useTableState } from "@/app/_components/table/use-table-state";
@@ -88,13 +88,7 @@ export function DifferenceTable({ from, to, layout, opened, onOpen }: Difference
         }
         status={statusOf(loaded)}
       />
-      {loaded.error ? (
-        <div className="mb-2">
-          <Notice tone="bad" title="The rows could not be loaded">
-            {loaded.error.message} <Button onClick={loaded.retry}>Try again</Button>
-          </Notice>
-        </div>
-      ) : null}
+      {loaded.error ? <RowsFailed error={loaded.error} onRetry={loaded.retry} /> : null}
       <TableGrid
         key={query}
         name="changed serials"

@@ -12,9 +12,9 @@ import {
 import { type ReactNode, useCallback, useMemo, useState } from "react";
 import { Button } from "@/app/_components/button";
 import { EmptyState } from "@/app/_components/empty-state";
-import { Notice } from "@/app/_components/notice";
 import { type DataColumn, type FilterChip, passes, type Row, textOf, valueAt } from "@/app/_components/table/column";
 import { csvOf, saveCsv } from "@/app/_components/table/csv";
+import { RowsFailed } from "@/app/_components/table/rows-failed";
 import { TableBar } from "@/app/_components/table/table-bar";
 import { TableGrid } from "@/app/_components/table/table-grid";
 import { useRows } from "@/app/_components/table/use-rows";
@@ -105,13 +105,7 @@ export function DataTable(props: DataTableProps) {
         note={props.note}
         status={statusOf(visible.length, loaded)}
       />
-      {loaded.error ? (
-        <div className="mb-2">
-          <Notice tone="bad" title="The rows could not be loaded">
-            {loaded.error.message} <Button onClick={loaded.retry}>Try again</Button>
-          </Notice>
-        </div>
-      ) : null}
+      {loaded.error ? <RowsFailed error={loaded.error} onRetry={loaded.retry} /> : null}
       <TableGrid
         name={props.name}
         columns={shown}

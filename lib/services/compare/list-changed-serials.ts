@@ -1,4 +1,4 @@
-import { listImageBytes } from "@/db/queries/package-layouts";
+import { listImageBytes } from "@/db/queries/images";
 import type { SerialSelection } from "@/lib/domain/comparison/select-serials";
 import type { Ctx } from "@/lib/services/context";
 import type { ChangedSerials, ChangedSerialsQuery, ComparedDevice } from "@/schemas/api/compare";

@@ -1,6 +1,6 @@
 import type { Trx } from "@/db/executor";
-import { listAuthors, listDeciders } from "@/db/queries/derivation-people";
 import type { DerivationRow } from "@/db/queries/derivations";
+import { listAuthors, listDeciders } from "@/db/queries/mailed-people";
 import {
   coefficientsProposedMessage,
   coefficientsRefusedMessage,
@@ -22,7 +22,7 @@ export async function tellDeciders(
   if (proposed.devices === 0 || proposed.blocked) return;
   const { id, lotCode: lot, createdByName: by } = derivation;
   const { devices, toAcknowledge } = proposed;
-  for (const person of await listDeciders(trx, id)) {
+  for (const person of await listDeciders(trx, "derivation", id)) {
     const message = coefficientsProposedMessage({ to: person.name, id, lot, devices, by, toAcknowledge });
     await queueMail(ctx, trx, person, message);
   }

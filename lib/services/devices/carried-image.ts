@@ -1,5 +1,5 @@
 import { compareImages } from "@/builders/codec/difference";
-import { listImageBytes } from "@/db/queries/package-layouts";
+import { listImageBytes } from "@/db/queries/images";
 import { findLivePackage } from "@/db/queries/packages";
 import { type CarriedRow, listCarried } from "@/db/queries/writes";
 import type { Ctx } from "@/lib/services/context";

@@ -1,5 +1,5 @@
 import { appErrorFromDatabase } from "@/db/constraint-codes";
-import { listBytesOfSerials } from "@/db/queries/images";
+import { listImageBytes } from "@/db/queries/images";
 import { listFirmwareOtherThan, listSetsNotApproved } from "@/db/queries/package-inputs";
 import { findLivePackage, getPackage, type PackageRow, setPackageProgress } from "@/db/queries/packages";
 import { EVIDENCE_MAX } from "@/lib/domain/package-checks/check";
@@ -58,7 +58,7 @@ async function build(ctx: Ctx, inputs: PackageInputs): Promise<Built> {
   const composed = await composePackage(ctx.db, inputs, partsOf(packed), {
     beforePart: async (devices) => {
       liveBytes = live
-        ? await listBytesOfSerials(
+        ? await listImageBytes(
             ctx.db,
             live.id,
             devices.map((one) => one.serial),

@@ -1,5 +1,5 @@
 import type { Trx } from "@/db/executor";
-import { findMailedPerson, listPackageDeciders } from "@/db/queries/package-people";
+import { findMailedPerson, listDeciders } from "@/db/queries/mailed-people";
 import type { PackageRow } from "@/db/queries/packages";
 import { packageRefusedMessage, packageSubmittedMessage } from "@/lib/mail/package-messages";
 import type { PersonCtx } from "@/lib/services/context";
@@ -10,7 +10,7 @@ import { countsOf } from "./package-counts";
 export async function tellPackageDeciders(ctx: PersonCtx, trx: Trx, pkg: PackageRow, waivers: number): Promise<void> {
   const { id, lotCode: lot, version } = pkg;
   const { devices } = countsOf(pkg);
-  for (const person of await listPackageDeciders(trx, id)) {
+  for (const person of await listDeciders(trx, "package", id)) {
     const facts = { to: person.name, id, lot, version, by: ctx.actor.name, devices, waivers };
     await queueMail(ctx, trx, person, packageSubmittedMessage(facts));
   }

@@ -2,7 +2,7 @@ import type { CompiledLayout } from "@/builders/codec/compile-layout";
 import { decodeImage } from "@/builders/codec/image";
 import { twinOf } from "@/builders/codec/twin";
 import { judgeProof, type ProofReading } from "@/builders/codec/twin-proof";
-import { listImageBytes } from "@/db/queries/package-layouts";
+import { listImageBytes } from "@/db/queries/images";
 import { listProvenDevices, type ProvenDeviceRow } from "@/db/queries/proofs";
 import { listReadings } from "@/db/queries/readings";
 import { getRun } from "@/db/queries/runs";

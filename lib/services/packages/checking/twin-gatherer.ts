@@ -35,7 +35,7 @@ export class TwinGatherer {
     const home = points.filter((point) => point.purpose === points[0]?.purpose);
     const { span, zero } = twinErrors(twin, points, home, this.#rules, exact);
     // Without freedom left the fit passes through the points, and a shift of nothing would say nothing.
-    const zeroSpeaks = typeof detail.zeroShiftRatio === "number";
+    const shift = typeof detail.zeroShiftRatio === "number" ? zero : null;
     this.#predictions.push({
       serial,
       spanErrorPpm: span?.errorPpm ?? null,
@@ -43,9 +43,9 @@ export class TwinGatherer {
       spanAtC: span?.chamberC ?? null,
       spanRoundingPpm: span?.roundingPpm ?? null,
       largestRoundingPpm: span?.largestRoundingPpm ?? null,
-      zeroShiftRatio: (zeroSpeaks && zero?.ratio) || null,
-      zeroBetweenC: (zeroSpeaks && zero?.betweenC) || null,
-      zeroRoundingRatio: (zeroSpeaks && zero?.roundingRatio) || null,
+      zeroShiftRatio: shift?.ratio ?? null,
+      zeroBetweenC: shift?.betweenC ?? null,
+      zeroRoundingRatio: shift?.roundingRatio ?? null,
       independent: typeof detail.spanRatio === "number",
     });
   }

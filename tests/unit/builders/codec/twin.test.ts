@@ -2,7 +2,6 @@ import { describe, expect, it } from "vitest";
 import { decodeImage, encodeImage } from "@/builders/codec/image";
 import { type Twin, twinOf } from "@/builders/codec/twin";
 import { twinErrors } from "@/builders/codec/twin-errors";
-import { TwinLotCounter } from "@/builders/codec/twin-lot";
 import { twinRange } from "@/builders/codec/twin-range";
 import { derive } from "@/lib/domain/compensation/derive";
 import type { DevicePoint } from "@/lib/domain/compensation/types";
@@ -114,24 +113,6 @@ describe("the twin of the golden lot", () => {
       const span = judged.find((one) => one.serial === serial)?.errors.span;
       expect((span?.errorPpm as number) - (span?.roundingPpm as number)).toBeCloseTo(expected.spanErrorPpm, 6);
     }
-  });
-
-  it("counts every device once and finds the worst", () => {
-    const counter = new TwinLotCounter();
-    for (const { serial, points, errors } of judged) counter.add(serial, points.length > 0 ? errors : null);
-    counter.add("NONE-1", null);
-    const lot = counter.finish();
-    const loaded = judged.filter((one) => one.points.some((at) => at.spanMvV !== null));
-    expect(lot).toMatchObject({
-      devices: judged.length + 1,
-      spanTested: loaded.length,
-      neverLoaded: judged.length - loaded.length,
-      withoutReadings: 1,
-    });
-    expect(lot.spanTested).toBeGreaterThan(0);
-    expect(lot.span?.ratio).toBe(Math.max(...judged.map((one) => one.errors.spanRatio ?? 0)));
-    expect(lot.zero?.ratio).toBe(Math.max(...judged.map((one) => one.errors.zeroShiftRatio ?? 0)));
-    expect(lot.rounding?.ppm).toBe(Math.max(...judged.map((one) => one.errors.span?.largestRoundingPpm ?? 0)));
   });
 
   it("overflows nowhere in the family's range, where rounding stays small", () => {

@@ -7,11 +7,11 @@ export interface MailedPerson {
   email: string;
 }
 
-/** Active reviewers who had no hand in a derivation: those who may decide over it. By name. */
-export async function listDeciders(db: Db, derivationId: string): Promise<MailedPerson[]> {
+/** Active reviewers who had no hand in something: those who may decide over it. By name. */
+export async function listDeciders(db: Db, subject: "derivation" | "package", id: string): Promise<MailedPerson[]> {
   const { rows } = await sql<MailedPerson>`
     select id, name, email from person
-    where active and has_role(id, 'reviewer') and not is_maker('derivation', ${derivationId}::uuid, id)
+    where active and has_role(id, 'reviewer') and not is_maker(${subject}, ${id}::uuid, id)
     order by name
   `.execute(db);
   return rows;
@@ -26,4 +26,14 @@ export async function listAuthors(db: Db, derivationId: string): Promise<MailedP
     order by p.name
   `.execute(db);
   return rows;
+}
+
+/** A person to write to; undefined once inactive. */
+export function findMailedPerson(db: Db, personId: string): Promise<MailedPerson | undefined> {
+  return db
+    .selectFrom("person")
+    .select(["id", "name", "email"])
+    .where("id", "=", personId)
+    .where("active", "=", true)
+    .executeTakeFirst();
 }
