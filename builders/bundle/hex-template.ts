@@ -1,5 +1,5 @@
 import type { CompiledLayout } from "@/builders/codec/compile-layout";
-import { writeImageHex } from "@/builders/codec/hex-image";
+import { writeImageHex } from "@/builders/codec/files/hex-image";
 import { findOffset, type MemoryPiece } from "@/builders/codec/segments";
 
 /** Characters of a data record before its data: colon, count, address, type. */

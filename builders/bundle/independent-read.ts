@@ -1,5 +1,5 @@
 import intelHex from "intel-hex";
-import { upperAddressRecord } from "@/builders/codec/intel-hex-write";
+import { upperAddressRecord } from "@/builders/codec/files/intel-hex-write";
 import { joinRanges } from "@/builders/codec/memory-map";
 import { findOffset, listSegments, type MemoryPiece } from "@/builders/codec/segments";
 import { AppError } from "@/lib/errors";

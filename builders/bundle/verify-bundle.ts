@@ -5,7 +5,7 @@ import { isReleaseSignature, keyIdOf, type ReleaseRecord } from "@/builders/bund
 import { sha256Hex } from "@/builders/bundle/sha256";
 import { readSums } from "@/builders/bundle/sums";
 import { UNLISTED_FILES, UNLISTED_PREVIEW_FILES } from "@/builders/bundle/verify-text";
-import { readIntelHex } from "@/builders/codec/intel-hex-read";
+import { readIntelHex } from "@/builders/codec/files/intel-hex-read";
 import { AppError } from "@/lib/errors";
 
 export interface VerifyStep {

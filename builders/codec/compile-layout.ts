@@ -1,7 +1,7 @@
 import { type CompiledChecksum, compileChecksum } from "@/builders/codec/compile-checksum";
 import type { NumberType } from "@/builders/codec/field-types";
 import { type BitPlace, type LayoutCell, listCells } from "@/builders/codec/layout-cells";
-import { listStructureProblems } from "@/builders/codec/lint-structure";
+import { listStructureProblems } from "@/builders/codec/lint/lint-structure";
 import { joinRanges } from "@/builders/codec/memory-map";
 import { listSegments, listWrittenPieces, type MemoryPiece } from "@/builders/codec/segments";
 import { type ImageSources, SOURCE_READERS } from "@/builders/codec/sources";

@@ -1,5 +1,5 @@
 import type { CompiledField } from "@/builders/codec/compile-layout";
-import { toHex } from "@/builders/codec/hex-text";
+import { toHex } from "@/builders/codec/files/hex-text";
 import { readBcd, readBits, readUnsigned } from "@/builders/codec/stored-integer";
 
 /**

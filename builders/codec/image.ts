@@ -2,7 +2,7 @@ import { type CompiledChecksum, findStoredSum } from "@/builders/codec/compile-c
 import type { CompiledLayout } from "@/builders/codec/compile-layout";
 import { decodeField } from "@/builders/codec/decode-field";
 import { encodeField } from "@/builders/codec/encode-field";
-import { toHex } from "@/builders/codec/hex-text";
+import { toHex } from "@/builders/codec/files/hex-text";
 import type { ImageSources } from "@/builders/codec/sources";
 import { readUnsigned, writeInteger } from "@/builders/codec/stored-integer";
 import { AppError } from "@/lib/errors";

@@ -1,6 +1,6 @@
 import semver from "semver";
 import { type LayoutCell, listCells } from "@/builders/codec/layout-cells";
-import type { FamilyRulesLike } from "@/builders/codec/lint";
+import type { FamilyRulesLike } from "@/builders/codec/lint/lint";
 import type { ImageSources } from "@/builders/codec/sources";
 import type { LayoutDocument, SourceName } from "@/schemas/documents/layout";
 

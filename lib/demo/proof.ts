@@ -1,6 +1,6 @@
 /** A proof run of the demo: written devices read again, with the output that their firmware computes. */
 import { decodeImage } from "@/builders/codec/image";
-import { twinOf, twinOutput } from "@/builders/codec/twin";
+import { twinOf, twinOutput } from "@/builders/codec/twin/twin";
 import { eachImages, type ImageRow } from "@/db/queries/images";
 import { layoutsOfPackages } from "@/lib/services/devices/layouts-of-packages";
 import { uploadRun } from "@/lib/services/runs/upload-run";

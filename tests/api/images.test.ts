@@ -1,8 +1,8 @@
 import { createHash } from "node:crypto";
 import { v7 as uuidv7 } from "uuid";
 import { beforeAll, describe, expect, it } from "vitest";
-import { readIntelHex } from "@/builders/codec/intel-hex-read";
-import { readSRecords } from "@/builders/codec/s-record-read";
+import { readIntelHex } from "@/builders/codec/files/intel-hex-read";
+import { readSRecords } from "@/builders/codec/files/s-record-read";
 import { startBuild } from "@/lib/services/packages/start-build";
 import { insertAccessKey } from "../support/access-key";
 import { openTestApi, type TestApi } from "../support/api";

@@ -1,7 +1,7 @@
 import { beforeAll, describe, expect, it } from "vitest";
 import { compileLayout } from "@/builders/codec/compile-layout";
-import { assembleImage } from "@/builders/codec/hex-image";
-import { readIntelHex } from "@/builders/codec/intel-hex-read";
+import { assembleImage } from "@/builders/codec/files/hex-image";
+import { readIntelHex } from "@/builders/codec/files/intel-hex-read";
 import type { LayoutDocument, LayoutField } from "@/schemas/documents/layout";
 import { openTestApi, type TestApi } from "../support/api";
 import { PASSWORD } from "../support/people";

@@ -1,5 +1,5 @@
 import semver from "semver";
-import type { LintOptions } from "@/builders/codec/lint";
+import type { LintOptions } from "@/builders/codec/lint/lint";
 import { addChecksum, computeEarlier, coverField, shortenRange, swapEnds } from "@/builders/codec/mend/mend-checksums";
 import { type Mend, type Mender, mendContextOf } from "@/builders/codec/mend/mend-context";
 import * as fields from "@/builders/codec/mend/mend-fields";

@@ -1,5 +1,5 @@
-import type { LintOptions } from "@/builders/codec/lint";
-import { readLayout } from "@/builders/codec/lint-shape";
+import type { LintOptions } from "@/builders/codec/lint/lint";
+import { readLayout } from "@/builders/codec/lint/lint-shape";
 import { type Extent, listExtents } from "@/builders/codec/memory-map";
 import { JsonEditor, type TextEdit } from "@/lib/domain/json-edits";
 import type { Problem } from "@/lib/errors";

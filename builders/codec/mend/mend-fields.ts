@@ -1,6 +1,6 @@
 import { findNumberType } from "@/builders/codec/field-types";
-import { fits } from "@/builders/codec/lint-field";
-import { finestNeeded, listResolutions } from "@/builders/codec/lint-resolution";
+import { fits } from "@/builders/codec/lint/lint-field";
+import { finestNeeded, listResolutions } from "@/builders/codec/lint/lint-resolution";
 import {
   fieldOf,
   type Mend,

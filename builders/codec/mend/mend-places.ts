@@ -1,4 +1,4 @@
-import { alignmentOf } from "@/builders/codec/lint-placement";
+import { alignmentOf } from "@/builders/codec/lint/lint-placement";
 import { type MendContext, type Mender, partOf, readPart, setMember } from "@/builders/codec/mend/mend-context";
 import type { ByteRange } from "@/schemas/documents/layout";
 

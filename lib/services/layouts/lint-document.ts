@@ -1,4 +1,4 @@
-import { joinShape, type LintOptions, type LintResult, lintLayout } from "@/builders/codec/lint";
+import { joinShape, type LintOptions, type LintResult, lintLayout } from "@/builders/codec/lint/lint";
 import type { Db } from "@/db/executor";
 import { findSerialLengthMax } from "@/db/queries/devices";
 import { type FamilyRow, findNewestPublishedRevision, getFamily, listFamilyRevisions } from "@/db/queries/families";

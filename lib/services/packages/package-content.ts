@@ -5,7 +5,7 @@ import { byCodeUnits } from "@/builders/bundle/manifest";
 import { sha256Hex } from "@/builders/bundle/sha256";
 import { ValuesTemplate } from "@/builders/bundle/values-template";
 import { type CompiledLayout, compileLayout } from "@/builders/codec/compile-layout";
-import { writeImageHex } from "@/builders/codec/hex-image";
+import { writeImageHex } from "@/builders/codec/files/hex-image";
 import type { Db } from "@/db/executor";
 import {
   eachImages,

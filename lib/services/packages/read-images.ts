@@ -1,7 +1,7 @@
 import { sha256Hex } from "@/builders/bundle/sha256";
 import { type CompiledLayout, compileLayout } from "@/builders/codec/compile-layout";
-import { writeImageSRecords } from "@/builders/codec/hex-image";
-import { toHex } from "@/builders/codec/hex-text";
+import { writeImageSRecords } from "@/builders/codec/files/hex-image";
+import { toHex } from "@/builders/codec/files/hex-text";
 import { checkChecksums, decodeImage } from "@/builders/codec/image";
 import { type Extent, listExtents, listGaps } from "@/builders/codec/memory-map";
 import { getImage, type ImageRow, listDerivationsOfSets, listImages as listImageRows } from "@/db/queries/images";

@@ -1,7 +1,7 @@
 import type { CompiledLayout } from "@/builders/codec/compile-layout";
 import { decodeImage } from "@/builders/codec/image";
-import { twinOf } from "@/builders/codec/twin";
-import { judgeProof, type ProofReading } from "@/builders/codec/twin-proof";
+import { twinOf } from "@/builders/codec/twin/twin";
+import { judgeProof, type ProofReading } from "@/builders/codec/twin/twin-proof";
 import { listImageBytes } from "@/db/queries/images";
 import { listProvenDevices, type ProvenDeviceRow } from "@/db/queries/proofs";
 import { listReadings } from "@/db/queries/readings";

@@ -1,7 +1,7 @@
 import type { CompiledLayout } from "@/builders/codec/compile-layout";
-import { assembleImage } from "@/builders/codec/hex-image";
-import { readIntelHex } from "@/builders/codec/intel-hex-read";
-import { readSRecords } from "@/builders/codec/s-record-read";
+import { assembleImage } from "@/builders/codec/files/hex-image";
+import { readIntelHex } from "@/builders/codec/files/intel-hex-read";
+import { readSRecords } from "@/builders/codec/files/s-record-read";
 import { addressAt } from "@/builders/codec/segments";
 import { AppError } from "@/lib/errors";
 

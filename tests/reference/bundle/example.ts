@@ -4,8 +4,8 @@ import { imageLine } from "@/builders/bundle/images-jsonl";
 import { buildManifest, documentDigest, type Manifest, manifestBytes } from "@/builders/bundle/manifest";
 import { keyIdOf, publicKeyPem, type ReleaseRecord, releaseBytes, signRelease } from "@/builders/bundle/release";
 import { sha256Hex } from "@/builders/bundle/sha256";
+import { writeIntelHex } from "@/builders/codec/files/intel-hex-write";
 import { decodeImage, encodeImage } from "@/builders/codec/image";
-import { writeIntelHex } from "@/builders/codec/intel-hex-write";
 import { type PackageContent, packageSums, type ReleaseFiles } from "@/tests/reference/bundle/bundle-files";
 import { readGolden } from "@/tests/reference/codec/golden";
 

@@ -4,7 +4,7 @@ import { join } from "node:path";
 import { describe, expect, it } from "vitest";
 import { isReleaseSignature, keyIdOf, publicKeyPem, signRelease } from "@/builders/bundle/release";
 import { sha256Hex } from "@/builders/bundle/sha256";
-import { toHex } from "@/builders/codec/hex-text";
+import { toHex } from "@/builders/codec/files/hex-text";
 import { inFolder, runTool } from "@/tests/support/programs";
 
 const vectors = JSON.parse(

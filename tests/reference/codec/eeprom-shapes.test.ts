@@ -7,7 +7,7 @@ import { crc32 } from "node:zlib";
 import { describe, expect, it } from "vitest";
 import { compileLayout } from "@/builders/codec/compile-layout";
 import { checkChecksums, decodeImage, encodeImage, imageDigestBytes } from "@/builders/codec/image";
-import { lintLayout } from "@/builders/codec/lint";
+import { lintLayout } from "@/builders/codec/lint/lint";
 import { coefficientsOfOrder } from "@/builders/codec/sources";
 import type { FieldType, LayoutDocument, LayoutField } from "@/schemas/documents/layout";
 import { shapeProblems } from "@/schemas/documents/layout-shape";

@@ -1,12 +1,12 @@
 import { describe, expect, it } from "vitest";
 import { findReadDifference } from "@/builders/bundle/independent-read";
 import { sha256Hex } from "@/builders/bundle/sha256";
-import { assembleImage } from "@/builders/codec/hex-image";
+import { assembleImage } from "@/builders/codec/files/hex-image";
+import { readIntelHex } from "@/builders/codec/files/intel-hex-read";
+import { writeIntelHex } from "@/builders/codec/files/intel-hex-write";
 import { checkChecksums, decodeImage, encodeImage, imageDigestBytes } from "@/builders/codec/image";
-import { readIntelHex } from "@/builders/codec/intel-hex-read";
-import { writeIntelHex } from "@/builders/codec/intel-hex-write";
-import { lintLayout } from "@/builders/codec/lint";
-import { twinOf, twinOutput } from "@/builders/codec/twin";
+import { lintLayout } from "@/builders/codec/lint/lint";
+import { twinOf, twinOutput } from "@/builders/codec/twin/twin";
 import { parseLayout } from "@/schemas/documents/layout";
 import { readGolden } from "@/tests/reference/codec/golden";
 

@@ -2,8 +2,8 @@ import { readFileSync, writeFileSync } from "node:fs";
 import { join } from "node:path";
 import { describe, expect, it } from "vitest";
 import { readIndependently } from "@/builders/bundle/independent-read";
-import { readIntelHex } from "@/builders/codec/intel-hex-read";
-import { upperAddressRecord, writeIntelHex } from "@/builders/codec/intel-hex-write";
+import { readIntelHex } from "@/builders/codec/files/intel-hex-read";
+import { upperAddressRecord, writeIntelHex } from "@/builders/codec/files/intel-hex-write";
 import { inFolder, PYTHON, runTool } from "@/tests/support/programs";
 
 const vectors = JSON.parse(

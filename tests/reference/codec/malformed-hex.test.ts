@@ -1,7 +1,7 @@
 import { writeFileSync } from "node:fs";
 import { join } from "node:path";
 import { describe, expect, it } from "vitest";
-import { readIntelHex } from "@/builders/codec/intel-hex-read";
+import { readIntelHex } from "@/builders/codec/files/intel-hex-read";
 import { AppError } from "@/lib/errors";
 import { inFolder, PYTHON, tryTool } from "@/tests/support/programs";
 

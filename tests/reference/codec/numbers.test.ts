@@ -2,7 +2,7 @@ import { readFileSync } from "node:fs";
 import { join } from "node:path";
 import { describe, expect, it } from "vitest";
 import { compileLayout } from "@/builders/codec/compile-layout";
-import { toHex } from "@/builders/codec/hex-text";
+import { toHex } from "@/builders/codec/files/hex-text";
 import { decodeImage, encodeImage } from "@/builders/codec/image";
 import { roundHalfEven } from "@/builders/codec/round-half-even";
 import type { ByteOrder, FieldType, LayoutDocument } from "@/schemas/documents/layout";

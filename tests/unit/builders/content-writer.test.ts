@@ -10,8 +10,8 @@ import { sha256Hex } from "@/builders/bundle/sha256";
 import { sumsText } from "@/builders/bundle/sums";
 import { ValuesTemplate } from "@/builders/bundle/values-template";
 import { type CompiledLayout, compileLayout } from "@/builders/codec/compile-layout";
+import { writeIntelHex } from "@/builders/codec/files/intel-hex-write";
 import { decodeImage, imageDigestBytes } from "@/builders/codec/image";
-import { writeIntelHex } from "@/builders/codec/intel-hex-write";
 import { firstGolden, secondGolden } from "../../support/scenario/golden";
 
 /** Layouts that differ in length, base address, fill, kept ranges and byte order. */

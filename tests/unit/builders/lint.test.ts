@@ -1,5 +1,5 @@
 import { describe, expect, it } from "vitest";
-import { joinShape, type LintOptions, lintLayout } from "@/builders/codec/lint";
+import { joinShape, type LintOptions, lintLayout } from "@/builders/codec/lint/lint";
 import { findMends } from "@/builders/codec/mend/find-mend";
 import { applyEdits } from "@/lib/domain/json-edits";
 import type { Problem } from "@/lib/errors";

@@ -1,8 +1,8 @@
 import { describe, expect, it } from "vitest";
 import { decodeImage, encodeImage } from "@/builders/codec/image";
 import { listRoundTripFaults } from "@/builders/codec/round-trip";
-import { twinOf } from "@/builders/codec/twin";
-import { twinErrors } from "@/builders/codec/twin-errors";
+import { twinOf } from "@/builders/codec/twin/twin";
+import { twinErrors } from "@/builders/codec/twin/twin-errors";
 import { derive } from "@/lib/domain/compensation/derive";
 import { readGolden } from "@/tests/reference/codec/golden";
 import { readFamily, readJson, readLot } from "@/tests/unit/compensation/golden-example";

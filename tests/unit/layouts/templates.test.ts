@@ -2,7 +2,7 @@ import { describe, expect, it } from "vitest";
 import { continuedText, templates, templateText } from "@/app/(site)/families/[family]/layouts/templates";
 import { compileLayout } from "@/builders/codec/compile-layout";
 import { decodeImage, encodeImage } from "@/builders/codec/image";
-import { lintLayout } from "@/builders/codec/lint";
+import { lintLayout } from "@/builders/codec/lint/lint";
 import { sampleSources } from "@/builders/codec/sample";
 import { shapeProblems } from "@/schemas/documents/layout-shape";
 

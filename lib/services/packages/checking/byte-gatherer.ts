@@ -1,8 +1,8 @@
 import { findReadDifference } from "@/builders/bundle/independent-read";
 import { sha256Hex } from "@/builders/bundle/sha256";
 import type { CompiledLayout } from "@/builders/codec/compile-layout";
-import { assembleImage } from "@/builders/codec/hex-image";
-import { readIntelHex } from "@/builders/codec/intel-hex-read";
+import { assembleImage } from "@/builders/codec/files/hex-image";
+import { readIntelHex } from "@/builders/codec/files/intel-hex-read";
 import { rangesBetween } from "@/builders/codec/memory-map";
 import { EVIDENCE_MAX, type PackageCheck } from "@/lib/domain/package-checks/check";
 import { checkEqualImages } from "@/lib/domain/package-checks/equal-images";

@@ -1,8 +1,8 @@
 import type { CompiledLayout } from "@/builders/codec/compile-layout";
 import type { CoefficientValues } from "@/builders/codec/sources";
-import { type Twin, twinOf } from "@/builders/codec/twin";
-import { twinErrors } from "@/builders/codec/twin-errors";
-import { twinRange } from "@/builders/codec/twin-range";
+import { type Twin, twinOf } from "@/builders/codec/twin/twin";
+import { twinErrors } from "@/builders/codec/twin/twin-errors";
+import { twinRange } from "@/builders/codec/twin/twin-range";
 import type { Coefficients, DevicePoint, FamilyRules } from "@/lib/domain/compensation/types";
 import type { PackageCheck } from "@/lib/domain/package-checks/check";
 import { checkTwin, type TwinPrediction, type TwinRangeFacts } from "@/lib/domain/package-checks/twin";

@@ -1,7 +1,7 @@
 import { describe, expect, it } from "vitest";
 import { compileLayout } from "@/builders/codec/compile-layout";
 import { compareImages } from "@/builders/codec/difference";
-import { toHex } from "@/builders/codec/hex-text";
+import { toHex } from "@/builders/codec/files/hex-text";
 import { checkChecksums, decodeImage, encodeImage } from "@/builders/codec/image";
 import { listRoundTripFaults } from "@/builders/codec/round-trip";
 import type { ImageSources } from "@/builders/codec/sources";

@@ -1,5 +1,5 @@
 import { describe, expect, it } from "vitest";
-import { lintLayout } from "@/builders/codec/lint";
+import { lintLayout } from "@/builders/codec/lint/lint";
 import { listExtents, listGaps } from "@/builders/codec/memory-map";
 import { layoutStep } from "@/lib/domain/semver-step";
 import type { BitField, LayoutChecksum, LayoutDocument, LayoutField, MemorySegment } from "@/schemas/documents/layout";

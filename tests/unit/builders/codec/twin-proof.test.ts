@@ -1,6 +1,6 @@
 import { describe, expect, it } from "vitest";
-import { type Twin, twinOutput } from "@/builders/codec/twin";
-import { judgeProof, PROOF_SHARE, type ProofReading } from "@/builders/codec/twin-proof";
+import { type Twin, twinOutput } from "@/builders/codec/twin/twin";
+import { judgeProof, PROOF_SHARE, type ProofReading } from "@/builders/codec/twin/twin-proof";
 import { firstGolden } from "../../../support/scenario/golden";
 
 const { family } = firstGolden();

@@ -1,8 +1,8 @@
 import { describe, expect, it } from "vitest";
 import { decodeImage, encodeImage } from "@/builders/codec/image";
-import { type Twin, twinOf } from "@/builders/codec/twin";
-import { twinErrors } from "@/builders/codec/twin-errors";
-import { twinRange } from "@/builders/codec/twin-range";
+import { type Twin, twinOf } from "@/builders/codec/twin/twin";
+import { twinErrors } from "@/builders/codec/twin/twin-errors";
+import { twinRange } from "@/builders/codec/twin/twin-range";
 import { derive } from "@/lib/domain/compensation/derive";
 import type { DevicePoint } from "@/lib/domain/compensation/types";
 import { readGolden } from "@/tests/reference/codec/golden";

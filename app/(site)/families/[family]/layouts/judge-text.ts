@@ -1,8 +1,8 @@
 import type { JsonMarker } from "@/app/_components/editor/json-editor";
 import { type LayoutMemory, memoryOfLayout } from "@/app/_components/memory-map-parts";
-import { joinShape, type LintOptions, lintLayout } from "@/builders/codec/lint";
-import { listResolutions, type Resolution } from "@/builders/codec/lint-resolution";
-import { readLayout } from "@/builders/codec/lint-shape";
+import { joinShape, type LintOptions, lintLayout } from "@/builders/codec/lint/lint";
+import { listResolutions, type Resolution } from "@/builders/codec/lint/lint-resolution";
+import { readLayout } from "@/builders/codec/lint/lint-shape";
 import { type JsonSpan, jsonPositions, lineFinder, nearestSpan } from "@/lib/domain/json-positions";
 import { layoutStep, newestLower, type Step, type StepReason } from "@/lib/domain/semver-step";
 import type { Problem } from "@/lib/errors";

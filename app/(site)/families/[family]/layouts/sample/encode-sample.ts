@@ -1,8 +1,8 @@
 import { compileLayout } from "@/builders/codec/compile-layout";
 import { readStored } from "@/builders/codec/decode-field";
-import { toHex } from "@/builders/codec/hex-text";
+import { toHex } from "@/builders/codec/files/hex-text";
 import { decodeImage, encodeImage } from "@/builders/codec/image";
-import type { FamilyRulesLike } from "@/builders/codec/lint";
+import type { FamilyRulesLike } from "@/builders/codec/lint/lint";
 import { sampleSources } from "@/builders/codec/sample";
 import type { CoefficientValues, ImageSources } from "@/builders/codec/sources";
 import { AppError } from "@/lib/errors";

@@ -1,5 +1,5 @@
 import type { CoefficientValues } from "@/builders/codec/sources";
-import { type Twin, twinOutput } from "@/builders/codec/twin";
+import { type Twin, twinOutput } from "@/builders/codec/twin/twin";
 import { maximumPermissibleError } from "@/lib/domain/compensation/envelope";
 import type { FamilyRules } from "@/lib/domain/compensation/types";
 

@@ -6,9 +6,9 @@ import {
   linesOf,
   numberOf,
   lineRefusal as refusal,
-} from "@/builders/codec/file-segments";
+} from "@/builders/codec/files/file-segments";
 
-export type { HexFile, HexSegment } from "@/builders/codec/file-segments";
+export type { HexFile, HexSegment } from "@/builders/codec/files/file-segments";
 
 interface Record {
   line: number;

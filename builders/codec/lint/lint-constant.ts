@@ -1,6 +1,6 @@
 import { isHexPairs, type NumberType } from "@/builders/codec/field-types";
-import type { Add } from "@/builders/codec/lint-field";
-import { fits, type Scaled } from "@/builders/codec/lint-scaled";
+import type { Add } from "@/builders/codec/lint/lint-field";
+import { fits, type Scaled } from "@/builders/codec/lint/lint-scaled";
 import { isWideText, wideEnds } from "@/builders/codec/wide-integer";
 import type { Constant, FieldType } from "@/schemas/documents/layout";
 

@@ -1,5 +1,5 @@
-import { UPPER_HEX } from "@/builders/codec/hex-text";
-import { assertAddresses } from "@/builders/codec/intel-hex-write";
+import { UPPER_HEX } from "@/builders/codec/files/hex-text";
+import { assertAddresses } from "@/builders/codec/files/intel-hex-write";
 import { listSegments, listWrittenPieces, type MemoryPiece } from "@/builders/codec/segments";
 import type { ByteRange } from "@/schemas/documents/layout";
 

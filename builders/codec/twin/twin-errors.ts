@@ -1,4 +1,4 @@
-import { type Twin, twinOutput } from "@/builders/codec/twin";
+import { type Twin, twinOutput } from "@/builders/codec/twin/twin";
 import { spanRatio, zeroShiftRatio } from "@/lib/domain/compensation/envelope";
 import { groupByTemperature } from "@/lib/domain/compensation/points";
 import type { DevicePoint, FamilyRules, Purpose } from "@/lib/domain/compensation/types";

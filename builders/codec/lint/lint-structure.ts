@@ -1,7 +1,7 @@
-import { lintChecksums } from "@/builders/codec/lint-checksums";
-import { lintField } from "@/builders/codec/lint-field";
-import { lintSegments } from "@/builders/codec/lint-segments";
-import { type ReadableLayout, readLayout } from "@/builders/codec/lint-shape";
+import { lintChecksums } from "@/builders/codec/lint/lint-checksums";
+import { lintField } from "@/builders/codec/lint/lint-field";
+import { lintSegments } from "@/builders/codec/lint/lint-segments";
+import { type ReadableLayout, readLayout } from "@/builders/codec/lint/lint-shape";
 import { type Extent, listExtents } from "@/builders/codec/memory-map";
 import type { Problem } from "@/lib/errors";
 

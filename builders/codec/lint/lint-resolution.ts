@@ -1,5 +1,5 @@
 import { findFieldNumber, scaleOf } from "@/builders/codec/field-types";
-import type { FamilyRulesLike } from "@/builders/codec/lint";
+import type { FamilyRulesLike } from "@/builders/codec/lint/lint";
 import type { Problem } from "@/lib/errors";
 import type { LayoutDocument, LayoutField, SourceName } from "@/schemas/documents/layout";
 

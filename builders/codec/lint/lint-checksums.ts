@@ -1,5 +1,5 @@
 import { findAlgorithmBits, rangesOf } from "@/builders/codec/checksum-algorithm";
-import type { ReadableLayout } from "@/builders/codec/lint-shape";
+import type { ReadableLayout } from "@/builders/codec/lint/lint-shape";
 import { type Extent, listExtents } from "@/builders/codec/memory-map";
 import type { Problem } from "@/lib/errors";
 import type { ByteRange, LayoutChecksum } from "@/schemas/documents/layout";

@@ -1,7 +1,7 @@
 import { isFieldType } from "@/builders/codec/field-types";
 import { isByteOrder, isCount, isObject, isRange, type Loose } from "@/builders/codec/json-shape";
-import { wrongInAlgorithm, wrongInCovered, wrongInForbidden } from "@/builders/codec/lint-shape-checksum";
-import { wrongInNumbers, wrongInValue } from "@/builders/codec/lint-shape-value";
+import { wrongInAlgorithm, wrongInCovered, wrongInForbidden } from "@/builders/codec/lint/lint-shape-checksum";
+import { wrongInNumbers, wrongInValue } from "@/builders/codec/lint/lint-shape-value";
 import type { LayoutPaths } from "@/builders/codec/memory-map";
 import type { Problem } from "@/lib/errors";
 import type { ByteRange, LayoutChecksum, LayoutDocument, LayoutField } from "@/schemas/documents/layout";

@@ -1,11 +1,11 @@
 import semver from "semver";
 import { findFieldWidth } from "@/builders/codec/field-types";
 import { type LayoutCell, listCells } from "@/builders/codec/layout-cells";
-import { lintPlacement } from "@/builders/codec/lint-placement";
-import { lintResolution, listResolutions } from "@/builders/codec/lint-resolution";
-import { fits } from "@/builders/codec/lint-scaled";
-import { readLayout } from "@/builders/codec/lint-shape";
-import { listStructureProblems } from "@/builders/codec/lint-structure";
+import { lintPlacement } from "@/builders/codec/lint/lint-placement";
+import { lintResolution, listResolutions } from "@/builders/codec/lint/lint-resolution";
+import { fits } from "@/builders/codec/lint/lint-scaled";
+import { readLayout } from "@/builders/codec/lint/lint-shape";
+import { listStructureProblems } from "@/builders/codec/lint/lint-structure";
 import { coefficientsOfOrder } from "@/builders/codec/sources";
 import { isFirmwareRange, isRangeText, mayShareFirmware } from "@/lib/domain/firmware-range";
 import { assertStepCovers, layoutStep, newestLower, type Step } from "@/lib/domain/semver-step";

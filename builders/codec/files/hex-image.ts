@@ -1,8 +1,8 @@
 import type { CompiledLayout } from "@/builders/codec/compile-layout";
-import type { HexSegment } from "@/builders/codec/file-segments";
-import { writeHexPieces } from "@/builders/codec/intel-hex-write";
+import type { HexSegment } from "@/builders/codec/files/file-segments";
+import { writeHexPieces } from "@/builders/codec/files/intel-hex-write";
+import { writeSRecordPieces } from "@/builders/codec/files/s-record-write";
 import { rangesBetween } from "@/builders/codec/memory-map";
-import { writeSRecordPieces } from "@/builders/codec/s-record-write";
 import type { MemoryPiece } from "@/builders/codec/segments";
 import type { ByteRange } from "@/schemas/documents/layout";
 

@@ -1,5 +1,5 @@
 import { findFieldNumber } from "@/builders/codec/field-types";
-import type { Add } from "@/builders/codec/lint-field";
+import type { Add } from "@/builders/codec/lint/lint-field";
 import type { FieldType, LayoutField } from "@/schemas/documents/layout";
 
 /** Members that go with some types only. */

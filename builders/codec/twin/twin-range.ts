@@ -1,4 +1,4 @@
-import { type Twin, twinTemperature } from "@/builders/codec/twin";
+import { type Twin, twinTemperature } from "@/builders/codec/twin/twin";
 import type { FamilyRules } from "@/lib/domain/compensation/types";
 
 /** Largest finite binary32, which firmware commonly computes with (common practice, no source). */

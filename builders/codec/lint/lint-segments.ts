@@ -1,4 +1,4 @@
-import type { ReadableLayout } from "@/builders/codec/lint-shape";
+import type { ReadableLayout } from "@/builders/codec/lint/lint-shape";
 import { listExtents } from "@/builders/codec/memory-map";
 import { listSegments, type MemoryPiece } from "@/builders/codec/segments";
 import type { Problem } from "@/lib/errors";

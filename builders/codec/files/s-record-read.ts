@@ -6,7 +6,7 @@ import {
   linesOf,
   numberOf,
   lineRefusal as refusal,
-} from "@/builders/codec/file-segments";
+} from "@/builders/codec/files/file-segments";
 
 /** Bytes of the address in each type of record; S4 is reserved. */
 const ADDRESS_BYTES: Readonly<Record<number, number>> = { 0: 2, 1: 2, 2: 3, 3: 4, 5: 2, 6: 3, 7: 4, 8: 3, 9: 2 };

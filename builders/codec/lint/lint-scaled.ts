@@ -1,5 +1,5 @@
 import type { NumberType } from "@/builders/codec/field-types";
-import type { Add } from "@/builders/codec/lint-field";
+import type { Add } from "@/builders/codec/lint/lint-field";
 import { roundHalfEven } from "@/builders/codec/round-half-even";
 import { wideEnds } from "@/builders/codec/wide-integer";
 import type { Enumeration } from "@/schemas/documents/layout";

@@ -1,13 +1,13 @@
 import { findFieldNumber, isNumeric, type NumberType, scaleOf } from "@/builders/codec/field-types";
-import { lintBits } from "@/builders/codec/lint-bits";
-import { lintConstant } from "@/builders/codec/lint-constant";
-import { lintMembers } from "@/builders/codec/lint-members";
-import { lintScaled } from "@/builders/codec/lint-scaled";
+import { lintBits } from "@/builders/codec/lint/lint-bits";
+import { lintConstant } from "@/builders/codec/lint/lint-constant";
+import { lintMembers } from "@/builders/codec/lint/lint-members";
+import { lintScaled } from "@/builders/codec/lint/lint-scaled";
 import { isTextSource, SOURCE_NAMES } from "@/builders/codec/sources";
 import type { Problem } from "@/lib/errors";
 import type { LayoutField, SourceName } from "@/schemas/documents/layout";
 
-export { fits } from "@/builders/codec/lint-scaled";
+export { fits } from "@/builders/codec/lint/lint-scaled";
 
 /** Notes one finding: where behind the part's own pointer, the code's reason, and what the part does or has. */
 export type Add = (tail: string, reason: string, message: string) => void;

@@ -1,7 +1,7 @@
 import { findNumberType, integerOf } from "@/builders/codec/field-types";
-import { lintConstant } from "@/builders/codec/lint-constant";
-import type { Add } from "@/builders/codec/lint-field";
-import { lintScaled } from "@/builders/codec/lint-scaled";
+import { lintConstant } from "@/builders/codec/lint/lint-constant";
+import type { Add } from "@/builders/codec/lint/lint-field";
+import { lintScaled } from "@/builders/codec/lint/lint-scaled";
 import { isTextSource, SOURCE_NAMES } from "@/builders/codec/sources";
 import type { BitField, LayoutField } from "@/schemas/documents/layout";
 

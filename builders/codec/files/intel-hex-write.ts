@@ -1,4 +1,4 @@
-import { UPPER_HEX } from "@/builders/codec/hex-text";
+import { UPPER_HEX } from "@/builders/codec/files/hex-text";
 import { listSegments, listWrittenPieces, type MemoryPiece } from "@/builders/codec/segments";
 import { AppError } from "@/lib/errors";
 import type { ByteRange } from "@/schemas/documents/layout";
