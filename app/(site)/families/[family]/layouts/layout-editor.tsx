@@ -1,8 +1,6 @@
 "use client";
 
-import { useRouter } from "next/navigation";
 import { type ReactNode, useCallback, useDeferredValue, useEffect, useMemo, useRef, useState } from "react";
-import { callApi, type ProblemDetails, problemOf } from "@/app/_components/api-client";
 import { Button } from "@/app/_components/button";
 import { Card } from "@/app/_components/card";
 import type { EditorHandle } from "@/app/_components/editor/editor-handle";
@@ -16,14 +14,13 @@ import type { LintBasis } from "@/lib/services/layouts/lint-document";
 import layoutSchema from "@/schemas/documents/layout.schema.json";
 import { DifferenceCard, type OtherVersion } from "./difference-card";
 import { ConflictDialog } from "./draft/conflict-dialog";
-import { dropCopy } from "./draft/local-copy";
 import { LocalCopyNotice } from "./draft/local-copy-notice";
 import { useDraft } from "./draft/use-draft";
+import { useLayoutMoves } from "./draft/use-layout-moves";
 import { EditorTitle } from "./editor-title";
 import { EditorTools } from "./editor-tools";
 import { judgeText, partAt } from "./judge-text";
 import { LintList, MemoryCard } from "./judged-cards";
-import { moveLayoutAction } from "./layout-actions";
 import { LayoutEnd } from "./layout-end";
 import { encodeSample } from "./sample/encode-sample";
 import { SampleCard } from "./sample/sample-card";
@@ -56,7 +53,6 @@ export interface LayoutEditorProps {
 /** A layout's text beside what it means: memory map, findings, a sample device, and its fields as a table. */
 export function LayoutEditor(props: LayoutEditorProps) {
   const { family, layout, source, others, lots, uses = [], mayWrite, asked, above } = props;
-  const router = useRouter();
   const tell = useToast();
   const handle = useRef<EditorHandle>(null);
   const state = layout?.state ?? "draft";
@@ -70,8 +66,7 @@ export function LayoutEditor(props: LayoutEditorProps) {
     writable,
   });
   const [text, setText] = useState(source);
-  const [pending, setPending] = useState<"add" | "submit" | "take-back">();
-  const [problem, setProblem] = useState<ProblemDetails | null>(null);
+  const { pending, problem, add, move } = useLayoutMoves(family, layout, draft.save);
   const [later, setLater] = useState(false);
   const [copy, setCopy] = useState<string>();
 
@@ -115,31 +110,6 @@ export function LayoutEditor(props: LayoutEditorProps) {
     tell({ tone: "info", title: words, text: "One undo brings the text before it back." });
   };
 
-  const add = async () => {
-    setPending("add");
-    try {
-      const call = { method: "POST", body: text, contentType: "application/json" } as const;
-      const stored = await callApi<LayoutView>(`/api/v1/families/${family}/layouts`, call);
-      dropCopy(family, undefined);
-      tell({ tone: "good", title: `Layout ${stored.version} is a draft now; it is saved as you type` });
-      router.replace(`/families/${family}/layouts/${stored.version}`);
-    } catch (error) {
-      setProblem(problemOf(error));
-      setPending(undefined);
-    }
-  };
-  const move = async (name: "submit" | "take-back") => {
-    if (!layout) return;
-    setPending(name);
-    if (name === "submit" && !(await draft.save())) return setPending(undefined);
-    const result = await moveLayoutAction({ code: family, version: layout.version }, name);
-    setPending(undefined);
-    setProblem(result.ok ? null : result.problem);
-    if (!result.ok) return;
-    const words = name === "submit" ? "It waits for a second person now" : "It is a draft again";
-    tell({ tone: "good", title: `Layout ${layout.version}`, text: words });
-    router.refresh();
-  };
   useSaveKey(draft.save);
   useLeaveWarning(writable && ["typing", "saving", "offline", "refused"].includes(draft.state.status));
 
@@ -158,7 +128,7 @@ export function LayoutEditor(props: LayoutEditorProps) {
         mayWrite={mayWrite}
         asked={asked}
         pending={pending}
-        onAdd={add}
+        onAdd={() => void add(text)}
         onMove={move}
       />
       <div className="flex flex-col gap-[18px]">
