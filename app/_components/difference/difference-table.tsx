@@ -56,7 +56,11 @@ export function DifferenceTable({ from, to, layout, opened, onOpen }: Difference
   const known = selection === "" ? totalOf(overview?.counts) : null;
   const query = `from=${from}&to=${to}${selection}`;
   const loaded = useWindows(serialsOf(from, to) + selection, known, toRow);
-  const shown = columns.filter((column, i) => i === 0 || (state.columns?.includes(column.key) ?? !column.hidden));
+  // The field that is asked for is seen, whatever is shown beside it.
+  const asked = (key: string) => ["shown", "step", "steps"].some((part) => key === `values.${filter.field}.${part}`);
+  const shown = columns.filter(
+    ({ key, hidden }, i) => i === 0 || asked(key) || (state.columns?.includes(key) ?? !hidden),
+  );
   const save = (format: "csv" | "json") => window.location.assign(`/api/v1/compare/export?${query}&format=${format}`);
   if (loaded.total === 0 && selection === "") {
     return <EmptyState title="No serial differs">Both hold the same bytes for the same serials.</EmptyState>;
