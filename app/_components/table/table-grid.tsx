@@ -136,12 +136,17 @@ function Widths({
   return (
     <colgroup>
       {selectable ? <col style={{ width: 36 }} /> : null}
-      {columns.map((column) => {
+      {columns.map((column, at) => {
         const extra = column.format?.as === "state" ? 3 : 0;
         // What a link leads to is a serial or a code more often than not.
         const px = isMono(column) || column.format?.as === "link" ? MONO_PX : 8;
         const longest = Math.max(column.header.length + 2, ...sample.map((row) => textOf(column, row).length + extra));
-        return <col key={column.key} style={{ width: `calc(${Math.min(longest, 48) * px}px + 18px)` }} />;
+        return (
+          <col
+            key={column.key}
+            style={{ width: `calc(${Math.min(longest, 48) * px}px + ${roomBefore(columns, at) ? 34 : 18}px)` }}
+          />
+        );
       })}
     </colgroup>
   );

@@ -76,7 +76,7 @@ export function FieldSheet({ document }: { document: LayoutDocument }) {
     <section className="break-inside-auto">
       <h2 className="mb-2 text-md">Fields</h2>
       <div className="overflow-x-auto">
-        <table className="w-full text-sm">
+        <table className="w-full min-w-[840px] text-sm print:min-w-0">
           <Heads names={["Address", "Field", "Type", "Order", "Scale", "Bias", "Unit", "Limits", "Value"]} />
           <tbody>
             {fields.map((field) => (
@@ -156,7 +156,7 @@ export function ChecksumSheet({ document: { checksums, memory } }: { document: L
     <section className="break-inside-auto">
       <h2 className="mb-2 text-md">Checksums, in the order in which they are computed</h2>
       <div className="overflow-x-auto">
-        <table className="w-full text-sm">
+        <table className="w-full min-w-[840px] text-sm print:min-w-0">
           <Heads names={["Address", "Checksum", "Covers", "Order", "Algorithm", "Parameters"]} />
           <tbody>
             {checksums.map((checksum) => (
