@@ -58,60 +58,81 @@ export function getCrc(name: string): Crc {
   return crc;
 }
 
-/** Builds the table-driven check for any parameters of 8, 16, 24 or 32 bits. */
+/**
+ * Builds the table-driven check for any parameters of 8, 16, 24 or 32 bits. Four bytes are taken at a time, each by a table of its own:
+ * the register's state after a byte is what that byte and the three behind it make of it.
+ */
 export function makeCrc(p: CrcParameters): Crc {
-  const table = p.refin ? reflectedTable(p) : forwardTable(p);
-  const mask = maskOf(p.width);
-  const start = p.refin ? reflectBits(p.init, p.width) : p.init >>> 0;
   const turn = p.refin !== p.refout;
-  const finish = (register: number) => ((turn ? reflectBits(register, p.width) : register) ^ p.xorout) >>> 0;
-  if (p.refin) {
-    return (bytes, from, end) => {
-      let register = start;
-      for (let i = from; i < end; i++) {
-        register = (register >>> 8) ^ (table[(register ^ (bytes[i] as number)) & 0xff] as number);
-      }
-      return finish(register >>> 0);
-    };
-  }
-  const top = p.width - 8;
+  const run = p.refin ? reflectedRun(p) : forwardRun(p);
   return (bytes, from, end) => {
-    let register = start;
-    for (let i = from; i < end; i++) {
-      register = ((register << 8) ^ (table[((register >>> top) ^ (bytes[i] as number)) & 0xff] as number)) & mask;
-    }
-    return finish(register >>> 0);
+    const register = run(bytes, from, end);
+    return ((turn ? reflectBits(register, p.width) : register) ^ p.xorout) >>> 0;
   };
 }
 
-function forwardTable(p: CrcParameters): Uint32Array {
-  const topBit = 2 ** (p.width - 1);
-  const mask = maskOf(p.width);
-  return Uint32Array.from({ length: 256 }, (_, byte) => {
-    let register = (byte << (p.width - 8)) >>> 0;
-    for (let bit = 0; bit < 8; bit++) {
-      const carry = register >= topBit;
-      register = (((register << 1) & mask) ^ (carry ? p.poly : 0)) >>> 0;
-    }
-    return register;
-  });
-}
-
-function reflectedTable(p: CrcParameters): Uint32Array {
+/** The register stands at the lower end of 32 bits, its first bit lowest. */
+function reflectedRun(p: CrcParameters): Crc {
   const poly = reflectBits(p.poly, p.width);
-  return Uint32Array.from({ length: 256 }, (_, byte) => {
-    let register = byte;
-    for (let bit = 0; bit < 8; bit++) register = ((register >>> 1) ^ (register & 1 ? poly : 0)) >>> 0;
+  const start = reflectBits(p.init, p.width);
+  const step = (register: number) => (register >>> 1) ^ (register & 1 ? poly : 0);
+  const first = byteTable((byte) => byte, step);
+  const [a, b, c, d] = tablesBehind(first, (register) => (register >>> 8) ^ at(first, register & 0xff));
+  return (bytes, from, end) => {
+    let register = start;
+    let i = from;
+    for (; i + 3 < end; i += 4) {
+      const x =
+        register ^ (at(bytes, i) | (at(bytes, i + 1) << 8) | (at(bytes, i + 2) << 16) | (at(bytes, i + 3) << 24));
+      register = at(d, x & 0xff) ^ at(c, (x >>> 8) & 0xff) ^ at(b, (x >>> 16) & 0xff) ^ at(a, x >>> 24);
+    }
+    for (; i < end; i++) register = (register >>> 8) ^ at(a, (register ^ at(bytes, i)) & 0xff);
+    return register >>> 0;
+  };
+}
+
+/** The register stands at the upper end of 32 bits, its first bit highest, and so needs no mask. */
+function forwardRun(p: CrcParameters): Crc {
+  const below = 32 - p.width;
+  const poly = p.poly << below;
+  const start = p.init << below;
+  const step = (register: number) => (register << 1) ^ (register < 0 ? poly : 0);
+  const first = byteTable((byte) => byte << 24, step);
+  const [a, b, c, d] = tablesBehind(first, (register) => (register << 8) ^ at(first, register >>> 24));
+  return (bytes, from, end) => {
+    let register = start;
+    let i = from;
+    for (; i + 3 < end; i += 4) {
+      const x =
+        register ^ ((at(bytes, i) << 24) | (at(bytes, i + 1) << 16) | (at(bytes, i + 2) << 8) | at(bytes, i + 3));
+      register = at(d, x >>> 24) ^ at(c, (x >>> 16) & 0xff) ^ at(b, (x >>> 8) & 0xff) ^ at(a, x & 0xff);
+    }
+    for (; i < end; i++) register = (register << 8) ^ at(a, (register >>> 24) ^ at(bytes, i));
+    return register >>> below;
+  };
+}
+
+/** What each byte makes of an empty register, bit by bit. */
+function byteTable(place: (byte: number) => number, step: (register: number) => number): Int32Array {
+  return Int32Array.from({ length: 256 }, (_, byte) => {
+    let register = place(byte);
+    for (let bit = 0; bit < 8; bit++) register = step(register);
     return register;
   });
 }
 
-/** All ones in `width` bits, as a 32-bit operand. */
-function maskOf(width: number): number {
-  return width === 32 ? -1 : 2 ** width - 1;
+/** The table of a byte, and those of one with one, two and three zero bytes behind it. */
+function tablesBehind(first: Int32Array, next: (register: number) => number) {
+  const second = first.map(next);
+  const third = second.map(next);
+  return [first, second, third, third.map(next)] as const;
 }
 
-function reflectBits(value: number, width: number): number {
+/** An element that is known to be there. */
+const at = (list: Int32Array | Uint8Array, index: number) => list[index] as number;
+
+/** The lowest `width` bits in reverse order. */
+export function reflectBits(value: number, width: number): number {
   let rest = value >>> 0;
   let turned = 0;
   for (let bit = 0; bit < width; bit++) {

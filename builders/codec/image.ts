@@ -32,13 +32,24 @@ export interface ChecksumResult {
  * @throws AppError as {@link encodeField} and `image.checksum_forbidden`, with {serial, field, value, limit}.
  */
 export function encodeImage(layout: CompiledLayout, sources: ImageSources): Uint8Array<ArrayBuffer> {
-  const bytes = new Uint8Array(layout.bytes).fill(layout.fill);
-  const target = { bytes, view: new DataView(bytes.buffer), serial: sources.device.serial };
+  const bytes = new Uint8Array(layout.bytes);
+  encodeImageInto(bytes, layout, sources);
+  return bytes;
+}
+
+/**
+ * As {@link encodeImage}, into memory of the layout's length: many images share one piece, which costs less than one each.
+ * What is in it after an error is no image.
+ */
+export function encodeImageInto(bytes: Uint8Array, layout: CompiledLayout, sources: ImageSources): void {
+  assertLength(layout, bytes);
+  bytes.fill(layout.fill);
+  const view = new DataView(bytes.buffer, bytes.byteOffset, bytes.byteLength);
+  const target = { bytes, view, serial: sources.device.serial };
   for (const field of layout.fields) encodeField(field, field.read(sources), target);
   for (const sum of layout.checksums) {
     writeInteger(bytes, sum.at, sum.width, sum.littleEndian, storedSum(sum, bytes, target.serial));
   }
-  return bytes;
 }
 
 function storedSum(sum: CompiledChecksum, bytes: Uint8Array, serial: string): number {
@@ -104,7 +115,8 @@ export function checkChecksums(layout: CompiledLayout, bytes: Uint8Array): Check
 export function imageDigestBytes(layout: CompiledLayout, bytes: Uint8Array): Uint8Array {
   assertLength(layout, bytes);
   if (layout.kept.length === 0) return bytes;
-  const copy = bytes.slice();
+  // Not slice(), which of a Buffer is no copy.
+  const copy = new Uint8Array(bytes);
   for (const [from, to] of layout.kept) copy.fill(layout.fill, from, to + 1);
   return copy;
 }

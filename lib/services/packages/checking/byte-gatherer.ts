@@ -55,7 +55,7 @@ export class ByteGatherer {
   }
 
   #addContent(serial: string, bytes: Uint8Array): void {
-    const content = bytes.slice();
+    const content = new Uint8Array(bytes);
     for (const [from, to] of this.#names) content.fill(0, from, to + 1);
     const key = sha256Hex(content);
     const first = this.#firstOf.get(key);

@@ -2,7 +2,7 @@ import { describe, expect, it } from "vitest";
 import { compileLayout } from "@/builders/codec/compile-layout";
 import { compareImages } from "@/builders/codec/difference";
 import { toHex } from "@/builders/codec/files/hex-text";
-import { checkChecksums, decodeImage, encodeImage } from "@/builders/codec/image";
+import { checkChecksums, decodeImage, encodeImage, encodeImageInto, imageDigestBytes } from "@/builders/codec/image";
 import { listRoundTripFaults } from "@/builders/codec/round-trip";
 import type { ImageSources } from "@/builders/codec/sources";
 import type { BitField, LayoutChecksum, LayoutField } from "@/schemas/documents/layout";
@@ -297,5 +297,28 @@ describe("reserved ranges and segments", () => {
     };
     expect(compareImages(at(0x1000), at(0x1000)).change).toBe("same");
     expect(compareImages(at(0x1000), at(0x2000))).toMatchObject({ change: "values", fields: [], bytes: [] });
+  });
+});
+
+describe("an image in a piece of memory that others share", () => {
+  const sum = { name: "sum", at: 62, algorithm: "CRC-16/MODBUS", over: [0, 43] as [number, number] };
+  const layout = compileLayout(smallLayout({ kept: [[44, 45]], checksums: [sum] }));
+
+  it("is the same there, and leaves the others alone", () => {
+    const memory = Buffer.alloc(3 * layout.bytes, 0x55);
+    encodeImageInto(memory.subarray(layout.bytes, 2 * layout.bytes), layout, plainSources());
+    const alone = encodeImage(layout, plainSources());
+    expect(memory.subarray(layout.bytes, 2 * layout.bytes).equals(alone)).toBe(true);
+    expect(memory.fill(0x55, layout.bytes, 2 * layout.bytes)).toEqual(Buffer.alloc(3 * layout.bytes, 0x55));
+    expect(() => encodeImageInto(memory, layout, plainSources())).toThrow(`the layout ${layout.bytes}`);
+  });
+
+  it.each([
+    ["typed array", (bytes: Uint8Array) => bytes],
+    ["Buffer", (bytes: Uint8Array) => Buffer.from(bytes)],
+  ])("keeps what a digest does not count, in a %s", (_, held) => {
+    const bytes = held(new Uint8Array(layout.bytes).fill(7));
+    expect([...imageDigestBytes(layout, bytes).subarray(43, 47)]).toEqual([7, layout.fill, layout.fill, 7]);
+    expect([...bytes]).toEqual([...new Uint8Array(layout.bytes).fill(7)]);
   });
 });
