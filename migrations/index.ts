@@ -13,6 +13,7 @@ import * as readingsByStatement from "./20261201141001_readings_by_statement";
 import * as derivationStatements from "./20261201142000_derivation_statements";
 import * as unfinishedLayouts from "./20261201150000_unfinished_layouts";
 import * as readingGuardPlan from "./20261201155900_reading_guard_plan";
+import * as valuesMadeAgain from "./20261201180000_values_made_again";
 
 /** Every migration by name, in order. A static list, so that it works the same under tsx, vitest and the built app. */
 export const migrations: Record<string, Migration> = {
@@ -30,4 +31,5 @@ export const migrations: Record<string, Migration> = {
   "20261201142000_derivation_statements": derivationStatements,
   "20261201150000_unfinished_layouts": unfinishedLayouts,
   "20261201155900_reading_guard_plan": readingGuardPlan,
+  "20261201180000_values_made_again": valuesMadeAgain,
 };

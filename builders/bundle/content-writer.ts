@@ -1,5 +1,5 @@
 import { hexPath } from "@/builders/bundle/bundle";
-import { ByteSink } from "@/builders/bundle/byte-sink";
+import { ByteSink, type SunkBytes } from "@/builders/bundle/byte-sink";
 import { HexTemplate } from "@/builders/bundle/hex-template";
 import { byCodeUnits, type Manifest, manifestBytesAround } from "@/builders/bundle/manifest";
 import { sha256Hex, sha256OfPieces } from "@/builders/bundle/sha256";
@@ -27,8 +27,8 @@ export interface ImageDigests {
 
 /** The files of a package beside its HEX files. */
 export interface WrittenContent {
-  /** `images.jsonl`, in pieces. */
-  values: { pieces: Buffer[]; length: number; sha256: string };
+  /** `images.jsonl`. */
+  values: SunkBytes;
   /** `manifest.json`. */
   manifest: Buffer;
   /** Package digest: SHA-256 of the manifest, lower-case hex. */
@@ -38,20 +38,22 @@ export interface WrittenContent {
 }
 
 /**
- * Writes the files of a package from one device after the other, the same bytes at every call. Keeps the text of manifest and
- * values in pieces, a line of sums a device, and no image.
+ * Writes the files of a package from one device after the other, the same bytes at every call. Keeps the text of the manifest in
+ * pieces, that of the values if asked to, a line of sums a device, and no image.
  */
 export class ContentWriter {
   readonly #layout: CompiledLayout;
   readonly #hex: HexTemplate;
   readonly #template: ValuesTemplate;
-  readonly #values = new ByteSink();
-  readonly #images = new ByteSink();
-  readonly #sums = new Map<string, string>();
+  readonly #values: ByteSink;
+  readonly #images = new ByteSink({ keep: true });
+  readonly #sums: { path: string; digest: string }[] = [];
   readonly #text: Buffer;
   #last = "";
 
-  constructor(layout: CompiledLayout) {
+  /** @param keepValues whether the bytes of `images.jsonl` are wanted, and not only what is told of them. */
+  constructor(layout: CompiledLayout, { keepValues }: { keepValues: boolean }) {
+    this.#values = new ByteSink({ keep: keepValues });
     this.#layout = layout;
     this.#hex = new HexTemplate(layout);
     this.#template = new ValuesTemplate(layout);
@@ -65,14 +67,13 @@ export class ContentWriter {
     const sha256 = sha256Hex(imageDigestBytes(this.#layout, image));
     this.#hex.write(image, this.#text, 0);
     const hexSha256 = sha256Hex(this.#text);
-    const line = this.#template.line({ serial, derivation, sha256 }, image);
-    this.#values.add(line.room, line.write);
+    this.#template.add(this.#values, { serial, derivation, sha256 }, image);
     const path = hexPath(serial);
-    this.#sums.set(path, hexSha256);
+    this.#sums.push({ path, digest: hexSha256 });
     // Members in the order of RFC 8785; serials and paths are plain ASCII.
     const board = hardwareId === null ? "null" : JSON.stringify(hardwareId);
     this.#images.addText(
-      `${this.#sums.size > 1 ? "," : ""}{"bytes":${this.#layout.bytes},"hardwareId":${board},"hex":{"path":"${path}","sha256":"${hexSha256}"},"serial":"${serial}","sha256":"${sha256}"}`,
+      `${this.#sums.length > 1 ? "," : ""}{"bytes":${this.#layout.bytes},"hardwareId":${board},"hex":{"path":"${path}","sha256":"${hexSha256}"},"serial":"${serial}","sha256":"${sha256}"}`,
     );
     return { sha256, hexSha256 };
   }
@@ -88,8 +89,7 @@ export class ContentWriter {
     const whole = { ...head, values: { path: "images.jsonl", sha256: values.sha256 } };
     const manifest = manifestBytesAround(whole, this.#images.finish().pieces);
     const digest = sha256OfPieces([manifest]);
-    this.#sums.set("images.jsonl", values.sha256);
-    this.#sums.set("manifest.json", digest);
+    this.#sums.push({ path: "images.jsonl", digest: values.sha256 }, { path: "manifest.json", digest });
     return { values, manifest, digest, sums: Buffer.from(sumsTextOf(this.#sums)) };
   }
 }

@@ -4,13 +4,13 @@ import { AppError } from "@/lib/errors";
 
 /** `SHA256SUMS` in the form that `sha256sum -c` reads: digest, two spaces, path, LF; by path. */
 export function sumsText(files: ReadonlyMap<string, Uint8Array | string>): string {
-  return sumsTextOf(new Map([...files].map(([path, content]) => [path, sha256Hex(content)])));
+  return sumsTextOf([...files].map(([path, content]) => ({ path, digest: sha256Hex(content) })));
 }
 
 /** As {@link sumsText}, from digests that are known already. */
-export function sumsTextOf(digests: ReadonlyMap<string, string>): string {
-  const rising = [...digests].sort(([a], [b]) => byCodeUnits(a, b));
-  return rising.map(([path, digest]) => `${digest}  ${path}\n`).join("");
+export function sumsTextOf(files: readonly { path: string; digest: string }[]): string {
+  const rising = [...files].sort((a, b) => byCodeUnits(a.path, b.path));
+  return rising.map(({ path, digest }) => `${digest}  ${path}\n`).join("");
 }
 
 /** Digests by path. @throws AppError `bundle.sums_malformed` {line} for any other form, a path twice among them. */

@@ -1,3 +1,4 @@
+import type { ByteSink } from "@/builders/bundle/byte-sink";
 import type { CompiledLayout } from "@/builders/codec/compile-layout";
 import { decodeField } from "@/builders/codec/decode-field";
 import { type DecodedField, decodeImage } from "@/builders/codec/image";
@@ -8,11 +9,26 @@ const hexDigits = (place: 0 | 1) =>
 const HIGH = hexDigits(0);
 const LOW = hexDigits(1);
 
+const QUOTE = 0x22;
+const COMMA = 0x2c;
+const BACKSLASH = 0x5c;
+
+const NULL = Buffer.from("null");
+
+/** What stands around the fields of a line and the texts that are told there. */
+const DERIVATION = Buffer.from('{"derivation":"');
+const FIELDS = Buffer.from('","fields":[');
+const SERIAL = Buffer.from('],"serial":"');
+const SHA256 = Buffer.from('","sha256":"');
+const END = Buffer.from('"}\n');
+const AROUND_BYTES = [DERIVATION, FIELDS, SERIAL, SHA256, END].reduce((sum, { length }) => sum + length, 0);
+
 /** A field or a checksum, with the canonical text in front of its raw bytes and between these and its value. */
 interface Part {
   index: number;
   at: number;
   end: number;
+  isText: boolean;
   head: string;
   middle: string;
 }
@@ -36,8 +52,10 @@ export class ValuesTemplate {
   #first: Uint8Array | undefined;
   #steps: Step[] = [];
   #after = Buffer.alloc(0);
-  /** Bytes of a line's fields without their values. */
+  /** Bytes of a line's fields at most, without the values that are listed. */
   #room = 0;
+  /** Where values are written before they are put in their places. */
+  #list = Buffer.alloc(0);
   /** The layout with its changing fields alone. */
   #changing: CompiledLayout;
 
@@ -50,42 +68,26 @@ export class ValuesTemplate {
       index,
       at,
       end: at + (placed[index]?.width ?? 0),
+      isText: layout.fields[index]?.type === "ascii",
       head: `${index > 0 ? "," : ""}{"at":${at},"name":${JSON.stringify(name)},"raw":"`,
       middle: `","unit":${JSON.stringify(unit)},"value":`,
     }));
     this.#changes = this.#parts.map(() => false);
   }
 
-  /** The line of a device. @param image of the layout's length. @throws AppError `image.wrong_length` */
-  line(device: { serial: string; derivation: string; sha256: string }, image: Uint8Array): ValuesLine {
+  /** Adds the line of a device to `sink`. @param image of the layout's length. @throws AppError `image.wrong_length` */
+  add(sink: ByteSink, device: { serial: string; derivation: string; sha256: string }, image: Uint8Array): void {
     this.#learn(image);
     const values = this.#valuesOf(image);
-    const head = `{"derivation":"${device.derivation}","fields":[`;
-    const tail = `],"serial":"${device.serial}","sha256":"${device.sha256}"}\n`;
-    let room = this.#room + head.length + tail.length;
-    for (const value of values) room += 3 * value.length;
-    return { room, write: (target, at) => this.#write(target, at, image, { head, values, tail }) };
-  }
-
-  /** The values of the changing fields, canonical. */
-  #valuesOf(image: Uint8Array): string[] {
-    const view = new DataView(image.buffer, image.byteOffset, image.byteLength);
-    const { fields, checksums } = this.#changing;
-    const values: string[] = [];
-    for (const field of fields) values.push(valueText(decodeField(field, image, view)));
-    for (const { at, width, littleEndian } of checksums) values.push(`${readUnsigned(image, at, width, littleEndian)}`);
-    return values;
-  }
-
-  #write(
-    target: Buffer,
-    from: number,
-    image: Uint8Array,
-    texts: { head: string; values: string[]; tail: string },
-  ): number {
-    let at = writeText(target, from, texts.head);
-    for (let i = 0; i < this.#steps.length; i++) {
-      const { before, part, middle } = this.#steps[i] as Step;
+    const { serial, derivation, sha256 } = device;
+    const around = AROUND_BYTES + derivation.length + serial.length + sha256.length;
+    const target = sink.reserve(this.#room + around + values.length);
+    const from = sink.place;
+    let at = writeTold(target, from, DERIVATION, derivation);
+    target.set(FIELDS, at);
+    at += FIELDS.length;
+    let listed = 1;
+    for (const { before, part, middle } of this.#steps) {
       target.set(before, at);
       at += before.length;
       for (let byte = part.at; byte < part.end; byte++) {
@@ -94,18 +96,43 @@ export class ValuesTemplate {
       }
       target.set(middle, at);
       at += middle.length;
-      at = writeText(target, at, texts.values[i] as string);
+      if (part.isText) {
+        at = writeText(image, part, target, at);
+        continue;
+      }
+      const end = copyValue(values, listed, target, at);
+      at += end - listed;
+      listed = end + 1;
     }
     target.set(this.#after, at);
     at += this.#after.length;
-    return writeText(target, at, texts.tail) - from;
+    at = writeTold(target, at, SERIAL, serial);
+    at = writeTold(target, at, SHA256, sha256);
+    target.set(END, at);
+    sink.advance(at + END.length - from);
+  }
+
+  /**
+   * The values of the changing fields, but those of text, as a JSON list in UTF-8: one call for all of them takes a third of the
+   * time of one each, and less for numbers alone.
+   */
+  #valuesOf(image: Uint8Array): Buffer {
+    const view = new DataView(image.buffer, image.byteOffset, image.byteLength);
+    const { fields, checksums } = this.#changing;
+    const values: DecodedField["value"][] = [];
+    for (const field of fields) if (field.type !== "ascii") values.push(decodeField(field, image, view));
+    for (const { at, width, littleEndian } of checksums) values.push(readUnsigned(image, at, width, littleEndian));
+    const text = JSON.stringify(values);
+    // A UTF-16 unit takes at most three bytes.
+    if (this.#list.length < 3 * text.length) this.#list = Buffer.allocUnsafe(6 * text.length);
+    return this.#list.subarray(0, this.#list.write(text));
   }
 
   /** Notes which fields this image holds otherwise than the first one. */
   #learn(image: Uint8Array): void {
     const first = this.#first;
     let learnt = !first;
-    if (!first) this.#first = image.slice();
+    if (!first) this.#first = new Uint8Array(image);
     for (const { index, at, end } of this.#parts) {
       if (!first || this.#changes[index]) continue;
       for (let i = at; i < end; i++) if (image[i] !== first[i]) this.#changes[index] = learnt = true;
@@ -122,7 +149,7 @@ export class ValuesTemplate {
     this.#parts.forEach((part, i) => {
       const { raw, value } = told[i] as DecodedField;
       if (!this.#changes[i]) {
-        before += `${part.head}${raw}${part.middle}${valueText(value)}}`;
+        before += `${part.head}${raw}${part.middle}${JSON.stringify(value)}}`;
         return;
       }
       this.#steps.push({ before: Buffer.from(before + part.head), part, middle: Buffer.from(part.middle) });
@@ -131,7 +158,9 @@ export class ValuesTemplate {
     this.#after = Buffer.from(before);
     this.#room = this.#after.length;
     for (const step of this.#steps) {
-      this.#room += step.before.length + 2 * (step.part.end - step.part.at) + step.middle.length;
+      const { at, end, isText } = step.part;
+      this.#room += step.before.length + 2 * (end - at) + step.middle.length;
+      if (isText) this.#room += Math.max(2 + 2 * (end - at), NULL.length);
     }
     this.#changing = {
       ...this.#layout,
@@ -141,24 +170,49 @@ export class ValuesTemplate {
   }
 }
 
-/** A line that waits to be written: at most `room` bytes. */
-export interface ValuesLine {
-  room: number;
-  /** @returns bytes written. */
-  write: (target: Buffer, at: number) => number;
-}
-
-/** Writes a text as UTF-8; short ones of ASCII byte by byte, which takes less time than a call into the runtime. @returns the place after it */
-function writeText(target: Buffer, from: number, text: string): number {
-  for (let i = 0; i < text.length; i++) {
-    const unit = text.charCodeAt(i);
-    if (unit > 0x7f) return from + target.write(text, from);
-    target[from + i] = unit;
+/**
+ * Copies the value that begins at `from` in a JSON list of texts, numbers and nulls.
+ * @returns where it ends in the list.
+ */
+function copyValue(list: Uint8Array, from: number, target: Uint8Array, at: number): number {
+  let i = from;
+  let place = at;
+  if (list[i] === QUOTE) {
+    target[place++] = list[i++] as number;
+    for (; list[i] !== QUOTE; i++) {
+      if (list[i] === BACKSLASH) target[place++] = list[i++] as number;
+      target[place++] = list[i] as number;
+    }
   }
-  return from + text.length;
+  for (; list[i] !== COMMA && i < list.length - 1; i++) target[place++] = list[i] as number;
+  return i;
 }
 
-/** A finite number in a template is its text of RFC 8785, at a fraction of what JSON.stringify takes for one. */
-function valueText(value: DecodedField["value"]): string {
-  return typeof value === "number" ? `${value}` : JSON.stringify(value);
+/**
+ * Writes what {@link decodeField} gives for a field of text, as JSON.
+ * @returns the place after it.
+ */
+function writeText(image: Uint8Array, { at: from, end }: Part, target: Uint8Array, at: number): number {
+  let place = at;
+  target[place++] = QUOTE;
+  let i = from;
+  for (; i < end && image[i] !== 0; i++) {
+    const char = image[i] as number;
+    if (char < 0x20 || char > 0x7e) break;
+    if (char === QUOTE || char === BACKSLASH) target[place++] = BACKSLASH;
+    target[place++] = char;
+  }
+  for (; i < end; i++) {
+    if (image[i] === 0) continue;
+    target.set(NULL, at);
+    return at + NULL.length;
+  }
+  target[place++] = QUOTE;
+  return place;
+}
+
+/** Writes what stands in front of a text of plain ASCII, and the text. @returns the place after it */
+function writeTold(target: Buffer, at: number, before: Buffer, text: string): number {
+  target.set(before, at);
+  return at + before.length + target.write(text, at + before.length, "latin1");
 }

@@ -25,11 +25,17 @@ const MADE_BY = (3 << 8) | 30;
 
 const encoder = new TextEncoder();
 
-interface Entry {
+/** What a zip tells of a content in front of it. */
+export interface ToldContent {
+  /** CRC-32/ISO-HDLC. */
+  crc32: number;
+  /** Bytes. */
+  size: number;
+}
+
+interface Entry extends ToldContent {
   /** Plain, so that its characters are its bytes. */
   path: string;
-  crc: number;
-  size: number;
   /** Of its local head, from the start of the zip. */
   offset: number;
 }
@@ -57,10 +63,20 @@ function* writeEntries(
   for (const path of paths) {
     const given = files.get(path) as Uint8Array | string;
     const content = typeof given === "string" ? encoder.encode(given) : given;
-    yield zip.head(path, [content]);
+    yield zip.head(path, toldOf([content]));
     yield content;
   }
   yield* zip.end();
+}
+
+/** What a head tells of a content that comes in pieces. */
+export function toldOf(pieces: readonly Uint8Array[]): ToldContent {
+  const told = { crc32: 0, size: 0 };
+  for (const piece of pieces) {
+    told.crc32 = crc32(piece, told.crc32);
+    told.size += piece.length;
+  }
+  return told;
 }
 
 /** The records of a plain zip as {@link zipPieces} makes it, for contents that come one after the other. */
@@ -71,24 +87,22 @@ export class PlainZip {
 
   /**
    * What stands in front of an entry's content. Entries are given by path, rising in UTF-16 code units.
-   * @param content the bytes that will follow, in any number of pieces.
+   * @param told of the bytes that will follow.
    * @throws AppError `bundle.bad_path` {path}, `bundle.too_many_files`, `bundle.too_large`; Error for one out of order
    */
-  head(path: string, content: readonly Uint8Array[]): Uint8Array {
+  head(path: string, told: ToldContent): Uint8Array {
     const head = Buffer.alloc(LOCAL_BYTES + path.length);
-    this.#addHead(path, content, head, 0);
+    this.#addHead(path, told, head, 0);
     return head;
   }
 
-  #addHead(path: string, content: readonly Uint8Array[], target: Buffer, at: number): void {
+  #addHead(path: string, { crc32, size }: ToldContent, target: Buffer, at: number): void {
     if (!isPlainPath(path)) throw new AppError("bundle.bad_path", { path });
     if (path <= this.#last) throw new Error(`${path} after ${this.#last}: entries are added by path`);
     if (this.#entries.length === ENTRIES_MAX)
       throw new AppError("bundle.too_many_files", { files: ENTRIES_MAX + 1, limit: ENTRIES_MAX });
     this.#last = path;
-    let size = 0;
-    for (const piece of content) size += piece.length;
-    const entry = { path, crc: crc32(content), size, offset: this.#offset };
+    const entry = { path, crc32, size, offset: this.#offset };
     this.#entries.push(entry);
     this.#offset += LOCAL_BYTES + path.length + size;
     assertFits(this.#offset);
@@ -108,7 +122,7 @@ export class PlainZip {
     const piece = Buffer.allocUnsafe(length);
     let at = 0;
     for (const { path, content } of files) {
-      this.#addHead(path, [content], piece, at);
+      this.#addHead(path, { crc32: crc32(content), size: content.length }, piece, at);
       at += LOCAL_BYTES + path.length;
       piece.set(content, at);
       at += content.length;
@@ -130,12 +144,12 @@ export class PlainZip {
 }
 
 /** What stands in front of an entry's content and, two bytes later, in the directory: from the version needed to the length of the name. */
-function writeHead(target: Buffer, at: number, { path, crc, size }: Entry): void {
+function writeHead(target: Buffer, at: number, { path, crc32, size }: Entry): void {
   target.writeUInt16LE(VERSION_NEEDED, at);
   // No flags, method stored, midnight.
   target.fill(0, at + 2, at + 8);
   target.writeUInt16LE(ZIP_EPOCH_DOS_DATE, at + 8);
-  target.writeUInt32LE(crc, at + 10);
+  target.writeUInt32LE(crc32, at + 10);
   target.writeUInt32LE(size, at + 14);
   target.writeUInt32LE(size, at + 18);
   target.writeUInt16LE(path.length, at + 22);
@@ -173,5 +187,8 @@ function assertFits(bytes: number): void {
 
 /** True for a path of letters, digits and . _ - in steps that stay inside the folder. */
 export function isPlainPath(path: string): boolean {
-  return /^[A-Za-z0-9._-]+(?:\/[A-Za-z0-9._-]+)*$/.test(path) && !path.split("/").some((step) => /^\.\.?$/.test(step));
+  return PLAIN_PATH.test(path);
 }
+
+/** No step is "." or "..". */
+const PLAIN_PATH = /^(?!\.{1,2}(?:\/|$))[\w.-]+(?:\/(?!\.{1,2}(?:\/|$))[\w.-]+)*$/;

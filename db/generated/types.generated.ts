@@ -384,7 +384,9 @@ export interface PackageDerivation {
 }
 
 export interface PackageFile {
-  content: Buffer;
+  byteCount: number | null;
+  content: Buffer | null;
+  crc32: Int8 | null;
   name: string;
   packageId: string;
   sha256: Buffer;

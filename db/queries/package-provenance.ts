@@ -1,14 +1,14 @@
 import { sql } from "kysely";
 import type { Db } from "@/db/executor";
 
-/** Files stored beside the images of a package, by name, without their content. */
+/** Files of a package beside its images, by name, without their content. */
 export function listPackageFiles(
   db: Db,
   packageId: string,
 ): Promise<{ name: string; sha256: Buffer; bytes: number }[]> {
   return db
     .selectFrom("packageFile")
-    .select(["name", "sha256", sql<number>`length(content)`.as("bytes")])
+    .select(["name", "sha256", sql<number>`coalesce(byte_count, length(content))`.as("bytes")])
     .where("packageId", "=", packageId)
     .orderBy("name")
     .execute();

@@ -1,4 +1,4 @@
-import type { Insertable } from "kysely";
+import { type Insertable, sql } from "kysely";
 import type { Db, Trx } from "@/db/executor";
 import type { Json, Package } from "@/db/generated/types.generated";
 import { AppError } from "@/lib/errors";
@@ -203,29 +203,84 @@ export async function insertPackageDerivations(
     .execute();
 }
 
+/** A file of a package beside its images, as it was built. */
 export interface PackageFileRow {
   name: string;
   content: Buffer;
   sha256: Buffer;
 }
 
-/** Stores the files of a package beside its images. */
-export async function insertPackageFile(trx: Trx, packageId: string, file: PackageFileRow): Promise<void> {
+/** A file that is made again from the images: what is known of its bytes. */
+export interface ToldFileRow {
+  name: string;
+  byteCount: number;
+  /** CRC-32/ISO-HDLC. */
+  crc32: number;
+  sha256: Buffer;
+}
+
+export async function insertPackageFile(
+  trx: Trx,
+  packageId: string,
+  file: PackageFileRow | ToldFileRow,
+): Promise<void> {
   await trx
     .insertInto("packageFile")
     .values({ packageId, ...file })
     .execute();
 }
 
-/** A file of a package such as `manifest.json`. @throws AppError `package.not_built` */
+/**
+ * A stored file of a package such as `manifest.json`: of a lot of 50,000 devices it has 13 MB, which read at once would hold the
+ * event loop for a quarter of a second.
+ * @throws AppError `package.not_built`
+ */
 export async function getPackageFile(db: Db, packageId: string, name: string): Promise<PackageFileRow> {
-  return db
+  const { byteCount, sha256 } = await db
     .selectFrom("packageFile")
-    .select(["name", "content", "sha256"])
+    .select(["sha256", sql<number>`length(content)`.as("byteCount")])
     .where("packageId", "=", packageId)
     .where("name", "=", name)
-    .executeTakeFirstOrThrow(
-      () =>
-        new AppError("package.not_built", { message: "The package has no files: it is building or its build failed." }),
-    );
+    .where("content", "is not", null)
+    .executeTakeFirstOrThrow(notBuilt);
+  return { name, content: await readContent(db, { packageId, name, byteCount }), sha256 };
 }
+
+/** What is read of a content at a time. */
+const CONTENT_BYTES = 512 * 1024;
+
+async function readContent(
+  db: Db,
+  { packageId, name, byteCount }: { packageId: string; name: string; byteCount: number },
+): Promise<Buffer> {
+  const content = Buffer.allocUnsafe(byteCount);
+  for (let from = 0; from < byteCount; from += CONTENT_BYTES) {
+    const { part } = await db
+      .selectFrom("packageFile")
+      .select(sql<Buffer>`substring(content from ${from + 1} for ${CONTENT_BYTES})`.as("part"))
+      .where("packageId", "=", packageId)
+      .where("name", "=", name)
+      .executeTakeFirstOrThrow();
+    content.set(part, from);
+  }
+  return content;
+}
+
+/**
+ * What is known of a package's `images.jsonl`; with its bytes where it was built when they were still stored.
+ * @throws AppError `package.not_built`
+ */
+export async function getValuesFile(db: Db, packageId: string): Promise<PackageFileRow | ToldFileRow> {
+  const name = "images.jsonl";
+  const { byteCount, crc32, sha256 } = await db
+    .selectFrom("packageFile")
+    .select(["byteCount", "crc32", "sha256"])
+    .where("packageId", "=", packageId)
+    .where("name", "=", name)
+    .executeTakeFirstOrThrow(notBuilt);
+  if (byteCount === null || crc32 === null) return getPackageFile(db, packageId, name);
+  return { name, byteCount, crc32: Number(crc32), sha256 };
+}
+
+const notBuilt = () =>
+  new AppError("package.not_built", { message: "The package has no files: it is building or its build failed." });

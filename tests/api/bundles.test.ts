@@ -1,9 +1,10 @@
 import { createHash, randomBytes } from "node:crypto";
-import { CompiledQuery } from "kysely";
+import { CompiledQuery, type Updateable } from "kysely";
 import { v7 as uuidv7 } from "uuid";
 import { beforeAll, describe, expect, it } from "vitest";
 import { readZip } from "@/builders/bundle/read-zip";
 import { verifyBundle } from "@/builders/bundle/verify-bundle";
+import type { PackageFile } from "@/db/generated/types.generated";
 import { BUNDLE_CHUNK_BYTES } from "@/db/queries/bundles";
 import { assembleBundle } from "@/lib/services/packages/assemble-bundle";
 import { withdrawPackage } from "@/lib/services/packages/release-package";
@@ -68,9 +69,10 @@ describe("GET /packages/{id}/manifest", () => {
       .where("packageId", "=", first.id)
       .where("name", "=", "manifest.json")
       .executeTakeFirstOrThrow();
-    expect(Number(headers.get("content-length"))).toBe(stored.content.length);
-    expect(sha256(stored.content).digest("hex")).toBe(digest);
-    expect(body).toEqual(JSON.parse(stored.content.toString("utf8")));
+    const content = stored.content as Buffer;
+    expect(Number(headers.get("content-length"))).toBe(content.length);
+    expect(sha256(content).digest("hex")).toBe(digest);
+    expect(body).toEqual(JSON.parse(content.toString("utf8")));
   });
 
   it("knows ranges and what the client has already", async () => {
@@ -317,6 +319,39 @@ describe("a reinstated package", () => {
       if (path.startsWith("release.")) continue;
       expect(Buffer.from(after.get(path) as Uint8Array).equals(content), path).toBe(true);
     }
+  });
+});
+
+describe("images.jsonl in a bundle", () => {
+  /** Changes what was stored of it, as nothing but a hand in the database can. */
+  const restore = async (id: string, values: Updateable<PackageFile>) =>
+    api.owner.transaction().execute(async (trx) => {
+      await trx.executeQuery(rawSql("alter table package_file disable trigger user"));
+      await trx
+        .updateTable("packageFile")
+        .set(values)
+        .where("packageId", "=", id)
+        .where("name", "=", "images.jsonl")
+        .execute();
+      await trx.executeQuery(rawSql("alter table package_file enable trigger user"));
+    });
+
+  it("is the stored one where a package was built when it was still stored", async () => {
+    const { id } = await buildGolden(people, lot);
+    const content = Buffer.from("as it was built\n");
+    await restore(id, { content, byteCount: null, crc32: null, sha256: sha256(content).digest() });
+    const { status, body } = await bundleOf(id);
+    expect(status).toBe(200);
+    expect(Buffer.from(readZip(body).get("images.jsonl") ?? "")).toEqual(content);
+  });
+
+  it("is handed out only if it comes out as it was built", async () => {
+    const { id } = await buildGolden(people, lot);
+    await restore(id, { sha256: randomBytes(32) });
+    const { status, body } = await bundleOf(id);
+    expect(status).toBe(500);
+    expect(body).toMatchObject({ code: "package.bytes_differ", path: "images.jsonl" });
+    expect(await countBundles(id)).toBe(0);
   });
 });
 

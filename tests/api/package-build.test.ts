@@ -1,5 +1,6 @@
 import { createHash } from "node:crypto";
 import { beforeAll, describe, expect, it } from "vitest";
+import { readZip } from "@/builders/bundle/read-zip";
 import { buildPackage } from "@/lib/services/packages/build-package";
 import { insertAccessKey } from "../support/access-key";
 import { openTestApi, type TestApi } from "../support/api";
@@ -104,11 +105,14 @@ describe("building a golden lot", () => {
     const { id } = await buildGolden(people, first);
     const body = await get(id);
     const files = await api.db.selectFrom("packageFile").selectAll().where("packageId", "=", id).execute();
-    const content = Object.fromEntries(files.map((file) => [file.name, file.content]));
+    const bundle = readZip((await api.call("GET", `/packages/${id}/bundle`, { as: "engineer" })).body);
+    const content = Object.fromEntries(files.map(({ name }) => [name, Buffer.from(bundle.get(name) ?? "")]));
     const sha256 = (bytes: Buffer | undefined) =>
       createHash("sha256")
         .update(bytes ?? "")
         .digest("hex");
+    for (const file of files) expect(file.content ?? content[file.name]).toEqual(content[file.name]);
+    for (const file of files) expect(sha256(content[file.name])).toBe(file.sha256.toString("hex"));
     expect(body.digest).toBe(sha256(content["manifest.json"]));
     const manifest = JSON.parse(String(content["manifest.json"]));
     expect(manifest).toMatchObject({
@@ -177,7 +181,7 @@ describe("the job", () => {
         .where("packageId", "=", id)
         .where("name", "=", "manifest.json")
         .executeTakeFirstOrThrow();
-      return JSON.parse(file.content.toString("utf8"));
+      return JSON.parse(String(file.content));
     };
     const { version: _a, images: _ia, values: _va, ...restA } = await manifestOf(a.id);
     const { version: _b, images: _ib, values: _vb, ...restB } = await manifestOf(b.id);

@@ -125,7 +125,7 @@ describe("release", () => {
       .where("packageId", "=", released.id)
       .where("name", "=", "manifest.json")
       .executeTakeFirstOrThrow();
-    const { images, provenRange } = JSON.parse(manifest.content.toString("utf8"));
+    const { images, provenRange } = JSON.parse(String(manifest.content));
     expect(images).toHaveLength(10);
     for (const image of images) expect(image.hardwareId).toBe(`B-${image.serial}`);
     expect(provenRange).not.toBeNull();

@@ -38,11 +38,17 @@ const TABLES = Object.entries(APPEND_ONLY);
 /** What the app deletes in its work: sessions that ended, replies and log lines past their time, a station's list of families. */
 const DELETABLE = ["access_log", "idempotent_reply", "layout", "mail", "password_link", "session", "station_family"];
 
+/** Columns that only some values fit, as SQL. */
+const MADE_UP: Record<string, Record<string, string>> = {
+  live_period: { kind: "'withdrawal'" },
+  package_file: { content: "''" },
+};
+
 let database: TestDatabase;
 beforeAll(async () => {
   database = await openTestDatabase();
   for (const table of Object.keys(APPEND_ONLY)) {
-    await insertMadeUpRow(database.owner, table, table === "live_period" ? { kind: "'withdrawal'" } : {});
+    await insertMadeUpRow(database.owner, table, MADE_UP[table]);
   }
 });
 

@@ -1,14 +1,14 @@
 import { createHash } from "node:crypto";
 import { PieceCutter } from "@/builders/bundle/pieces";
 import { notReleasedText, previewVerifyText, verifyText } from "@/builders/bundle/verify-text";
-import { PlainZip } from "@/builders/bundle/zip";
+import { PlainZip, toldOf } from "@/builders/bundle/zip";
 import type { Db, Trx } from "@/db/executor";
 import * as query from "@/db/queries/bundles";
 import { findNewestRelease, type LivePeriodRow } from "@/db/queries/live-periods";
-import { getPackage, getPackageFile, type PackageRow } from "@/db/queries/packages";
+import { getPackage, getPackageFile, getValuesFile, type PackageRow } from "@/db/queries/packages";
 import { getSigningKey } from "@/db/queries/signing-keys";
 import type { Ctx } from "@/lib/services/context";
-import { eachHexFile, openContent, readValues } from "./package-content";
+import { type BuiltFrom, eachHexFile, eachValuesPiece, openContent } from "./package-content";
 
 /** Sequence under which a preview's pieces are stored; releases begin at 1. */
 const PREVIEW = 0;
@@ -79,7 +79,7 @@ class PieceStore {
 
 interface NamedFile {
   path: string;
-  content: Buffer[];
+  content: Buffer;
 }
 
 /** The zip, in parts of any length (contract, section 5). Entries come by path. */
@@ -91,7 +91,7 @@ async function* bundleParts(db: Db, pkg: PackageRow, release: LivePeriodRow | un
   const { before, after } = await filesAround(db, pkg, release);
   const first = [...before, file("SHA256SUMS", sums.content), file("VERIFY.txt", verifyTextFor(release))];
   for (const one of first) yield* entry(zip, one);
-  yield* entry(zip, { path: "images.jsonl", content: await readValues(db, built) });
+  yield* valuesEntry(zip, db, built);
   for await (const hexes of eachHexFile(db, built)) {
     yield zip.entries(hexes);
   }
@@ -100,11 +100,25 @@ async function* bundleParts(db: Db, pkg: PackageRow, release: LivePeriodRow | un
 }
 
 function* entry(zip: PlainZip, { path, content }: NamedFile): Generator<Uint8Array> {
-  yield zip.head(path, content);
-  yield* content;
+  yield zip.head(path, toldOf([content]));
+  yield content;
 }
 
-const file = (path: string, content: Buffer | string): NamedFile => ({ path, content: [Buffer.from(content)] });
+/** `images.jsonl`: 100 MB of a lot of 50,000 devices, and so never held whole unless it was stored so. */
+async function* valuesEntry(zip: PlainZip, db: Db, built: BuiltFrom): AsyncGenerator<Uint8Array> {
+  const values = await getValuesFile(db, built.id);
+  if ("content" in values) {
+    yield* entry(zip, file(values.name, values.content));
+    return;
+  }
+  yield zip.head(values.name, { crc32: values.crc32, size: values.byteCount });
+  yield* eachValuesPiece(db, built, values.sha256);
+}
+
+const file = (path: string, content: Buffer | string): NamedFile => ({
+  path,
+  content: typeof content === "string" ? Buffer.from(content) : content,
+});
 
 const signedOf = (release: LivePeriodRow | undefined) =>
   release?.releaseDocument && release.signature && release.keyId

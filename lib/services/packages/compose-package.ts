@@ -3,7 +3,7 @@ import { assertDevicesFit } from "@/builders/bundle/bundle";
 import { ContentWriter, type WrittenContent } from "@/builders/bundle/content-writer";
 import { byCodeUnits, type Manifest } from "@/builders/bundle/manifest";
 import { type CompiledLayout, compileLayout } from "@/builders/codec/compile-layout";
-import { type DecodedField, decodeImage, encodeImage } from "@/builders/codec/image";
+import { type DecodedField, decodeImage, encodeImageInto } from "@/builders/codec/image";
 import type { ImageSources } from "@/builders/codec/sources";
 import type { Db } from "@/db/executor";
 import { type DerivationRow, getDerivation, listDerivationRunIds } from "@/db/queries/derivations";
@@ -84,7 +84,7 @@ export function* partsOf(devices: readonly PackedDevice[]): Generator<readonly P
  * The bytes of a package from its inputs: the same ones at every call, on any machine, years later. Builds and rebuilds
  * both come here; a build chooses the sets, a rebuild takes those that its image rows name.
  * @param parts devices by serial in UTF-16 code units.
- * @throws AppError `bundle.too_many_devices`, `package.set_missing` {serial}, and as {@link encodeImage} with {serial, field}
+ * @throws AppError `bundle.too_many_devices`, `package.set_missing` {serial}, and as {@link encodeImageInto} with {serial, field}
  */
 export async function composePackage(
   db: Db,
@@ -92,7 +92,7 @@ export async function composePackage(
   parts: Iterable<readonly PackedDevice[]> | AsyncIterable<readonly PackedDevice[]>,
   options: ComposeOptions = {},
 ): Promise<ComposedPackage> {
-  const writer = new ContentWriter(inputs.layout);
+  const writer = new ContentWriter(inputs.layout, { keepValues: false });
   const used = new Set<string>();
   let count = 0;
   for await (const devices of parts) {
@@ -128,9 +128,9 @@ function composePart(
       throw new AppError("package.set_missing", { serial, message: `${serial} has no coefficients to pack.` });
     }
     const sources = sourcesOf(inputs, serial, set.coefficients);
-    const bytes = encodeImage(layout, sources);
+    const bytes = part.bytes.subarray(i * layout.bytes, (i + 1) * layout.bytes);
+    encodeImageInto(bytes, layout, sources);
     const { sha256, hexSha256 } = writer.add({ serial, hardwareId, derivation: set.derivationId, image: bytes });
-    part.bytes.set(bytes, i * layout.bytes);
     part.sha256.write(sha256, i * DIGEST_BYTES, "hex");
     part.hexSha256.write(hexSha256, i * DIGEST_BYTES, "hex");
     onImage?.({ device, set, sources, bytes, hex: writer.lastHex(), decoded: decodeImage(layout, bytes) });

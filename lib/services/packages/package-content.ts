@@ -15,7 +15,6 @@ import {
   listSerials,
 } from "@/db/queries/images";
 import { getLayoutById } from "@/db/queries/layouts";
-import { listPackageFiles } from "@/db/queries/package-provenance";
 import { AppError } from "@/lib/errors";
 
 /** Images read at a time: bounds memory and how long the event loop is held. */
@@ -33,26 +32,24 @@ export async function openContent(db: Db, pkg: { id: string; layoutId: string })
 
 /**
  * `images.jsonl` in pieces, made from the stored images and held against the digest of what was built, so that what the code
- * of today would write otherwise is refused instead of handed out. Making it again takes a third of the time of reading the
- * stored one.
- * @throws AppError `package.not_built`, `package.bytes_differ` {path}
+ * of today would write otherwise is refused instead of handed out: at the end, when the pieces are out.
+ * @throws AppError `package.bytes_differ` {path}
  */
-export async function readValues(db: Db, { id, layout }: BuiltFrom): Promise<Buffer[]> {
-  const sink = new ByteSink();
+export async function* eachValuesPiece(db: Db, { id, layout }: BuiltFrom, sha256: Buffer): AsyncGenerator<Buffer> {
+  const sink = new ByteSink({ keep: true });
   const template = new ValuesTemplate(layout);
   for await (const images of eachImages(db, id, PAGE_IMAGES)) {
     const setIds = images.map((image) => image.coefficientSetId);
     const derivations = await listDerivationsOfSets(db, setIds);
-    for (const { serial, sha256, bytes, coefficientSetId } of images) {
+    for (const { serial, sha256: digest, bytes, coefficientSetId } of images) {
       const derivation = derivations.get(coefficientSetId) as string;
-      const line = template.line({ serial, derivation, sha256: sha256.toString("hex") }, bytes);
-      sink.add(line.room, line.write);
+      template.add(sink, { serial, derivation, sha256: digest.toString("hex") }, bytes);
     }
+    yield* sink.take();
   }
-  const values = sink.finish();
-  const built = (await listPackageFiles(db, id)).find((file) => file.name === "images.jsonl");
-  if (built?.sha256.toString("hex") !== values.sha256) throw bytesDiffer("images.jsonl");
-  return values.pieces;
+  const rest = sink.finish();
+  yield* rest.pieces;
+  if (rest.sha256 !== sha256.toString("hex")) throw bytesDiffer("images.jsonl");
 }
 
 /** A HEX file of a bundle. */

@@ -69,7 +69,7 @@ async function storeContent(trx: Trx, packageId: string, { parts, composed, chec
   const { manifest, digest, values, sums, derivations } = composed;
   const files = [
     { name: "manifest.json", content: manifest, sha256: digest },
-    { name: "images.jsonl", content: Buffer.concat(values.pieces), sha256: values.sha256 },
+    { name: "images.jsonl", byteCount: values.length, crc32: values.crc32, sha256: values.sha256 },
     { name: "SHA256SUMS", content: sums, sha256: sha256Hex(sums) },
   ];
   for (const file of files) {

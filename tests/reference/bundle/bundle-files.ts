@@ -30,7 +30,7 @@ export function packageSums(content: PackageContent): string {
   for (const [serial, hex] of content.hexes) digests.set(hexPath(serial), sha256Hex(hex));
   digests.set("images.jsonl", sha256Hex(content.values));
   digests.set("manifest.json", sha256Hex(content.manifest));
-  return sumsTextOf(digests);
+  return sumsTextOf([...digests].map(([path, digest]) => ({ path, digest })));
 }
 
 /** Files of a released bundle by path; `zipPieces` makes them one. @throws AppError `bundle.too_many_devices` */
