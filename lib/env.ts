@@ -69,6 +69,19 @@ export function childEnv(values: Record<string, string | undefined>): NodeJS.Pro
   return { ...process.env, ...values } as NodeJS.ProcessEnv;
 }
 
+/**
+ * Lets the C library take a child's memory in large pages where Linux has them: a bundle of 5,000 devices touches 6,000 pages of
+ * 4 KB, and on a virtual machine the first touch of one can take 15 µs. Other C libraries pass over it; what is set stays.
+ */
+export function largePagesEnv(): { GLIBC_TUNABLES: string } {
+  return { GLIBC_TUNABLES: process.env.GLIBC_TUNABLES ?? "glibc.malloc.hugetlb=1" };
+}
+
+/** Whether somebody said how this process takes its memory; a process can't be told afterwards. */
+export function hasMemorySettings(): boolean {
+  return process.env.GLIBC_TUNABLES !== undefined;
+}
+
 /** Whether this process is a script of npm's; its children inherit the mark, so a child that it starts takes it away. */
 export function isRunByNpm(): boolean {
   return process.env.npm_lifecycle_event !== undefined;

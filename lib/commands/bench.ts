@@ -6,7 +6,9 @@ import { readdirSync } from "node:fs";
 import { cpus } from "node:os";
 import { join } from "node:path";
 import { pathToFileURL } from "node:url";
-import { CHECKOUT } from "@/lib/commands/checkout";
+import { CHECKOUT, PROGRAMS } from "@/lib/commands/checkout";
+import { runToEnd } from "@/lib/commands/run-tool";
+import { childEnv, hasMemorySettings, largePagesEnv } from "@/lib/env";
 import { AppError } from "@/lib/errors";
 
 export interface Outcome {
@@ -42,6 +44,11 @@ export default async function bench(args: string[], signal: AbortSignal): Promis
   if (unknown.length > 0) {
     const message = `No bench ${unknown.join(", ")}; there are ${known.join(", ")}`;
     throw new AppError("command.usage", { message });
+  }
+  if (!hasMemorySettings()) {
+    // Benches are to have their memory as the app and the worker do.
+    const options = { cwd: CHECKOUT, env: childEnv(largePagesEnv()), show: true, signal };
+    return (await runToEnd(process.execPath, [PROGRAMS.bootstrap, "bench", ...args], options)).code;
   }
   const say = (line: string) => console.log(line);
   say(`Node ${process.version.slice(1)}, ${cpus().length} cores (${cpus()[0]?.model.trim() ?? "unknown"})`);

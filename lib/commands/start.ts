@@ -15,7 +15,7 @@ import {
 } from "@/lib/commands/start-database";
 import { type SupervisedProcess, supervise } from "@/lib/commands/supervised-process";
 import { DEMO_PASSWORD } from "@/lib/domain/demo-accounts";
-import { actionsKey, authSecret, childEnv, type Env, env, setEnv, signingKeyFile } from "@/lib/env";
+import { actionsKey, authSecret, childEnv, type Env, env, largePagesEnv, setEnv, signingKeyFile } from "@/lib/env";
 import { AppError } from "@/lib/errors";
 
 const FREE_BYTES_NEEDED = 300_000_000;
@@ -117,6 +117,7 @@ async function serve(settings: Env, database: StartDatabase, signal: AbortSignal
 /** What the served processes get: the app's role, never the owner's address. */
 function servedEnv(settings: Env, appUrl: string): NodeJS.ProcessEnv {
   return childEnv({
+    ...largePagesEnv(),
     NODE_ENV: "production",
     npm_lifecycle_event: undefined,
     NEXT_TELEMETRY_DISABLED: "1",

@@ -1,14 +1,15 @@
 /** The job that the build is measured by: images of 256 bytes with 24 fields and a CRC-16, from coefficients in memory to a bundle on the disk. */
 import { closeSync, fsyncSync, openSync, writeSync } from "node:fs";
+import { type FileHandle, open } from "node:fs/promises";
+import { setImmediate } from "node:timers/promises";
 import { hexPath } from "@/builders/bundle/bundle";
 import { ContentWriter } from "@/builders/bundle/content-writer";
 import { HexTemplate } from "@/builders/bundle/hex-template";
-import { PieceCutter } from "@/builders/bundle/pieces";
 import { sha256Hex } from "@/builders/bundle/sha256";
 import { notReleasedText, previewVerifyText } from "@/builders/bundle/verify-text";
-import { PlainZip } from "@/builders/bundle/zip";
+import { PlainZip, toldOf } from "@/builders/bundle/zip";
 import { compileLayout } from "@/builders/codec/compile-layout";
-import { encodeImage } from "@/builders/codec/image";
+import { encodeImageInto } from "@/builders/codec/image";
 import type { ImageSources } from "@/builders/codec/sources";
 import { seededRandom } from "@/lib/demo/random";
 import type { LayoutDocument, LayoutField } from "@/schemas/documents/layout";
@@ -16,7 +17,6 @@ import type { LayoutDocument, LayoutField } from "@/schemas/documents/layout";
 const LOT = "BENCH-LOT";
 const FAMILY = { referenceTemperature: 20, capacity: 20, nominalOutput: 2 };
 const DERIVATION = "01999999-0000-7000-8000-000000000001";
-const PIECE_BYTES = 1024 * 1024;
 /** HEX files that are added at a time, as where a bundle is assembled. */
 const PAGE = 500;
 
@@ -108,9 +108,11 @@ const layout = compileLayout(MODEL_LAYOUT);
 
 /** Encodes every device, writes HEX, digests and values: what comes before the bundle. */
 export function composeModel(devices: readonly ModelDevice[]) {
-  const writer = new ContentWriter(layout);
-  const images = devices.map((device) => {
-    const image = encodeImage(layout, sourcesOf(device));
+  const writer = new ContentWriter(layout, { keepValues: true });
+  const memory = Buffer.allocUnsafe(devices.length * layout.bytes);
+  const images = devices.map((device, i) => {
+    const image = memory.subarray(i * layout.bytes, (i + 1) * layout.bytes);
+    encodeImageInto(image, layout, sourcesOf(device));
     const { serial } = device;
     writer.add({ serial, hardwareId: null, derivation: DERIVATION, image });
     return { serial, image };
@@ -118,56 +120,95 @@ export function composeModel(devices: readonly ModelDevice[]) {
   return { writer, images };
 }
 
-/** The whole job: a bundle at `path`, flushed to the disk. @returns the package digest */
-export function buildModel(devices: readonly ModelDevice[], path: string): string {
+/**
+ * The whole job: a bundle at `path`, flushed to the disk. What is ready is written and flushed while the rest is composed, as
+ * a worker would do that has anything else to do.
+ * @returns the package digest
+ */
+export async function buildModel(devices: readonly ModelDevice[], path: string): Promise<string> {
+  const file = new BehindFile(path);
   const { writer, images } = composeModel(devices);
   const content = writer.finish(head);
   const zip = new PlainZip();
-  const file = new PieceFile(path);
-  const add = (name: string, pieces: readonly Uint8Array[]) => {
-    file.add(zip.head(name, pieces));
-    for (const piece of pieces) file.add(piece);
-  };
+  const add = (name: string, pieces: readonly Uint8Array[], told = toldOf(pieces)) =>
+    file.add(zip.head(name, told), ...pieces);
   add("NOT-RELEASED.txt", [Buffer.from(notReleasedText({ lot: LOT, version: "1.0.0" }))]);
   add("SHA256SUMS", [content.sums]);
   add("VERIFY.txt", [Buffer.from(previewVerifyText())]);
-  add("images.jsonl", content.values.pieces);
+  const { pieces, crc32, length } = content.values;
+  add("images.jsonl", pieces, { crc32, size: length });
   const hex = new HexTemplate(layout);
   for (let at = 0; at < images.length; at += PAGE) {
+    await file.turn();
     const page = images.slice(at, at + PAGE);
     file.add(zip.entries(page.map(({ serial, image }) => ({ path: hexPath(serial), content: hex.bytesOf(image) }))));
   }
   add("manifest.json", [content.manifest]);
-  for (const part of zip.end()) file.add(part);
-  file.close();
+  file.add(...zip.end());
+  await file.close();
   return content.digest;
 }
 
-/** The floor: the SHA-256 of every file, and the same bytes written and flushed. */
-export function floorOf(files: Iterable<Uint8Array>, zip: Uint8Array, path: string): void {
-  for (const content of files) sha256Hex(content);
-  const file = new PieceFile(path);
-  file.add(zip);
-  file.close();
+/** The floor: file after file, its SHA-256 and its bytes into the bundle, which is flushed to the disk. */
+export function floorOf(files: Iterable<Uint8Array>, path: string): void {
+  const bundle = openSync(path, "w");
+  for (const content of files) {
+    sha256Hex(content);
+    writeAll(bundle, content);
+  }
+  fsyncSync(bundle);
+  closeSync(bundle);
 }
 
-/** A file that is written in pieces of 1 MiB. */
-class PieceFile {
-  readonly #cutter = new PieceCutter(PIECE_BYTES);
-  readonly #descriptor: number;
+/** The least that any program could take: as {@link floorOf}, but for all bytes that are written at once and lie ready. */
+export function bareFloorOf(files: Iterable<Uint8Array>, zip: Uint8Array, path: string): void {
+  for (const content of files) sha256Hex(content);
+  const bundle = openSync(path, "w");
+  writeAll(bundle, zip);
+  fsyncSync(bundle);
+  closeSync(bundle);
+}
+
+function writeAll(file: number, content: Uint8Array): void {
+  for (let at = 0; at < content.length; ) at += writeSync(file, content, at);
+}
+
+/** A file that is written and flushed behind its caller's back, in the order in which its bytes are given. */
+class BehindFile {
+  readonly #handle: Promise<FileHandle>;
+  #waiting: Uint8Array[] = [];
+  /** What runs now; undefined where nothing does. */
+  #running: Promise<void> | undefined;
 
   constructor(path: string) {
-    this.#descriptor = openSync(path, "w");
+    this.#handle = open(path, "w");
   }
 
-  add(bytes: Uint8Array): void {
-    for (const piece of this.#cutter.add(bytes)) writeSync(this.#descriptor, piece);
+  /** The bytes may no longer change. */
+  add(...parts: Uint8Array[]): void {
+    this.#waiting.push(...parts);
   }
 
-  close(): void {
-    const rest = this.#cutter.rest();
-    if (rest) writeSync(this.#descriptor, rest);
-    fsyncSync(this.#descriptor);
-    closeSync(this.#descriptor);
+  /** Lets the file go on with what was given to it. */
+  async turn(): Promise<void> {
+    this.#running ??= this.#write();
+    await setImmediate();
+  }
+
+  async close(): Promise<void> {
+    await this.#running;
+    await this.#write();
+    await (await this.#handle).close();
+  }
+
+  async #write(): Promise<void> {
+    const handle = await this.#handle;
+    const parts = this.#waiting;
+    this.#waiting = [];
+    const { bytesWritten } = await handle.writev(parts);
+    if (bytesWritten !== parts.reduce((sum, part) => sum + part.length, 0))
+      throw new Error("the disk took a part only");
+    await handle.datasync();
+    this.#running = undefined;
   }
 }
