@@ -10,6 +10,7 @@ import { env } from "@/lib/env";
 import type { JobPayloads } from "@/lib/jobs/payloads";
 import { QUEUES, type QueueName, WORKER_NAME } from "@/lib/jobs/queues";
 import type { Ctx } from "@/lib/services/context";
+import { endGivenUp } from "@/lib/services/tidy/end-given-up";
 
 /** Time for running jobs at a stop; one that needs longer is taken up again by the next worker. */
 const FINISH_WITHIN_MS = 10_000;
@@ -31,10 +32,10 @@ export default async function worker(_args: string[], signal: AbortSignal): Prom
   boss.on("error", (error) => console.error(`job queues: ${error.message}`));
   await boss.start();
   const claims = await JobClaims.open(getDb());
-  const looking = setInterval(() => takeUpLost(boss, claims), LOOK_MS);
+  const looking = setInterval(() => lookAfterLost(boss, claims), LOOK_MS);
   try {
     for (const queue of QUEUES) await serveQueue(boss, claims, queue);
-    await takeUpLost(boss, claims);
+    await lookAfterLost(boss, claims);
     await boss.schedule("tidy" satisfies QueueName, TIDY_AT);
     console.log("worker ready");
     if (!signal.aborted) await once(signal, "abort");
@@ -47,13 +48,15 @@ export default async function worker(_args: string[], signal: AbortSignal): Prom
   return 0;
 }
 
-/** Puts jobs of workers that were killed on their queues again; the queue counts it as a try. */
-async function takeUpLost(boss: PgBoss, claims: JobClaims): Promise<void> {
+/** Puts jobs of workers that were killed on their queues again; the queue counts it as a try, and after the last one the work ends. */
+async function lookAfterLost(boss: PgBoss, claims: JobClaims): Promise<void> {
   try {
     for (const { id, queue } of await claims.findLost()) {
       await boss.fail(queue, id, { message: "the worker ended" });
       console.log(`taken up again: ${queue} ${id}`);
     }
+    const ended = await endGivenUp(systemCtx("given up"));
+    if (ended > 0) console.log(`given up: ${ended}`);
   } catch (error) {
     console.error(`lost jobs: ${error instanceof Error ? error.message : String(error)}`);
   }

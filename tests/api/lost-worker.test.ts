@@ -58,12 +58,16 @@ it("a build whose worker is killed while it stores is taken up again within seco
   });
   expect(await get(id)).toMatchObject({ state: "building", digest: null, checks: [] });
   expect(await imagesOf(id)).toEqual([]);
+  const other = (await api.call("POST", `/lots/${lot.lot}/packages`, { as: "engineer", body: { layout: "1.0.0" } }))
+    .body;
+  await sql`update pgboss.job set state = 'failed' where data ->> 'packageId' = ${other.id}`.execute(api.db);
 
   startWorker();
   await eventually(async () => (await get(id)).state === "draft");
+  await eventually(async () => (await get(other.id)).failure?.code === "job.given_up");
   await api.call("POST", `/packages/${id}/rebuild`, { as: "engineer" });
   await eventually(async () => (await get(id)).rebuild?.same === true);
   const { engineer, reviewer } = { engineer: api.ctx("engineer"), reviewer: api.ctx("reviewer") };
-  const other = await buildGolden({ engineer, reviewer, password: PASSWORD }, lot, { step: "major" });
-  expect((await imagesOf(id)).map((one) => one.serial)).toEqual((await imagesOf(other.id)).map((one) => one.serial));
+  const next = await buildGolden({ engineer, reviewer, password: PASSWORD }, lot, { step: "major" });
+  expect((await imagesOf(id)).map((one) => one.serial)).toEqual((await imagesOf(next.id)).map((one) => one.serial));
 }, 180_000);

@@ -1,5 +1,7 @@
+import { sql } from "kysely";
 import { beforeAll, describe, expect, it } from "vitest";
 import { buildPackage } from "@/lib/services/packages/build-package";
+import { endGivenUp } from "@/lib/services/tidy/end-given-up";
 import { openTestApi, type TestApi } from "../support/api";
 import { losingDatabase } from "../support/failing-database";
 import { systemContext } from "../support/jobs";
@@ -126,6 +128,38 @@ describe("a build that falls", () => {
     await api.call("POST", `/packages/${id}/rebuild`, { as: "engineer" });
     await api.runJobs();
     expect((await get(id)).rebuild).toMatchObject({ same: true });
+  });
+});
+
+describe("a build that the queue gave up", () => {
+  const giveUp = (id: string) =>
+    sql`update pgboss.job set state = 'failed' where name = 'build-package' and data ->> 'packageId' = ${id}`.execute(
+      api.db,
+    );
+
+  it("ends as failed, once, and only when no try is left", async () => {
+    const [waiting, lost] = [await asked(), await asked()];
+    await giveUp(lost);
+    const ctx = systemContext(api.db);
+    expect((await Promise.all([endGivenUp(ctx), endGivenUp(ctx)])).sort()).not.toEqual([0, 0]);
+    expect(await endGivenUp(ctx)).toBe(0);
+    expect(await get(lost)).toMatchObject({ state: "failed", digest: null, failure: { code: "job.given_up" } });
+    expect(await actionsOf(lost)).toEqual(["package.build-started", "package.build-failed"]);
+    expect((await get(waiting)).state).toBe("building");
+    await api.runJobs();
+    expect((await get(waiting)).state).toBe("draft");
+  });
+
+  it("is as true of a derivation", async () => {
+    const { body } = await api.call("POST", `/lots/${lot.lot}/derivations`, {
+      as: "engineer",
+      body: { method: "pooled-gain", order: 1, runs: Object.values(lot.runs) },
+    });
+    await sql`delete from pgboss.job where name = 'derive' and data ->> 'derivationId' = ${body.id}`.execute(api.db);
+    expect(await endGivenUp(systemContext(api.db))).toBe(1);
+    const { state, failure } = (await api.call("GET", `/derivations/${body.id}`, { as: "engineer" })).body;
+    expect({ state, failure }).toMatchObject({ state: "failed", failure: { code: "job.given_up" } });
+    expect(await actionsOf(body.id)).toEqual(["derivation.started", "derivation.failed"]);
   });
 });
 

@@ -2,7 +2,6 @@ import { appErrorFromDatabase } from "@/db/constraint-codes";
 import { insertSets, markSetsStale } from "@/db/queries/coefficients";
 import {
   type DerivationRow,
-  failDerivation,
   finishDerivation,
   getDerivation,
   insertDerivationFindings,
@@ -21,6 +20,7 @@ import { appendEvent } from "@/lib/services/ledger/append-event";
 import { getLotRules } from "@/lib/services/lots/lot-rules";
 import { compute, countResult, detailOf, listAllFindings } from "./compute";
 import { readInput } from "./derivation-input";
+import { endDerivation } from "./end-derivation";
 import { tellDeciders } from "./tell-people";
 
 /**
@@ -37,7 +37,7 @@ export async function runDerivation(ctx: Ctx, { derivationId }: { derivationId: 
   } catch (error) {
     const known = error instanceof AppError ? error : undefined;
     if (appErrorFromDatabase(error)?.code === "database.unavailable") throw error;
-    await fail(
+    await endDerivation(
       ctx,
       derivation,
       known ?? new AppError("server.fault", { message: "Something went wrong here; the log of the worker says what." }),
@@ -132,12 +132,4 @@ async function markReplaced(
     for (const stale of await markSetsStale(trx, run.id, at)) count += stale.count;
   }
   return count;
-}
-
-async function fail(ctx: Ctx, { id, lotCode }: DerivationRow, error: AppError): Promise<void> {
-  await ctx.db.transaction().execute(async (trx) => {
-    if ((await lockDerivation(trx, id)).state !== "working") return;
-    await failDerivation(trx, id, { code: error.code, message: error.message }, ctx.now());
-    await appendEvent(ctx, trx, { action: "derivation.failed", subject: id, data: { lot: lotCode, code: error.code } });
-  });
 }
