@@ -1,9 +1,12 @@
-import { readImagesJsonl } from "@/builders/bundle/images-jsonl";
+import { type DescribedImage, ImageOfHex } from "@/builders/bundle/image-of-hex";
+import { type ImageValues, readImagesJsonl } from "@/builders/bundle/images-jsonl";
 import type { Manifest, ManifestImage } from "@/builders/bundle/manifest";
 import { readZip } from "@/builders/bundle/read-zip";
+import { refuse } from "@/builders/bundle/refuse";
 import { isReleaseSignature, keyIdOf, type ReleaseRecord } from "@/builders/bundle/release";
 import { sha256Hex } from "@/builders/bundle/sha256";
 import { readSums } from "@/builders/bundle/sums";
+import { chooseSamples, MOST_BYTES, type RawField } from "@/builders/bundle/values-image";
 import { UNLISTED_FILES, UNLISTED_PREVIEW_FILES } from "@/builders/bundle/verify-text";
 import { readIntelHex } from "@/builders/codec/files/intel-hex-read";
 import { AppError } from "@/lib/errors";
@@ -68,10 +71,6 @@ function attempt(name: VerifyStep["name"], check: () => string): VerifyStep {
   }
 }
 
-function refuse(message: string): never {
-  throw new AppError("bundle.not_verified", { message });
-}
-
 /** The files of a bundle with what is read from them; every check returns what it found or throws an AppError. */
 class OpenBundle {
   readonly #files: ReadonlyMap<string, Uint8Array>;
@@ -118,30 +117,38 @@ class OpenBundle {
   }
 
   checkImages(): string {
-    const manifest = this.#manifest();
-    if (sha256Hex(this.#file(manifest.values.path)) !== manifest.values.sha256)
-      refuse(`${manifest.values.path} is not the manifest's`);
-    const values = new Map(readImagesJsonl(this.#text(manifest.values.path)).map((one) => [one.serial, one]));
-    for (const image of manifest.images) {
-      const { serial, sha256, hex } = image;
+    const { images } = this.#manifest();
+    const values = this.#values();
+    for (const { serial, sha256, hex } of images) {
       if (sha256Hex(this.#file(hex.path)) !== hex.sha256) refuse(`${hex.path} is not the manifest's`);
       if (values.get(serial)?.sha256 !== sha256) refuse(`The values of ${serial} are of another image`);
-      this.#checkHex(image);
     }
     const listed = [...readSums(this.#text("SHA256SUMS")).keys()].filter((path) => path.startsWith("images/"));
-    const known = new Set(manifest.images.map((image) => image.hex.path));
+    const known = new Set(images.map((image) => image.hex.path));
     if (values.size !== known.size || listed.some((path) => !known.has(path)))
       refuse("There are images that the manifest does not name");
-    return `${manifest.images.length} images stand in the manifest with their values`;
+    return this.#checkHexes(images, values);
   }
 
-  /** A HEX without kept ranges holds the whole image, whose digest the manifest names. */
-  #checkHex({ serial, bytes, sha256, hex }: ManifestImage): void {
+  /** Every HEX holds the image whose digest the manifest names, and the values are what it holds. */
+  #checkHexes(images: readonly ManifestImage[], values: ReadonlyMap<string, ImageValues>): string {
+    const fieldsOf = ({ serial }: ManifestImage) => values.get(serial)?.fields ?? [];
+    const chosen = chooseSamples(images.map((image) => ({ fields: fieldsOf(image) })));
+    const describe = (image: ManifestImage) => this.#describe(image, fieldsOf(image));
+    const [first, ...more] = chosen.map((i) => describe(images[i] as ManifestImage));
+    if (!first) return "The manifest names no image";
+    const hexes = new ImageOfHex([first, ...more]);
+    for (const image of images) hexes.assertHolds(describe(image));
+    if (hexes.isPlaced)
+      return `${images.length} images: each HEX holds the image whose digest the manifest names, and its values`;
+    return `${images.length} images stand in the manifest with their values; where the bytes of a HEX lie in the image could not be told, so the digest of ${images.length} images was computed from their values alone, and the bytes of each HEX were only counted`;
+  }
+
+  #describe({ serial, bytes, sha256, hex }: ManifestImage, fields: readonly RawField[]): DescribedImage {
+    if (!Number.isInteger(bytes) || bytes < 1 || bytes > MOST_BYTES)
+      refuse(`The image of ${serial} has ${bytes} bytes; a layout has 1 to ${MOST_BYTES}`);
     const { segments } = readIntelHex(this.#text(hex.path));
-    const [whole] = segments;
-    if (segments.length !== 1 || whole?.bytes.length !== bytes) return;
-    if (sha256Hex(whole.bytes) !== sha256)
-      refuse(`${hex.path} holds another image of ${serial} than the manifest names`);
+    return { serial, path: hex.path, bytes, sha256, fields, segments };
   }
 
   checkReleaseNamesList(): string {
@@ -175,6 +182,12 @@ class OpenBundle {
 
   #text(path: string): string {
     return new TextDecoder().decode(this.#file(path));
+  }
+
+  #values(): Map<string, ImageValues> {
+    const { path, sha256 } = this.#manifest().values;
+    if (sha256Hex(this.#file(path)) !== sha256) refuse(`${path} is not the manifest's`);
+    return new Map(readImagesJsonl(this.#text(path)).map((one) => [one.serial, one]));
   }
 
   #release(): ReleaseRecord {

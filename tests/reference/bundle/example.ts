@@ -4,32 +4,59 @@ import { imageLine } from "@/builders/bundle/images-jsonl";
 import { buildManifest, documentDigest, type Manifest, manifestBytes } from "@/builders/bundle/manifest";
 import { keyIdOf, publicKeyPem, type ReleaseRecord, releaseBytes, signRelease } from "@/builders/bundle/release";
 import { sha256Hex } from "@/builders/bundle/sha256";
-import { writeIntelHex } from "@/builders/codec/files/intel-hex-write";
-import { decodeImage, encodeImage } from "@/builders/codec/image";
+import type { CompiledLayout } from "@/builders/codec/compile-layout";
+import { writeImageHex } from "@/builders/codec/files/hex-image";
+import { type DecodedField, decodeImage, encodeImage } from "@/builders/codec/image";
+import type { ImageSources } from "@/builders/codec/sources";
+import type { LayoutDocument } from "@/schemas/documents/layout";
 import { type PackageContent, packageSums, type ReleaseFiles } from "@/tests/reference/bundle/bundle-files";
 import { readGolden } from "@/tests/reference/codec/golden";
+
+/** A device as it is packed; what doesn't belong together makes a bundle that lies. */
+export interface PackedDevice {
+  serial: string;
+  /** Length of the image. */
+  bytes: number;
+  /** Of the image. */
+  sha256: string;
+  hex: string;
+  fields: DecodedField[];
+}
 
 /** The golden lot packed, with invented ids. */
 export function examplePackage(): { content: PackageContent; manifest: Manifest } {
   const { layout, compiled, sources } = readGolden(".", "MW20-2609");
-  const hexes = new Map<string, string>();
-  const lines: string[] = [];
-  const images = sources.map((one) => {
-    const { serial } = one.device;
-    const bytes = encodeImage(compiled, one);
-    const hex = writeIntelHex(bytes, compiled.baseAddress, compiled.kept);
-    const sha256 = sha256Hex(bytes);
-    hexes.set(serial, hex);
-    lines.push(imageLine({ serial, derivation: "d1", sha256, fields: decodeImage(compiled, bytes) }));
+  return packageOf(layout, packDevices(compiled, sources));
+}
+
+/** The devices of a layout, as a build makes them. */
+export function packDevices(compiled: CompiledLayout, sources: readonly ImageSources[]): PackedDevice[] {
+  return sources.map((one) => {
+    const image = encodeImage(compiled, one);
     return {
-      serial,
-      hardwareId: null,
-      bytes: bytes.length,
-      sha256,
-      hex: { path: hexPath(serial), sha256: sha256Hex(hex) },
+      serial: one.device.serial,
+      bytes: image.length,
+      sha256: sha256Hex(image),
+      hex: writeImageHex(compiled, image),
+      fields: decodeImage(compiled, image),
     };
   });
+}
+
+/** A package of devices, its digests of files made from what they are. */
+export function packageOf(
+  layout: LayoutDocument,
+  devices: readonly PackedDevice[],
+): { content: PackageContent; manifest: Manifest } {
+  const lines = devices.map(({ serial, sha256, fields }) => imageLine({ serial, derivation: "d1", sha256, fields }));
   const values = new TextEncoder().encode(lines.join(""));
+  const images = devices.map(({ serial, bytes, sha256, hex }) => ({
+    serial,
+    hardwareId: null,
+    bytes,
+    sha256,
+    hex: { path: hexPath(serial), sha256: sha256Hex(hex) },
+  }));
   const manifest = buildManifest({
     lot: "MW20-2609",
     family: { code: "MW-20", revision: 1, sha256: "a".repeat(64) },
@@ -41,6 +68,7 @@ export function examplePackage(): { content: PackageContent; manifest: Manifest 
     images: images.reverse(),
     values: { path: "images.jsonl", sha256: sha256Hex(values) },
   });
+  const hexes = new Map(devices.map(({ serial, hex }) => [serial, hex]));
   return { content: { manifest: manifestBytes(manifest), values, hexes }, manifest };
 }
 
