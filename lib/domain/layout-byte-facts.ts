@@ -1,10 +1,18 @@
+import { canonicalJson } from "@/lib/domain/canonical-json";
 import { algorithmText, hexText } from "@/lib/domain/checksum-text";
 import type { LayoutChecksum, LayoutDocument, LayoutField } from "@/schemas/documents/layout";
 
 export type Part = LayoutField | LayoutChecksum;
 export type Facts = Record<string, unknown>;
 
-const isSame = (a: unknown, b: unknown) => JSON.stringify(a) === JSON.stringify(b);
+/**
+ * Whether two parts of documents say the same. The order of an object's members says nothing: the database keeps them in an
+ * order of its own, an author's text has them in another.
+ */
+export function isSame(a: unknown, b: unknown): boolean {
+  if (a === undefined || b === undefined) return a === b;
+  return JSON.stringify(a) === JSON.stringify(b) || canonicalJson(a) === canonicalJson(b);
+}
 
 /** The members of an object but for some. */
 export const omit = (object: object, names: readonly string[]): Facts =>
@@ -48,7 +56,7 @@ export function memoryFacts({ memory }: LayoutDocument): Facts {
 }
 
 export function factsText(part: Part, layout: LayoutDocument): string {
-  return JSON.stringify(Object.entries(byteFacts(part, layout)).sort(([a], [b]) => (a < b ? -1 : 1)));
+  return canonicalJson(byteFacts(part, layout));
 }
 
 /** Elements of one byte have no byte order. */

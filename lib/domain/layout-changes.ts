@@ -3,6 +3,7 @@ import {
   byteFacts,
   type Facts,
   factsText,
+  isSame,
   memoryFacts,
   omit,
   type Part,
@@ -25,8 +26,6 @@ export function layoutChanges(previous: LayoutDocument, next: LayoutDocument): S
 
 /** What firmware for the older layout would do with the newer image. */
 const misread = ({ version }: LayoutDocument) => `firmware that reads ${version.split(".")[0]}.x would misread it`;
-
-const isSame = (a: unknown, b: unknown) => JSON.stringify(a) === JSON.stringify(b);
 
 /** A value as a reader of the document knows it. */
 function shown(value: unknown): string {

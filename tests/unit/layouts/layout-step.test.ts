@@ -16,6 +16,16 @@ const judge = (change: Partial<LayoutDocument>) => {
 const field = (name: string, change: Partial<LayoutField>) => ({
   fields: before.fields.map((one) => (one.name === name ? { ...one, ...change } : one)),
 });
+/** The same JSON with the members of every object the other way round. */
+function turned(value: unknown): unknown {
+  if (Array.isArray(value)) return value.map(turned);
+  if (typeof value !== "object" || value === null) return value;
+  return Object.fromEntries(
+    Object.entries(value)
+      .reverse()
+      .map(([name, inner]) => [name, turned(inner)]),
+  );
+}
 const misread = "firmware that reads 1.x would misread it";
 
 describe("layoutStep", () => {
@@ -81,6 +91,35 @@ describe("layoutStep", () => {
     ]);
     expect(judge({ reserved: [], kept: [] })).toEqual(["patch"]);
     expect(judge({ fields: [...before.fields].reverse() })).toEqual(["patch"]);
+  });
+
+  it("takes no notice of the order of members, which the database changes", () => {
+    const rich = {
+      ...before,
+      memory: { ...before.memory, segments: [{ name: "upper", at: 40, baseAddress: 0x8000 }] },
+      fields: [
+        ...before.fields,
+        {
+          name: "flags",
+          at: 44,
+          type: "u16",
+          value: { bits: [{ name: "mode", from: 0, width: 2, enum: { off: 0, on: 1 }, value: { const: "on" } }] },
+        },
+      ],
+      checksums: [
+        {
+          name: "own",
+          at: 46,
+          algorithm: { width: 16, poly: "1021", init: "FFFF", refin: false, refout: false, xorout: "0" },
+          over: [[0, 9]],
+        },
+      ],
+    } as unknown as LayoutDocument;
+    const stored = turned(rich) as LayoutDocument;
+    expect(JSON.stringify(stored)).not.toBe(JSON.stringify(rich));
+    expect(layoutStep(stored, rich)).toEqual({ step: "patch", reasons: [] });
+    const renamed = rich.fields.map((one) => (one.name === "flags" ? { ...one, name: "marks" } : one));
+    expect(layoutStep(stored, { ...rich, fields: renamed }).step).toBe("patch");
   });
 
   it("bears a firmware range that is half-typed", () => {
