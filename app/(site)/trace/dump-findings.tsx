@@ -100,7 +100,7 @@ function Differences({ fields }: { fields: readonly FieldDifference[] }) {
           <li key={`${group.field}${group.bytes[0]?.at}`} className="border-b border-rule/55 py-2">
             <div className="flex flex-wrap items-baseline gap-x-4">
               <span className="font-semibold">{group.field ?? "unused memory"}</span>
-              {group.field ? <Values {...group} /> : null}
+              {group.expectedValue === null && group.actualValue === null ? null : <Values {...group} />}
             </div>
             <div className="mt-0.5 flex flex-wrap gap-x-3 font-mono text-xs">
               {group.bytes.slice(0, BYTES_SHOWN_MAX).map(({ at, expected, actual }) => (

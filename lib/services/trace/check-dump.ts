@@ -1,7 +1,6 @@
 import { sha256Hex } from "@/builders/bundle/sha256";
 import { type CompiledLayout, compileLayout } from "@/builders/codec/compile-layout";
-import { compareImages } from "@/builders/codec/difference";
-import { checkChecksums, type DecodedField, decodeImage, imageDigestBytes } from "@/builders/codec/image";
+import { checkChecksums, decodeImage, imageDigestBytes } from "@/builders/codec/image";
 import { findDevicesBySerial } from "@/db/queries/devices";
 import { findImagesBySha256, listImagesOfDevice } from "@/db/queries/images";
 import { listLayoutsInUse } from "@/db/queries/package-layouts";
@@ -9,6 +8,7 @@ import { AppError } from "@/lib/errors";
 import type { Ctx } from "@/lib/services/context";
 import { layoutsOfPackages } from "@/lib/services/devices/layouts-of-packages";
 import type { DumpResult } from "@/schemas/api/devices";
+import { differencesOf } from "./dump-differences";
 import { type DumpFile, memoryOf, readDumpFile, wrongShape } from "./dump-file";
 
 type KnownImage = Awaited<ReturnType<typeof listImagesOfDevice>>[number];
@@ -90,7 +90,7 @@ async function differingResult(ctx: Ctx, serial: string, candidate: Candidate): 
     const advice = `These bytes name ${found}, not ${serial}. Boards may have been swapped: hold both devices, compare the hardware ids, and do not write until it is clear which cell this is.`;
     return { match: "other-serial", serial: found, ...facts, differences, advice };
   }
-  const advice = differsAdvice(facts.checksums, differences.length, image.version);
+  const advice = differsAdvice(facts.checksums, new Set(differences.map(({ at }) => at)).size, image.version);
   return { match: "differs", serial, ...facts, differences, advice };
 }
 
@@ -134,26 +134,6 @@ function serialIn(layout: CompiledLayout, bytes: Uint8Array): string | null {
   const field = layout.fields.find(({ source }) => source === "device.serial");
   const value = field && decodeImage(layout, bytes).find(({ name }) => name === field.name)?.value;
   return typeof value === "string" && value !== "" ? value : null;
-}
-
-function differencesOf(layout: CompiledLayout, expected: Uint8Array, actual: Uint8Array): DumpResult["differences"] {
-  const before = new Map(decodeImage(layout, expected).map((field) => [field.name, field]));
-  const after = new Map(decodeImage(layout, imageDigestBytes(layout, actual)).map((field) => [field.name, field]));
-  const holds = (field: DecodedField, at: number) => at >= field.at && at < field.at + field.raw.length / 2;
-  const hex = (byte: number | null) => (byte === null ? "" : byte.toString(16).padStart(2, "0"));
-  return compareImages({ layout, bytes: expected }, { layout, bytes: actual }).bytes.map(({ at, from, to }) => {
-    const field = [...before.values()].find((candidate) => holds(candidate, at));
-    const found = field && after.get(field.name);
-    return {
-      at,
-      field: field?.name ?? null,
-      expected: hex(from),
-      actual: hex(to),
-      expectedValue: field?.value ?? null,
-      actualValue: found?.value ?? null,
-      unit: field?.unit ?? null,
-    };
-  });
 }
 
 function exactAdvice(image: KnownImage): string {
