@@ -5,6 +5,8 @@ import type { ByteRange, FieldValue, LayoutDocument, LayoutField, MemorySegment 
 
 type Part = { kept: number } | { blank: number } | { field: Partial<LayoutField>; bytes: number };
 
+const SUM_BYTES = 2;
+
 const from = (value: string): FieldValue => ({ from: value }) as FieldValue;
 const fields: Part[] = [
   { field: { name: "zero", type: "f32", value: from("coefficients.zero") }, bytes: 4 },
@@ -68,14 +70,42 @@ function shapes(cut: fc.Arbitrary<Jump[]>): fc.Arbitrary<MemoryShape> {
     }));
 }
 
-function layoutOf(
-  parts: readonly Part[],
-  cut: readonly Jump[],
-  { rank, base, fill }: { rank: number; base: number; fill: number },
-): LayoutDocument {
-  const fields: LayoutField[] = [];
-  const kept: ByteRange[] = [];
-  const starts: number[] = [];
+interface Base {
+  rank: number;
+  base: number;
+  fill: number;
+}
+
+function layoutOf(parts: readonly Part[], cut: readonly Jump[], base: Base): LayoutDocument {
+  const { starts, at, fields, kept } = laidOut(parts);
+  const drawn = cut.map(({ share }) => starts[Math.floor(share * starts.length)] ?? at);
+  const edges = [...new Set([0, ...drawn])].sort((a, b) => a - b);
+  const [first = 0, ...more] = addressesOf(edges, at + SUM_BYTES, cut, base);
+  const segments = more.map((baseAddress, i): MemorySegment => ({ at: edges[i + 1] as number, baseAddress }));
+  const serialAt = fields.find(({ name }) => name === "serial")?.at ?? 0;
+  const memory = {
+    bytes: at + SUM_BYTES,
+    pageBytes: 1,
+    baseAddress: first,
+    fill: base.fill,
+    byteOrder: "little",
+  } as const;
+  return {
+    format: "trimwright/layout@1",
+    family: "MW-20",
+    version: "1.0.0",
+    firmware: ">=1.0.0 <2.0.0",
+    order: 1,
+    memory: segments.length > 0 ? { ...memory, segments } : memory,
+    kept,
+    fields,
+    checksums: [{ name: "sum", at, algorithm: "CRC-16/MODBUS", over: [serialAt, serialAt + 15] }],
+  };
+}
+
+/** Parts one behind the other; `at` is where the checksum follows. */
+function laidOut(parts: readonly Part[]) {
+  const [fields, kept, starts]: [LayoutField[], ByteRange[], number[]] = [[], [], []];
   let at = 0;
   for (const part of parts) {
     starts.push(at);
@@ -84,34 +114,23 @@ function layoutOf(
     if ("field" in part) fields.push({ ...part.field, at } as LayoutField);
     at += bytes;
   }
-  const bytes = at + 2;
-  const edges = [...new Set(cut.map(({ share }) => starts[Math.floor(share * starts.length)] ?? at))];
-  const pieces = [0, ...edges.filter((edge) => edge > 0).sort((a, b) => a - b)].map((from, i, all) => ({
-    from,
-    bytes: (all[i + 1] ?? bytes) - from,
-    rank: i === 0 ? rank : (cut[i - 1]?.rank ?? 0),
-    gap: cut[i - 1]?.gap ?? 1,
+  return { starts, at, fields, kept };
+}
+
+/** Addresses of the pieces that start at some offsets: from the base on by rank, with the gaps between them. */
+function addressesOf(starts: readonly number[], bytes: number, cut: readonly Jump[], { rank, base }: Base): number[] {
+  const pieces = starts.map((start, i) => ({
+    i,
+    bytes: (starts[i + 1] ?? bytes) - start,
+    ...(cut[i - 1] ?? { rank, gap: 1 }),
   }));
-  const addresses = new Map<number, number>();
+  const addresses: number[] = [];
   let address = base;
-  for (const piece of [...pieces].sort((a, b) => a.rank - b.rank)) {
-    addresses.set(piece.from, address);
+  for (const piece of pieces.sort((a, b) => a.rank - b.rank)) {
+    addresses[piece.i] = address;
     address += piece.bytes + piece.gap;
   }
-  const place = (from: number): number => addresses.get(from) ?? 0;
-  const segments = pieces.slice(1).map(({ from }): MemorySegment => ({ at: from, baseAddress: place(from) }));
-  const serialAt = fields.find(({ name }) => name === "serial")?.at ?? 0;
-  return {
-    format: "trimwright/layout@1",
-    family: "MW-20",
-    version: "1.0.0",
-    firmware: ">=1.0.0 <2.0.0",
-    order: 1,
-    memory: { bytes, pageBytes: 1, baseAddress: place(0), fill, byteOrder: "little", ...(segments[0] && { segments }) },
-    kept,
-    fields,
-    checksums: [{ name: "sum", at, algorithm: "CRC-16/MODBUS", over: [serialAt, serialAt + 15] }],
-  };
+  return addresses;
 }
 
 /** One to four invented devices. */
