@@ -27,6 +27,11 @@ export function formatFigure(value: number | null | undefined, options: FigureOp
   return prefix + whole.replace(grouping, ",") + (decimals === undefined ? "" : `.${decimals}`);
 }
 
+/** A number with all its digits, as it was given, and a true minus sign. */
+export function formatGiven(value: number): string {
+  return String(value).replaceAll("-", minus);
+}
+
 /** A count with thousands separated: 12,500. */
 export function formatCount(value: number | null | undefined): string {
   return formatFigure(value, { digits: 0, group: true });

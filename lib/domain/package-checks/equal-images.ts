@@ -14,7 +14,7 @@ export function checkEqualImages({ devices: packed, groups }: EqualImagesFacts):
     code: "equal-images",
     verdict: first ? "warn" : "pass",
     message: first
-      ? `${formatNumberOf(groups.length, "group of devices holds", "groups of devices hold")} the same bytes apart from serial and checksums: ${someSerials(first)}.`
+      ? `${formatNumberOf(groups.length, "group of devices holds", "groups of devices hold")} the same bytes apart from serial and checksums${groups.length === 1 ? ": " : "; the first is "}${someSerials(first)}.`
       : `No two of ${devices(packed)} hold the same bytes apart from serial and checksums.`,
     evidence: {
       devices: packed,

@@ -1,4 +1,4 @@
-import { formatNumberOf } from "@/lib/domain/format/figure";
+import { formatGiven, formatNumberOf } from "@/lib/domain/format/figure";
 import { devices, type PackageCheck } from "./check";
 
 /** The values of one field over all devices, as decoded from the images. */
@@ -49,7 +49,7 @@ export function checkLimits(packed: number, fields: readonly FieldExtremes[]): P
     fields: limited.map(({ name, unit, min, max, lowest, highest }) => ({ name, unit, min, max, lowest, highest })),
   };
   const told = ({ field, serial, value, limit }: Approach) =>
-    `${field.name} of ${serial}: ${Number(value.toPrecision(TOLD_DIGITS))}${field.unit ? ` ${field.unit}` : ""}, limit ${limit}`;
+    `${field.name} of ${serial}: ${formatGiven(Number(value.toPrecision(TOLD_DIGITS)))}${field.unit ? ` ${field.unit}` : ""}, limit ${formatGiven(limit)}`;
   const [nearest] = approaches;
   if (outside[0])
     return {

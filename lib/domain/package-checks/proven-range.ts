@@ -1,4 +1,4 @@
-import { formatCount } from "@/lib/domain/format/figure";
+import { formatCount, formatGiven } from "@/lib/domain/format/figure";
 import type { PackageCheck } from "./check";
 
 export interface ProvenRangeFacts {
@@ -11,6 +11,8 @@ export interface ProvenRangeFacts {
   unprovenDevices: number;
 }
 
+const rangeText = ([from, to]: readonly [number, number]) => `${formatGiven(from)} to ${formatGiven(to)} °C`;
+
 /** Whether the temperatures that were measured span those that the family works at. */
 export function checkProvenRange(facts: ProvenRangeFacts): PackageCheck {
   const { temperatureMinC: min, temperatureMaxC: max, provenRange, unprovenDevices } = facts;
@@ -20,12 +22,12 @@ export function checkProvenRange(facts: ProvenRangeFacts): PackageCheck {
     if (provenRange[0] > min) gaps.push([min, Math.min(provenRange[0], max)]);
     if (provenRange[1] < max) gaps.push([Math.max(provenRange[1], min), max]);
   }
-  const family = `The family works from ${min} to ${max} °C`;
-  const where = provenRange ? `proven is ${provenRange[0]} to ${provenRange[1]} °C` : "nothing is proven";
+  const family = `The family works from ${rangeText([min, max])}`;
+  const where = provenRange ? `proven is ${rangeText(provenRange)}` : "nothing is proven";
   const sentences = [
     gaps.length === 0
       ? `${family}; ${where}.`
-      : `${family}; ${where}: nothing is claimed ${gaps.map(([from, to]) => `from ${from} to ${to} °C`).join(" and ")}.`,
+      : `${family}; ${where}: nothing is claimed ${gaps.map((gap) => `from ${rangeText(gap)}`).join(" and ")}.`,
   ];
   if (unprovenDevices > 0)
     sentences.push(

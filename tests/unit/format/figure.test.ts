@@ -1,6 +1,14 @@
 import fc from "fast-check";
 import { describe, expect, it } from "vitest";
-import { formatCount, formatFigure, formatNumberOf, formatPercent } from "@/lib/domain/format/figure";
+import { formatCount, formatFigure, formatGiven, formatNumberOf, formatPercent } from "@/lib/domain/format/figure";
+
+describe("formatGiven", () => {
+  it("keeps all digits and writes true minus signs", () => {
+    expect(formatGiven(-10.01)).toBe("\u221210.01");
+    expect(formatGiven(-2e-9)).toBe("\u22122e\u22129");
+    expect(formatGiven(40)).toBe("40");
+  });
+});
 
 describe("formatFigure", () => {
   it("writes a true minus sign and fixed decimals", () => {

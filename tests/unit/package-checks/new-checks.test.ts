@@ -130,6 +130,14 @@ describe("equal images", () => {
       message: "1 group of devices holds the same bytes apart from serial and checksums: A, B.",
       evidence: { groups: { count: 1, items: [["A", "B"]] } },
     });
+    const two = checkEqualImages({
+      devices: 9,
+      groups: [
+        ["A", "B"],
+        ["C", "D"],
+      ],
+    });
+    expect(two.message).toMatch(/^2 groups of devices hold .* checksums; the first is A, B\.$/);
   });
 });
 

@@ -105,6 +105,12 @@ describe("proven range", () => {
     expect(checkProvenRange({ ...facts, provenRange: [50, 60] }).evidence.gaps).toEqual([[10, 40]]);
   });
 
+  it("writes a true minus sign", () => {
+    const { message } = checkProvenRange({ ...facts, temperatureMinC: -10, provenRange: [-8.5, 40] });
+    expect(message).toContain("works from \u221210 to 40 °C; proven is \u22128.5 to 40 °C");
+    expect(message).toContain("nothing is claimed from \u221210 to \u22128.5 °C");
+  });
+
   it("warns of devices with imported values beside a proven range", () => {
     expect(checkProvenRange({ ...facts, provenRange: [5, 45], unprovenDevices: 2 })).toMatchObject({
       verdict: "warn",

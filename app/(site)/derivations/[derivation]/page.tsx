@@ -7,7 +7,7 @@ import { Notice } from "@/app/_components/notice";
 import { Progress } from "@/app/_components/progress";
 import { stateOf } from "@/app/_components/state/state-of";
 import { TitleRow } from "@/app/_components/title-row";
-import { formatCount } from "@/lib/domain/format/figure";
+import { formatCount, formatGiven } from "@/lib/domain/format/figure";
 import { formatDate } from "@/lib/domain/format/time";
 import { holds, orNotFound, pageContext } from "@/lib/http/page-context";
 import { getDerivationView } from "@/lib/services/derivations/get-derivation";
@@ -25,7 +25,7 @@ function noteOf({ method, order, counts, provenRange }: DerivationView): string 
   const roles = Object.entries(counts.roles).map(
     ([role, count]) => `${formatCount(count)} ${ROLE_WORDS[role] ?? role}`,
   );
-  const proven = provenRange ? `proven ${provenRange[0]} to ${provenRange[1]} °C` : "";
+  const proven = provenRange ? `proven ${formatGiven(provenRange[0])} to ${formatGiven(provenRange[1])} °C` : "";
   return [`${method}, order ${order}`, roles.join(", "), proven].filter(Boolean).join(" · ");
 }
 

@@ -1,6 +1,6 @@
 import { Digest } from "@/app/_components/digest";
 import { Facts } from "@/app/_components/facts";
-import { formatCount } from "@/lib/domain/format/figure";
+import { formatCount, formatNumberOf } from "@/lib/domain/format/figure";
 import { leftOutWords } from "../left-out-words";
 import { Evidence } from "./evidence";
 import { type Named, NamedSerials } from "./named-serials";
@@ -111,6 +111,11 @@ export function EqualImages({ devices, groups }: EqualImagesEvidence) {
       {groups.items.map((serials) => (
         <NamedSerials key={serials[0]} words="devices hold the same values" count={serials.length} serials={serials} />
       ))}
+      {groups.count > groups.items.length ? (
+        <p className="text-sm text-ink-soft">
+          and {formatNumberOf(groups.count - groups.items.length, "more group", "more groups")}
+        </p>
+      ) : null}
     </div>
   );
 }

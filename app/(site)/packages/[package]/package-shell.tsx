@@ -9,6 +9,7 @@ import { stateOf } from "@/app/_components/state/state-of";
 import { TabLinks } from "@/app/_components/tab-links";
 import { TimeText } from "@/app/_components/time-text";
 import { TitleRow } from "@/app/_components/title-row";
+import { formatCount } from "@/lib/domain/format/figure";
 import { hasOneTimeCode } from "@/lib/services/account/has-one-time-code";
 import type { PersonCtx } from "@/lib/services/context";
 import { getLotThread } from "@/lib/services/lots/get-lot-thread";
@@ -83,7 +84,7 @@ export async function PackageShell({ ctx, view, tab, title, children }: PackageS
 function PackageTabs({ view, tab }: { view: PackageView; tab: PackageTab }) {
   const base = `/packages/${view.id}`;
   const address = (name: PackageTab) => (name === "contents" ? base : `${base}/${name}`);
-  const count = (shown: number) => <span className="font-mono text-xs">{shown}</span>;
+  const count = (shown: number) => <span className="font-mono text-xs">{formatCount(shown)}</span>;
   return (
     <TabLinks
       label={`Parts of package ${view.version}`}

@@ -10,6 +10,7 @@ import { Card } from "@/app/_components/card";
 import { FormError } from "@/app/_components/form/form-error";
 import { Select } from "@/app/_components/form/select";
 import { TextArea } from "@/app/_components/form/text-area";
+import { formatNumberOf } from "@/lib/domain/format/figure";
 import type { PackagePlan } from "@/lib/services/packages/plan-package";
 import { buildPackageAction } from "../../../packages/actions";
 import { Signers, WouldPack } from "./plan-parts";
@@ -82,7 +83,7 @@ export function BuildForm({ lot, plan }: { lot: string; plan: PackagePlan }) {
               pendingText="Starting"
               disabled={!content || content.packed === 0}
             >
-              Build a package of {content?.packed ?? 0} devices
+              Build a package of {formatNumberOf(content?.packed ?? 0, "device")}
             </Button>
           </div>
         </form>

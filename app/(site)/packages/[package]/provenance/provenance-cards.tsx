@@ -3,7 +3,7 @@ import type { ReactNode } from "react";
 import { Card } from "@/app/_components/card";
 import { Digest } from "@/app/_components/digest";
 import { TimeText } from "@/app/_components/time-text";
-import { formatNumberOf } from "@/lib/domain/format/figure";
+import { formatGiven, formatNumberOf } from "@/lib/domain/format/figure";
 import type { PackageProvenance } from "@/lib/services/packages/get-provenance";
 
 type Derivation = PackageProvenance["derivations"][number];
@@ -76,11 +76,13 @@ export function Decisions({ decisions }: { decisions: Signed }) {
 /** One computation of coefficients: what it read, what it left out, who approved it. */
 export function DerivationCard({ derivation }: { derivation: Derivation }) {
   const { provenRange, exclude, acknowledgements } = derivation;
-  const proven = provenRange ? `, proven ${provenRange[0]} to ${provenRange[1]} °C` : ", nothing proven";
+  const proven = provenRange
+    ? `, proven ${formatGiven(provenRange[0])} to ${formatGiven(provenRange[1])} °C`
+    : ", nothing proven";
   return (
     <Card
       title={<Link href={`/derivations/${derivation.id}`}>Coefficients: {derivation.method}</Link>}
-      note={`order ${derivation.order}, arithmetic ${derivation.engine}${proven}`}
+      note={`order ${derivation.order}, ${derivation.method === "import" ? "values of a file" : `arithmetic ${derivation.engine}`}${proven}`}
     >
       <div className="flex flex-col gap-3 text-sm">
         <Digest value={derivation.sha256} name="digest of what was computed from" />
