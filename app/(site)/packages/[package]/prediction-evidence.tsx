@@ -3,7 +3,6 @@ import { Facts } from "@/app/_components/facts";
 import { LegalNote } from "@/app/_components/legal-note";
 import { DataTable } from "@/app/_components/table/data-table";
 import { formatCount, formatFigure, formatNumberOf } from "@/lib/domain/format/figure";
-import { formatQuantityWithUnit } from "@/lib/domain/format/quantity";
 import { type Named, NamedSerials } from "./named-serials";
 
 export interface VerificationFacts {
@@ -32,7 +31,7 @@ export interface TwinEvidence {
     zeroRounding: (AtDevice & { mvV: number }) | null;
   };
   withoutReadings: number;
-  judged: number;
+  devices: number;
   spanJudged: number;
   zeroJudged: number;
   neverLoaded: Named;
@@ -83,13 +82,13 @@ const errorColumns = [
 
 /** The decoded values applied to the lot's own readings, device by device. */
 export function PredictionEvidence(evidence: TwinEvidence) {
-  const { judged, spanJudged, zeroJudged, neverLoaded, withoutReadings, outside, worst } = evidence;
+  const { devices, spanJudged, zeroJudged, neverLoaded, withoutReadings, outside, worst } = evidence;
   return (
     <div className="flex flex-col gap-3">
       <Facts
         small
         facts={[
-          { label: "devices with readings", value: formatCount(judged) },
+          { label: "devices with readings", value: formatCount(devices - withoutReadings) },
           { label: "judged on span", value: formatCount(spanJudged) },
           { label: "judged on zero", value: formatCount(zeroJudged) },
           { label: "never loaded", value: formatCount(neverLoaded.count) },
@@ -101,7 +100,7 @@ export function PredictionEvidence(evidence: TwinEvidence) {
       <DataTable
         name="predictions"
         urlName="twin"
-        rows={worst}
+        rows={worst.map((one) => ({ ...one, spanJudged: spanWords(one) }))}
         rowHref="/trace/{serial}"
         note="The decoded values applied to the lot's own readings, worst first"
         columns={[
@@ -114,10 +113,9 @@ export function PredictionEvidence(evidence: TwinEvidence) {
             format: { as: "quantity", name: "spanErrorPpm", sign: "always" },
           },
           {
-            key: "independent",
+            key: "spanJudged",
             header: "Span judged",
             title: "On a loaded point that the gain was not taken from",
-            format: { as: "yes-no", yes: "yes", no: "at its trim point only" },
           },
         ]}
         empty={{ title: "No readings of packed devices" }}
@@ -125,6 +123,12 @@ export function PredictionEvidence(evidence: TwinEvidence) {
       <LegalNote />
     </div>
   );
+}
+
+/** Whether a device's readings say something about its span. */
+function spanWords({ spanRatio, independent }: Record<string, unknown>): string {
+  if (spanRatio === null) return "no, never loaded";
+  return independent === true ? "yes" : "no, loaded at its trim point only";
 }
 
 const celsius = (value: number | null | undefined) => `${formatFigure(value, { digits: 1 })} °C`;
@@ -148,7 +152,7 @@ function WorstCases({ span, zero, rounding, range }: TwinEvidence) {
     rounding && {
       what: "Largest rounding at a reading",
       value: `${formatFigure(rounding.ppm, { digits: 2 })} ppm`,
-      where: "readings",
+      where: "—",
       serial: rounding.serial,
     },
     spanRounding && {
@@ -159,7 +163,7 @@ function WorstCases({ span, zero, rounding, range }: TwinEvidence) {
     },
     zeroRounding && {
       what: "Largest rounding of zero over the family's range",
-      value: formatQuantityWithUnit("zero", zeroRounding.mvV),
+      value: `${formatFigure(zeroRounding.mvV * 1e6, { digits: 2 })} nV/V`,
       where: celsius(zeroRounding.atC),
       serial: zeroRounding.serial,
     },
