@@ -47,7 +47,7 @@ function lintAlignment(layout: LayoutDocument, paths: LayoutPaths): Problem[] {
   });
 }
 
-const addressText = (address: number) => (address < 65536 ? `${address}` : `0x${address.toString(16).toUpperCase()}`);
+const addressText = (address: number) => `0x${address.toString(16).toUpperCase().padStart(4, "0")}`;
 
 function lintCoverage(layout: LayoutDocument, paths: LayoutPaths): Problem[] {
   if (layout.checksums.length === 0) {

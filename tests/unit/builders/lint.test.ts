@@ -419,7 +419,7 @@ describe("lintLayout", () => {
   it("says in words that a 24-bit word of the golden layout starts at an odd address", () => {
     const { warnings } = lintLayout(JSON.parse(firstGolden().layout), { family: { ...family, code: "MW-20" } });
     expect(warnings.map(({ message }) => message)).toContain(
-      "“zeroTc” starts at an odd address, 51; fine for firmware that reads bytes",
+      "“zeroTc” starts at an odd address, 0x0033; fine for firmware that reads bytes",
     );
   });
 
