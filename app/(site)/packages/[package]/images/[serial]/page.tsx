@@ -9,6 +9,7 @@ import { memoryOfLayout } from "@/app/_components/memory-map-parts";
 import { StateMark } from "@/app/_components/state/state-mark";
 import { DataTable } from "@/app/_components/table/data-table";
 import { TitleRow } from "@/app/_components/title-row";
+import { listSegments } from "@/builders/codec/segments";
 import { formatAddress } from "@/lib/domain/format/digest";
 import { formatField } from "@/lib/domain/format/field-value";
 import { formatNumberOf } from "@/lib/domain/format/figure";
@@ -32,7 +33,8 @@ export default async function ImagePage({ params }: PageProps) {
   const { package: id, serial } = await params;
   const image = await orNotFound(getImageView(ctx, id, decodeURIComponent(serial).toUpperCase()));
   const layout = await getLayout(ctx, { family: image.family, version: image.layout });
-  const memory = memoryOfLayout(layout.document as unknown as LayoutDocument);
+  const document = layout.document as unknown as LayoutDocument;
+  const memory = memoryOfLayout(document);
   return (
     <>
       <TitleRow
@@ -54,7 +56,7 @@ export default async function ImagePage({ params }: PageProps) {
         }
       />
       <div className="flex flex-col gap-[18px]">
-        <ImageFacts image={image} />
+        <ImageFacts image={image} document={document} />
         <div className="grid gap-[18px] xl:grid-cols-2">
           <Card
             title="Memory"
@@ -84,7 +86,7 @@ export default async function ImagePage({ params }: PageProps) {
   );
 }
 
-function ImageFacts({ image }: { image: ImageView }) {
+function ImageFacts({ image, document }: { image: ImageView; document: LayoutDocument }) {
   const wrong = image.checksums.filter((one) => !one.ok);
   return (
     <Card>
@@ -93,7 +95,7 @@ function ImageFacts({ image }: { image: ImageView }) {
           small
           facts={[
             { label: "board", value: image.hardwareId ?? "not known" },
-            { label: "first address", value: formatAddress(image.baseAddress) },
+            placeFact(document),
             { label: "bytes", value: image.length },
           ]}
         />
@@ -123,6 +125,16 @@ function ImageFacts({ image }: { image: ImageView }) {
   );
 }
 
+/** Where the image lies in the device, hex; offsets on this page count through all segments. */
+function placeFact({ memory }: LayoutDocument) {
+  const segments = listSegments(memory);
+  if (segments.length === 1) return { label: "first address, hex", value: formatAddress(memory.baseAddress) };
+  const places = segments.map(({ at, end, address }) => {
+    return `${formatAddress(at)} on at ${formatAddress(address)}–${formatAddress(address + end - at - 1)}`;
+  });
+  return { label: "offsets at addresses, hex", value: places.join(", ") };
+}
+
 function FieldsCard({ image }: { image: ImageView }) {
   const checksums = new Set(image.checksums.map(({ name }) => name));
   const rows = image.fields.map((field) => {
@@ -137,8 +149,8 @@ function FieldsCard({ image }: { image: ImageView }) {
         rows={rows}
         columns={[
           { key: "name", header: "Field", format: { as: "code" } },
-          { key: "text", header: "Value", align: "right", format: { as: "code" } },
           { key: "unit", header: "Unit" },
+          { key: "text", header: "Value", align: "right", format: { as: "code" } },
           { key: "raw", header: "Stored", unit: "hex", format: { as: "code" } },
           { key: "address", header: "At", unit: "hex", format: { as: "code" } },
           { key: "source", header: "From" },
