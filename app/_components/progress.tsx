@@ -31,7 +31,7 @@ export function ProgressBar({
         {step ? <span className="text-ink-soft">{step}</span> : null}
         <span className="ml-auto text-ink-soft">
           {total > 0 ? `${formatCount(done)} of ${formatCount(total)}` : "beginning"}
-          {secondsLeft === undefined ? "" : `, about ${formatDuration(secondsLeft)} left`}
+          {secondsLeft === undefined ? "" : `, about ${formatDuration(secondsLeft)} left${step ? " of this step" : ""}`}
         </span>
       </div>
       <div
@@ -102,5 +102,6 @@ function secondsLeft(
   if (!start.current || start.current.done > done) start.current = { at: now, done };
   const { at, done: before } = start.current;
   if (done === before || total === 0 || done >= total) return undefined;
-  return ((now - at) / 1_000 / (done - before)) * (total - done);
+  const seconds = ((now - at) / 1_000 / (done - before)) * (total - done);
+  return seconds < 1 ? undefined : seconds;
 }
