@@ -102,7 +102,8 @@ function encodeWide(field: CompiledField, value: unknown, target: EncodeTarget):
   const { min, max } = wideEnds(field.type);
   if (stored < min || stored > max) {
     const limit = String(stored < min ? min : max);
-    throw refusal("image.value_out_of_range", field, value, limit, serial, `does not fit into ${field.type}`);
+    const reason = `does not fit into ${field.type}; the ${stored < min ? "least" : "most"} is ${limit}`;
+    throw refusal("image.value_out_of_range", field, value, limit, serial, reason);
   }
   view.setBigInt64(field.at, BigInt.asIntN(64, stored), field.littleEndian);
 }
@@ -135,12 +136,23 @@ function encodeHexConstant(field: CompiledField, value: unknown, target: EncodeT
   }
 }
 
+/** Digits of a limit in the message; the error's `limit` has all of them. */
+const TOLD_DIGITS = 9;
+
 function outOfRange(field: CompiledField, value: number, below: boolean, serial: string): AppError {
   const type = field.number as NonNullable<CompiledField["number"]>;
-  const end = below ? type.min : type.max;
-  const limit = type.kind === "integer" ? end * field.scale + field.bias : end;
+  const stored = below ? type.min : type.max;
+  const limit = type.kind === "integer" ? stored * field.scale + field.bias : stored;
   const size = field.bits ? `${field.bits.width} bits` : field.type;
-  return refusal("image.value_out_of_range", field, value, limit, serial, `does not fit into ${size}`);
+  const end = `the ${below ? "least" : "most"} is ${Number(limit.toPrecision(TOLD_DIGITS))}`;
+  return refusal(
+    "image.value_out_of_range",
+    field,
+    value,
+    limit,
+    serial,
+    `does not fit into ${size}; ${end}`,
+  );
 }
 
 function refusal(

@@ -76,6 +76,7 @@ describe("bits of an integer", () => {
     expect(refusal({ type: "u8", value: { bits } }, withVersion(4))).toMatchObject({
       code: "image.value_out_of_range",
       details: { serial: "LC1-00007", field: "one.minor", value: 4, limit: 3 },
+      message: "LC1-00007: one.minor = 4 does not fit into 2 bits; the most is 3",
     });
   });
 
