@@ -3,6 +3,7 @@ import { readImport } from "@/app/(site)/families/[family]/layouts/draft/read-im
 import { fieldColumns } from "@/app/(site)/families/[family]/layouts/table/columns";
 import { deedOf, within } from "@/app/(site)/families/[family]/layouts/table/grid-keys";
 import {
+  algorithmMember,
   numberMember,
   numberText,
   rangesMember,
@@ -39,6 +40,20 @@ describe("cells of the field table", () => {
     expect(written(valueMember, "nowhere")).toBe("“nowhere” is no source; a constant begins with =.");
     expect(valueMember.read({ value: { bits: [] } })).toBeNull();
     expect(valueMember.read({ value: { const: [1, 2] } })).toBeNull();
+  });
+
+  it("tell in words what only the text can change", () => {
+    expect(valueMember.tell?.({ value: { const: [-1, 2] } })).toBe("= \u22121, 2");
+    expect(valueMember.tell?.({ value: { bits: [{ name: "mode" }, null, {}] } })).toBe("bits: mode, …, …");
+    const sum = { algorithm: { sum: 16, complement: "ones" } };
+    expect([algorithmMember.read(sum), algorithmMember.tell?.(sum)]).toEqual([
+      null,
+      "sum of bytes, 16 bits, ones' complement",
+    ]);
+    expect([algorithmMember.read({ algorithm: "CRC-16/ARC" }), algorithmMember.tell?.({ algorithm: null })]).toEqual([
+      "CRC-16/ARC",
+      "…",
+    ]);
   });
 
   it("write one range or several", () => {

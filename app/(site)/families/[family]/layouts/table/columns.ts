@@ -2,7 +2,15 @@ import { CRC_CATALOGUE } from "@/builders/codec/crc";
 import { SOURCE_NAMES } from "@/builders/codec/sources";
 import type { LayoutField } from "@/schemas/documents/layout";
 import layoutSchema from "@/schemas/documents/layout.schema.json";
-import { type CellKind, numberMember, rangesMember, textMember, truthMember, valueMember } from "./write-member";
+import {
+  algorithmMember,
+  type CellKind,
+  numberMember,
+  rangesMember,
+  textMember,
+  truthMember,
+  valueMember,
+} from "./write-member";
 
 export interface Column {
   name: string;
@@ -97,7 +105,7 @@ export function checksumColumns(): Column[] {
   return [
     column("checksum", "name"),
     column("checksum", "at", { figures: true, kind: numberMember("at", true) }),
-    column("checksum", "algorithm", { kind: textMember("algorithm", true), suggestions: Object.keys(CRC_CATALOGUE) }),
+    column("checksum", "algorithm", { kind: algorithmMember, suggestions: Object.keys(CRC_CATALOGUE) }),
     column("checksum", "over", { kind: rangesMember }),
     column("checksum", "byteOrder"),
   ];

@@ -64,7 +64,7 @@ export const PartRow = memo(function PartRow(props: PartRowProps) {
             ) : (
               <>
                 {index === 0 ? <RowMark problems={problems} /> : null}
-                {text === null ? "…" : column.figures ? text.replace("-", "−") : text}
+                {text === null ? (column.kind.tell?.(part) ?? "…") : column.figures ? text.replace("-", "−") : text}
               </>
             )}
           </Cell>

@@ -1,6 +1,7 @@
 import { SOURCE_NAMES } from "@/builders/codec/sources";
+import { algorithmText } from "@/lib/domain/checksum-text";
 import { type JsonEditor, onOneLine, type TextEdit } from "@/lib/domain/json-edits";
-import type { SourceName } from "@/schemas/documents/layout";
+import type { ChecksumAlgorithm, SourceName } from "@/schemas/documents/layout";
 
 /** Edits of the text, or in words why a cell's entry can't be taken. */
 export type Written = { edits: TextEdit[] } | { refusal: string };
@@ -11,6 +12,8 @@ type Loose = Record<string, unknown>;
 export interface CellKind {
   /** What the cell says; null where the table can't show it, and only the text can change it. */
   read(part: Loose): string | null;
+  /** What stands there instead, in short. */
+  tell?(part: Loose): string;
   /** @param entry as typed, trimmed. */
   write(place: CellPlace, entry: string): Written;
 }
@@ -100,12 +103,26 @@ export const valueMember: CellKind = {
     if ("from" in value) return String(value.from);
     return "const" in value && !Array.isArray(value.const) ? `= ${value.const}` : null;
   },
+  tell: ({ value }) => {
+    const { bits, const: list } = (value ?? {}) as { bits?: unknown; const?: unknown };
+    if (Array.isArray(list)) return `= ${list.join(", ").replaceAll("-", "−")}`;
+    return Array.isArray(bits)
+      ? `bits: ${bits.map((part: Loose | null) => String(part?.name ?? "…")).join(", ")}`
+      : "…";
+  },
   write: (place, entry) => {
     if (entry.startsWith("=")) return writeConstant(place, entry.slice(1).trim());
     if (!SOURCE_NAMES.includes(entry as SourceName))
       return { refusal: `“${entry}” is no source; a constant begins with =.` };
     return writeValue(place, "from", JSON.stringify(entry));
   },
+};
+
+/** The algorithm of a checksum: a name, or an object, which is told in words. */
+export const algorithmMember: CellKind = {
+  ...textMember("algorithm", true),
+  tell: ({ algorithm }) =>
+    typeof algorithm === "object" && algorithm !== null ? algorithmText(algorithm as ChecksumAlgorithm) : "…",
 };
 
 function writeConstant(place: CellPlace, entry: string): Written {
