@@ -64,16 +64,21 @@ export interface NewestPackageRow {
   state: string;
   /** Checks with the verdict fail. */
   failed: number;
+  /** Its build was cancelled. */
+  cancelled: boolean;
 }
+
+const isCancelled = sql<boolean>`coalesce(package.failure ->> 'code' = 'package.cancelled', false)`;
 
 /**
  * The package that tells where a lot stands: the one with the highest number, but one that gave way to another (superseded, or
- * withdrawn before an earlier release went live again) only where there is no other.
+ * withdrawn before an earlier release went live again) or was cancelled only where there is no other.
  */
 export async function findNewestPackage(db: Db, lotId: string): Promise<NewestPackageRow | undefined> {
   return db
     .selectFrom("package")
     .select(["package.id", "package.version", "package.state"])
+    .select(isCancelled.as("cancelled"))
     .select((eb) =>
       eb
         .selectFrom("packageCheck")
@@ -84,7 +89,9 @@ export async function findNewestPackage(db: Db, lotId: string): Promise<NewestPa
         .as("failed"),
     )
     .where("package.lotId", "=", lotId)
-    .orderBy(sql`case package.state when 'superseded' then 2 when 'withdrawn' then 1 else 0 end`)
+    .orderBy(
+      sql`case when ${isCancelled} then 3 else case package.state when 'superseded' then 2 when 'withdrawn' then 1 else 0 end end`,
+    )
     .orderBy("package.versionMajor", "desc")
     .orderBy("package.versionMinor", "desc")
     .orderBy("package.versionPatch", "desc")

@@ -1,5 +1,6 @@
 import { sql } from "kysely";
 import { beforeAll, describe, expect, it } from "vitest";
+import { getLotThread } from "@/lib/services/lots/get-lot-thread";
 import { buildPackage } from "@/lib/services/packages/build-package";
 import { endGivenUp } from "@/lib/services/tidy/end-given-up";
 import { openTestApi, type TestApi } from "../support/api";
@@ -53,8 +54,11 @@ describe("a build that is cancelled", () => {
     expect(await get(id)).toMatchObject({ state: "failed", failure: { code: "package.cancelled" } });
     expect(await traces(id)).toEqual([0, 0, 0, 0]);
     expect(await actionsOf(id)).toEqual(["package.build-started", "package.build-cancelled"]);
+    expect((await getLotThread(people.engineer, lot.lot)).package.blocked).toBe("the build was cancelled");
     const next = await buildGolden(people, lot);
     expect(next.version).not.toBe(version);
+    await cancel(await asked());
+    expect((await getLotThread(people.engineer, lot.lot)).newestPackageId).toBe(next.id);
   });
 
   it("while it is composed stops at its next part", async () => {

@@ -69,7 +69,8 @@ function coefficientsOf({ devices, devicesRead, devicesApproved, devicesProposed
 function packageOf({ devicesApproved }: LotProgressRow, newest: NewestPackageRow | undefined): ThreadStitch {
   if (!newest) return { tone: devicesApproved > 0 ? "wait" : "idle", count: devicesApproved > 0 ? "none built" : "—" };
   const count = `${newest.version}, ${newest.state.replaceAll("-", " ")}`;
-  if (newest.state === "failed") return { tone: "bad", count, blocked: "the build failed" };
+  if (newest.state === "failed")
+    return { tone: "bad", count, blocked: newest.cancelled ? "the build was cancelled" : "the build failed" };
   if (newest.failed > 0)
     return { tone: "bad", count, blocked: newest.failed === 1 ? "a check fails" : `${newest.failed} checks fail` };
   return { tone: newest.state === "building" ? "wait" : "good", count };
