@@ -34,42 +34,6 @@ export function coefficientsOf(row: ValueColumns): Coefficients | null {
   };
 }
 
-export interface NewSet {
-  id: string;
-  deviceId: string;
-  role: SetRole;
-  coefficients: Coefficients | null;
-  /** What stands beside the values: residuals, uncertainty, points, ratios (DeviceResult without values and findings). */
-  detail: unknown;
-}
-
-const SETS_A_STATEMENT = 1_000;
-
-/** Stores the sets of a derivation, proposed where there are values. */
-export async function insertSets(trx: Trx, derivationId: string, sets: readonly NewSet[], at: Date): Promise<void> {
-  for (let from = 0; from < sets.length; from += SETS_A_STATEMENT) {
-    const rows = sets.slice(from, from + SETS_A_STATEMENT).map(({ coefficients: values, ...set }) => ({
-      id: set.id,
-      derivationId,
-      deviceId: set.deviceId,
-      role: set.role,
-      state: values ? "proposed" : null,
-      tempOffset: values?.tempOffset ?? null,
-      tempSlope: values?.tempSlope ?? null,
-      zero: values?.zero ?? null,
-      zeroTc: values?.zeroTc ?? null,
-      zeroTc2: values?.zeroTc2 ?? null,
-      gain: values?.gain ?? null,
-      gainTc: values?.gainTc ?? null,
-      gainTc2: values?.gainTc2 ?? null,
-      detail: JSON.stringify(set.detail),
-      createdAt: at,
-      stateChangedAt: at,
-    }));
-    await trx.insertInto("coefficientSet").values(rows).execute();
-  }
-}
-
 /** A device's set of one derivation. */
 export interface SetRow {
   id: string;
@@ -270,15 +234,36 @@ export interface SetValuesRow {
   coefficients: Coefficients | null;
 }
 
+/** Sets that a statement gives: about 10 ms of this process. */
+const SETS_A_STATEMENT = 2_000;
+
 /** The values of every set of a derivation, by serial. */
 export async function listSetValues(db: Db, derivationId: string): Promise<SetValuesRow[]> {
-  const rows = await db
+  const sets: SetValuesRow[] = [];
+  for (let after: string | undefined, more = true; more; ) {
+    const rows = await selectSetValues(db, derivationId, after).execute();
+    for (const { deviceId: _, ...row } of rows) sets.push(setOf(row));
+    after = rows.at(-1)?.deviceId;
+    more = rows.length === SETS_A_STATEMENT;
+  }
+  return sets.sort((a, b) => (a.serial < b.serial ? -1 : 1));
+}
+
+/** The next statement's worth, by device: the order of an index, so that no page has to sort them all. */
+function selectSetValues(db: Db, derivationId: string, after: string | undefined) {
+  const query = db
     .selectFrom("coefficientSet")
     .innerJoin("device", "device.id", "coefficientSet.deviceId")
-    .select(["device.serial", "coefficientSet.role", "coefficientSet.state", ...valueColumns])
+    .select([
+      "coefficientSet.deviceId",
+      "device.serial",
+      "coefficientSet.role",
+      "coefficientSet.state",
+      ...valueColumns,
+    ])
     .$narrowType<{ role: SetRole; state: SetState | null }>()
     .where("coefficientSet.derivationId", "=", derivationId)
-    .orderBy("device.serial")
-    .execute();
-  return rows.map(setOf);
+    .orderBy("coefficientSet.deviceId")
+    .limit(SETS_A_STATEMENT);
+  return after === undefined ? query : query.where("coefficientSet.deviceId", ">", after);
 }

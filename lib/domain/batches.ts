@@ -1,3 +1,4 @@
+import { forEachInSteps, type Steps } from "@/lib/domain/steps";
 import { AppError } from "@/lib/errors";
 
 /** A device with what it is made of, as somebody told it; absent and null both mean that nobody said. */
@@ -23,16 +24,16 @@ export interface BatchChange<T> extends KnownBatches {
  * Devices by serial, each once, whatever was told of it put together.
  * @throws AppError `device.batches_contradict` {serial} where two entries of one serial name different batches
  */
-export function mergeGivenDevices(given: readonly GivenDevice[]): Map<string, Required<GivenDevice>> {
+export function* mergeGivenDevices(given: Iterable<GivenDevice>): Steps<Map<string, Required<GivenDevice>>> {
   const devices = new Map<string, Required<GivenDevice>>();
-  for (const { serial, gaugeBatch = null, materialBatch = null } of given) {
+  yield* forEachInSteps(given, ({ serial, gaugeBatch = null, materialBatch = null }) => {
     const earlier = devices.get(serial);
     devices.set(serial, {
       serial,
       gaugeBatch: merged(serial, earlier?.gaugeBatch, gaugeBatch),
       materialBatch: merged(serial, earlier?.materialBatch, materialBatch),
     });
-  }
+  });
   return devices;
 }
 
@@ -45,20 +46,20 @@ function merged(serial: string, earlier: string | null | undefined, given: strin
 }
 
 /** What changes of devices that are known; what nobody says anything of stays. */
-export function listBatchChanges<T extends KnownBatches & { serial: string }>(
+export function* listBatchChanges<T extends KnownBatches & { serial: string }>(
   known: readonly T[],
   given: ReadonlyMap<string, GivenDevice>,
-): BatchChange<T>[] {
+): Steps<BatchChange<T>[]> {
   const changes: BatchChange<T>[] = [];
-  for (const device of known) {
+  yield* forEachInSteps(known, (device) => {
     const told = given.get(device.serial);
     const gaugeBatch = told?.gaugeBatch ?? device.gaugeBatch;
     const materialBatch = told?.materialBatch ?? device.materialBatch;
-    if (gaugeBatch === device.gaugeBatch && materialBatch === device.materialBatch) continue;
+    if (gaugeBatch === device.gaugeBatch && materialBatch === device.materialBatch) return;
     const corrects =
       (device.gaugeBatch !== null && gaugeBatch !== device.gaugeBatch) ||
       (device.materialBatch !== null && materialBatch !== device.materialBatch);
     changes.push({ device, gaugeBatch, materialBatch, corrects });
-  }
+  });
   return changes;
 }

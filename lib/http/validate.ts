@@ -1,5 +1,6 @@
 import type { z } from "zod";
 import { AppError, type Problem } from "@/lib/errors";
+import { giveWay } from "@/lib/services/in-slices";
 
 /** Zod's findings as problems with JSON pointers, for machines and for the field they belong to. */
 export function problemsOf(error: z.ZodError, root = ""): Problem[] {
@@ -46,8 +47,23 @@ function unstorableTexts(value: unknown, root: string): Problem[] {
 
 /** The value as the schema gives it. @throws AppError `request.invalid` {errors} naming every field at once */
 export function validate<T>(schema: z.ZodType<T>, value: unknown, root = ""): T {
+  assertStorable(value, root);
+  return parseAs(schema, value, root);
+}
+
+/** {@link validate} for a large value, with a pause between its two parts. @throws AppError `request.invalid` {errors} */
+export async function validateLarge<T>(schema: z.ZodType<T>, value: unknown): Promise<T> {
+  assertStorable(value, "");
+  await giveWay();
+  return parseAs(schema, value, "");
+}
+
+function assertStorable(value: unknown, root: string): void {
   const unstorable = unstorableTexts(value, root);
   if (unstorable.length > 0) throw invalid(unstorable);
+}
+
+function parseAs<T>(schema: z.ZodType<T>, value: unknown, root: string): T {
   const result = schema.safeParse(value);
   if (result.success) return result.data;
   throw invalid(problemsOf(result.error, root));

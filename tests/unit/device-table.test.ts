@@ -1,6 +1,7 @@
 import { describe, expect, it } from "vitest";
 import { listBatchChanges, mergeGivenDevices } from "@/lib/domain/batches";
 import { readDeviceTable } from "@/lib/domain/device-table";
+import { finish } from "@/lib/domain/steps";
 
 const device = (serial: string, gaugeBatch: string | null = null, materialBatch: string | null = null) => ({
   serial,
@@ -37,21 +38,20 @@ describe("readDeviceTable", () => {
 
 describe("batches", () => {
   it("put together what was told of one serial, and refuse a contradiction", () => {
-    const merged = mergeGivenDevices([
-      { serial: "A" },
-      { serial: "A", gaugeBatch: "G" },
-      { serial: "A", materialBatch: "M" },
-    ]);
+    const merged = finish(
+      mergeGivenDevices([{ serial: "A" }, { serial: "A", gaugeBatch: "G" }, { serial: "A", materialBatch: "M" }]),
+    );
     expect([...merged.values()]).toEqual([device("A", "G", "M")]);
-    expect(() => mergeGivenDevices([device("A", "G"), device("A", "H")])).toThrow(
+    expect(() => finish(mergeGivenDevices([device("A", "G"), device("A", "H")]))).toThrow(
       expect.objectContaining({ code: "device.batches_contradict" }),
     );
   });
 
   it("change what is told and new, and tell a first word from a correction", () => {
     const known = [device("A"), device("B", "G"), device("C", "G", "M"), device("D", "G")];
-    const given = mergeGivenDevices([device("A", "G"), device("B", "G"), device("C", "H"), device("D", null, "M")]);
-    expect(listBatchChanges(known, given).map(({ device: one, ...change }) => [one.serial, change])).toEqual([
+    const told = [device("A", "G"), device("B", "G"), device("C", "H"), device("D", null, "M")];
+    const given = finish(mergeGivenDevices(told));
+    expect(finish(listBatchChanges(known, given)).map(({ device: one, ...change }) => [one.serial, change])).toEqual([
       ["A", { gaugeBatch: "G", materialBatch: null, corrects: false }],
       ["C", { gaugeBatch: "H", materialBatch: "M", corrects: true }],
       ["D", { gaugeBatch: "G", materialBatch: "M", corrects: false }],

@@ -1,8 +1,9 @@
+import { forEachInSteps, mapInSteps, type Steps } from "@/lib/domain/steps";
 import { GAIN_FROM_ONE } from "./device-gain";
 import { FindingGatherer } from "./finding-gatherer";
 import { makeFinding } from "./findings";
 import { medianOf } from "./outliers";
-import { checkSiblings } from "./sibling-checks";
+import { checkSiblingsInSteps } from "./sibling-checks";
 import type { Coefficients, FamilyRules, Finding, PooledResult } from "./types";
 
 export interface ImportedSet {
@@ -35,78 +36,85 @@ function shareOf(coefficient: Tc, value: number, family: FamilyRules): number {
   return Math.abs(relative) * reachOf(family);
 }
 
-function unitFindings(sets: readonly ImportedSet[], family: FamilyRules): Finding[] {
-  return TCS.flatMap((coefficient) => {
-    const found = new FindingGatherer();
-    for (const { serial, coefficients } of sets) {
+function* unitFindings(sets: readonly ImportedSet[], family: FamilyRules): Steps<Finding[]> {
+  const gatherers = TCS.map((coefficient) => ({ coefficient, found: new FindingGatherer() }));
+  for (const { coefficient, found } of gatherers) {
+    yield* forEachInSteps(sets, ({ serial, coefficients }) => {
       const value = coefficients[coefficient];
       const share = shareOf(coefficient, value, family);
       if (share > SHARE_MAX)
         found.add("import.unit_suspect", serial, null, share, { coefficient, value, percent: share * 100 });
-    }
-    return found.list();
-  });
+    });
+  }
+  return gatherers.flatMap(({ found }) => found.list());
 }
 
 /**
  * gainTc is the correction and zeroTc the drift; other programs hold gain's effect or zero's correction, which differ by
  * their sign. Device by device against what readings gave; a gainTc without one against the median of those.
  */
-function oppositeFindings(sets: readonly ImportedSet[], derived: DerivedBefore, family: FamilyRules): Finding[] {
+function* oppositeFindings(
+  sets: readonly ImportedSet[],
+  derived: DerivedBefore,
+  family: FamilyRules,
+): Steps<Finding[]> {
   if (derived.values.size === 0) return [];
   const usual = medianOf([...derived.values.values()].map(({ gainTc }) => gainTc));
-  return TCS.flatMap((coefficient) => {
+  const findings: Finding[] = [];
+  for (const coefficient of TCS) {
     const counts = (value: number) => shareOf(coefficient, value, family) * family.intervals >= SLIGHT_V;
     let compared = 0;
     let opposite = 0;
-    for (const { serial, coefficients } of sets) {
+    yield* forEachInSteps(sets, ({ serial, coefficients }) => {
       const known = derived.values.get(serial)?.[coefficient] ?? (coefficient === "gainTc" ? usual : undefined);
       const value = coefficients[coefficient];
-      if (known === undefined || !counts(known) || !counts(value)) continue;
+      if (known === undefined || !counts(known) || !counts(value)) return;
       compared++;
       if (Math.sign(value) !== Math.sign(known)) opposite++;
-    }
-    if (opposite * 2 <= compared) return [];
-    return [makeFinding("import.sign_opposite", { data: { coefficient, opposite, compared } })];
-  });
+    });
+    if (opposite * 2 <= compared) continue;
+    findings.push(makeFinding("import.sign_opposite", { data: { coefficient, opposite, compared } }));
+  }
+  return findings;
 }
 
 /** Where the lot has no readings to compare with, the trade's rule is worth a note: modulus falls with temperature. */
-function unusualFindings(sets: readonly ImportedSet[], family: FamilyRules): Finding[] {
-  const told = sets.filter(
-    ({ coefficients }) => shareOf("gainTc", coefficients.gainTc, family) * family.intervals >= SLIGHT_V,
-  );
-  const positive = told.filter(({ coefficients }) => coefficients.gainTc > 0).length;
-  if (positive * 2 <= told.length) return [];
-  return [makeFinding("import.sign_unusual", { data: { positive, compared: told.length } })];
+function* unusualFindings(sets: readonly ImportedSet[], family: FamilyRules): Steps<Finding[]> {
+  let told = 0;
+  let positive = 0;
+  yield* forEachInSteps(sets, ({ coefficients: { gainTc } }) => {
+    if (shareOf("gainTc", gainTc, family) * family.intervals < SLIGHT_V) return;
+    told++;
+    if (gainTc > 0) positive++;
+  });
+  if (positive * 2 <= told) return [];
+  return [makeFinding("import.sign_unusual", { data: { positive, compared: told } })];
 }
 
-function limitFindings(sets: readonly ImportedSet[], pooled: PooledResult | null): Finding[] {
+function* limitFindings(sets: readonly ImportedSet[], pooled: PooledResult | null): Steps<Finding[]> {
   const found = new FindingGatherer();
   if (!pooled) return [];
   const { gainTc: mean, limit } = pooled;
-  for (const { serial, coefficients } of sets) {
-    const { gainTc } = coefficients;
+  yield* forEachInSteps(sets, ({ serial, coefficients: { gainTc } }) => {
     const away = Math.abs(gainTc - mean);
     if (away > limit * (1 + 1e-12)) found.add("import.beyond_limit", serial, null, away, { gainTc, mean, limit });
-  }
+  });
   return found.list();
 }
 
-function gainFindings(sets: readonly ImportedSet[]): Finding[] {
+function* gainFindings(sets: readonly ImportedSet[]): Steps<Finding[]> {
   const found = new FindingGatherer();
-  for (const { serial, coefficients } of sets) {
-    const { gain } = coefficients;
+  yield* forEachInSteps(sets, ({ serial, coefficients: { gain } }) => {
     const away = Math.abs(gain - 1);
     if (away > GAIN_FROM_ONE) found.add("gain.far_from_nominal", serial, null, away, { gain });
-  }
+  });
   return found.list();
 }
 
 /** Outliers, signs and thermometers among the imported sets, as among derived ones, over the family's range. */
-function siblingFindings(sets: readonly ImportedSet[], family: FamilyRules): Finding[] {
+function* siblingFindings(sets: readonly ImportedSet[], family: FamilyRules): Steps<Finding[]> {
   const { temperatureMinC, temperatureMaxC } = family;
-  const siblings = sets.map(({ serial, coefficients }) => ({
+  const siblings = yield* mapInSteps(sets, ({ serial, coefficients }) => ({
     serial,
     coefficients,
     individual: coefficients,
@@ -114,7 +122,7 @@ function siblingFindings(sets: readonly ImportedSet[], family: FamilyRules): Fin
     measuredRangeC: [temperatureMinC, temperatureMaxC] as [number, number],
     findings: [] as Finding[],
   }));
-  const ofLot = checkSiblings(siblings, siblings, false, family);
+  const ofLot = yield* checkSiblingsInSteps(siblings, siblings, false, family);
   return [...ofLot, ...siblings.flatMap((one) => one.findings)];
 }
 
@@ -123,18 +131,17 @@ function siblingFindings(sets: readonly ImportedSet[], family: FamilyRules): Fin
  * only an import can have wrong, units and signs.
  * @param derived of the lot's newest derivation from readings; null where there is none.
  */
-export function listImportFindings(
+export function* listImportFindings(
   sets: readonly ImportedSet[],
   family: FamilyRules,
   derived: DerivedBefore | null,
-): Finding[] {
-  const signs = derived ? oppositeFindings(sets, derived, family) : unusualFindings(sets, family);
+): Steps<Finding[]> {
   return [
     makeFinding("import.not_measured"),
-    ...unitFindings(sets, family),
-    ...signs,
-    ...limitFindings(sets, derived?.pooled ?? null),
-    ...gainFindings(sets),
-    ...siblingFindings(sets, family),
+    ...(yield* unitFindings(sets, family)),
+    ...(yield* derived ? oppositeFindings(sets, derived, family) : unusualFindings(sets, family)),
+    ...(yield* limitFindings(sets, derived?.pooled ?? null)),
+    ...(yield* gainFindings(sets)),
+    ...(yield* siblingFindings(sets, family)),
   ];
 }

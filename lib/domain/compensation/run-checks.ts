@@ -1,5 +1,6 @@
+import { finish, forEachInSteps, type Steps } from "@/lib/domain/steps";
 import { assertFamilyRules } from "./envelope";
-import { listRunFindings } from "./run-findings";
+import { listRunFindingsInSteps } from "./run-findings";
 import type { FamilyRules, Finding, Purpose, Reading } from "./types";
 
 /** Why a row can't be taken. `row` is the line of the file, the header being 1; `column` the name of section 2. */
@@ -51,28 +52,28 @@ function rowErrors(reading: Reading, purpose: Purpose, errors: RowError[]): void
 }
 
 /** Rows that contradict other rows of their device. */
-function deviceErrors(readings: readonly Reading[], errors: RowError[]): void {
+function* deviceErrors(readings: readonly Reading[], errors: RowError[]): Steps<void> {
   const unloaded = new Map<string, Set<number>>();
   const boards = new Map<string, string>();
-  for (const { serial, point, loadKg, hardwareId, row } of readings) {
+  yield* forEachInSteps(readings, ({ serial, point, loadKg, hardwareId, row }) => {
     if (loadKg === 0) {
       const points = unloaded.get(serial);
       if (points) points.add(point);
       else unloaded.set(serial, new Set([point]));
     }
-    if (!hardwareId) continue;
+    if (!hardwareId) return;
     const board = boards.get(serial);
     if (board === undefined) boards.set(serial, hardwareId);
     else if (board !== hardwareId) {
       const message = `${serial} has another board here than in an earlier row`;
       errors.push({ row, column: "hardware_id", code: "reading.hardware_differs", message });
     }
-  }
-  for (const { serial, point, loadKg, row } of readings) {
-    if (!(loadKg > 0) || unloaded.get(serial)?.has(point)) continue;
+  });
+  yield* forEachInSteps(readings, ({ serial, point, loadKg, row }) => {
+    if (!(loadKg > 0) || unloaded.get(serial)?.has(point)) return;
     const message = `${serial} has no unloaded reading at point ${point}`;
     errors.push({ row, column: "load_kg", code: "reading.loaded_without_unloaded", message });
-  }
+  });
 }
 
 /**
@@ -81,12 +82,17 @@ function deviceErrors(readings: readonly Reading[], errors: RowError[]): void {
  * @throws AppError `family.invalid`.
  */
 export function checkRun(family: FamilyRules, purpose: Purpose, readings: readonly Reading[]): RunCheck {
+  return finish(checkRunInSteps(family, purpose, readings));
+}
+
+/** {@link checkRun} for a process that serves others meanwhile. */
+export function* checkRunInSteps(family: FamilyRules, purpose: Purpose, readings: readonly Reading[]): Steps<RunCheck> {
   assertFamilyRules(family);
   const errors: RowError[] = [];
   if (readings.length === 0)
     errors.push({ row: 1, column: "serial", code: "run.empty", message: "The run has no reading" });
-  for (const reading of readings) rowErrors(reading, purpose, errors);
-  deviceErrors(readings, errors);
+  yield* forEachInSteps(readings, (reading) => rowErrors(reading, purpose, errors));
+  yield* deviceErrors(readings, errors);
   errors.sort((a, b) => a.row - b.row);
-  return { errors, findings: errors.length > 0 ? [] : listRunFindings(family, purpose, readings) };
+  return { errors, findings: errors.length > 0 ? [] : yield* listRunFindingsInSteps(family, purpose, readings) };
 }

@@ -1,3 +1,4 @@
+import { finish, forEachInSteps, type Steps } from "@/lib/domain/steps";
 import { checkDrift, checkDwell, checkZeroReturn, type PointSummary, summarise } from "./drift-checks";
 import { maximumPermissibleError } from "./envelope";
 import { FindingGatherer } from "./finding-gatherer";
@@ -5,7 +6,7 @@ import { makeFinding } from "./findings";
 import { findGrubbsStatistic, grubbsCritical } from "./grubbs";
 import { checkClock, checkDuplicates, checkPointOrder } from "./order-checks";
 import { groupByTemperature } from "./points";
-import { type DeviceRows, rowsByDevice } from "./reading-groups";
+import { type DeviceRows, rowsByDeviceInSteps } from "./reading-groups";
 import { spreadOf } from "./sample-statistics";
 import type { FamilyRules, Finding, Purpose, Reading } from "./types";
 
@@ -70,12 +71,12 @@ function checkScatter({ rows, values, load }: Repeats, family: FamilyRules, foun
 }
 
 /** Grubbs on every set of repeats that is large enough, at a level shared by all of them. */
-function checkOutliers(all: readonly Repeats[], found: FindingGatherer): void {
+function* checkOutliers(all: readonly Repeats[], found: FindingGatherer): Steps<void> {
   const critical = new Map<number, number>();
-  for (const { rows, values } of all) {
+  yield* forEachInSteps(all, ({ rows, values }) => {
     const n = values.length;
     const statistic = findGrubbsStatistic(values);
-    if (!statistic) continue;
+    if (!statistic) return;
     let limit = critical.get(n);
     if (limit === undefined) {
       limit = grubbsCritical(n, OUTLIER_ALPHA / all.length);
@@ -84,7 +85,7 @@ function checkOutliers(all: readonly Repeats[], found: FindingGatherer): void {
     const { row, serial, point } = rows[statistic.index] as Reading;
     if (statistic.g > limit)
       found.add("reading.outlier", serial, point, statistic.g / limit, { row, g: statistic.g, critical: limit });
-  }
+  });
 }
 
 /** Whether the device's own temperature rises (or falls) with the chamber from each distinct temperature to the next. */
@@ -151,26 +152,72 @@ function sameReadings(a: DeviceRows, b: DeviceRows): boolean {
 }
 
 /** Devices whose readings equal those of another one digit for digit, which real ones never do. */
-function checkCopies(devices: ReadonlyMap<string, DeviceRows>): Finding[] {
+function* checkCopies(devices: ReadonlyMap<string, DeviceRows>): Steps<Finding[]> {
   const seen = new Map<number, DeviceRows>();
   const copies: string[] = [];
-  for (const [serial, points] of devices) {
+  yield* forEachInSteps(devices, ([serial, points]) => {
     const key = fingerprint(points);
     const earlier = seen.get(key);
     if (!earlier) seen.set(key, points);
     else if (sameReadings(earlier, points)) copies.push(serial);
-  }
+  });
   if (copies.length === 0) return [];
   const serial = copies.length === 1 ? copies[0] : null;
   return [makeFinding("reading.copied", { serial, data: { devices: copies.length, serials: copies.slice(0, 20) } })];
 }
 
 /** Points at which most devices of the run were read. */
-function usualPoints(devices: ReadonlyMap<string, DeviceRows>): number[] {
+function* usualPoints(devices: ReadonlyMap<string, DeviceRows>): Steps<number[]> {
   const counts = new Map<number, number>();
-  for (const points of devices.values())
+  yield* forEachInSteps(devices.values(), (points) => {
     for (const point of points.keys()) counts.set(point, (counts.get(point) ?? 0) + 1);
+  });
   return [...counts].filter(([, count]) => count > devices.size / 2).map(([point]) => point);
+}
+
+/** What the checks of a run share. */
+interface RunScope {
+  family: FamilyRules;
+  purpose: Purpose;
+  /** Points that a device of the run is expected to have. */
+  usual: readonly number[];
+  found: FindingGatherer;
+  /** Takes sets of repeats that are large enough for the outlier test. */
+  manyRepeats: Repeats[];
+}
+
+const hasSeveralTemperatures = (purpose: Purpose) =>
+  purpose === "sample" || purpose === "zero" || purpose === "verification";
+const hasLoads = (purpose: Purpose) => purpose === "sample" || purpose === "span" || purpose === "verification";
+
+function checkPoint(serial: string, point: number, rows: Reading[], scope: RunScope): PointSummary {
+  const { family, found, manyRepeats } = scope;
+  const summary = summarise(point, rows);
+  checkClock(serial, summary, found);
+  checkDuplicates(serial, summary, found);
+  checkChamber(rows, found);
+  for (const repeats of repeatsOf(rows, family)) {
+    checkScatter(repeats, family, found);
+    if (repeats.values.length >= REPEATS_MIN) manyRepeats.push(repeats);
+  }
+  return summary;
+}
+
+/** Checks over all points of a device. Returns whether a temperature came twice. */
+function checkDevice(serial: string, rowsByPoint: DeviceRows, scope: RunScope): boolean {
+  const { family, purpose, usual, found } = scope;
+  const points = [...rowsByPoint].map(([point, rows]) => checkPoint(serial, point, rows, scope));
+  let returned = false;
+  checkPointOrder(serial, points, found);
+  if (hasSeveralTemperatures(purpose)) {
+    returned = checkTemperatures(serial, points, family, found);
+    checkDrift(serial, points, found);
+    checkDwell(serial, points, found);
+    checkZeroReturn(serial, points, family, found);
+  }
+  if (hasLoads(purpose)) checkLoads(serial, points, purpose, family, found);
+  for (const point of usual) if (!rowsByPoint.has(point)) found.add("point.missing", serial, point, 0, {});
+  return returned;
 }
 
 /**
@@ -178,38 +225,26 @@ function usualPoints(devices: ReadonlyMap<string, DeviceRows>): number[] {
  * @param readings rows that {@link checkRun} took.
  */
 export function listRunFindings(family: FamilyRules, purpose: Purpose, readings: readonly Reading[]): Finding[] {
+  return finish(listRunFindingsInSteps(family, purpose, readings));
+}
+
+/** {@link listRunFindings} for a process that serves others meanwhile. */
+export function* listRunFindingsInSteps(
+  family: FamilyRules,
+  purpose: Purpose,
+  readings: readonly Reading[],
+): Steps<Finding[]> {
   const found = new FindingGatherer();
-  const devices = rowsByDevice(readings);
-  const usual = usualPoints(devices);
-  const severalTemperatures = purpose === "sample" || purpose === "zero" || purpose === "verification";
-  const loadedRun = purpose === "sample" || purpose === "span" || purpose === "verification";
-  const manyRepeats: Repeats[] = [];
+  const devices = yield* rowsByDeviceInSteps(readings);
+  const scope: RunScope = { family, purpose, usual: yield* usualPoints(devices), found, manyRepeats: [] };
+  yield* forEachInSteps(readings, (reading) => checkRow(reading, family, found));
   let returned = false;
-  for (const reading of readings) checkRow(reading, family, found);
   for (const [serial, rowsByPoint] of devices) {
-    const points: PointSummary[] = [];
-    for (const [point, rows] of rowsByPoint) {
-      const summary = summarise(point, rows);
-      points.push(summary);
-      checkClock(serial, summary, found);
-      checkDuplicates(serial, summary, found);
-      checkChamber(rows, found);
-      for (const repeats of repeatsOf(rows, family)) {
-        checkScatter(repeats, family, found);
-        if (repeats.values.length >= REPEATS_MIN) manyRepeats.push(repeats);
-      }
-    }
-    checkPointOrder(serial, points, found);
-    if (severalTemperatures) {
-      returned = checkTemperatures(serial, points, family, found) || returned;
-      checkDrift(serial, points, found);
-      checkDwell(serial, points, found);
-      checkZeroReturn(serial, points, family, found);
-    }
-    if (loadedRun) checkLoads(serial, points, purpose, family, found);
-    for (const point of usual) if (!rowsByPoint.has(point)) found.add("point.missing", serial, point, 0, {});
+    returned = checkDevice(serial, rowsByPoint, scope) || returned;
+    yield;
   }
-  checkOutliers(manyRepeats, found);
-  const notes = severalTemperatures && !returned ? [makeFinding("point.no_return", { data: { purpose } })] : [];
-  return [...found.list(), ...checkCopies(devices), ...notes];
+  yield* checkOutliers(scope.manyRepeats, found);
+  const single = hasSeveralTemperatures(purpose) && !returned;
+  const notes = single ? [makeFinding("point.no_return", { data: { purpose } })] : [];
+  return [...found.list(), ...(yield* checkCopies(devices)), ...notes];
 }

@@ -1,3 +1,4 @@
+import { finish, forEachInSteps, mapInSteps, type Steps } from "@/lib/domain/steps";
 import { makeFinding } from "./findings";
 import { findOutliers, medianOf, type Outlier, type OutlierLevels } from "./outliers";
 import type { Coefficients, DeviceResult, FamilyRules, Finding } from "./types";
@@ -76,15 +77,16 @@ const ALIKE_MIN = 4;
  * gainTc of the other sign than the lot's: the material gives it, so that within a lot it hardly changes. zeroTc comes
  * from small differences within the bridge and has either sign in any lot; it is not compared.
  */
-function signFindings({ devices, values, intervalsPer }: Compared): void {
+function* signFindings({ devices, values, intervalsPer }: Compared): Steps<void> {
   const positive = values.filter((value) => value > 0).length;
   const negative = values.filter((value) => value < 0).length;
   const [alike, sign] = positive > negative ? [positive, 1] : [negative, -1];
+  yield;
   const median = medianOf(values.length > 0 ? values : [0]);
-  values.forEach((gainTc, i) => {
+  const others = values.length - 1;
+  if (alike < ALIKE_MIN || alike < ALIKE * others) return;
+  yield* forEachInSteps(values.entries(), ([i, gainTc]) => {
     if (Math.sign(gainTc) !== -sign || Math.abs(gainTc) * intervalsPer < SLIGHT_V) return;
-    const others = values.length - 1;
-    if (alike < ALIKE_MIN || alike < ALIKE * others) return;
     const { serial, findings } = devices[i] as Sibling;
     findings.push(makeFinding("coefficient.sign_unlike", { serial, data: { gainTc, alike, others, median } }));
   });
@@ -102,11 +104,13 @@ interface ThermometerMeasure {
 }
 
 /** Readings at the ends of the measured range, and by how much they rise between these. */
-function thermometerMeasures(devices: readonly Sibling[]): ThermometerMeasure[] {
+function* thermometerMeasures(devices: readonly Sibling[]): Steps<ThermometerMeasure[]> {
   const low = medianOf(devices.map((device) => device.measuredRangeC[0]));
   const high = medianOf(devices.map((device) => device.measuredRangeC[1]));
-  const readings = (atC: number) => devices.map((device) => readingAt(device.coefficients as Coefficients, atC));
-  const [atLow, atHigh] = [readings(low), readings(high)];
+  const readings = (atC: number) =>
+    mapInSteps(devices, (device) => readingAt(device.coefficients as Coefficients, atC));
+  const atLow = yield* readings(low);
+  const atHigh = yield* readings(high);
   return [
     { readings: atLow, where: { atC: low } },
     { readings: atHigh, where: { atC: high } },
@@ -118,10 +122,11 @@ function thermometerMeasures(devices: readonly Sibling[]): ThermometerMeasure[] 
  * A thermometer that reads otherwise than its siblings: the calibration takes it up, but it is rarer than a slipped row
  * or a board on another cell, and then the output would be off by what is told.
  */
-function checkThermometers(devices: readonly Sibling[], { intervals, nominalMvV }: FamilyRules): void {
+function* checkThermometers(devices: readonly Sibling[], { intervals, nominalMvV }: FamilyRules): Steps<void> {
   const perCount = medianOf(devices.map((device) => (device.coefficients as Coefficients).tempSlope));
   const found = new Map<Sibling, { away: number; data: Record<string, unknown> }>();
-  for (const { readings, where } of thermometerMeasures(devices)) {
+  for (const { readings, where } of yield* thermometerMeasures(devices)) {
+    yield;
     const { median, outliers } = findOutliers(readings, LEVELS);
     for (const { index, score, threshold, g, critical } of outliers) {
       const device = devices[index] as Sibling;
@@ -149,28 +154,47 @@ export function checkSiblings(
   pooled: boolean,
   family: FamilyRules,
 ): Finding[] {
+  return finish(checkSiblingsInSteps(devices, trimmed, pooled, family));
+}
+
+/** {@link checkSiblings} for a process that serves others meanwhile. */
+export function* checkSiblingsInSteps(
+  devices: readonly Sibling[],
+  trimmed: readonly Sibling[],
+  pooled: boolean,
+  family: FamilyRules,
+): Steps<Finding[]> {
   const { intervals, nominalMvV, referenceC } = family;
   const valued = devices.filter((device) => device.coefficients !== null);
   const own = valued.filter((device) => device.gainFrom !== "sample-mean");
   const reach = reachOf(devices, referenceC);
   const perMvV = intervals / nominalMvV;
-  const of = (list: readonly Sibling[], coefficient: "zero" | "zeroTc" | "gain", intervalsPer: number): Compared => ({
-    coefficient,
-    devices: [...list],
-    values: list.map((device) => (device.coefficients as Coefficients)[coefficient]),
-    intervalsPer,
-    levels: LEVELS,
-  });
+  yield;
   const gainTc: Compared = {
     coefficient: "gainTc",
     devices: [...trimmed],
-    values: trimmed.map((device) => device.individual?.gainTc ?? 0),
+    values: yield* mapInSteps(trimmed, (device) => device.individual?.gainTc ?? 0),
     intervalsPer: reach * intervals,
     levels: pooled ? SAMPLE_LEVELS : LEVELS,
   };
-  signFindings(gainTc);
-  if (valued.length > 0) checkThermometers(valued, family);
-  return [of(valued, "zero", perMvV), of(valued, "zeroTc", perMvV * reach), of(own, "gain", intervals), gainTc].flatMap(
-    outlierFindings,
-  );
+  yield* signFindings(gainTc);
+  if (valued.length > 0) yield* checkThermometers(valued, family);
+  return [
+    ...(yield* valueFindings(valued, "zero", perMvV)),
+    ...(yield* valueFindings(valued, "zeroTc", perMvV * reach)),
+    ...(yield* valueFindings(own, "gain", intervals)),
+    ...outlierFindings(gainTc),
+  ];
+}
+
+function* valueFindings(
+  devices: Sibling[],
+  coefficient: "zero" | "zeroTc" | "gain",
+  intervalsPer: number,
+): Steps<Finding[]> {
+  const values = yield* mapInSteps(devices, (device) => (device.coefficients as Coefficients)[coefficient]);
+  yield;
+  const found = outlierFindings({ coefficient, devices, values, intervalsPer, levels: LEVELS });
+  yield;
+  return found;
 }

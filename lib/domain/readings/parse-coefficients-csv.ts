@@ -1,7 +1,7 @@
-import { isUtf8 } from "node:buffer";
-import { CsvError, parse } from "csv-parse/sync";
 import type { RowError } from "@/lib/domain/compensation/run-checks";
 import type { Coefficients } from "@/lib/domain/compensation/types";
+import { forEachInSteps, type Steps } from "@/lib/domain/steps";
+import { type CoefficientRecord, readCoefficientRecords } from "./coefficient-records";
 import { readDecimal, readSerial } from "./read-cell";
 import { RowErrorList } from "./row-error-list";
 
@@ -16,61 +16,44 @@ export interface ParsedCoefficients {
   errors: RowError[];
   errorCount: number;
   /** Cells as they stand in the file, the header first, each with its line. */
-  records: readonly { record: string[]; line: number }[];
+  records: readonly CoefficientRecord[];
 }
 
 /**
  * Reads a CSV of coefficients, `serial,tempOffset,tempSlope,zero,zeroTc,gain,gainTc[,zeroTc2,gainTc2]` in any order:
  * one row a device, strict decimal numbers, gain above 0. Order 2 where zeroTc2 and gainTc2 are there.
+ * @param pieceBytes least length of what is parsed in a step.
  */
-export function parseCoefficientsCsv(bytes: Buffer): ParsedCoefficients {
+export function* parseCoefficientsCsv(bytes: Buffer, pieceBytes?: number): Steps<ParsedCoefficients> {
   const errors = new RowErrorList();
-  const sets: ParsedCoefficients["sets"] = [];
-  const records = readRecords(bytes, errors);
+  const records = yield* readCoefficientRecords(bytes, errors, pieceBytes);
   const [header, ...rows] = records;
   const columns = header ? readHeader(header.record, errors) : undefined;
   const order = columns?.includes("zeroTc2") ? 2 : 1;
-  const seen = new Map<string, number>();
-  for (const { record, line } of columns ? rows : []) {
-    const set = readSet(record, columns as string[], line, errors);
-    if (!set) continue;
-    const earlier = seen.get(set.serial);
-    if (earlier !== undefined) {
-      const message = `${set.serial} stands in row ${earlier} already.`;
-      errors.add({ row: line, column: "serial", code: "coefficients.serial_repeated", message });
-    } else sets.push({ row: line, ...set });
-    seen.set(set.serial, earlier ?? line);
-  }
+  const sets = columns ? yield* readSets(rows, columns, errors) : [];
   if (errors.total === 0 && sets.length === 0) {
     errors.add({ row: 1, column: "", code: "file.empty", message: "The file has no row with values." });
   }
   return { order, sets, errors: errors.list(), errorCount: errors.total, records };
 }
 
-function readRecords(bytes: Buffer, errors: RowErrorList): { record: string[]; line: number }[] {
-  if (!isUtf8(bytes)) {
-    errors.add({ row: 1, column: "", code: "file.not_utf8", message: "The file is not UTF-8; save it as UTF-8." });
-    return [];
-  }
-  const records: { record: string[]; line: number }[] = [];
-  try {
-    parse(bytes, {
-      bom: true,
-      relax_column_count: true,
-      skip_empty_lines: true,
-      record_delimiter: ["\r\n", "\n", "\r"],
-      max_record_size: 16 * 1024,
-      on_record: (record: string[], { lines }) => {
-        records.push({ record: record.map((cell) => cell.trim()), line: lines });
-        return null;
-      },
-    });
-  } catch (error) {
-    if (!(error instanceof CsvError)) throw error;
-    const message = "The line is too long, or a quotation mark is out of place.";
-    errors.add({ row: Number(error.lines) || 1, column: "", code: "file.quotes_wrong", message });
-  }
-  return records;
+/** The sets of all rows that hold one, each serial's first. */
+function* readSets(rows: readonly CoefficientRecord[], columns: readonly string[], errors: RowErrorList) {
+  const sets: ParsedCoefficients["sets"] = [];
+  const seen = new Map<string, number>();
+  yield* forEachInSteps(rows, ({ record, line }) => {
+    const set = readSet(record, columns, line, errors);
+    if (!set) return;
+    const earlier = seen.get(set.serial);
+    if (earlier === undefined) {
+      sets.push({ row: line, ...set });
+      seen.set(set.serial, line);
+      return;
+    }
+    const message = `${set.serial} stands in row ${earlier} already.`;
+    errors.add({ row: line, column: "serial", code: "coefficients.serial_repeated", message });
+  });
+  return sets;
 }
 
 function readHeader(names: readonly string[], errors: RowErrorList): string[] | undefined {

@@ -1,4 +1,5 @@
 import type { Finding, Reading, Severity } from "@/lib/domain/compensation/types";
+import { forEachInSteps, mapInSteps, type Steps } from "@/lib/domain/steps";
 import { plannedReadings, type RunPlan } from "./run-plan";
 
 /** Serials that a finding names; the count is always whole. */
@@ -64,19 +65,19 @@ const keyOf = ({ serial, point, loadKg }: { serial: string; point: number; loadK
  * What a run has that its plan doesn't, and the other way round: readings by key, positions where the file names them, and
  * loads. Findings of one code and point are gathered.
  */
-export function compareWithPlan(plan: RunPlan, readings: readonly Reading[]): Finding[] {
+export function* compareWithPlan(plan: RunPlan, readings: readonly Reading[]): Steps<Finding[]> {
   const found = new Deviations();
-  const taken = new Set(readings.map(keyOf));
+  const taken = new Set(yield* mapInSteps(readings, keyOf));
   const planned = new Map<string, number[]>();
-  for (const reading of plannedReadings(plan)) {
+  yield* forEachInSteps(plannedReadings(plan), (reading) => {
     const key = keyOf(reading);
     const loads = planned.get(key);
     if (loads) loads.push(reading.loadKg);
     else planned.set(key, [reading.loadKg]);
     if (!taken.has(key)) found.add("plan.reading_missing", reading.point, reading.serial);
-  }
+  });
   const positions = new Map(plan.devices.map(({ serial, position }) => [serial, position]));
-  for (const reading of readings) checkReading(reading, planned.get(keyOf(reading)), positions, found);
+  yield* forEachInSteps(readings, (reading) => checkReading(reading, planned.get(keyOf(reading)), positions, found));
   return found.list();
 }
 

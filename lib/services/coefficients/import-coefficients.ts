@@ -1,6 +1,5 @@
 import { derivationDigest } from "@/builders/bundle/manifest";
-import { sha256Hex } from "@/builders/bundle/sha256";
-import { insertSets } from "@/db/queries/coefficients";
+import { sha256InSteps } from "@/builders/bundle/sha256";
 import {
   finishDerivation,
   insertDerivation,
@@ -8,13 +7,16 @@ import {
   insertImportFile,
 } from "@/db/queries/derivations";
 import { insertMakers } from "@/db/queries/makers";
+import { insertSets, type NewSet } from "@/db/queries/new-coefficients";
+import { mapInSteps, type Steps } from "@/lib/domain/steps";
 import { AppError } from "@/lib/errors";
 import type { PersonCtx } from "@/lib/services/context";
 import { getDerivationView } from "@/lib/services/derivations/get-derivation";
 import { tellDeciders } from "@/lib/services/derivations/tell-people";
+import { inSlices } from "@/lib/services/in-slices";
 import { appendEvent } from "@/lib/services/ledger/append-event";
 import type { DerivationView } from "@/schemas/api/derivations";
-import { type ImportInput, planImport } from "./plan-import";
+import { type ImportInput, type ImportPlan, planImport } from "./plan-import";
 
 /**
  * Takes coefficients that were found elsewhere into a lot, as a derivation with method import that a second person decides.
@@ -28,19 +30,13 @@ export async function importCoefficients(ctx: PersonCtx, input: ImportInput): Pr
     throw new AppError("coefficients.invalid", { errors, errorCount, message });
   }
   const id = ctx.newId();
-  const fileSha256 = sha256Hex(input.bytes);
+  const fileSha256 = (await inSlices(sha256InSteps(input.bytes))).toString("hex");
   // There is no arithmetic of ours behind the values: the file stands in its place, so that the digest binds it.
   const engine = `import:${fileSha256}`;
   const family = { code: lot.familyCode, revision: revision.number, sha256: revision.sha256.toString("hex") };
   const sha256 = derivationDigest({ method: "import", order: parsed.order, family, runs: [], exclude: [], engine });
   const findings = plan.findings.map((one) => ({ ...one, id: ctx.newId() }));
-  const sets = parsed.sets.map(({ serial, coefficients }) => ({
-    id: ctx.newId(),
-    deviceId: deviceIds.get(serial) as string,
-    role: "imported" as const,
-    coefficients,
-    detail: {},
-  }));
+  const sets = await inSlices(newSets(ctx, parsed, deviceIds));
   const at = ctx.now();
   const count = sets.length;
   await ctx.db.transaction().execute(async (trx) => {
@@ -87,3 +83,12 @@ export async function importCoefficients(ctx: PersonCtx, input: ImportInput): Pr
   });
   return getDerivationView(ctx, id);
 }
+
+const newSets = (ctx: PersonCtx, parsed: ImportPlan["parsed"], deviceIds: ImportPlan["deviceIds"]): Steps<NewSet[]> =>
+  mapInSteps(parsed.sets, ({ serial, coefficients }) => ({
+    id: ctx.newId(),
+    deviceId: deviceIds.get(serial) as string,
+    role: "imported",
+    coefficients,
+    detail: {},
+  }));

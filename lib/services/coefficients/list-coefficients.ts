@@ -19,6 +19,9 @@ function viewOf(row: NewestSetRow): NewestSet {
   return { serial, role, state, coefficients, ...derived };
 }
 
+/** Devices read at a time: bounds how long the event loop is held. */
+const ROWS_A_PAGE = 2_000;
+
 const VALUES = ["tempOffset", "tempSlope", "zero", "zeroTc", "gain", "gainTc", "zeroTc2", "gainTc2"] as const;
 
 /**
@@ -28,16 +31,21 @@ const VALUES = ["tempOffset", "tempSlope", "zero", "zeroTc", "gain", "gainTc", "
  */
 export async function writeLotCoefficientsCsv(ctx: Ctx, lot: string): Promise<string> {
   const { id } = await getLot(ctx.db, lot);
-  const rows = await listNewestSets(ctx.db, id);
-  const lines = rows.map((row) =>
-    [
-      row.serial,
-      ...VALUES.map((name) => row.coefficients[name] ?? ""),
-      row.state,
-      row.role,
-      row.order,
-      row.derivationId,
-    ].join(","),
-  );
-  return `${["serial", ...VALUES, "state", "role", "order", "derivation"].join(",")}\n${lines.map((line) => `${line}\n`).join("")}`;
+  const parts = [`${["serial", ...VALUES, "state", "role", "order", "derivation"].join(",")}\n`];
+  // All pages show the lot at one moment, whatever is derived or decided meanwhile.
+  const reading = ctx.db.transaction().setIsolationLevel("repeatable read").setAccessMode("read only");
+  await reading.execute(async (trx) => {
+    for (let after: string | undefined, more = true; more; ) {
+      const rows = await listNewestSets(trx, id, { after, limit: ROWS_A_PAGE });
+      parts.push(rows.map(csvLine).join(""));
+      after = rows.at(-1)?.serial;
+      more = rows.length === ROWS_A_PAGE;
+    }
+  });
+  return parts.join("");
+}
+
+function csvLine({ serial, coefficients, state, role, order, derivationId }: NewestSetRow): string {
+  const values = VALUES.map((name) => coefficients[name] ?? "");
+  return `${[serial, ...values, state, role, order, derivationId].join(",")}\n`;
 }

@@ -1,7 +1,7 @@
 import type { Db } from "@/db/executor";
 import { listSetValues } from "@/db/queries/coefficients";
 import { type DerivationState, listDerivationsOfLot } from "@/db/queries/derivations";
-import { listAllDevices } from "@/db/queries/devices";
+import { findDeviceIds } from "@/db/queries/devices";
 import type { FamilyRevisionRow } from "@/db/queries/families";
 import { getLot, type LotRow } from "@/db/queries/lots";
 import { type DerivedBefore, listImportFindings } from "@/lib/domain/compensation/import-findings";
@@ -9,8 +9,10 @@ import type { RowError } from "@/lib/domain/compensation/run-checks";
 import type { Coefficients, FamilyRules, Finding } from "@/lib/domain/compensation/types";
 import { type ParsedCoefficients, parseCoefficientsCsv } from "@/lib/domain/readings/parse-coefficients-csv";
 import { RowErrorList } from "@/lib/domain/readings/row-error-list";
+import { forEachInSteps, type Steps } from "@/lib/domain/steps";
 import { AppError } from "@/lib/errors";
 import { assertRole, type PersonCtx } from "@/lib/services/context";
+import { inSlices } from "@/lib/services/in-slices";
 import { getLotRules } from "@/lib/services/lots/lot-rules";
 
 export interface ImportInput {
@@ -26,7 +28,7 @@ export interface ImportPlan {
   lot: LotRow;
   revision: FamilyRevisionRow;
   parsed: ParsedCoefficients;
-  /** Device by serial, of the whole lot. */
+  /** Device by serial, of those of the file that the lot has. */
   deviceIds: ReadonlyMap<string, string>;
   findings: Finding[];
   /** At most 200 of `errorCount`. */
@@ -43,17 +45,28 @@ export async function planImport(ctx: PersonCtx, input: ImportInput): Promise<Im
   const lot = await getLot(ctx.db, input.lot);
   const { revision, rules } = await getLotRules(ctx.db, lot);
   assertSameBase(input, rules);
-  const parsed = parseCoefficientsCsv(input.bytes);
-  const deviceIds = new Map((await listAllDevices(ctx.db, lot.id)).map((device) => [device.serial, device.id]));
-  const errors = new RowErrorList();
-  for (const { row, serial } of parsed.sets) {
-    if (deviceIds.has(serial)) continue;
-    errors.add({ row, column: "serial", code: "device.unknown", message: `${serial} is not in lot ${lot.code}.` });
-  }
+  const parsed = await inSlices(parseCoefficientsCsv(input.bytes));
+  const serials = parsed.sets.map(({ serial }) => serial);
+  const deviceIds = await findDeviceIds(ctx.db, lot.id, serials);
+  const errors = await inSlices(unknownSerials(parsed, deviceIds, lot.code));
   for (const error of parsed.errors) errors.add(error);
   const errorCount = errors.total + parsed.errorCount - parsed.errors.length;
-  const findings = listImportFindings(parsed.sets, rules, await findDerivedBefore(ctx.db, lot.id));
+  const derived = await findDerivedBefore(ctx.db, lot.id);
+  const findings = await inSlices(listImportFindings(parsed.sets, rules, derived));
   return { lot, revision, parsed, deviceIds, findings, errors: errors.list(), errorCount };
+}
+
+function* unknownSerials(
+  { sets }: ParsedCoefficients,
+  known: ReadonlyMap<string, string>,
+  lot: string,
+): Steps<RowErrorList> {
+  const errors = new RowErrorList();
+  yield* forEachInSteps(sets, ({ row, serial }) => {
+    if (known.has(serial)) return;
+    errors.add({ row, column: "serial", code: "device.unknown", message: `${serial} is not in lot ${lot}.` });
+  });
+  return errors;
 }
 
 function assertSameBase({ referenceC, capacityKg }: ImportInput, rules: FamilyRules): void {

@@ -1,5 +1,5 @@
 import { appErrorFromDatabase } from "@/db/constraint-codes";
-import { insertSets, markSetsStale } from "@/db/queries/coefficients";
+import { markSetsStale } from "@/db/queries/coefficients";
 import {
   type DerivationRow,
   finishDerivation,
@@ -12,6 +12,7 @@ import {
 } from "@/db/queries/derivations";
 import { listAllDevices } from "@/db/queries/devices";
 import { getLot, lockLot } from "@/db/queries/lots";
+import { insertSets } from "@/db/queries/new-coefficients";
 import { listRunsById, type RunRow } from "@/db/queries/runs";
 import type { DerivationResult, Method } from "@/lib/domain/compensation/types";
 import { AppError } from "@/lib/errors";

@@ -1,4 +1,4 @@
-import { sha256Hex } from "@/builders/bundle/sha256";
+import { canonicalArraySha256 } from "@/builders/bundle/sha256";
 import type { Trx } from "@/db/executor";
 import {
   countDevices,
@@ -10,9 +10,10 @@ import {
 } from "@/db/queries/devices";
 import { getLot, lockLot } from "@/db/queries/lots";
 import { type BatchChange, type GivenDevice, listBatchChanges, mergeGivenDevices } from "@/lib/domain/batches";
-import { canonicalJson } from "@/lib/domain/canonical-json";
+import { mapInSteps } from "@/lib/domain/steps";
 import { AppError } from "@/lib/errors";
 import { assertRole, type PersonCtx } from "@/lib/services/context";
+import { inSlices } from "@/lib/services/in-slices";
 import { appendEvent } from "@/lib/services/ledger/append-event";
 import { LOT_DEVICES_MAX } from "@/schemas/api/lots";
 
@@ -37,39 +38,47 @@ type Change = BatchChange<DeviceRow>;
 export async function addDevices(ctx: PersonCtx, input: AddDevicesInput): Promise<Added> {
   assertRole(ctx, "engineer");
   const plain = (input.serials ?? []).map((serial) => ({ serial }));
-  const given = mergeGivenDevices([...plain, ...(input.devices ?? [])]);
+  const given = await inSlices(mergeGivenDevices([...plain, ...(input.devices ?? [])]));
   const serials = [...given.keys()].sort();
   return ctx.db.transaction().execute(async (trx) => {
     const lot = await lockLot(trx, (await getLot(trx, input.lot)).id);
     const found = await findDevicesBySerial(trx, serials);
     assertOfLot(found, lot.id);
-    const known = new Set(found.map((device) => device.serial));
+    const known = new Set(await inSlices(mapInSteps(found, (device) => device.serial)));
     const added = serials.filter((serial) => !known.has(serial));
     if ((await countDevices(trx, lot.id)) + added.length > LOT_DEVICES_MAX) {
       const message = `A lot takes at most ${LOT_DEVICES_MAX.toLocaleString("en")} devices; make a second lot for the others.`;
       throw new AppError("lot.too_many_devices", { devicesMax: LOT_DEVICES_MAX, message });
     }
-    const changes = listBatchChanges(found, given);
+    const changes = await inSlices(listBatchChanges(found, given));
     assertReasonFor(changes, input.reason);
-    const devices = added.map((serial) => ({ ...(given.get(serial) as GivenDevice), id: ctx.newId() }));
+    const newDevice = (serial: string) => ({ ...(given.get(serial) as GivenDevice), id: ctx.newId() });
+    const devices = await inSlices(mapInSteps(added, newDevice));
     await insertDevices(trx, { lotId: lot.id, devices, addedAt: ctx.now(), addedBy: ctx.actor.id });
     await changeBatches(ctx, trx, changes, input.reason);
-    if (added.length > 0) {
-      const withBatches = devices.filter((device) => device.gaugeBatch || device.materialBatch).map(batchesOf);
-      const data = {
-        added: added.length,
-        first: added[0],
-        last: added.at(-1),
-        serialsSha256: sha256Hex(canonicalJson(added)),
-        ...(withBatches.length > 0 && { batchesSha256: sha256Hex(canonicalJson(withBatches)) }),
-      };
-      await appendEvent(ctx, trx, { action: "devices.added", subject: lot.code, data });
-    }
+    if (added.length > 0) await appendAdded(ctx, trx, lot.code, devices);
     if (changes.length > 0) await appendChanges(ctx, trx, lot.code, changes, input.reason);
     const counts = { added: added.length, known: known.size };
     return input.devices ? { ...counts, batchesSet: changes.length } : counts;
   });
 }
+
+/** Notes what was added. @param devices at least one. */
+async function appendAdded(ctx: PersonCtx, trx: Trx, lot: string, devices: readonly GivenDevice[]): Promise<void> {
+  const serials = devices.map((device) => device.serial);
+  const withBatches = devices.filter((device) => device.gaugeBatch || device.materialBatch);
+  const data = {
+    added: serials.length,
+    first: serials[0],
+    last: serials.at(-1),
+    serialsSha256: await inSlices(canonicalArraySha256(serials)),
+    ...(withBatches.length > 0 && { batchesSha256: await batchesSha256(withBatches) }),
+  };
+  await appendEvent(ctx, trx, { action: "devices.added", subject: lot, data });
+}
+
+const batchesSha256 = async (devices: readonly GivenDevice[]): Promise<string> =>
+  inSlices(canonicalArraySha256(await inSlices(mapInSteps(devices, batchesOf))));
 
 const batchesOf = ({ serial, gaugeBatch = null, materialBatch = null }: GivenDevice) => ({
   serial,
@@ -106,11 +115,11 @@ function assertReasonFor(changes: readonly Change[], reason: string | undefined)
 
 async function changeBatches(ctx: PersonCtx, trx: Trx, changes: readonly Change[], reason = ""): Promise<void> {
   const rowOf = ({ device, gaugeBatch, materialBatch }: Change) => ({ id: device.id, gaugeBatch, materialBatch });
-  const corrections = changes
-    .filter((change) => change.corrects)
-    .map((change) => ({ ...rowOf(change), correctionId: ctx.newId() }));
+  const corrected = changes.filter((change) => change.corrects);
+  const correctionOf = (change: Change) => ({ ...rowOf(change), correctionId: ctx.newId() });
+  const corrections = await inSlices(mapInSteps(corrected, correctionOf));
   await insertBatchCorrections(trx, { devices: corrections, reason, personId: ctx.actor.id, at: ctx.now() });
-  await updateBatches(trx, changes.map(rowOf));
+  await updateBatches(trx, await inSlices(mapInSteps(changes, rowOf)));
 }
 
 async function appendChanges(
@@ -120,8 +129,9 @@ async function appendChanges(
   changes: readonly Change[],
   reason: string | undefined,
 ): Promise<void> {
-  const rows = changes.map(({ device, ...to }) => batchesOf({ ...to, serial: device.serial }));
   const corrected = changes.filter((change) => change.corrects).length;
-  const data = { devices: changes.length, corrected, batchesSha256: sha256Hex(canonicalJson(rows)) };
+  const changed = ({ device: { serial }, ...batches }: Change) => ({ ...batches, serial });
+  const devices = await inSlices(mapInSteps(changes, changed));
+  const data = { devices: devices.length, corrected, batchesSha256: await batchesSha256(devices) };
   await appendEvent(ctx, trx, { action: "devices.batches-set", subject: lot, data, texts: { reason } });
 }

@@ -1,7 +1,8 @@
-import { createHash } from "node:crypto";
+import { sha256InSteps } from "@/builders/bundle/sha256";
 import { deleteIdempotentReply, insertIdempotentReply, storeIdempotentReply } from "@/db/queries/idempotency";
 import { AppError } from "@/lib/errors";
 import type { Ctx } from "@/lib/services/context";
+import { inSlices } from "@/lib/services/in-slices";
 
 export interface StoredReply {
   status: number;
@@ -25,7 +26,7 @@ export async function replyOnce(
     actorId,
     route,
     key,
-    bodySha256: createHash("sha256").update(call.body).digest(),
+    bodySha256: await inSlices(sha256InSteps(call.body)),
     createdAt: ctx.now(),
   };
   const earlier = await insertIdempotentReply(ctx.db, claim);

@@ -4,6 +4,7 @@ import { listSetPointFindings } from "@/lib/domain/compensation/set-points";
 import type { Finding, Purpose, Reading } from "@/lib/domain/compensation/types";
 import { compareEquipment, compareWithPlan } from "@/lib/domain/run-plan/compare-run";
 import type { PlannedPoint } from "@/lib/domain/run-plan/run-plan";
+import type { Steps } from "@/lib/domain/steps";
 import { AppError } from "@/lib/errors";
 import type { Ctx } from "@/lib/services/context";
 
@@ -12,7 +13,7 @@ export interface UsedPlan {
   state: RunPlanRow["state"];
   points: readonly PlannedPoint[];
   /** What a run has that the plan doesn't, and the other way round. */
-  compare: (readings: readonly Reading[], equipment: readonly string[]) => Finding[];
+  compare: (readings: readonly Reading[], equipment: readonly string[]) => Steps<Finding[]>;
 }
 
 /**
@@ -33,11 +34,13 @@ export async function findUsedPlan(
     id: row.id,
     state: row.state,
     points: row.points,
-    compare: (readings, equipment) => [
-      ...compareWithPlan(plan, readings),
-      ...listSetPointFindings(readings, row.points),
-      ...compareEquipment(planned, equipment),
-    ],
+    compare: function* (readings, equipment) {
+      return [
+        ...(yield* compareWithPlan(plan, readings)),
+        ...(yield* listSetPointFindings(readings, row.points)),
+        ...compareEquipment(planned, equipment),
+      ];
+    },
   };
 }
 

@@ -2,6 +2,8 @@ import type { Db } from "@/db/executor";
 import { findDeviceIds, findLotsOfSerials } from "@/db/queries/devices";
 import type { Reading } from "@/lib/domain/compensation/types";
 import type { RowErrorList } from "@/lib/domain/readings/row-error-list";
+import { forEachInSteps, type Steps } from "@/lib/domain/steps";
+import { inSlices } from "@/lib/services/in-slices";
 
 export interface MatchedSerials {
   /** Device id by serial, of those that the lot has. */
@@ -21,13 +23,16 @@ export async function matchSerials(
   addDevices: boolean,
   errors: RowErrorList,
 ): Promise<MatchedSerials> {
-  const serials = [...new Set(readings.map((reading) => reading.serial))];
+  const serials = await inSlices(serialsOf(readings));
   const deviceIds = await findDeviceIds(db, lot.id, serials);
   const strange = serials.filter((serial) => !deviceIds.has(serial));
-  const lots = await findLotsOfSerials(db, strange);
   if (strange.length === 0) return { deviceIds, unknown: [] };
-  for (const { row, serial } of readings) {
-    if (deviceIds.has(serial)) continue;
+  const lots = await findLotsOfSerials(db, strange);
+  // Between the two look-ups somebody may have added some to this very lot.
+  const late = strange.filter((serial) => lots.get(serial) === lot.code);
+  for (const [serial, id] of await findDeviceIds(db, lot.id, late)) deviceIds.set(serial, id);
+  const judge = ({ row, serial }: Reading) => {
+    if (deviceIds.has(serial)) return;
     const other = lots.get(serial);
     const at = { row, column: "serial" };
     if (other !== undefined) {
@@ -36,6 +41,13 @@ export async function matchSerials(
       const message = `${serial} is not in lot ${lot.code}; add it to the lot, or upload with "add devices".`;
       errors.add({ ...at, code: "device.unknown", message });
     }
-  }
+  };
+  await inSlices(forEachInSteps(readings, judge));
   return { deviceIds, unknown: strange.filter((serial) => !lots.has(serial)) };
+}
+
+function* serialsOf(readings: readonly Reading[]): Steps<string[]> {
+  const serials = new Set<string>();
+  yield* forEachInSteps(readings, ({ serial }) => serials.add(serial));
+  return [...serials];
 }

@@ -1,15 +1,17 @@
 import type { Db } from "@/db/executor";
 import type { FamilyRules, Finding, Purpose, Reading } from "@/lib/domain/compensation/types";
-import { judgeReadings } from "@/lib/domain/readings/judge-readings";
+import { judgeReadingsInSteps } from "@/lib/domain/readings/judge-readings";
 import { parseReadingsCsv } from "@/lib/domain/readings/parse-readings-csv";
 import { RowErrorList } from "@/lib/domain/readings/row-error-list";
+import type { Steps } from "@/lib/domain/steps";
 import { AppError } from "@/lib/errors";
+import { inSlices } from "@/lib/services/in-slices";
 import { type MatchedSerials, matchSerials } from "./match-serials";
 
 export interface RunFile extends MatchedSerials {
   readings: Reading[];
   /** What the rules say of the readings. @throws AppError `run.invalid` {errors, errorCount} where they contradict them */
-  judge: () => Finding[];
+  judge: () => Steps<Finding[]>;
 }
 
 export interface RunFileInput {
@@ -29,12 +31,12 @@ export async function readRunFile(db: Db, input: RunFileInput): Promise<RunFile>
   const parsed = await parseReadingsCsv(input.bytes);
   const errors = new RowErrorList();
   const matched = await matchSerials(db, input.lot, parsed.readings, input.addDevices, errors);
-  const judge = () => {
-    const { errorCount, findings } = judgeReadings(input.rules, input.purpose, parsed, errors);
+  const judge = function* () {
+    const { errorCount, findings } = yield* judgeReadingsInSteps(input.rules, input.purpose, parsed, errors);
     if (errorCount > 0) throw invalid(errors, errorCount);
     return findings;
   };
-  if (errors.total > 0 || parsed.errorCount > 0 || parsed.readings.length === 0) judge();
+  if (errors.total > 0 || parsed.errorCount > 0 || parsed.readings.length === 0) await inSlices(judge());
   return { readings: parsed.readings, judge, ...matched };
 }
 

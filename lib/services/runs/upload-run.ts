@@ -1,7 +1,7 @@
-import { createHash } from "node:crypto";
+import { sha256InSteps } from "@/builders/bundle/sha256";
 import type { Trx } from "@/db/executor";
 import { markSetsStale } from "@/db/queries/coefficients";
-import { insertDevices } from "@/db/queries/devices";
+import { findDeviceIds, insertDevices } from "@/db/queries/devices";
 import { getLot, type LotRow, lockLot } from "@/db/queries/lots";
 import { insertReadings } from "@/db/queries/readings";
 import {
@@ -13,8 +13,10 @@ import {
   insertRunFindings,
 } from "@/db/queries/runs";
 import type { Finding, Purpose, Reading } from "@/lib/domain/compensation/types";
+import { mapInSteps, type Steps } from "@/lib/domain/steps";
 import { AppError } from "@/lib/errors";
 import { assertRole, type PersonCtx } from "@/lib/services/context";
+import { inSlices } from "@/lib/services/in-slices";
 import { appendEvent } from "@/lib/services/ledger/append-event";
 import { getLotRules } from "@/lib/services/lots/lot-rules";
 import { findUsedPlan, takeUsedPlan } from "@/lib/services/run-plans/use-run-plan";
@@ -47,7 +49,7 @@ export interface NewRunInput {
 export async function uploadRun(ctx: PersonCtx, input: NewRunInput) {
   assertRole(ctx, "engineer");
   const lot = await getLot(ctx.db, input.lot);
-  const sha256 = createHash("sha256").update(input.bytes).digest();
+  const sha256 = await inSlices(sha256InSteps(input.bytes));
   const earlier = await findRunBySha256(ctx.db, lot.id, sha256);
   if (earlier) {
     const on = earlier.createdAt.toISOString().slice(0, 10);
@@ -58,17 +60,19 @@ export async function uploadRun(ctx: PersonCtx, input: NewRunInput) {
   const equipment = await requireEquipment(ctx, input.equipment);
   const { rules } = await getLotRules(ctx.db, lot);
   const file = await readRunFile(ctx.db, { ...input, lot, rules });
-  const judge = () => [
-    ...file.judge(),
-    ...(plan?.compare(file.readings, input.equipment) ?? []),
-    ...listEquipmentFindings(equipment, lastTakenAt(file.readings)),
-  ];
+  const judge = function* () {
+    return [
+      ...(yield* file.judge()),
+      ...(plan ? yield* plan.compare(file.readings, input.equipment) : []),
+      ...listEquipmentFindings(equipment, lastTakenAt(file.readings)),
+    ];
+  };
 
   const id = ctx.newId();
-  const staleSets = await ctx.db.transaction().execute(async (trx) => {
+  const stored = await ctx.db.transaction().execute(async (trx) => {
     // Under the lot's lock, a derivation that is just being finished sees this run, or this run sees its sets.
     if (input.supersedes !== undefined || file.unknown.length > 0) await lockLot(trx, lot.id);
-    await addUnknown(ctx, trx, lot, file);
+    const added = await addUnknown(ctx, trx, lot, file);
     await insertRun(trx, runRowOf(ctx, id, lot, sha256, input, file), input.bytes);
     await takeUsedPlan(trx, plan);
     await insertRunEquipment(
@@ -76,7 +80,7 @@ export async function uploadRun(ctx: PersonCtx, input: NewRunInput) {
       id,
       equipment.map(({ code: _, ...one }) => one),
     );
-    const findings = await judgeMeanwhile(judge, insertReadings(trx, id, file.readings, file.deviceIds));
+    const findings = await judgeMeanwhile(judge(), insertReadings(trx, id, file.readings, file.deviceIds));
     await insertRunFindings(
       trx,
       id,
@@ -94,7 +98,7 @@ export async function uploadRun(ctx: PersonCtx, input: NewRunInput) {
         ...(input.sourceSha256 !== undefined && { sourceSha256: input.sourceSha256 }),
         rows: file.readings.length,
         devices: file.deviceIds.size,
-        added: file.unknown.length,
+        added,
         equipment: equipment.map((one) => one.code),
         ...(plan && { plan: plan.id }),
         ...(input.supersedes !== undefined && {
@@ -105,18 +109,17 @@ export async function uploadRun(ctx: PersonCtx, input: NewRunInput) {
       },
       texts: { reason: input.reason },
     });
-    return count;
+    return { added, staleSets: count };
   });
-  return { ...(await getRunView(ctx, id)), added: file.unknown.length, staleSets };
+  return { ...(await getRunView(ctx, id)), ...stored };
 }
 
 /**
  * Judges readings while the server stores them: neither has to wait for the other, and an error undoes the transaction. Both
  * have ended when this returns or throws, so that nothing is sent after the end of the transaction.
  */
-async function judgeMeanwhile(judge: () => Finding[], storing: Promise<void>): Promise<Finding[]> {
-  const judging = new Promise(setImmediate).then(judge);
-  const [judged, stored] = await Promise.allSettled([judging, storing]);
+async function judgeMeanwhile(judge: Steps<Finding[]>, storing: Promise<void>): Promise<Finding[]> {
+  const [judged, stored] = await Promise.allSettled([inSlices(judge), storing]);
   if (judged.status === "rejected") throw judged.reason;
   if (stored.status === "rejected") throw stored.reason;
   return judged.value;
@@ -159,10 +162,15 @@ function lastTakenAt(readings: readonly Reading[]): string {
   return last;
 }
 
-async function addUnknown(ctx: PersonCtx, trx: Trx, lot: LotRow, file: RunFile): Promise<void> {
-  const devices = file.unknown.map((serial) => ({ id: ctx.newId(), serial }));
+/** Adds the devices that nobody added while the file was read. @returns how many */
+async function addUnknown(ctx: PersonCtx, trx: Trx, lot: LotRow, file: RunFile): Promise<number> {
+  for (const [serial, id] of await findDeviceIds(trx, lot.id, file.unknown)) file.deviceIds.set(serial, id);
+  // In the order in which others add them too, so that two uploads can't each wait for what the other has added.
+  const unknown = file.unknown.filter((serial) => !file.deviceIds.has(serial)).sort();
+  const devices = await inSlices(mapInSteps(unknown, (serial) => ({ id: ctx.newId(), serial })));
   await insertDevices(trx, { lotId: lot.id, devices, addedAt: ctx.now(), addedBy: ctx.actor.id });
   for (const { id, serial } of devices) file.deviceIds.set(serial, id);
+  return devices.length;
 }
 
 function runRowOf(ctx: PersonCtx, id: string, lot: LotRow, sha256: Buffer, input: NewRunInput, file: RunFile) {

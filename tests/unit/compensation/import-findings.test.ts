@@ -2,9 +2,11 @@ import { describe, expect, it } from "vitest";
 import { type DerivedBefore, type ImportedSet, listImportFindings } from "@/lib/domain/compensation/import-findings";
 import { poolGain } from "@/lib/domain/compensation/pooled";
 import type { Coefficients, FamilyRules } from "@/lib/domain/compensation/types";
+import { finish } from "@/lib/domain/steps";
 import { readFamily, readJson } from "./golden-example";
 import { family, seededNormal } from "./made-up-run";
 
+const importFindings = (...given: Parameters<typeof listImportFindings>) => finish(listImportFindings(...given));
 const normal = seededNormal(83);
 const set = (serial: string, change: Partial<Coefficients> = {}): ImportedSet => ({
   serial,
@@ -32,7 +34,7 @@ const derivedOf = (sets: readonly ImportedSet[]): DerivedBefore => ({
 });
 
 const codesOf = (sets: readonly ImportedSet[], derived: DerivedBefore | null = null, rules: FamilyRules = family) =>
-  listImportFindings(sets, rules, derived).map((one) => one.code);
+  importFindings(sets, rules, derived).map((one) => one.code);
 
 describe("imported coefficients that are in order", () => {
   it("have the one note that nothing was measured, with and without derived ones beside them", () => {
@@ -55,7 +57,7 @@ describe("imported coefficients that are in order", () => {
 describe("signs", () => {
   it("tells gain's effect in the place of its correction, against what readings gave", () => {
     const turned = lotOf(() => ({ gainTc: 4e-4 }));
-    const [, finding] = listImportFindings(turned, family, derivedOf(lotOf()));
+    const [, finding] = importFindings(turned, family, derivedOf(lotOf()));
     expect(finding).toMatchObject({
       code: "import.sign_opposite",
       severity: "soft",
@@ -66,7 +68,7 @@ describe("signs", () => {
 
   it("tells zero's correction in the place of its drift, device by device only", () => {
     const turned = lotOf((i) => ({ zeroTc: (i % 2 === 0 ? -1 : 1) * 2e-5 }));
-    const [, finding] = listImportFindings(turned, family, derivedOf(lotOf()));
+    const [, finding] = importFindings(turned, family, derivedOf(lotOf()));
     expect(finding).toMatchObject({ code: "import.sign_opposite", data: { coefficient: "zeroTc", opposite: 12 } });
     expect(finding?.message).toContain("zeroTc is the drift itself");
     const others = turned.map((one) => ({ ...one, serial: `X${one.serial}` }));
@@ -94,7 +96,7 @@ describe("signs", () => {
 
   it("only notes a positive gainTc where there is nothing to compare with", () => {
     const positive = (count: number) => lotOf((i) => ({ gainTc: i < count ? 4e-4 : -4e-4 }));
-    const found = listImportFindings(positive(12), family, null);
+    const found = importFindings(positive(12), family, null);
     expect(found[1]).toMatchObject({
       code: "import.sign_unusual",
       severity: "note",
@@ -107,7 +109,7 @@ describe("signs", () => {
 
 describe("units and limits", () => {
   it("tells a gainTc in ppm/K and a zeroTc in percent, and not what a cell can have", () => {
-    const found = listImportFindings(
+    const found = importFindings(
       lotOf(() => ({ gainTc: -400 })),
       family,
       null,
@@ -138,7 +140,7 @@ describe("units and limits", () => {
   });
 
   it("tells gains far from 1 once, the furthest with how many", () => {
-    const found = listImportFindings(
+    const found = importFindings(
       lotOf((i) => (i < 3 ? { gain: 1.5 + i / 10 } : { gain: 1.2 })),
       family,
       null,
@@ -164,7 +166,7 @@ describe("siblings", () => {
 
   it("are compared as derived ones are", () => {
     expect(codesOf(scattered())).toEqual(["import.not_measured"]);
-    const found = listImportFindings(scattered({ gainTc: -3.5e-4 }), family, null);
+    const found = importFindings(scattered({ gainTc: -3.5e-4 }), family, null);
     expect(found[1]).toMatchObject({ code: "coefficient.outlier", serial: "S5", data: { coefficient: "gainTc" } });
     expect(codesOf(scattered({ gainTc: 4e-4 }))).toContain("coefficient.sign_unlike");
     expect(codesOf(scattered({ tempOffset: -190 }))).toContain("thermometer.off_siblings");

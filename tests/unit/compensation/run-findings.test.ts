@@ -2,6 +2,7 @@ import { describe, expect, it } from "vitest";
 import { listRunFindings } from "@/lib/domain/compensation/run-findings";
 import { listSetPointFindings } from "@/lib/domain/compensation/set-points";
 import type { Finding, Purpose, Reading } from "@/lib/domain/compensation/types";
+import { finish } from "@/lib/domain/steps";
 import { family, idealCell, madeUpRun, type RowErrors } from "./made-up-run";
 
 const cells = ["A", "B", "C"].map((serial) => idealCell(serial));
@@ -200,7 +201,7 @@ describe("clock.backwards", () => {
 
 describe("chamber.off_set_point", () => {
   const readings = readingsOf();
-  const planned = (setC: number) => listSetPointFindings(readings, [{ point: 2, setC }]);
+  const planned = (setC: number) => finish(listSetPointFindings(readings, [{ point: 2, setC }]));
 
   it("is found beyond 2 K (OIML R 60-2, 2.10.1), gathered over the devices", () => {
     const [finding, ...others] = planned(22.5);
@@ -217,8 +218,8 @@ describe("chamber.off_set_point", () => {
     expect(planned(23)).toEqual([]);
     expect(planned(27)).toEqual([]);
     expect(planned(27.001)).toHaveLength(1);
-    expect(listSetPointFindings(readings, [{ point: 9, setC: 80 }])).toEqual([]);
-    expect(listSetPointFindings(readings, [{ point: 2, setC: 24 }], 0.5)).toHaveLength(1);
+    expect(finish(listSetPointFindings(readings, [{ point: 9, setC: 80 }]))).toEqual([]);
+    expect(finish(listSetPointFindings(readings, [{ point: 2, setC: 24 }], 0.5))).toHaveLength(1);
   });
 });
 

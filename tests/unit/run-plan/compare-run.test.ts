@@ -2,6 +2,7 @@ import { describe, expect, it } from "vitest";
 import type { Reading } from "@/lib/domain/compensation/types";
 import { compareEquipment, compareWithPlan } from "@/lib/domain/run-plan/compare-run";
 import { plannedReadings, type RunPlan } from "@/lib/domain/run-plan/run-plan";
+import { finish } from "@/lib/domain/steps";
 import { goodPlan, point } from "./plan-facts";
 
 const taken = (plan: RunPlan): Reading[] =>
@@ -15,7 +16,7 @@ const taken = (plan: RunPlan): Reading[] =>
     takenAt: "2026-01-01T00:00:00Z",
   }));
 const codes = (plan: RunPlan, readings: Reading[]) =>
-  compareWithPlan(plan, readings).map(({ code, serial, point: at, data }) => [code, serial, at, data?.devices]);
+  finish(compareWithPlan(plan, readings)).map(({ code, serial, point: at, data }) => [code, serial, at, data?.devices]);
 
 describe("compareWithPlan", () => {
   const plan = goodPlan();
