@@ -41,7 +41,8 @@ function valuesOf(field: DecodedField | undefined, after: ReadonlyMap<string, De
 /** Whether a part's bits differ in that one byte. */
 function hasOtherBits(part: CompiledField | undefined, expected: Uint8Array, at: number, to: number | null): boolean {
   if (!part?.bits || to === null) return false;
-  const turned = expected.slice();
+  // No slice: of a Buffer, as the database gives it, that is a view.
+  const turned = Uint8Array.from(expected);
   turned[at] = to;
   return readBits(expected, part, part.bits) !== readBits(turned, part, part.bits);
 }

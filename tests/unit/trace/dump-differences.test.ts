@@ -11,11 +11,12 @@ const bits = [
   { name: "size", from: 10, width: 6, unit: "kg", value: { const: 50 } },
 ];
 const layout = compileLayout(oneFieldLayout({ name: "flags", type: "u16", value: { bits } as LayoutField["value"] }));
-const image = encodeImage(layout, plainSources());
+// As the database gives it.
+const image = Buffer.from(encodeImage(layout, plainSources()));
 
 /** Names and values of what differs once some bits of the memory are turned. */
 function turned(...bytes: [at: number, mask: number][]) {
-  const memory = image.slice();
+  const memory = Uint8Array.from(image);
   for (const [at, mask] of bytes) memory[at] = (memory[at] as number) ^ mask;
   return differencesOf(layout, image, memory).map((one) => [one.at, one.field, one.expectedValue, one.actualValue]);
 }
