@@ -137,7 +137,7 @@ function encodeHexConstant(field: CompiledField, value: unknown, target: EncodeT
 }
 
 /** Digits of a limit in the message; the error's `limit` has all of them. */
-const TOLD_DIGITS = 9;
+const TOLD_DIGITS = 12;
 
 function outOfRange(field: CompiledField, value: number, below: boolean, serial: string): AppError {
   const type = field.number as NonNullable<CompiledField["number"]>;
@@ -145,14 +145,7 @@ function outOfRange(field: CompiledField, value: number, below: boolean, serial:
   const limit = type.kind === "integer" ? stored * field.scale + field.bias : stored;
   const size = field.bits ? `${field.bits.width} bits` : field.type;
   const end = `the ${below ? "least" : "most"} is ${Number(limit.toPrecision(TOLD_DIGITS))}`;
-  return refusal(
-    "image.value_out_of_range",
-    field,
-    value,
-    limit,
-    serial,
-    `does not fit into ${size}; ${end}`,
-  );
+  return refusal("image.value_out_of_range", field, value, limit, serial, `does not fit into ${size}; ${end}`);
 }
 
 function refusal(
