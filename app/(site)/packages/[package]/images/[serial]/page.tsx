@@ -140,7 +140,9 @@ function FieldsCard({ image }: { image: ImageView }) {
   const rows = image.fields.map((field) => {
     const { text, unit } = formatField(field.value, field.unit);
     const source = checksums.has(field.name) ? "checksum" : (field.source ?? "constant");
-    return { name: field.name, text, unit, raw: field.raw.toUpperCase(), address: formatAddress(field.at), source };
+    // In one cell, so that a phone shows both without scrolling.
+    const value = unit === "" ? text : `${text} ${unit}`;
+    return { name: field.name, value, raw: field.raw.toUpperCase(), address: formatAddress(field.at), source };
   });
   return (
     <Card title="Fields" note="As decoded from these bytes">
@@ -149,8 +151,7 @@ function FieldsCard({ image }: { image: ImageView }) {
         rows={rows}
         columns={[
           { key: "name", header: "Field", format: { as: "code" } },
-          { key: "unit", header: "Unit" },
-          { key: "text", header: "Value", align: "right", format: { as: "code" } },
+          { key: "value", header: "Value", align: "right", format: { as: "code" } },
           { key: "raw", header: "Stored", unit: "hex", format: { as: "code" } },
           { key: "address", header: "At", unit: "hex", format: { as: "code" } },
           { key: "source", header: "From" },
