@@ -4,6 +4,7 @@ import { Download, Printer, Redo2, Undo2, Upload } from "lucide-react";
 import { useId, useState } from "react";
 import { Button, buttonClass, LinkButton } from "@/app/_components/button";
 import { FieldError } from "@/app/_components/form/field";
+import { setOut } from "@/lib/domain/json-set-out";
 import { LAYOUT_MAX_BYTES } from "@/schemas/api/layouts";
 import { readImport } from "./draft/read-import";
 
@@ -25,7 +26,7 @@ export function EditorTools({ writable, sheet, fileName, text, onUndo, onRedo, o
     if (!file) return;
     const read = readImport(new Uint8Array(await file.slice(0, LAYOUT_MAX_BYTES + 1).arrayBuffer()));
     setRefusal("refusal" in read ? `${file.name}: ${read.refusal}` : undefined);
-    if ("text" in read) onImport(read.text, file.name);
+    if ("text" in read) onImport(setOut(read.text), file.name);
   };
   return (
     <div>

@@ -34,7 +34,7 @@ export interface LayoutEditorProps {
   basis: LintBasis;
   /** The stored layout; left out for a new one. */
   layout?: LayoutView;
-  /** Text to begin with. */
+  /** Text to begin with; that of a stored layout set out to be read. */
   source: string;
   /** Other versions of the family. */
   others: readonly OtherVersion[];
@@ -113,6 +113,12 @@ export function LayoutEditor(props: LayoutEditorProps) {
   useSaveKey(draft.save);
   useLeaveWarning(writable && ["typing", "saving", "offline", "refused"].includes(draft.state.status));
 
+  // A text that was set out for reading only goes out as it is stored.
+  const exported = () => {
+    const now = handle.current?.text() ?? text;
+    return layout && now === source ? layout.source : now;
+  };
+
   const { conflict } = draft.state;
   const title = layout ? `Layout ${layout.version} of ${family}` : `New layout of ${family}`;
   const encoded = sample && "rows" in sample ? sample : null;
@@ -157,7 +163,7 @@ export function LayoutEditor(props: LayoutEditorProps) {
           writable={writable}
           sheet={layout && `/families/${family}/layouts/${layout.version}/sheet`}
           fileName={`${family}-layout-${version ?? "new"}.json`}
-          text={() => handle.current?.text() ?? text}
+          text={exported}
           onUndo={() => handle.current?.undo()}
           onRedo={() => handle.current?.redo()}
           onImport={(imported, name) => replace(imported, `${name} is taken`)}

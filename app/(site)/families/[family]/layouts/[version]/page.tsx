@@ -1,4 +1,5 @@
 import type { Metadata } from "next";
+import { setOut } from "@/lib/domain/json-set-out";
 import { holds, orNotFound, pageContext } from "@/lib/http/page-context";
 import { hasOneTimeCode } from "@/lib/services/account/has-one-time-code";
 import { isMaker } from "@/lib/services/families/publishing";
@@ -37,7 +38,7 @@ export default async function LayoutPage({ params }: PageProps) {
       family={layout.family}
       basis={judgedAgainst}
       layout={layout}
-      source={layout.source}
+      source={setOut(layout.source)}
       others={versions
         .filter((one) => one.version !== layout.version)
         .map(({ version, state }) => ({ version, state }))}

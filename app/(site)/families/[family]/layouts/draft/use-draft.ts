@@ -2,6 +2,7 @@
 
 import { useCallback, useEffect, useRef, useState } from "react";
 import { callApi, type ProblemDetails, problemOf } from "@/app/_components/api-client";
+import { setOut } from "@/lib/domain/json-set-out";
 import { dropCopy, writeCopy } from "./local-copy";
 
 /** Somebody else's text, saved over the same draft. */
@@ -133,5 +134,5 @@ export function useDraft({ family, version, draft, unfinished, writable }: Draft
 
 function conflictOf(problem: ProblemDetails, base: string): DraftConflict {
   const { source, now, updatedBy, updatedAt } = problem as ProblemDetails & Record<string, unknown>;
-  return { base, theirs: String(source), draft: Number(now), by: String(updatedBy), at: String(updatedAt) };
+  return { base, theirs: setOut(String(source)), draft: Number(now), by: String(updatedBy), at: String(updatedAt) };
 }

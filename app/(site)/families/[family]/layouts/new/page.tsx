@@ -1,5 +1,6 @@
 import type { Metadata } from "next";
 import { Notice } from "@/app/_components/notice";
+import { setOut } from "@/lib/domain/json-set-out";
 import { holds, orNotFound, pageContext } from "@/lib/http/page-context";
 import { getLayout, listLayouts } from "@/lib/services/layouts/get-layout";
 import { getEditorBasis } from "@/lib/services/layouts/lint-document";
@@ -37,7 +38,7 @@ export default async function NewLayoutPage({ params, searchParams }: PageProps)
     <LayoutEditor
       family={family}
       basis={basis}
-      source={before ? continuedText(before.source, before.version, taken) : begun}
+      source={before ? continuedText(setOut(before.source), before.version, taken) : begun}
       others={items.map(({ version, state }) => ({ version, state }))}
       lots={lots.items.map((lot) => lot.code)}
       mayWrite
