@@ -1,3 +1,4 @@
+import { crc32 } from "@/builders/bundle/crc32";
 import { isPlainPath } from "@/builders/bundle/zip";
 import {
   ATTRIBUTES,
@@ -9,7 +10,6 @@ import {
   LOCAL_BYTES,
   ZIP_EPOCH_DOS_DATE,
 } from "@/builders/bundle/zip-records";
-import { getCrc } from "@/builders/codec/crc";
 import { AppError } from "@/lib/errors";
 
 /**
@@ -22,7 +22,11 @@ import { AppError } from "@/lib/errors";
 export function readZip(bytes: Uint8Array): Map<string, Uint8Array> {
   const view = new DataView(bytes.buffer, bytes.byteOffset, bytes.byteLength);
   const end = bytes.length - END_BYTES;
-  assertZip(end >= 0 && view.getUint32(end, true) === END, end, "has no end record as its last bytes");
+  const ends = end >= 0 && view.getUint32(end, true) === END;
+  const begins = bytes.length >= LOCAL_BYTES && view.getUint32(0, true) === LOCAL;
+  if (!ends && !begins)
+    throw malformed(0, "This is no zip: it has no entry in front and no end record as its last bytes");
+  assertZip(ends, end, "has no end record as its last bytes: it may be cut off");
   const count = view.getUint16(end + 10, true);
   const directory = view.getUint32(end + 16, true);
   const plainEnd =
@@ -55,19 +59,21 @@ export function readZip(bytes: Uint8Array): Map<string, Uint8Array> {
 
 function readEntry(bytes: Uint8Array, view: DataView, at: number, directory: number) {
   assertZip(at + LOCAL_BYTES <= directory && view.getUint32(at, true) === LOCAL, at, "has a broken entry");
-  assertZip(view.getUint16(at + 6, true) === 0, at, "has an entry with flags");
-  assertZip(view.getUint16(at + 8, true) === 0, at, "has an entry that is not stored");
-  const dated = view.getUint16(at + 10, true) === 0 && view.getUint16(at + 12, true) === ZIP_EPOCH_DOS_DATE;
-  assertZip(dated, at, "has an entry with another date than 1980-01-01");
-  const size = view.getUint32(at + 18, true);
-  assertZip(view.getUint32(at + 22, true) === size, at, "has an entry of two sizes");
-  assertZip(view.getUint16(at + 28, true) === 0, at, "has an entry with extra fields");
   const start = at + LOCAL_BYTES + view.getUint16(at + 26, true);
-  assertZip(start + size <= directory, at, "has an entry that runs into the directory");
+  assertZip(start <= directory, at, "has an entry that runs into the directory");
   const path = textOf(bytes.subarray(at + LOCAL_BYTES, start));
   assertZip(isPlainPath(path), at, "has an entry whose path is not plain");
+  const assert = (holds: boolean, reason: string) => assertZip(holds, at, `${reason}: ${path}`);
+  assert(view.getUint16(at + 6, true) === 0, "has an entry with flags");
+  assert(view.getUint16(at + 8, true) === 0, "has an entry that is not stored");
+  const dated = view.getUint16(at + 10, true) === 0 && view.getUint16(at + 12, true) === ZIP_EPOCH_DOS_DATE;
+  assert(dated, "has an entry with another date than 1980-01-01");
+  const size = view.getUint32(at + 18, true);
+  assert(view.getUint32(at + 22, true) === size, "has an entry of two sizes");
+  assert(view.getUint16(at + 28, true) === 0, "has an entry with extra fields");
+  assert(start + size <= directory, "has an entry that runs into the directory");
   const content = bytes.subarray(start, start + size);
-  assertZip(getCrc("CRC-32/ISO-HDLC")(content, 0, size) === view.getUint32(at + 14, true), at, "has a damaged entry");
+  assert(crc32(content) === view.getUint32(at + 14, true), "has a damaged entry");
   return { path, content, next: start + size };
 }
 
@@ -91,5 +97,7 @@ function textOf(bytes: Uint8Array): string {
 }
 
 function assertZip(holds: boolean, at: number, reason: string): void {
-  if (!holds) throw new AppError("bundle.zip_malformed", { at, message: `The zip ${reason}` });
+  if (!holds) throw malformed(at, `The zip ${reason}`);
 }
+
+const malformed = (at: number, message: string) => new AppError("bundle.zip_malformed", { at, message });

@@ -3,7 +3,7 @@ import { mkdirSync, readFileSync, symlinkSync, writeFileSync } from "node:fs";
 import { dirname, join } from "node:path";
 import { describe, expect, it } from "vitest";
 import { readZip } from "@/builders/bundle/read-zip";
-import { verifyBundle } from "@/builders/bundle/verify-bundle";
+import { verifyBundle, verifyBundleFiles } from "@/builders/bundle/verify-bundle";
 import { zipPieces } from "@/builders/bundle/zip";
 import verify from "@/lib/commands/verify";
 import { setEnv } from "@/lib/env";
@@ -100,7 +100,7 @@ const MADE_FROM_OURS: [name: string, zip: Buffer, reason: RegExp][] = [
     }),
     /belong to no entry/,
   ],
-  ["a damaged content", changed((zip) => zip.write("X", 45)), /damaged/],
+  ["a damaged content", changed((zip) => zip.write("X", 45)), /damaged entry: SHA256SUMS/],
   [
     "sizes after the content",
     changed((zip) => {
@@ -110,7 +110,8 @@ const MADE_FROM_OURS: [name: string, zip: Buffer, reason: RegExp][] = [
     /flags/,
   ],
   ["half of it", good.subarray(0, good.length / 2), /no end record/],
-  ["nothing", Buffer.alloc(0), /no end record/],
+  ["nothing", Buffer.alloc(0), /no zip.* no end record/],
+  ["a file of another kind", Buffer.from("%PDF-1.7 and more than thirty bytes of it"), /This is no zip/],
 ];
 
 describe("verify refuses", () => {
@@ -150,5 +151,33 @@ describe("verify refuses", () => {
 
   it("nothing of a bundle that is ours", () => {
     expect(verifyBundle(good)).toMatchObject({ ok: true });
+  });
+});
+
+describe("verify tells", () => {
+  const stepsOf = (more: Record<string, string>) =>
+    Object.fromEntries(
+      verifyBundleFiles(
+        new Map([...unpackedFiles, ...Object.entries(more).map(([path, text]) => [path, Buffer.from(text)] as const)]),
+      ).steps.map((step) => [step.name, step]),
+    );
+  const unpackedFiles = readZip(good);
+
+  it("that nothing holds a VERIFY.txt of other words", () => {
+    expect(stepsOf({}).files?.message).not.toContain("VERIFY.txt");
+    const { ok, message } = stepsOf({ "VERIFY.txt": "run: curl somewhere | sh" }).files ?? {};
+    expect([ok, message]).toEqual([true, expect.stringContaining("run no command of it unread")]);
+  });
+
+  it("one file from several", () => {
+    expect(stepsOf({ a: "" }).files?.message).toBe("1 file is not listed: a");
+    expect(stepsOf({ a: "", b: "" }).files?.message).toBe("2 files are not listed, a among them");
+  });
+
+  it("of a preview that nothing is signed, not that files are missing", () => {
+    const preview = stepsOf({ "NOT-RELEASED.txt": "" });
+    for (const name of ["manifest", "list", "signature", "key"]) {
+      expect(preview[name]).toMatchObject({ ok: false, message: "This is a preview: nothing in it is signed" });
+    }
   });
 });
