@@ -11,4 +11,6 @@ export const PROGRAMS = {
   biome: join(CHECKOUT, "node_modules/@biomejs/biome/bin/biome"),
   kyselyCodegen: join(CHECKOUT, "node_modules/kysely-codegen/dist/cli/bin.js"),
   bootstrap: join(CHECKOUT, "lib/commands/bootstrap.mjs"),
+  /** Loaded before Next's server. */
+  tellLength: join(CHECKOUT, "lib/commands/tell-length.mjs"),
 } as const;

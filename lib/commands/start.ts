@@ -92,7 +92,7 @@ async function serve(settings: Env, database: StartDatabase, signal: AbortSignal
   const listen = ["-H", settings.host, "-p", String(settings.port)];
   const web = supervise({
     name: "web",
-    args: [PROGRAMS.next, "start", ...listen],
+    args: ["--import", PROGRAMS.tellLength, PROGRAMS.next, "start", ...listen],
     env: childSettings,
     logFile: join(logs, "web.log"),
     say,

@@ -245,7 +245,15 @@ describe("from readings to a traced device", () => {
 
     const live = await (await asStation("/station/live")).json();
     expect(live.items).toMatchObject([{ lot: LOT, package: made.package, version: "1.0.0", devices: DEVICES }]);
-    const bundle = Buffer.from(await (await asStation(`/station/packages/${made.package}/bundle`)).arrayBuffer());
+    const answer = await asStation(`/station/packages/${made.package}/bundle`);
+    const bundle = Buffer.from(await answer.arrayBuffer());
+    expect(Number(answer.headers.get("content-length"))).toBe(bundle.length);
+    const headers = { authorization: `Bearer ${made.key}`, range: "bytes=5-104" };
+    for (const method of ["GET", "HEAD"]) {
+      const part = await fetch(`${origin}/api/v1/station/packages/${made.package}/bundle`, { method, headers });
+      expect([part.status, part.headers.get("content-length")]).toEqual([206, "100"]);
+      expect(Buffer.from(await part.arrayBuffer())).toEqual(bundle.subarray(5, method === "GET" ? 105 : 5));
+    }
     const manifest = await unpacked(bundle, (folder) => {
       expect(failingCommands(folder)).toEqual([]);
       return JSON.parse(readFileSync(join(folder, "manifest.json"), "utf8"));

@@ -21,7 +21,7 @@ export async function withServedApp<T>(work: (served: Served) => Promise<T>): Pr
   const port = await findFreePort(0);
   const origin = `http://127.0.0.1:${port}`;
   setEnv({ TRIMWRIGHT_ORIGIN: origin, NEXTAUTH_URL: origin });
-  const web = launch([PROGRAMS.next, "start", "-H", "127.0.0.1", "-p", String(port)]);
+  const web = launch(["--import", PROGRAMS.tellLength, PROGRAMS.next, "start", "-H", "127.0.0.1", "-p", String(port)]);
   const worker = launch([PROGRAMS.bootstrap, "worker"]);
   try {
     await untilHealthy(origin);

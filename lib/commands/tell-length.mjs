@@ -1,0 +1,12 @@
+/**
+ * Loaded first in the web process. Next takes `Content-Length` off what a route answers, as a body may have been decoded on its
+ * way; without it no client shows how far a download is. A route that knows the length for sure says it once more under a name
+ * that passes, and here it gets its own again.
+ */
+import { ServerResponse } from "node:http";
+
+const append = ServerResponse.prototype.appendHeader;
+
+ServerResponse.prototype.appendHeader = function appendHeader(name, value) {
+  return name === "x-body-length" ? this.setHeader("content-length", value) : append.call(this, name, value);
+};
