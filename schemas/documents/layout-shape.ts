@@ -5,6 +5,7 @@
 import type { ErrorObject, ValidateFunction } from "ajv/dist/2020";
 import type { Problem } from "@/lib/errors";
 import type { LayoutDocument } from "@/schemas/documents/layout";
+import { choiceFindings } from "@/schemas/documents/layout-choices";
 import { validate as generated } from "@/schemas/documents/layout-validator.generated";
 
 const validate = generated as unknown as ValidateFunction<LayoutDocument>;
@@ -12,7 +13,23 @@ const validate = generated as unknown as ValidateFunction<LayoutDocument>;
 /** Every problem of shape with its JSON pointer (code `layout.shape`); none for a layout document. */
 export function shapeProblems(json: unknown): Problem[] {
   if (validate(json)) return [];
-  return withoutRepeats((validate.errors ?? []).map(problemOf));
+  const errors = validate.errors ?? [];
+  const choices = errors.filter((error) => error.keyword === "oneOf").map((error) => error.instancePath);
+  const chosen = choices.flatMap((path) => {
+    const own = errors.filter((error) => error.keyword !== "oneOf" && isAt(path, error));
+    return choiceFindings(path, valueAt(json, path), own, problemOf).map((one) => ({ code: "layout.shape", ...one }));
+  });
+  const others = errors.filter((error) => !choices.some((path) => isAt(path, error)));
+  return withoutRepeats([...others.map(problemOf), ...chosen]);
+}
+
+const isAt = (path: string, { instancePath }: ErrorObject) =>
+  instancePath === path || instancePath.startsWith(`${path}/`);
+
+/** The value at a JSON pointer that is known to be there. */
+function valueAt(json: unknown, pointer: string): unknown {
+  const tokens = pointer.split("/").slice(1);
+  return tokens.reduce((value, token) => (value as Record<string, unknown>)[unescapePointer(token)], json);
 }
 
 function problemOf(error: ErrorObject): Problem {
@@ -44,6 +61,8 @@ function withoutRepeats(problems: readonly Problem[]): Problem[] {
   const seen = new Set<string>();
   return problems.filter(({ path, message }) => !seen.has(path + message) && seen.add(path + message));
 }
+
+const unescapePointer = (token: string) => token.replaceAll("~1", "/").replaceAll("~0", "~");
 
 /** RFC 6901, section 3: `~` and `/` are escaped. */
 function escapePointer(token: string): string {

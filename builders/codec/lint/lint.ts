@@ -67,6 +67,8 @@ export function lintLayout(document: unknown, options: LintOptions = {}): LintRe
 
 /** Lists whose findings of meaning are about what is missing in them, which no finding of shape says. */
 const LISTS = ["/fields", "/checksums"];
+/** A part's member, such as its algorithm; of a part as a whole, meaning speaks of more than the members do. */
+const MEMBER_OF_PART = /^\/(?:fields|checksums)\/\d+\/./;
 
 /**
  * Findings of shape and of meaning together. Where the shape is wrong, what the meaning says of the same place would only say
@@ -74,7 +76,11 @@ const LISTS = ["/fields", "/checksums"];
  */
 export function joinShape(shape: readonly Problem[], { errors, ...rest }: LintResult): LintResult {
   const told = new Set(shape.map((problem) => problem.path));
-  const repeats = ({ path, code }: Problem) => told.has(path) && (code === "layout.shape" || !LISTS.includes(path));
+  const toldBelow = (path: string) => shape.some((problem) => problem.path.startsWith(`${path}/`));
+  const repeats = ({ path, code }: Problem) => {
+    if (code === "layout.shape") return told.has(path) || toldBelow(path);
+    return (told.has(path) && !LISTS.includes(path)) || (MEMBER_OF_PART.test(path) && toldBelow(path));
+  };
   return { errors: [...shape, ...errors.filter((error) => !repeats(error))], ...rest };
 }
 
