@@ -18,7 +18,7 @@ export function Card({ title, note, aside, look = "plain", children }: CardProps
   return (
     <section className={`min-w-0 rounded border bg-raised px-4 py-4 md:px-[18px] ${borders[look]}`}>
       {title || aside ? (
-        <div className="mb-2 flex flex-wrap items-baseline gap-x-2.5 gap-y-1">
+        <div className="mb-2 flex flex-wrap items-baseline gap-x-2.5 gap-y-1 break-after-avoid">
           {title ? <h2 className="text-md">{title}</h2> : null}
           {note ? <span className="text-sm text-ink-soft">{note}</span> : null}
           {aside ? <div className="ml-auto text-sm">{aside}</div> : null}

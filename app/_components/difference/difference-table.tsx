@@ -13,10 +13,13 @@ import {
 } from "@/app/_components/difference/difference-filter";
 import { serialsOf, useComparison } from "@/app/_components/difference/use-comparison";
 import { EmptyState } from "@/app/_components/empty-state";
+import { orderPrint, usePrintWaits, useTellPrint } from "@/app/_components/print/use-print-order";
 import type { FilterChip, Row } from "@/app/_components/table/column";
+import { PrintedNote } from "@/app/_components/table/printed-note";
+import { PRINTED_MAX } from "@/app/_components/table/printed-rows";
 import { RowsFailed } from "@/app/_components/table/rows-failed";
 import { TableBar } from "@/app/_components/table/table-bar";
-import { TableGrid } from "@/app/_components/table/table-grid";
+import { TableGrid, virtualFrom } from "@/app/_components/table/table-grid";
 import { type TableState, useTableState } from "@/app/_components/table/use-table-state";
 import { useWindows, type WindowedRows } from "@/app/_components/table/use-windows";
 import { formatCount } from "@/lib/domain/format/figure";
@@ -55,7 +58,10 @@ export function DifferenceTable({ from, to, layout, opened, onOpen }: Difference
   const selection = queryOf({ ...state, text: settled.text }, { ...filter, least: settled.least });
   const known = selection === "" ? totalOf(overview?.counts) : null;
   const query = `from=${from}&to=${to}${selection}`;
-  const loaded = useWindows(serialsOf(from, to) + selection, known, toRow);
+  const printWaits = usePrintWaits();
+  const loaded = useWindows(serialsOf(from, to) + selection, known, toRow, printWaits ? PRINTED_MAX : 0);
+  const enough = loaded.error !== null || (loaded.total !== null && isLoaded(loaded.rows));
+  useTellPrint(enough);
   // The field that is asked for is seen, whatever is shown beside it.
   const asked = (key: string) => ["shown", "step", "steps"].some((part) => key === `values.${filter.field}.${part}`);
   const shown = columns.filter(
@@ -80,6 +86,7 @@ export function DifferenceTable({ from, to, layout, opened, onOpen }: Difference
         onShown={(keys) => change({ columns: keys })}
         onCsv={() => save("csv")}
         onJson={() => save("json")}
+        onPrint={loaded.rows.length > virtualFrom ? orderPrint : undefined}
         note={
           <DifferenceFilter
             {...filter}
@@ -93,6 +100,11 @@ export function DifferenceTable({ from, to, layout, opened, onOpen }: Difference
         status={statusOf(loaded)}
       />
       {loaded.error ? <RowsFailed error={loaded.error} onRetry={loaded.retry} /> : null}
+      <PrintedNote
+        rows={loaded.rows}
+        total={loaded.total}
+        filter={filterWords(state, filter, measureOf(overview, filter.field))}
+      />
       <TableGrid
         key={query}
         name="changed serials"
@@ -174,6 +186,24 @@ function measureOf(overview: ComparisonOverview | undefined, name: string): stri
 function nextSort(sort: TableState["sort"], key: string): TableState["sort"] {
   if (sort?.key !== key) return { key, descending: false };
   return sort.descending ? undefined : { key, descending: true };
+}
+
+/** Whether the rows that a print takes are there. */
+function isLoaded(rows: WindowedRows["rows"]): boolean {
+  // A place that is not loaded is a hole in the array, which `every` would leave out.
+  return !Array.from(rows.slice(0, PRINTED_MAX)).includes(undefined);
+}
+
+/** What the rows have to pass, in words. */
+function filterWords(state: TableState, { field, least }: DifferenceFilterState, measure: string): string | undefined {
+  const chip = CHIPS.find(({ id }) => id === state.chip)?.name;
+  const words = [
+    chip,
+    state.text.trim(),
+    field && (least ? `${field} by ${least} ${measure} or more` : `${field} differs`),
+  ];
+  const said = words.filter(Boolean).map((word) => `“${word}”`);
+  return said.length > 0 ? said.join(" and ") : undefined;
 }
 
 function statusOf({ total, rows, loading }: WindowedRows): string {

@@ -12,12 +12,15 @@ import {
 import { type ReactNode, useCallback, useMemo, useState } from "react";
 import { Button } from "@/app/_components/button";
 import { EmptyState } from "@/app/_components/empty-state";
+import { orderPrint, usePrintWaits, useTellPrint } from "@/app/_components/print/use-print-order";
 import { type DataColumn, type FilterChip, passes, type Row, textOf, valueAt } from "@/app/_components/table/column";
 import { csvOf, saveCsv } from "@/app/_components/table/csv";
+import { PrintedNote } from "@/app/_components/table/printed-note";
+import { PRINTED_MAX } from "@/app/_components/table/printed-rows";
 import { RowsFailed } from "@/app/_components/table/rows-failed";
 import { TableBar } from "@/app/_components/table/table-bar";
-import { TableGrid } from "@/app/_components/table/table-grid";
-import { useRows } from "@/app/_components/table/use-rows";
+import { TableGrid, virtualFrom } from "@/app/_components/table/table-grid";
+import { type LoadedRows, useRows } from "@/app/_components/table/use-rows";
 import { type TableState, useTableState } from "@/app/_components/table/use-table-state";
 import { formatCount } from "@/lib/domain/format/figure";
 
@@ -31,6 +34,8 @@ export interface DataTableProps {
   rows?: readonly Row[];
   /** … or the API list that answers them, as `/api/v1/lots/MW20-2609/coefficients`. */
   endpoint?: string;
+  /** How many rows the list has, where the page knows. */
+  total?: number;
   /** Path of what names a row for ever; the first column where it is left out. */
   rowKey?: string;
   /** Page of a row, as `/trace/{serial}`. */
@@ -56,25 +61,24 @@ export function DataTable(props: DataTableProps) {
   const { columns, chips = [], empty } = props;
   const [state, change] = useTableState(props.urlName);
   const [wantsCsv, setWantsCsv] = useState(false);
+  const printWaits = usePrintWaits();
   const sort = state.sort ?? props.sort;
   const needsAll = wantsCsv || state.sort !== undefined || state.chip !== undefined || state.text !== "";
-  const loaded = useRows(props.rows, props.endpoint, needsAll, props.toRow);
+  const needed = needsAll ? Number.POSITIVE_INFINITY : printWaits ? PRINTED_MAX : 0;
+  const loaded = useRows(props.rows, props.endpoint, needed, props.toRow);
   const shown = useMemo(() => shownColumns(columns, state), [columns, state]);
   const chip = chips.find(({ id }) => id === state.chip);
   const table = useTable(loaded.rows, columns, sort, chip, state.text);
   const visible = table.getRowModel().rows;
+  const enough = loaded.complete || loaded.error !== null || loaded.rows.length >= needed;
+  useTellPrint(enough);
+
+  const rows = visible.map((row) => row.original);
+  const filter = filterWords(chip, state.text);
 
   if (wantsCsv && loaded.complete) {
     setWantsCsv(false);
-    queueMicrotask(() =>
-      saveCsv(
-        props.name.replaceAll(" ", "-"),
-        csvOf(
-          columns,
-          visible.map((row) => row.original),
-        ),
-      ),
-    );
+    queueMicrotask(() => saveCsv(props.name.replaceAll(" ", "-"), csvOf(columns, rows)));
   }
   const counts = useMemo(
     () => (loaded.complete ? countsOf(chips, loaded.rows) : undefined),
@@ -102,14 +106,22 @@ export function DataTable(props: DataTableProps) {
         shown={new Set(shown.map(({ key }) => key))}
         onShown={(keys) => change({ columns: keys })}
         onCsv={() => setWantsCsv(true)}
+        onPrint={visible.length > virtualFrom || !loaded.complete ? orderPrint : undefined}
         note={props.note}
-        status={statusOf(visible.length, loaded)}
+        status={statusOf(visible.length, loaded, props.total)}
       />
       {loaded.error ? <RowsFailed error={loaded.error} onRetry={loaded.retry} /> : null}
+      <PrintedNote
+        rows={rows}
+        total={loaded.complete ? visible.length : filter === undefined ? (props.total ?? null) : null}
+        filter={filter}
+      >
+        {props.note}
+      </PrintedNote>
       <TableGrid
         name={props.name}
         columns={shown}
-        rows={visible.map((row) => row.original)}
+        rows={rows}
         keyOf={(row) => String(valueAt(row, props.rowKey ?? columns[0]?.key ?? "id"))}
         rowHref={props.rowHref}
         onOpen={props.onOpen}
@@ -202,10 +214,17 @@ function countsOf(chips: readonly FilterChip[], rows: readonly Row[]): ReadonlyM
   return counts;
 }
 
-function statusOf(visible: number, loaded: { rows: readonly Row[]; complete: boolean; loading: boolean }): string {
+/** What the rows have to pass, in words. */
+function filterWords(chip: FilterChip | undefined, text: string): string | undefined {
+  const words = [chip?.name, text.trim()].filter(Boolean).map((word) => `“${word}”`);
+  return words.length > 0 ? words.join(" and ") : undefined;
+}
+
+function statusOf(visible: number, loaded: LoadedRows, total: number | undefined): string {
   const all = formatCount(loaded.rows.length);
-  if (loaded.loading) return loaded.rows.length ? `${all} loaded, loading` : "loading";
+  const of = total === undefined ? all : `${all} of ${formatCount(total)}`;
+  if (loaded.loading) return loaded.rows.length ? `${of} loaded, loading` : "loading";
   if (visible !== loaded.rows.length) return `${formatCount(visible)} of ${all}`;
-  if (!loaded.complete) return `${all} loaded`;
+  if (!loaded.complete) return `${of} loaded`;
   return loaded.rows.length === 1 ? "1 row" : `${all} rows`;
 }

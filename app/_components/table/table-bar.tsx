@@ -1,9 +1,10 @@
 "use client";
 
-import { Columns3, Download, Search } from "lucide-react";
+import { Columns3, Download, Printer, Search } from "lucide-react";
 import { DropdownMenu } from "radix-ui";
 import type { ReactNode } from "react";
 import type { DataColumn, FilterChip } from "@/app/_components/table/column";
+import { PRINTED_MAX } from "@/app/_components/table/printed-rows";
 import { formatCount } from "@/lib/domain/format/figure";
 
 const chipLook =
@@ -25,6 +26,8 @@ export interface TableBarProps {
   onCsv: () => void;
   /** Beside CSV: another form of the same rows. */
   onJson?: () => void;
+  /** Long tables only: loads what a print takes and prints the page. */
+  onPrint?: () => void;
   note?: ReactNode;
   status?: string;
 }
@@ -55,8 +58,8 @@ export function TableBar(props: TableBarProps) {
         />
       </div>
       {props.note ? <div className="min-w-0 text-sm text-ink-soft">{props.note}</div> : null}
-      <div className="ml-auto flex items-center gap-2">
-        <span role="status" className="text-xs text-ink-soft">
+      <div className="ml-auto flex flex-wrap items-center justify-end gap-2">
+        <span role="status" className="text-xs whitespace-nowrap text-ink-soft">
           {props.status}
         </span>
         <ColumnChoice {...props} />
@@ -68,6 +71,17 @@ export function TableBar(props: TableBarProps) {
           <button type="button" onClick={props.onJson} className={`${chipLook} ${chipOff}`}>
             <Download size={14} aria-hidden />
             JSON
+          </button>
+        ) : null}
+        {props.onPrint ? (
+          <button
+            type="button"
+            onClick={props.onPrint}
+            title={`Loads the first ${formatCount(PRINTED_MAX)} rows and prints the page`}
+            className={`${chipLook} ${chipOff}`}
+          >
+            <Printer size={14} aria-hidden />
+            Print
           </button>
         ) : null}
       </div>

@@ -24,13 +24,13 @@ const pageSize = 500;
 
 /**
  * Rows of a page, or of an API list page by page.
- * @param all everything is needed, as for sorting and filtering: pages are then fetched one after the other.
+ * @param needed so many rows are needed, without end for sorting and filtering: pages are then fetched one after the other.
  * @param toRow makes the shown row of an answered one.
  */
 export function useRows(
   given: readonly Row[] | undefined,
   endpoint: string | undefined,
-  all: boolean,
+  needed: number,
   toRow?: (row: Row) => Row,
 ): LoadedRows {
   const query = useInfiniteQuery({
@@ -41,11 +41,12 @@ export function useRows(
     getNextPageParam: (last) => last.next ?? undefined,
   });
   const { hasNextPage, isFetching, error, fetchNextPage, refetch } = query;
-  useEffect(() => {
-    if (all && hasNextPage && !isFetching && !error) void fetchNextPage();
-  }, [all, hasNextPage, isFetching, error, fetchNextPage]);
-
   const pages = query.data?.pages;
+  const count = pages?.reduce((sum, page) => sum + page.items.length, 0) ?? 0;
+  useEffect(() => {
+    if (count < needed && hasNextPage && !isFetching && !error) void fetchNextPage();
+  }, [count, needed, hasNextPage, isFetching, error, fetchNextPage]);
+
   const loaded = useMemo(() => {
     const answered = pages?.flatMap((page) => page.items) ?? [];
     return toRow ? answered.map(toRow) : answered;

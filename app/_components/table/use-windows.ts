@@ -30,9 +30,10 @@ const KEPT_MS = 30_000;
  * Rows of a list of any length: only the windows in sight, and the next one, are loaded.
  * @param endpoint takes `offset` and `limit`, answers `total` and `items`.
  * @param known length of the list where it is known otherwise.
+ * @param least so many rows from the first on are loaded wherever the reader is.
  * @param toRow makes the shown row of an answered one. Has to stay the same function.
  */
-export function useWindows(endpoint: string, known: number | null, toRow: (row: Row) => Row): WindowedRows {
+export function useWindows(endpoint: string, known: number | null, toRow: (row: Row) => Row, least = 0): WindowedRows {
   const [sight, setSight] = useState<readonly [number, number]>([0, 0]);
   const onSight = useCallback((first: number, last: number) => {
     setSight([Math.floor(first / WINDOW), Math.floor(last / WINDOW)]);
@@ -44,9 +45,11 @@ export function useWindows(endpoint: string, known: number | null, toRow: (row: 
   const windows = useMemo(() => {
     const [first, last] = sight;
     const wanted: number[] = [];
-    for (let at = Math.max(1, first - 1); at <= last + 1 && at < end; at++) wanted.push(at);
+    for (let at = 1; at < end && at < Math.max(last + 2, Math.ceil(least / WINDOW)); at++) {
+      if (at >= first - 1 || at * WINDOW < least) wanted.push(at);
+    }
     return wanted;
-  }, [sight, end]);
+  }, [sight, end, least]);
   const results = [start, ...useQueries({ queries: windows.map((at) => windowQuery(endpoint, at)) })];
   // Rows are made once for each part that arrives, not at every turn of the wheel.
   // biome-ignore lint/correctness/useExhaustiveDependencies: another maker makes other rows

@@ -49,6 +49,7 @@ export function DevicesCard({ view, intervals, noFreedom, selectable }: DevicesC
         name="devices"
         urlName="devices"
         endpoint={path}
+        total={counts.devices}
         rowKey="serial"
         rowHref={`/derivations/${id}/{serial}`}
         toRow={toRow}

@@ -53,7 +53,7 @@ export function UncertaintyCard({ budget }: { budget: ShownBudget }) {
       }
     >
       <ScrollRegion label="Uncertainty budget" className="relative overflow-x-auto">
-        <table className="w-full text-sm">
+        <table className="paper-table w-full text-sm">
           <thead>
             <tr>
               <th scope="col" className={`${head} text-left`}>

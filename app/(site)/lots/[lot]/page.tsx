@@ -59,6 +59,7 @@ export default async function LotPage({ params }: PageProps) {
           <DataTable
             name={`serials of ${lot.code}`}
             endpoint={`/api/v1/lots/${lot.code}/devices`}
+            total={lot.devices}
             rowKey="serial"
             rowHref="/trace/{serial}"
             columns={[

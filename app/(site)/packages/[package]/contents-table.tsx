@@ -19,7 +19,15 @@ interface DecodedRow {
 }
 
 /** Every image of a package with its decoded values. */
-export function ContentsTable({ id, fields }: { id: string; fields: readonly ContentField[] }) {
+export function ContentsTable({
+  id,
+  devices,
+  fields,
+}: {
+  id: string;
+  devices: number;
+  fields: readonly ContentField[];
+}) {
   const columns = useMemo<DataColumn[]>(
     () => [
       { key: "serial", header: "Serial", format: { as: "code" } },
@@ -44,6 +52,7 @@ export function ContentsTable({ id, fields }: { id: string; fields: readonly Con
       name="images"
       urlName="images"
       endpoint={`/api/v1/packages/${id}/images?values=true`}
+      total={devices}
       rowKey="serial"
       rowHref={`/packages/${id}/images/{serial}`}
       toRow={decodedRow}

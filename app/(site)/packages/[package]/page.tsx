@@ -24,7 +24,11 @@ export default async function PackagePage({ params }: PackageParams) {
     <PackageShell ctx={ctx} view={view} tab="contents">
       <Summary view={view} />
       <Card title="Images" note="Values as decoded from the bytes; open one for its memory map">
-        <ContentsTable id={view.id} fields={contentFields(layout.document as unknown as LayoutDocument)} />
+        <ContentsTable
+          id={view.id}
+          devices={view.counts.devices}
+          fields={contentFields(layout.document as unknown as LayoutDocument)}
+        />
       </Card>
     </PackageShell>
   );

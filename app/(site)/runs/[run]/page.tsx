@@ -139,6 +139,7 @@ export default async function RunPage({ params }: { params: Promise<{ run: strin
           <DataTable
             name="readings"
             endpoint={`${path}/readings`}
+            total={run.rows}
             rowKey="row"
             columns={[
               { key: "row", header: "Row", title: "Line of the file, the header being 1", format: { as: "count" } },

@@ -27,7 +27,7 @@ export async function WhatChanges({ ctx, view }: { ctx: PersonCtx; view: Package
         </Card>
         <OpenDifferences reviewDigest={reviewDigest} words="Open the values of all devices">
           <Card title="Images" note="Values as decoded from the bytes">
-            <ContentsTable id={view.id} fields={contentFields(layout)} />
+            <ContentsTable id={view.id} devices={view.counts.devices} fields={contentFields(layout)} />
           </Card>
         </OpenDifferences>
       </>
