@@ -53,6 +53,11 @@ export function checkTwin(packed: number, predictions: readonly TwinPrediction[]
     sentences.push(
       `${devices(neverLoaded.length)} ${neverLoaded.length === 1 ? "was" : "were"} never loaded (${someSerials(neverLoaded)}): no statement on span.`,
     );
+  const zeroOpen = predictions.filter((one) => one.zeroShiftRatio === null).length;
+  if (zeroOpen > 0)
+    sentences.push(
+      `Zero of ${devices(zeroOpen)} is not judged: no reading is left beside those that the zero was fitted through.`,
+    );
   if (withoutReadings > 0 && predictions.length > 0)
     sentences.push(`Of ${devices(withoutReadings)} there are no readings.`);
   sentences.push(...rangeSentences(range));

@@ -143,8 +143,10 @@ describe("twin", () => {
     expect(checkTwin(2, predictions)).toMatchObject({
       verdict: "pass",
       message:
-        "Computed with its decoded values, each of 2 devices with readings to judge it stays inside the envelope. Largest span error −200 ppm, 0.60 of the limit (B at 40.0 °C); 0.2 ppm of it are rounding. Largest zero shift 0.90 of the limit (B).",
+        "Computed with its decoded values, each of 2 devices with readings to judge it stays inside the envelope. Largest span error −200 ppm, 0.60 of the limit (B at 40.0 °C); 0.2 ppm of it are rounding. Largest zero shift 0.90 of the limit (B). Zero of 1 device is not judged: no reading is left beside those that the zero was fitted through.",
     });
+    const all = predictions.map((one) => ({ ...one, zeroShiftRatio: 0.1 }));
+    expect(checkTwin(2, all).message).not.toContain("not judged");
   });
 
   it("warns outside, on span or zero, exactly above 1", () => {
