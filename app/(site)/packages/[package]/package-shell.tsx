@@ -74,7 +74,7 @@ export async function PackageShell({ ctx, view, tab, title, children }: PackageS
       <div className="flex flex-col gap-[18px]">
         <BuildState view={view} />
         {view.state === "withdrawn" ? <Withdrawn withdrawal={await findWithdrawal(ctx, view.id)} /> : null}
-        <WhatIsDue view={view} engineer={ctx.actor.roles.includes("engineer")} />
+        <WhatIsDue view={view} tab={tab} engineer={ctx.actor.roles.includes("engineer")} />
         {built ? children : null}
       </div>
     </>
@@ -148,7 +148,7 @@ function Withdrawn({ withdrawal }: { withdrawal: Awaited<ReturnType<typeof findW
 }
 
 /** The next step, where it is not the reader's own button. */
-function WhatIsDue({ view, engineer }: { view: PackageView; engineer: boolean }) {
+function WhatIsDue({ view, tab, engineer }: { view: PackageView; tab: PackageTab; engineer: boolean }) {
   const refusal = view.approvals.findLast((one) => one.decision === "refuse");
   if (view.state === "refused" && refusal) {
     return (
@@ -164,9 +164,11 @@ function WhatIsDue({ view, engineer }: { view: PackageView; engineer: boolean })
         <p>
           {hindrance} {view.reviewers.length > 0 ? `Who may: ${view.reviewers.join(", ")}.` : "Nobody is left who may."}
         </p>
-        <p>
-          <Link href={`/packages/${view.id}/checks`}>What the checks say</Link>
-        </p>
+        {tab === "checks" ? null : (
+          <p>
+            <Link href={`/packages/${view.id}/checks`}>What the checks say</Link>
+          </p>
+        )}
       </Notice>
     );
   }
