@@ -79,7 +79,20 @@ export const packageView = z.object({
   makers: z.array(z.object({ name: z.string(), act: z.string(), at: timestamp })),
   progress: z.object({ done: z.number().int(), total: z.number().int(), step: z.string() }),
   failure: z
-    .object({ code: z.string(), message: z.string(), serial: z.string().optional(), field: z.string().optional() })
+    .object({
+      code: z.string(),
+      message: z.string(),
+      serial: z.string().optional(),
+      field: z.string().optional(),
+      value: z
+        .union([z.number(), z.string()])
+        .optional()
+        .meta({ description: "What could not be stored, in the field's unit; 64-bit integers as decimal text" }),
+      limit: z
+        .union([z.number(), z.string()])
+        .optional()
+        .meta({ description: "The limit that it breaks, in the field's unit" }),
+    })
     .nullable(),
   rebuild: z
     .object({ same: z.boolean() })

@@ -78,8 +78,15 @@ describe("version numbers", () => {
       state: "failed",
       digest: null,
       checks: [],
-      failure: { code: "image.limit_exceeded", field: "gain", serial: expect.stringMatching(/^MW20-2609-/) },
+      failure: {
+        code: "image.limit_exceeded",
+        field: "gain",
+        serial: expect.stringMatching(/^MW20-2609-/),
+        limit: 1.0001,
+      },
     });
+    expect(body.failure.value).toBeGreaterThan(1.0001);
+    expect(body.failure.message).toContain(`gain = ${body.failure.value} is above the limit 1.0001`);
     for (const table of ["image", "packageFile", "packageCheck", "packageDerivation"] as const) {
       expect(await api.db.selectFrom(table).select("packageId").where("packageId", "=", failed.id).execute()).toEqual(
         [],

@@ -6,12 +6,14 @@ import { assertRole, type Ctx, type PersonCtx } from "@/lib/services/context";
 import { appendEvent } from "@/lib/services/ledger/append-event";
 import { assertPackageState, lockLotAndPackage } from "./package-rules";
 
-/** What a build failed with: the device and field where one is to blame. */
+/** What a build failed with: where one is to blame the device and field, its value and the limit it breaks, in the field's unit. */
 export interface BuildFailure {
   code: string;
   message: string;
   serial?: string;
   field?: string;
+  value?: number | string;
+  limit?: number | string;
 }
 
 /** Ends a build that can't go on, unless it ended already. */
@@ -59,11 +61,16 @@ function endAsFailed(ctx: Ctx, trx: Trx, pkg: PackageRow, failure: BuildFailure)
 }
 
 function failureOf({ code, message, details }: AppError): BuildFailure {
-  const { serial, field } = details;
+  const { serial, field, value, limit } = details;
   return {
     code,
     message,
     ...(typeof serial === "string" && { serial }),
     ...(typeof field === "string" && { field }),
+    ...(isFigure(value) && { value }),
+    ...(isFigure(limit) && { limit }),
   };
 }
+
+/** A number, or one beyond binary64 as decimal text. */
+const isFigure = (value: unknown): value is number | string => typeof value === "number" || typeof value === "string";
