@@ -1,4 +1,4 @@
-import { formatFigure } from "@/lib/domain/format/figure";
+import { formatFigure, formatGiven } from "@/lib/domain/format/figure";
 import { toEngineering } from "@/lib/domain/format/quantity";
 
 /** A stored field as people read it. */
@@ -35,6 +35,46 @@ export function formatField(value: number | string | null, unit: string | null, 
   const base = DIGITS[shown.unit];
   if (base === undefined && digits === 0) return { text: plain(shown.value), unit: shownUnit };
   return { text: formatFigure(shown.value, { digits: Math.max(base ?? 0, digits) }), unit: shownUnit };
+}
+
+/** A field as decoded from an image. */
+export interface DecodedText {
+  value: number | string | null;
+  unit: string | null;
+  /** Stored bytes, lower-case hex. */
+  raw: string;
+  /** Where its value comes from; null for constants. */
+  source: string | null;
+}
+
+/** A stored number in the unit that people read it in. The nominal output stays in mV/V, as the family has it. */
+export function decodedNumber(
+  value: number,
+  unit: string | null | undefined,
+  source: string | null,
+): { value: number; unit: string } {
+  return source === "family.nominalOutput" ? { value, unit: unit ?? "" } : toEngineering(value, unit);
+}
+
+/** A decoded field as people read it, as {@link formatField}; what only its bytes and its source tell is told too. */
+export function formatDecoded({ value, unit, raw, source }: DecodedText): FieldText {
+  if (typeof value === "string") return { text: formatText(value, raw), unit: "" };
+  // Seven digits are what binary32 keeps of it.
+  if (typeof value === "number" && source === "family.nominalOutput")
+    return { text: formatGiven(Number(value.toPrecision(7))), unit: unit === "1" ? "" : (unit ?? "") };
+  return formatField(value, unit);
+}
+
+/** A decoded text: hex digits in capitals as all stored bytes, a negative 64-bit integer with a true minus sign. */
+export function formatText(value: string, raw: string): string {
+  if (value === raw) return value.toUpperCase();
+  return isNegative64(value, raw) ? value.replace("-", "−") : value;
+}
+
+function isNegative64(value: string, raw: string): boolean {
+  if (raw.length !== 16 || !/^-\d{1,19}$/.test(value)) return false;
+  const bytes = BigInt.asUintN(64, BigInt(value)).toString(16).padStart(16, "0");
+  return raw === bytes || raw === (bytes.match(/../g) ?? []).reverse().join("");
 }
 
 export interface FieldChange {
@@ -85,6 +125,11 @@ function stepText(difference: number, unit: string | null, seen: number): string
   const inUnit = (value: number) => (unit === "1" ? { value: value * 1e6, unit: "ppm" } : toEngineering(value, unit));
   const shown = inUnit(difference);
   const digits = Math.max(2, digitsToSee(inUnit(seen).value));
+  // Less than the decimals can show: two significant digits of it are seen all the same.
+  if (shown.value !== 0 && Math.abs(shown.value) < 10 ** (1 - digits) && digits === MOST_DIGITS) {
+    const sign = shown.value > 0 ? "+" : "";
+    return `${sign}${shown.value.toExponential(1).replaceAll("-", "−")} ${shown.unit}`;
+  }
   return `${formatFigure(shown.value, { digits, sign: "always" })} ${shown.unit}`;
 }
 

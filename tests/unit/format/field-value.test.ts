@@ -1,5 +1,5 @@
 import { describe, expect, it } from "vitest";
-import { formatField, formatFieldChange } from "@/lib/domain/format/field-value";
+import { formatDecoded, formatField, formatFieldChange } from "@/lib/domain/format/field-value";
 
 describe("a decoded field", () => {
   it("stands in its engineering unit", () => {
@@ -22,7 +22,43 @@ describe("a decoded field", () => {
   });
 });
 
+describe("a field as decoded from an image", () => {
+  const decoded = (
+    value: number | string | null,
+    raw: string,
+    unit: string | null = null,
+    source: string | null = null,
+  ) => formatDecoded({ value, unit, raw, source });
+
+  it("has hex digits in capitals and a true minus sign before 64-bit integers of either byte order", () => {
+    expect(decoded("5aa50f", "5aa50f").text).toBe("5AA50F");
+    expect(decoded("-9223372036854775808", "8000000000000000").text).toBe("−9223372036854775808");
+    expect(decoded("-2", "feffffffffffffff").text).toBe("−2");
+    expect(decoded("18446744073709551615", "ffffffffffffffff").text).toBe("18446744073709551615");
+  });
+
+  it("leaves texts as they are, even such as look like numbers", () => {
+    expect(decoded("-1234567", "2d31323334353637").text).toBe("-1234567");
+    expect(decoded("ab", "6162").text).toBe("ab");
+  });
+
+  it("tells the nominal output as the family has it", () => {
+    expect(decoded(2, "00000040", "mV/V", "family.nominalOutput")).toEqual({ text: "2", unit: "mV/V" });
+    expect(decoded(Math.fround(2.2), "cdcc0c40", "mV/V", "family.nominalOutput").text).toBe("2.2");
+    expect(decoded(0.0125, "", "mV/V", "coefficients.zero")).toEqual({ text: "12.500", unit: "µV/V" });
+    expect(decoded(null, "ffff", "1/K").text).toBe("no value");
+  });
+});
+
 describe("a change of a field", () => {
+  it("shows two significant digits of what the decimals can't show", () => {
+    const step = (to: number) => formatFieldChange({ from: 0, to, unit: "°C/1", steps: null }).step;
+    expect(step(3.24e-12)).toBe("+3.2e−12 °C/1");
+    expect(step(-3.24e-12)).toBe("−3.2e−12 °C/1");
+    expect(step(3.24e-9)).toBe("+0.0000000032 °C/1");
+    expect(step(0)).toBe("0.00 °C/1");
+  });
+
   it("names the step in the unit and in stored steps", () => {
     const change = formatFieldChange({ from: -4.1789e-4, to: -4.1805e-4, unit: "1/K", steps: -160_000 });
     expect(change).toEqual({ from: "−417.89", to: "−418.05", unit: "ppm/K", step: "−0.16 ppm/K", lsb: "−160,000" });

@@ -1,4 +1,4 @@
-import { toEngineering } from "@/lib/domain/format/quantity";
+import { decodedNumber } from "@/lib/domain/format/field-value";
 import type { LayoutDocument } from "@/schemas/documents/layout";
 import type { ContentField } from "./contents-table";
 
@@ -6,7 +6,7 @@ import type { ContentField } from "./contents-table";
 export function contentFields(layout: LayoutDocument): ContentField[] {
   return layout.fields.map(({ name, unit, value }) => ({
     name,
-    unit: toEngineering(0, unit === "1" ? null : unit).unit,
+    unit: decodedNumber(0, unit === "1" ? null : unit, "from" in value ? value.from : null).unit,
     shown: "from" in value && value.from.startsWith("coefficients."),
   }));
 }

@@ -3,8 +3,7 @@
 import { useMemo } from "react";
 import { type DataColumn, type Row, valueAt } from "@/app/_components/table/column";
 import { DataTable } from "@/app/_components/table/data-table";
-import { formatField } from "@/lib/domain/format/field-value";
-import { toEngineering } from "@/lib/domain/format/quantity";
+import { type DecodedText, decodedNumber, formatDecoded } from "@/lib/domain/format/field-value";
 
 /** A field of the layout with a column of its own. */
 export interface ContentField {
@@ -15,7 +14,7 @@ export interface ContentField {
 }
 
 interface DecodedRow {
-  fields?: { name: string; value: number | string | null; unit: string | null }[];
+  fields?: (DecodedText & { name: string })[];
 }
 
 /** Every image of a package with its decoded values. */
@@ -66,9 +65,10 @@ export function ContentsTable({
 function decodedRow(row: Row): Row {
   const values: Row = {};
   const shown: Row = {};
-  for (const { name, value, unit } of (row as DecodedRow).fields ?? []) {
-    values[name] = typeof value === "number" ? toEngineering(value, unit).value : value;
-    shown[name] = formatField(value, unit).text;
+  for (const field of (row as DecodedRow).fields ?? []) {
+    const { name, value, unit, source } = field;
+    values[name] = typeof value === "number" ? decodedNumber(value, unit, source).value : value;
+    shown[name] = formatDecoded(field).text;
   }
   return { ...row, values, shown };
 }

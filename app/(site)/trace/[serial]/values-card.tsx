@@ -2,7 +2,7 @@ import { Card } from "@/app/_components/card";
 import { Facts } from "@/app/_components/facts";
 import { HexGrid } from "@/app/_components/hex-grid";
 import { formatAddress } from "@/lib/domain/format/digest";
-import { formatField } from "@/lib/domain/format/field-value";
+import { formatDecoded } from "@/lib/domain/format/field-value";
 import { COEFFICIENT_QUANTITIES, formatQuantity, quantities } from "@/lib/domain/format/quantity";
 import type { DeviceOrigin } from "@/lib/services/trace/get-device-origin";
 import type { DerivedDeviceDetail } from "@/schemas/api/derivations";
@@ -55,7 +55,7 @@ export function ValuesCard({ origin, derived }: ValuesCardProps) {
             </thead>
             <tbody>
               {fields.map((field) => {
-                const shown = formatField(field.value, field.unit);
+                const shown = formatDecoded(field);
                 return (
                   <tr key={`${field.name}${field.at}`} className="border-t border-rule/55">
                     <th scope="row" className="py-1 pr-4 text-left font-normal">

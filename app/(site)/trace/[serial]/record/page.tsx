@@ -6,7 +6,7 @@ import { SealMark } from "@/app/_components/seal-mark";
 import { StateMark } from "@/app/_components/state/state-mark";
 import { stateOf } from "@/app/_components/state/state-of";
 import { TitleRow } from "@/app/_components/title-row";
-import { formatField } from "@/lib/domain/format/field-value";
+import { formatDecoded } from "@/lib/domain/format/field-value";
 import { formatDateTime } from "@/lib/domain/format/time";
 import { READERS, ROLES } from "@/lib/domain/roles";
 import { holds, pageContext } from "@/lib/http/page-context";
@@ -134,7 +134,7 @@ function Values({ origin }: { origin: DeviceOrigin }) {
         </thead>
         <tbody>
           {origin.image.fields.map((field) => {
-            const shown = formatField(field.value, field.unit);
+            const shown = formatDecoded(field);
             return (
               <tr key={`${field.name}${field.at}`} className="border-b border-rule/55">
                 <th scope="row" className="py-0.5 pr-4 text-left font-normal">

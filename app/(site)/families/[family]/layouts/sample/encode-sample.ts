@@ -22,6 +22,8 @@ export interface SampleRow {
   path: string;
   value: number | string | null;
   unit: string | null;
+  /** Where its value comes from; null for constants. */
+  source: string | null;
   /** The stored integer, where one is stored. */
   stored: number | null;
   /** Stored bytes, lower-case hex. */
@@ -59,6 +61,7 @@ export function encodeSample(
         path: pointers.get(field.name.replace(/[[.].*$/, "")) ?? "",
         value: field.type === "bytes" && typeof value === "string" ? value.toLowerCase() : value,
         unit: field.unit,
+        source: field.source,
         stored,
         raw,
         readBack,

@@ -1,8 +1,8 @@
 "use client";
 
 import { Card } from "@/app/_components/card";
+import { decodedNumber, formatText } from "@/lib/domain/format/field-value";
 import { formatFigure } from "@/lib/domain/format/figure";
-import { toEngineering } from "@/lib/domain/format/quantity";
 import type { CoefficientName, LayoutDocument } from "@/schemas/documents/layout";
 import type { Sample, SampleRow } from "./encode-sample";
 import { SampleChoice, type SampleOrigin } from "./sample-choice";
@@ -73,12 +73,12 @@ function ValueRow({ row, lit, onPoint }: { row: SampleRow; lit: boolean; onPoint
       <th scope="row" className="py-1.5 pr-3 text-left font-mono font-normal">
         {row.name}
       </th>
-      <td className="max-w-[170px] truncate px-2 text-right font-mono">{shownValue(row.value, row.unit)}</td>
-      <td className="pr-3 text-ink-soft">{toEngineering(0, row.unit).unit}</td>
+      <td className="max-w-[170px] truncate px-2 text-right font-mono">{shownValue(row.value, row)}</td>
+      <td className="pr-3 text-ink-soft">{decodedNumber(0, row.unit, row.source).unit}</td>
       <td className="max-w-[150px] truncate px-2 text-right font-mono" title={row.raw.toUpperCase()}>
         {row.stored === null ? row.raw.toUpperCase() : formatFigure(row.stored, { digits: 0 })}
       </td>
-      <td className="max-w-[170px] truncate px-2 text-right font-mono">{shownValue(row.readBack, row.unit)}</td>
+      <td className="max-w-[170px] truncate px-2 text-right font-mono">{shownValue(row.readBack, row)}</td>
       <td className="pl-2 text-right font-mono">{formatFigure(row.roundingSteps, { digits: 2 })}</td>
     </tr>
   );
@@ -90,9 +90,10 @@ function noteOf({ kind }: SampleOrigin): string {
 }
 
 /** Nine digits tell a stored value from its neighbours, as the coarsest have 32 bits. */
-function shownValue(value: SampleRow["value"], unit: string | null): string {
-  if (typeof value !== "number") return value ?? "—";
-  const shown = toEngineering(value, unit).value;
+function shownValue(value: SampleRow["value"], { unit, raw, source }: SampleRow): string {
+  if (typeof value === "string") return formatText(value, raw);
+  if (value === null) return "—";
+  const shown = decodedNumber(value, unit, source).value;
   return String(Number(shown.toPrecision(9))).replace("-", "−");
 }
 

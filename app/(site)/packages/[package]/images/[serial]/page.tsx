@@ -11,7 +11,7 @@ import { DataTable } from "@/app/_components/table/data-table";
 import { TitleRow } from "@/app/_components/title-row";
 import { listSegments } from "@/builders/codec/segments";
 import { formatAddress } from "@/lib/domain/format/digest";
-import { formatField } from "@/lib/domain/format/field-value";
+import { formatDecoded } from "@/lib/domain/format/field-value";
 import { formatNumberOf } from "@/lib/domain/format/figure";
 import { orNotFound, pageContext } from "@/lib/http/page-context";
 import { getLayout } from "@/lib/services/layouts/get-layout";
@@ -138,7 +138,7 @@ function placeFact({ memory }: LayoutDocument) {
 function FieldsCard({ image }: { image: ImageView }) {
   const checksums = new Set(image.checksums.map(({ name }) => name));
   const rows = image.fields.map((field) => {
-    const { text, unit } = formatField(field.value, field.unit);
+    const { text, unit } = formatDecoded(field);
     const source = checksums.has(field.name) ? "checksum" : (field.source ?? "constant");
     // In one cell, so that a phone shows both without scrolling.
     const value = unit === "" ? text : `${text} ${unit}`;
