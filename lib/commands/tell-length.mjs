@@ -5,8 +5,9 @@
  */
 import { ServerResponse } from "node:http";
 
-const append = ServerResponse.prototype.appendHeader;
+const { setHeader } = ServerResponse.prototype;
 
-ServerResponse.prototype.appendHeader = function appendHeader(name, value) {
-  return name === "x-body-length" ? this.setHeader("content-length", value) : append.call(this, name, value);
+ServerResponse.prototype.setHeader = function setHeaderOrLength(name, value) {
+  const isLength = name.toLowerCase() === "x-body-length";
+  return setHeader.call(this, isLength ? "content-length" : name, isLength ? String(value) : value);
 };
