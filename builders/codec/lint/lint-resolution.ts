@@ -1,4 +1,4 @@
-import { findFieldNumber, scaleOf } from "@/builders/codec/field-types";
+import { findFieldNumber, findNumberType, scaleOf } from "@/builders/codec/field-types";
 import type { FamilyRulesLike } from "@/builders/codec/lint/lint";
 import type { Problem } from "@/lib/errors";
 import type { LayoutDocument, LayoutField, SourceName } from "@/schemas/documents/layout";
@@ -70,5 +70,18 @@ export function lintResolution(resolutions: readonly Resolution[]): Problem[] {
     const over = overK > 0 && /Tc/.test(name) ? ` over ${overK} K` : "";
     const message = `“${name}” is stored coarsely: one step of ${step}${unit && unit !== "1" ? ` ${unit}` : ""} moves the output by ${vMin.toPrecision(2)} v_min${over}`;
     return [{ path: `${path}/scale`, code: "field.scale_coarse", message }];
+  });
+}
+
+/**
+ * Warnings about coefficients in 64-bit integers, which have no scale: of a gain of 1.0025 nothing but 1 is left. Such an
+ * integer can be meant for a counter or a large constant, never for a fraction; it can be encoded all the same.
+ */
+export function lintWideFractions({ fields }: Pick<LayoutDocument, "fields">, paths: readonly string[]): Problem[] {
+  return fields.flatMap(({ name, type, value }, i) => {
+    if (!("from" in value) || !value.from.startsWith("coefficients.")) return [];
+    if (findNumberType(type)?.kind !== "wide") return [];
+    const message = `“${name}” keeps whole numbers only: ${type} has no scale, and ${value.from} is a fraction. Take ${type[0]}32 with a scale, fixed, f32 or f64`;
+    return [{ path: `${paths[i]}/type`, code: "field.fraction_lost", message }];
   });
 }

@@ -2,7 +2,7 @@ import semver from "semver";
 import { findFieldWidth } from "@/builders/codec/field-types";
 import { type LayoutCell, listCells } from "@/builders/codec/layout-cells";
 import { lintPlacement } from "@/builders/codec/lint/lint-placement";
-import { lintResolution, listResolutions } from "@/builders/codec/lint/lint-resolution";
+import { lintResolution, lintWideFractions, listResolutions } from "@/builders/codec/lint/lint-resolution";
 import { fits } from "@/builders/codec/lint/lint-scaled";
 import { readLayout } from "@/builders/codec/lint/lint-shape";
 import { listStructureProblems } from "@/builders/codec/lint/lint-structure";
@@ -59,6 +59,7 @@ export function lintLayout(document: unknown, options: LintOptions = {}): LintRe
   const warnings = [
     ...lintPlacement(layout, paths),
     ...lintResolution(listResolutions(layout, paths.fields, options.family)),
+    ...lintWideFractions(layout, paths.fields),
     ...lintSerial(layout, paths.fields, options),
     ...versions.warnings,
   ];
