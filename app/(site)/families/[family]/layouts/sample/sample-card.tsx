@@ -24,7 +24,7 @@ export function SampleCard({ layout, sample, origin, lots, shown, onOrigin, onPo
       <SampleChoice origin={origin} lots={lots} names={layout ? storedCoefficients(layout) : []} onChange={onOrigin} />
       {sample && "rows" in sample ? (
         <div className="overflow-x-auto">
-          <table className="w-full min-w-[520px] text-sm whitespace-nowrap" onMouseLeave={() => onPoint(undefined)}>
+          <table className="w-full min-w-[690px] text-sm" onMouseLeave={() => onPoint(undefined)}>
             <thead>
               <tr className="border-b border-rule text-left align-bottom">
                 <th scope="col" className="py-1.5 pr-3">
@@ -39,7 +39,7 @@ export function SampleCard({ layout, sample, origin, lots, shown, onOrigin, onPo
                 <th scope="col" className="px-2 text-right">
                   stored
                 </th>
-                <th scope="col" className="px-2 text-right">
+                <th scope="col" className="px-2 text-right whitespace-nowrap">
                   read back
                 </th>
                 <th scope="col" className="pl-2 text-right">
@@ -64,22 +64,38 @@ export function SampleCard({ layout, sample, origin, lots, shown, onOrigin, onPo
   );
 }
 
+/** Characters that fit a column on one line. */
+const LINE = 14;
+
+/** All digits are shown: what is longer than its column goes on in the next line. */
+function FigureCell({ text, title }: { text: string; title?: string }) {
+  const wrap = text.length > LINE ? "wrap-anywhere" : "whitespace-nowrap";
+  return (
+    <td className={`px-2 text-right font-mono ${wrap}`} title={title}>
+      {text}
+    </td>
+  );
+}
+
 function ValueRow({ row, lit, onPoint }: { row: SampleRow; lit: boolean; onPoint: (path: string) => void }) {
   return (
     <tr
       onMouseEnter={() => onPoint(row.path)}
       className={`border-b border-rule/55 last:border-0 ${lit ? "bg-tint" : ""}`}
     >
-      <th scope="row" className="py-1.5 pr-3 text-left font-mono font-normal">
+      <th scope="row" className="py-1.5 pr-3 text-left font-mono font-normal whitespace-nowrap">
         {row.name}
       </th>
-      <td className="max-w-[170px] truncate px-2 text-right font-mono">{shownValue(row.value, row)}</td>
-      <td className="pr-3 text-ink-soft">{decodedNumber(0, row.unit, row.source).unit}</td>
-      <td className="max-w-[150px] truncate px-2 text-right font-mono" title={row.raw.toUpperCase()}>
-        {row.stored === null ? row.raw.toUpperCase() : formatFigure(row.stored, { digits: 0 })}
+      <FigureCell text={shownValue(row.value, row)} />
+      <td className="pr-3 whitespace-nowrap text-ink-soft">
+        {row.unit === "1" ? "" : decodedNumber(0, row.unit, row.source).unit}
       </td>
-      <td className="max-w-[170px] truncate px-2 text-right font-mono">{shownValue(row.readBack, row)}</td>
-      <td className="pl-2 text-right font-mono">{formatFigure(row.roundingSteps, { digits: 2 })}</td>
+      <FigureCell
+        text={row.stored === null ? row.raw.toUpperCase() : formatFigure(row.stored, { digits: 0 })}
+        title={row.raw.toUpperCase()}
+      />
+      <FigureCell text={shownValue(row.readBack, row)} />
+      <td className="pl-2 text-right font-mono whitespace-nowrap">{formatFigure(row.roundingSteps, { digits: 2 })}</td>
     </tr>
   );
 }
