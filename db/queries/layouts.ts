@@ -71,6 +71,52 @@ export async function getLayout(db: Db, familyId: string, version: string): Prom
   return rowOf(row);
 }
 
+/** Who wrote a layout's text last and who asked for its publishing. */
+export interface StoredTextRow
+  extends Pick<LayoutRow, "state" | "draftNumber" | "unfinished" | "updatedAt" | "submittedAt"> {
+  /** Null where the draft that was known still stands. */
+  source: string | null;
+  updatedByName: string;
+  submittedByName: string | null;
+}
+
+/**
+ * A layout's text as it is stored now, without its document, and without the text where that is known.
+ * @param known number of the draft whose text is known.
+ * @throws AppError `layout.not_found`
+ */
+export async function getStoredText(
+  db: Db,
+  familyId: string,
+  version: string,
+  known: number | undefined,
+): Promise<StoredTextRow> {
+  const row = await db
+    .selectFrom("layout")
+    .innerJoin("person as writer", "writer.id", "layout.updatedBy")
+    .leftJoin("person as asker", "asker.id", "layout.submittedBy")
+    .select((eb) => [
+      "layout.state",
+      "layout.draftNumber",
+      "layout.unfinished",
+      "layout.updatedAt",
+      "layout.submittedAt",
+      eb
+        .case()
+        .when("layout.draftNumber", "=", known ?? 0)
+        .then(null)
+        .else(eb.ref("layout.source"))
+        .end()
+        .as("source"),
+      "writer.name as updatedByName",
+      "asker.name as submittedByName",
+    ])
+    .where("layout.familyId", "=", familyId)
+    .where("layout.version", "=", version)
+    .executeTakeFirstOrThrow(() => notFound(version));
+  return { ...row, state: row.state as PublishState };
+}
+
 /** A layout by its UUID. @throws AppError `layout.not_found` */
 export async function getLayoutById(db: Db, id: string): Promise<LayoutRow> {
   if (!isUuid(id)) throw notFound(id);

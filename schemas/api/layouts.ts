@@ -78,6 +78,26 @@ export const keptText = z.object({
   now: timestamp.meta({ description: "The server's clock, to tell how long ago that was" }),
 });
 
+export const textQuery = z.object({
+  draft: z.coerce
+    .number()
+    .int()
+    .min(1)
+    .optional()
+    .meta({ description: "Number of the draft whose text is known; it is not sent again" }),
+});
+
+export const storedText = z.object({
+  state: publishState,
+  draft: z.number().int(),
+  unfinished: z.boolean(),
+  updatedAt: timestamp,
+  updatedBy: z.string(),
+  submittedAt: timestamp.nullable(),
+  submittedBy: z.string().nullable(),
+  source: z.string().nullable().meta({ description: "The text; null where the draft that was named still stands" }),
+});
+
 export const layoutUse = z.object({
   lot: z.string(),
   firmware: z.string().meta({ description: "Firmware in the lot's devices" }),

@@ -41,6 +41,7 @@ layouts.list                   401    yes  yes  role yes  yes  yes  role    yes 
 layouts.get                    401    yes  yes  role yes  yes  yes  role    yes      yes      yes
 layouts.create                 401    yes  role role role role role role    yes      role     role
 layouts.save                   401    yes  role role role role role role    yes      role     role
+layouts.text                   401    yes  yes  role yes  yes  yes  role    yes      yes      yes
 layouts.keep-text              401    yes  role role role role role role    yes      role     role
 layouts.use                    401    yes  yes  role yes  yes  yes  role    yes      yes      yes
 layouts.delete                 401    yes  role role role role role role    yes      role     role

@@ -195,6 +195,24 @@ describe("two people on one draft", () => {
     expect(document.fields.find((field) => field.name === "zero")?.min).toBe(-0.5);
   });
 
+  it("are told of the other's save before they save themselves", async () => {
+    const one = page("engineer");
+    // Coming back to the window asks at once; it is asked every 20 seconds anyway.
+    await one.evaluate(() => window.dispatchEvent(new Event("focus")));
+    const notice = one.getByRole("note").filter({ hasText: "saved another text of this draft" });
+    await notice.waitFor();
+    expect(await one.getByRole("button", { name: "Ask for publishing" }).isDisabled()).toBe(true);
+    await notice.getByRole("button", { name: "Look at both" }).click();
+    const dialog = one.getByRole("dialog", { name: "Two people wrote this draft" });
+    await dialog.getByText("only they changed it").waitFor();
+    await dialog.getByRole("button", { name: "Take theirs" }).click();
+    await notice.waitFor({ state: "detached" });
+    await one.getByText(/^draft \d+ by/).waitFor();
+    const before = (await stored(version)) as unknown as { draft: number };
+    await one.waitForTimeout(2_000);
+    expect(await stored(version)).toMatchObject({ draft: before.draft });
+  });
+
   it("keep what was typed without a connection, and send it when the line is back", async () => {
     const two = page("engineer2");
     await visitors.engineer2.context.setOffline(true);

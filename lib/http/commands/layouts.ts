@@ -4,6 +4,7 @@ import { command, type Upload } from "@/lib/http/command";
 import { parseJson } from "@/lib/http/read-body";
 import type { PersonCtx } from "@/lib/services/context";
 import * as decide from "@/lib/services/layouts/decide-layout";
+import { getDraftText } from "@/lib/services/layouts/get-draft-text";
 import * as read from "@/lib/services/layouts/get-layout";
 import { getLayoutUse } from "@/lib/services/layouts/get-layout-use";
 import { keepDraftText } from "@/lib/services/layouts/keep-draft-text";
@@ -20,6 +21,8 @@ import {
   lintReply,
   retireBody,
   saveQuery,
+  storedText,
+  textQuery,
 } from "@/schemas/api/layouts";
 
 const readers = { who: "person", roles: READERS } as const;
@@ -138,6 +141,19 @@ export const saveLayout = command({
   },
 });
 
+export const getLayoutText = command({
+  id: "layouts.text",
+  method: "GET",
+  path: "/families/{code}/layouts/{version}/text",
+  summary: "A layout's text and who saved it; with ?draft= the text only if another draft stands there now",
+  access: readers,
+  params: layoutPath,
+  query: textQuery,
+  reply: { status: 200, schema: storedText },
+  errors: ["family.not_found", "layout.not_found"],
+  handle: (ctx, { params, query }) => getDraftText(ctx, { ...keyOf(params), known: query.draft }),
+});
+
 export const keepLayoutText = command({
   id: "layouts.keep-text",
   method: "PUT",
@@ -242,6 +258,7 @@ export const layoutCommands = [
   createLayout,
   getLayout,
   saveLayout,
+  getLayoutText,
   keepLayoutText,
   getUse,
   deleteLayout,

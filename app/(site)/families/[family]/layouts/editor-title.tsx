@@ -28,6 +28,7 @@ export function EditorTitle(props: EditorTitleProps) {
   const { family, title, layout, judged, draft, writable, mayWrite, asked, pending, onAdd, onMove } = props;
   const state = layout?.state ?? "draft";
   const broken = judged.errors.length > 0;
+  const undecided = draft.conflict !== null || draft.news?.kind === "text";
   const compare =
     layout && judged.previous
       ? `/compare?kind=layouts&family=${family}&fromLayout=${judged.previous}&toLayout=${layout.version}`
@@ -65,7 +66,8 @@ export function EditorTitle(props: EditorTitleProps) {
             <Button
               look="primary"
               pending={pending === "submit"}
-              disabled={broken || draft.conflict !== null}
+              disabled={broken || undecided}
+              title={undecided ? "First choose which text goes on" : undefined}
               onClick={() => onMove("submit")}
             >
               Ask for publishing

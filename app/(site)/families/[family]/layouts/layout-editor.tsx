@@ -1,5 +1,6 @@
 "use client";
 
+import { useRouter } from "next/navigation";
 import { type ReactNode, useCallback, useDeferredValue, useEffect, useMemo, useRef, useState } from "react";
 import { Button } from "@/app/_components/button";
 import { Card } from "@/app/_components/card";
@@ -14,8 +15,9 @@ import type { LintBasis } from "@/lib/services/layouts/lint-document";
 import layoutSchema from "@/schemas/documents/layout.schema.json";
 import { DifferenceCard, type OtherVersion } from "./difference-card";
 import { ConflictDialog } from "./draft/conflict-dialog";
+import { DraftNews } from "./draft/draft-news";
 import { LocalCopyNotice } from "./draft/local-copy-notice";
-import { useDraft } from "./draft/use-draft";
+import { type DraftConflict, useDraft } from "./draft/use-draft";
 import { useLayoutMoves } from "./draft/use-layout-moves";
 import { EditorTitle } from "./editor-title";
 import { EditorTools } from "./editor-tools";
@@ -54,6 +56,7 @@ export interface LayoutEditorProps {
 export function LayoutEditor(props: LayoutEditorProps) {
   const { family, layout, source, others, lots, uses = [], mayWrite, asked, above } = props;
   const tell = useToast();
+  const router = useRouter();
   const handle = useRef<EditorHandle>(null);
   const state = layout?.state ?? "draft";
   const writable = mayWrite && state === "draft";
@@ -119,7 +122,13 @@ export function LayoutEditor(props: LayoutEditorProps) {
     return layout && now === source ? layout.source : now;
   };
 
-  const { conflict } = draft.state;
+  const { conflict, news } = draft.state;
+  const choose = (theirs: DraftConflict, chosen: string, words: string) => {
+    // Theirs goes through the editor too, so that it stands in the history beside mine.
+    handle.current?.replace(theirs.theirs);
+    draft.settle(theirs);
+    replace(chosen, words);
+  };
   const title = layout ? `Layout ${layout.version} of ${family}` : `New layout of ${family}`;
   const encoded = sample && "rows" in sample ? sample : null;
   return (
@@ -146,6 +155,17 @@ export function LayoutEditor(props: LayoutEditorProps) {
               Choose now
             </Button>
           </p>
+        ) : null}
+        {news ? (
+          <DraftNews
+            news={news}
+            family={family}
+            draft={draft.state.draft}
+            typed={draft.state.status !== "saved"}
+            onTake={(theirs) => choose(theirs, theirs.theirs, `${theirs.by}’s text is taken`)}
+            onCompare={draft.meet}
+            onReload={router.refresh}
+          />
         ) : null}
         {above}
         {writable ? (
@@ -211,12 +231,7 @@ export function LayoutEditor(props: LayoutEditorProps) {
           conflict={conflict}
           mine={text}
           onLater={() => setLater(true)}
-          onChoose={(chosen, words) => {
-            // Theirs goes through the editor too, so that it stands in the history beside mine.
-            handle.current?.replace(conflict.theirs);
-            draft.settle(conflict);
-            replace(chosen, words);
-          }}
+          onChoose={(chosen, words) => choose(conflict, chosen, words)}
         />
       ) : null}
       {copy !== undefined && layout ? (

@@ -41,7 +41,7 @@ export function ConflictDialog({ conflict, mine, onChoose, onLater }: ConflictDi
       title="Two people wrote this draft"
       description={
         <>
-          {conflict.by} saved draft {conflict.draft} on <TimeText at={conflict.at} /> while you were writing. Neither
+          {conflict.by} saved draft {conflict.draft} on <TimeText at={conflict.at} /> while it was open here. Neither
           text is lost: what you don't take stays in the editor's history, one undo away.
         </>
       }

@@ -9,6 +9,7 @@ export function DraftStatus({ state, layout }: { state: DraftState; layout: Layo
   const now = useSeconds(state.savedAt !== undefined);
   const { status, savedAt, unfinished } = state;
   const tail = unfinished ? ", with errors still" : "";
+  if (state.news?.kind === "text" && status !== "offline") return `${state.news.by} saved another text`;
   switch (status) {
     case "typing":
       return "not saved yet";
@@ -22,7 +23,7 @@ export function DraftStatus({ state, layout }: { state: DraftState; layout: Layo
       return state.conflict ? `${state.conflict.by} saved another text` : "not saved";
     default:
       if (savedAt !== undefined) return `saved ${agoText(now - savedAt)}${tail}`;
-      return layout ? `draft ${state.draft} by ${layout.updatedBy}${tail}` : "nothing written yet";
+      return layout ? `draft ${state.draft} by ${state.by ?? layout.updatedBy}${tail}` : "nothing written yet";
   }
 }
 

@@ -4,6 +4,8 @@ import { useCallback, useEffect, useRef, useState } from "react";
 import { callApi, type ProblemDetails, problemOf } from "@/app/_components/api-client";
 import { setOut } from "@/lib/domain/json-set-out";
 import { dropCopy, writeCopy } from "./local-copy";
+import { type DraftNews, hearStored } from "./stored-draft";
+import { type Answer, useStoredDraft } from "./use-stored-draft";
 
 /** Somebody else's text, saved over the same draft. */
 export interface DraftConflict {
@@ -23,7 +25,11 @@ export interface DraftState {
   draft: number | undefined;
   unfinished: boolean;
   problem: ProblemDetails | null;
+  /** Who wrote what stands here, where that is not told by `savedAt`. */
+  by: string | undefined;
   conflict: DraftConflict | null;
+  /** What happened elsewhere, before a save from here met it. */
+  news: DraftNews | null;
 }
 
 interface Kept {
@@ -45,12 +51,31 @@ const RETRY_MS = 5_000;
 
 /** Keeps a draft's text on the server while it is typed, and in this browser until it is there. */
 export function useDraft({ family, version, draft, unfinished, writable }: DraftOptions) {
-  const begin = { savedAt: undefined, draft, unfinished, problem: null, conflict: null };
+  const begin = { savedAt: undefined, draft, unfinished, problem: null, by: undefined, conflict: null, news: null };
   const [state, setState] = useState<DraftState>({ status: "saved", ...begin });
   // What timers and late answers need is held outside of rendering.
-  const held = useRef({ text: "", saved: "", draft, busy: undefined as Promise<boolean> | undefined, blocked: false });
+  const held = useRef({
+    opened: false,
+    text: "",
+    saved: "",
+    draft,
+    busy: undefined as Promise<boolean> | undefined,
+    blocked: false,
+  });
   const timer = useRef<ReturnType<typeof setTimeout>>(undefined);
   const change = useCallback((part: Partial<DraftState>) => setState((before) => ({ ...before, ...part })), []);
+
+  /** Goes on from a draft that the server has: what is typed from now on is saved over it. */
+  const rest = useCallback(
+    ({ saved, draft, by }: { saved: string; draft: number; by: string }) => {
+      const now = held.current;
+      Object.assign(now, { saved, draft, blocked: false });
+      const status = now.text === saved ? "saved" : "typing";
+      if (status === "saved") dropCopy(family, version);
+      change({ conflict: null, news: null, problem: null, savedAt: undefined, draft, by, status });
+    },
+    [family, version, change],
+  );
 
   /** Saves what stands. @returns whether the server has it now. */
   const save = useCallback(async (): Promise<boolean> => {
@@ -70,7 +95,8 @@ export function useDraft({ family, version, draft, unfinished, writable }: Draft
       try {
         const path = `/api/v1/families/${family}/layouts/${version}/text?draft=${now.draft}`;
         const kept = await callApi<Kept>(path, { method: "PUT", body: sent, contentType: "text/plain" });
-        const base = { draft: kept.draft, unfinished: kept.unfinished, problem: null, savedAt: Date.now() };
+        const { draft, unfinished } = kept;
+        const base = { draft, unfinished, problem: null, news: null, savedAt: Date.now() };
         Object.assign(now, { saved: sent, draft: kept.draft });
         const typing = now.text !== sent;
         if (!typing) dropCopy(family, version);
@@ -78,14 +104,21 @@ export function useDraft({ family, version, draft, unfinished, writable }: Draft
         change({ ...base, status: typing ? "typing" : "saved" });
         return !typing;
       } catch (error) {
-        return fail(problemOf(error));
+        return fail(problemOf(error), sent);
       }
     }
 
-    function fail(problem: ProblemDetails): false {
+    function fail(problem: ProblemDetails, sent: string): boolean {
       if (problem.code === "layout.draft_changed") {
+        const conflict = conflictOf(problem, now.saved);
+        if (conflict.theirs === sent) {
+          // The save before got through, its answer did not.
+          rest({ saved: sent, draft: conflict.draft, by: conflict.by });
+          if (now.text !== sent) timer.current = setTimeout(() => void save(), IDLE_MS);
+          return now.text === sent;
+        }
         now.blocked = true;
-        change({ status: "refused", conflict: conflictOf(problem, now.saved) });
+        change({ status: "refused", conflict, news: null });
       } else if (problem.status === 0 || problem.status >= 500) {
         timer.current = setTimeout(() => void save(), RETRY_MS);
         change({ status: "offline" });
@@ -95,7 +128,7 @@ export function useDraft({ family, version, draft, unfinished, writable }: Draft
       }
       return false;
     }
-  }, [family, version, change]);
+  }, [family, version, change, rest]);
 
   /** The editor's text changed. */
   const type = useCallback(
@@ -117,19 +150,38 @@ export function useDraft({ family, version, draft, unfinished, writable }: Draft
   );
 
   /** The editor is there with its text: nothing of it is new. */
-  const open = useCallback((text: string) => Object.assign(held.current, { text, saved: text }), []);
+  const open = useCallback((text: string) => Object.assign(held.current, { opened: true, text, saved: text }), []);
 
-  /** Goes on from somebody else's draft: what is typed from now on is saved over it. */
-  const settle = useCallback(
+  /** Somebody else's draft was looked at, and what to go on with was chosen. */
+  const settle = useCallback(({ theirs, draft, by }: DraftConflict) => rest({ saved: theirs, draft, by }), [rest]);
+
+  /** The other text is looked at before a save met it: nothing is saved until one is chosen. */
+  const meet = useCallback(
     (conflict: DraftConflict) => {
-      Object.assign(held.current, { saved: conflict.theirs, draft: conflict.draft, blocked: false });
-      change({ conflict: null, problem: null, draft: conflict.draft, status: "typing" });
+      held.current.blocked = true;
+      clearTimeout(timer.current);
+      change({ conflict, news: null, status: "refused" });
     },
     [change],
   );
 
+  /** How the draft is stored was asked. */
+  const hear = useCallback(
+    ({ known, stored }: Answer) => {
+      const now = held.current;
+      // A save on its way, done since or refused says it better.
+      if (!now.opened || now.busy || now.blocked || known !== now.draft) return;
+      const heard = hearStored(now, stored);
+      if (heard.kind === "adopt") rest(heard);
+      else change({ news: heard.kind === "news" ? heard.news : null });
+    },
+    [rest, change],
+  );
+  const known = useCallback(() => held.current.draft, []);
+  useStoredDraft({ family, version, watched: writable && state.conflict === null, known, onAnswer: hear });
+
   useEffect(() => () => clearTimeout(timer.current), []);
-  return { state, type, open, save, settle };
+  return { state, type, open, save, settle, meet };
 }
 
 function conflictOf(problem: ProblemDetails, base: string): DraftConflict {
