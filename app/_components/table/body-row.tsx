@@ -13,8 +13,18 @@ interface BodyRowProps extends TableGridProps {
   index: number;
   /** The one row that Tab reaches. */
   tabbable: boolean;
-  onMove: (index: number) => void;
+  /** Moves the focus by some rows, or beyond either end to it. */
+  onMove: (from: number, by: number) => void;
 }
+
+const MOVES: Readonly<Record<string, number>> = {
+  ArrowDown: 1,
+  ArrowUp: -1,
+  PageDown: 15,
+  PageUp: -15,
+  Home: Number.NEGATIVE_INFINITY,
+  End: Number.POSITIVE_INFINITY,
+};
 
 /** One row: opens by click or Enter, moves by arrow keys, is selected by Space. */
 export function BodyRow(props: BodyRowProps) {
@@ -30,10 +40,8 @@ export function BodyRow(props: BodyRowProps) {
   };
   const onKeyDown = (event: KeyboardEvent) => {
     if (event.target !== event.currentTarget) return;
-    const move = { ArrowDown: 1, ArrowUp: -1, PageDown: 15, PageUp: -15 }[event.key];
-    if (move) onMove(index + move);
-    else if (event.key === "Home") onMove(0);
-    else if (event.key === "End") onMove(Number.MAX_SAFE_INTEGER);
+    const move = MOVES[event.key];
+    if (move) onMove(index, move);
     else if (event.key === "Enter" && onOpen) onOpen(row);
     else if (event.key === "Enter" && href) router.push(href);
     else if (event.key === " " && selected) toggle();

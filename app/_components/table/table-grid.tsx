@@ -13,6 +13,8 @@ import { usePaperFit } from "@/app/_components/table/use-paper-fit";
 /** From so many rows on only those in sight are drawn, at fixed widths. */
 export const virtualFrom = 120;
 const rowHeight = 34;
+/** Half a second on most screens. */
+const DRAWN_WITHIN_FRAMES = 30;
 
 export interface TableGridProps {
   name: string;
@@ -62,11 +64,22 @@ export function TableGrid(props: TableGridProps) {
 
   const before = isVirtual ? (items[0]?.start ?? 0) : 0;
   const after = isVirtual ? virtualizer.getTotalSize() - (items.at(-1)?.end ?? 0) : 0;
-  const focusRow = (index: number) => {
-    const next = Math.min(Math.max(index, 0), rows.length - 1);
+  /** The row that the focus is on its way to: keys come faster than rows are drawn. */
+  const underway = useRef<number>(undefined);
+  const focusDrawn = (index: number, framesLeft: number) =>
+    requestAnimationFrame(() => {
+      if (underway.current !== index) return;
+      const row = box.current?.querySelector<HTMLElement>(`[data-row="${index}"]`);
+      row?.focus();
+      if (row || framesLeft === 0) underway.current = undefined;
+      else focusDrawn(index, framesLeft - 1);
+    });
+  const move = (from: number, by: number) => {
+    const next = Math.min(Math.max((underway.current ?? from) + by, 0), rows.length - 1);
+    underway.current = next;
     setCurrent(next);
     if (isVirtual) virtualizer.scrollToIndex(next);
-    requestAnimationFrame(() => box.current?.querySelector<HTMLElement>(`[data-row="${next}"]`)?.focus());
+    focusDrawn(next, DRAWN_WITHIN_FRAMES);
   };
 
   return (
@@ -91,7 +104,7 @@ export function TableGrid(props: TableGridProps) {
                 row={row}
                 index={index}
                 tabbable={index === Math.min(current, rows.length - 1)}
-                onMove={focusRow}
+                onMove={move}
               />
             ) : (
               <WaitingRow key={`waiting ${index}`} index={index} columns={columns.length} />
