@@ -51,6 +51,8 @@ async function onPaper(): Promise<Paper> {
   const before = page.viewportSize();
   await page.setViewportSize({ width: UPRIGHT_PX, height: 900 });
   await page.emulateMedia({ media: "print" });
+  // A print waits for the page by itself; this way of showing one does not.
+  await page.locator("table[aria-label=devices] tbody tr:visible").first().waitFor();
   const paper = await page.evaluate(() => {
     const shown = (element: Element) => element.getClientRects().length > 0;
     const card = [...document.querySelectorAll("section")].find(
