@@ -1,6 +1,7 @@
 import type { Db, Trx } from "@/db/executor";
 import { isUuid } from "@/db/queries/code-or-id";
 import type { StoredFinding } from "@/db/queries/runs";
+import { slicesOf } from "@/db/slices";
 import type { EnvelopeSurvey } from "@/lib/domain/compensation/survey-envelope";
 import type { Finding, Method, PooledResult, VerificationResult } from "@/lib/domain/compensation/types";
 import type { UncertaintyBudget } from "@/lib/domain/compensation/uncertainty/budget-types";
@@ -280,10 +281,8 @@ export async function insertDerivationFindings(
   derivationId: string,
   findings: readonly StoredFinding[],
 ): Promise<void> {
-  for (let from = 0; from < findings.length; from += FINDINGS_A_STATEMENT) {
-    const rows = findings
-      .slice(from, from + FINDINGS_A_STATEMENT)
-      .map(({ data, ...finding }) => ({ ...finding, derivationId, data: JSON.stringify(data ?? {}) }));
+  for (const some of slicesOf(findings, FINDINGS_A_STATEMENT)) {
+    const rows = some.map(({ data, ...finding }) => ({ ...finding, derivationId, data: JSON.stringify(data ?? {}) }));
     await trx.insertInto("derivationFinding").values(rows).execute();
   }
 }
@@ -338,11 +337,8 @@ export async function insertAcknowledgements(
     at: Date;
   }[],
 ): Promise<void> {
-  for (let from = 0; from < rows.length; from += FINDINGS_A_STATEMENT) {
-    await trx
-      .insertInto("acknowledgement")
-      .values(rows.slice(from, from + FINDINGS_A_STATEMENT))
-      .execute();
+  for (const some of slicesOf(rows, FINDINGS_A_STATEMENT)) {
+    await trx.insertInto("acknowledgement").values(some).execute();
   }
 }
 

@@ -1,6 +1,7 @@
 import { sql } from "kysely";
 import { float8Array, int4Array, textArray, timestamptzArray, uuidArray } from "@/db/binary-arrays";
 import type { Db, Trx } from "@/db/executor";
+import { slicesOf } from "@/db/slices";
 import type { Reading } from "@/lib/domain/compensation/types";
 
 /** Rows a statement takes: about 10 ms of this process, and the next are written while the server stores these. */
@@ -17,8 +18,8 @@ export async function insertReadings(
   deviceIds: ReadonlyMap<string, string>,
 ): Promise<void> {
   let running: Promise<unknown> = Promise.resolve();
-  for (let from = 0; from < readings.length; from += ROWS_A_STATEMENT) {
-    const statement = insertStatement(runId, readings.slice(from, from + ROWS_A_STATEMENT), deviceIds);
+  for (const some of slicesOf(readings, ROWS_A_STATEMENT)) {
+    const statement = insertStatement(runId, some, deviceIds);
     await running;
     running = statement.execute(trx);
     // Lets the statement leave before anything else takes this thread.

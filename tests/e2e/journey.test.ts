@@ -6,13 +6,12 @@
 import { readFileSync } from "node:fs";
 import { join } from "node:path";
 import { v7 as uuidv7 } from "uuid";
-import { afterAll, afterEach, beforeAll, beforeEach, describe, expect, it } from "vitest";
-import { makeHome, openStart, type RunningStart } from "@/tests/support/running-start";
+import { afterEach, beforeAll, beforeEach, describe, expect, it } from "vitest";
+import { DEMO_PASSWORD, visitDemo } from "@/tests/support/demo-visit";
 import { failingCommands, unpacked } from "@/tests/support/unpacked-bundle";
-import { openVisitor, signIn, type Visitor } from "@/tests/support/visitor";
+import type { Visitor } from "@/tests/support/visitor";
 
 const GOLDEN = join(import.meta.dirname, "../fixtures/golden");
-const PASSWORD = "trim-demo-2026";
 const FAMILY = "MW-22";
 const LOT = "MW22-2609";
 const DEVICES = 28;
@@ -20,33 +19,22 @@ const DEVICES = 28;
 const people = ["engineer", "reviewer", "admin", "operator", "service", "auditor"] as const;
 type Person = (typeof people)[number];
 
-let start: RunningStart;
 let origin: string;
-const visitors = {} as Record<Person, Visitor>;
+let visitors: Record<Person, Visitor>;
 const page = (who: Person) => visitors[who].page;
 
 /** What one step leaves for the next. */
 const made = { derivation: "", package: "", key: "" };
 
 beforeAll(async () => {
-  start = await openStart({ home: makeHome(), env: { TRIMWRIGHT_DEMO: "1" } });
-  origin = `http://127.0.0.1:${start.port}`;
-  for (const name of people) {
-    visitors[name] = await openVisitor(origin);
-    await signIn(visitors[name], `${name}@marram.example`, PASSWORD);
-  }
-});
-
-afterAll(async () => {
-  start?.interrupt();
-  await start?.ended();
+  ({ origin, visitors } = await visitDemo(people));
 });
 
 /** Signs the panel or dialog that asks for the password. */
 async function confirm(who: Person, button: string | RegExp, reason?: string): Promise<void> {
   const dialog = page(who).getByRole("dialog");
   if (reason !== undefined) await dialog.getByLabel("Reason").fill(reason);
-  await dialog.getByLabel("Your password").fill(PASSWORD);
+  await dialog.getByLabel("Your password").fill(DEMO_PASSWORD);
   await dialog.getByRole("button", { name: button }).click();
   await dialog.waitFor({ state: "detached" });
 }
@@ -84,7 +72,7 @@ async function publish(path: string): Promise<void> {
   const reviewer = page("reviewer");
   await reviewer.goto(path);
   await reviewer.getByText("What changes", { exact: true }).click();
-  await reviewer.getByLabel("Your password").fill(PASSWORD);
+  await reviewer.getByLabel("Your password").fill(DEMO_PASSWORD);
   await reviewer.getByRole("button", { name: /^Publish / }).click();
   await reviewer
     .getByText(/^Published /)
@@ -183,7 +171,7 @@ describe("from readings to a traced device", () => {
     await reviewer.getByLabel("Your password").fill("not the password");
     await reviewer.getByRole("button", { name: `Approve ${DEVICES} devices` }).click();
     await reviewer.getByText("This is not your password").waitFor();
-    await reviewer.getByLabel("Your password").fill(PASSWORD);
+    await reviewer.getByLabel("Your password").fill(DEMO_PASSWORD);
     await reviewer.getByRole("button", { name: `Approve ${DEVICES} devices` }).click();
     await reviewer.getByText(`Approved coefficients of ${LOT}`, { exact: true }).waitFor();
   });
@@ -218,7 +206,7 @@ describe("from readings to a traced device", () => {
     const approve = reviewer.getByRole("button", { name: "Approve release 1.0.0" });
     expect(await approve.isDisabled()).toBe(true);
     await reviewer.getByRole("button", { name: "Open the values of all devices" }).click();
-    await reviewer.getByLabel("Your password").fill(PASSWORD);
+    await reviewer.getByLabel("Your password").fill(DEMO_PASSWORD);
     await approve.click();
     await reviewer.getByText("Release 1.0.0 approved", { exact: true }).waitFor();
 

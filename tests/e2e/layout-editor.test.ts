@@ -3,34 +3,22 @@
  * alone, and two people on one draft who lose nothing.
  */
 import type { Page } from "playwright-core";
-import { afterAll, beforeAll, describe, expect, it } from "vitest";
-import { makeHome, openStart, type RunningStart } from "@/tests/support/running-start";
-import { openVisitor, signIn, type Visitor } from "@/tests/support/visitor";
+import { beforeAll, describe, expect, it } from "vitest";
+import { DEMO_PASSWORD, visitDemo } from "@/tests/support/demo-visit";
+import type { Visitor } from "@/tests/support/visitor";
 
-const PASSWORD = "trim-demo-2026";
 const LAYOUTS = "/families/MW-20/layouts";
 const people = ["engineer", "engineer2", "reviewer"] as const;
 
-let start: RunningStart;
 let origin: string;
 /** Pages on which Tab leaves the text. */
 const tabLeaves = new WeakSet<Page>();
-const visitors = {} as Record<(typeof people)[number], Visitor>;
+let visitors: Record<(typeof people)[number], Visitor>;
 const page = (who: (typeof people)[number]) => visitors[who].page;
 
 beforeAll(async () => {
-  start = await openStart({ home: makeHome(), env: { TRIMWRIGHT_DEMO: "1" } });
-  origin = `http://127.0.0.1:${start.port}`;
-  for (const name of people) {
-    visitors[name] = await openVisitor(origin);
-    await signIn(visitors[name], `${name}@marram.example`, PASSWORD);
-    page(name).on("load", (loaded) => tabLeaves.delete(loaded));
-  }
-});
-
-afterAll(async () => {
-  start?.interrupt();
-  await start?.ended();
+  ({ origin, visitors } = await visitDemo(people));
+  for (const name of people) page(name).on("load", (loaded) => tabLeaves.delete(loaded));
 });
 
 /** What has the focus: its name, and whether Tab would stay inside the text. */
@@ -146,7 +134,7 @@ describe("a layout by keyboard alone", () => {
     await reviewer.locator(".monaco-editor .view-line").first().waitFor();
     await press(reviewer, /^What changes/);
     await tabTo(reviewer, /^Your password/);
-    await reviewer.keyboard.type(PASSWORD);
+    await reviewer.keyboard.type(DEMO_PASSWORD);
     await press(reviewer, /^Publish /);
     await reviewer
       .getByText(/^Published /)

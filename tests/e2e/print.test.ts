@@ -1,31 +1,23 @@
 /** Printing in a browser, on a real `npm start` with its demo: long tables are whole on paper, or paper says what is missing. */
 import type { Page } from "playwright-core";
-import { afterAll, beforeAll, describe, expect, it } from "vitest";
-import { makeHome, openStart, type RunningStart } from "@/tests/support/running-start";
-import { openVisitor, signIn, type Visitor } from "@/tests/support/visitor";
+import { beforeAll, describe, expect, it } from "vitest";
+import { visitDemo } from "@/tests/support/demo-visit";
+import type { Visitor } from "@/tests/support/visitor";
 
 /** Width of A4 within margins of 14 mm, in CSS pixels. */
 const UPRIGHT_PX = Math.floor(((210 - 28) / 25.4) * 96);
 const LOT = "MW20-2601";
 
-let start: RunningStart;
 let engineer: Visitor;
 let page: Page;
 
 beforeAll(async () => {
-  start = await openStart({ home: makeHome(), env: { TRIMWRIGHT_DEMO: "1" } });
-  engineer = await openVisitor(`http://127.0.0.1:${start.port}`);
-  await signIn(engineer, "engineer@marram.example", "trim-demo-2026");
+  ({ engineer } = (await visitDemo(["engineer"])).visitors);
   page = engineer.page;
   // The dialog itself is the browser's; that it was asked for is enough.
   await page.addInitScript(() => {
     window.print = () => document.documentElement.setAttribute("data-asked", "");
   });
-});
-
-afterAll(async () => {
-  start?.interrupt();
-  await start?.ended();
 });
 
 /** Opens the derivation of the demo's largest lot, 2,000 devices of which 500 are loaded. */

@@ -5,11 +5,11 @@
 import { readFileSync } from "node:fs";
 import { join } from "node:path";
 import type { Page } from "playwright-core";
-import { afterAll, beforeAll, describe, expect, it } from "vitest";
+import { beforeAll, describe, expect, it } from "vitest";
+import { visitDemo } from "@/tests/support/demo-visit";
+import type { Visitor } from "@/tests/support/visitor";
 import { makeBigLot } from "../bench/big-lot";
 import { makeWorkbook, textRow } from "../support/made-workbook";
-import { makeHome, openStart, type RunningStart } from "../support/running-start";
-import { openVisitor, signIn, type Visitor } from "../support/visitor";
 
 const GOLDEN = join(import.meta.dirname, "../fixtures/golden/readings-sample.csv");
 /** Names as a German reader's program writes them, by ours. */
@@ -24,20 +24,12 @@ const NAMES = {
   taken_at: "Zeit",
 } as const;
 
-let start: RunningStart;
 let engineer: Visitor;
 let page: Page;
 
 beforeAll(async () => {
-  start = await openStart({ home: makeHome(), env: { TRIMWRIGHT_DEMO: "1" } });
-  engineer = await openVisitor(`http://127.0.0.1:${start.port}`);
-  await signIn(engineer, "engineer@marram.example", "trim-demo-2026");
+  ({ engineer } = (await visitDemo(["engineer"])).visitors);
   page = engineer.page;
-});
-
-afterAll(async () => {
-  start?.interrupt();
-  await start?.ended();
 });
 
 /** Makes a lot without devices and opens its readings. */

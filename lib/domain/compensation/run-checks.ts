@@ -1,4 +1,4 @@
-import { finish, forEachInSteps, type Steps } from "@/lib/domain/steps";
+import { forEachInSteps, type Steps } from "@/lib/domain/steps";
 import { assertFamilyRules } from "./envelope";
 import { listRunFindingsInSteps } from "./run-findings";
 import type { FamilyRules, Finding, Purpose, Reading } from "./types";
@@ -81,12 +81,7 @@ function* deviceErrors(readings: readonly Reading[], errors: RowError[]): Steps<
  * no findings, since those would rest on wrong rows.
  * @throws AppError `family.invalid`.
  */
-export function checkRun(family: FamilyRules, purpose: Purpose, readings: readonly Reading[]): RunCheck {
-  return finish(checkRunInSteps(family, purpose, readings));
-}
-
-/** {@link checkRun} for a process that serves others meanwhile. */
-export function* checkRunInSteps(family: FamilyRules, purpose: Purpose, readings: readonly Reading[]): Steps<RunCheck> {
+export function* checkRun(family: FamilyRules, purpose: Purpose, readings: readonly Reading[]): Steps<RunCheck> {
   assertFamilyRules(family);
   const errors: RowError[] = [];
   if (readings.length === 0)

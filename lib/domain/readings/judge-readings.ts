@@ -1,4 +1,4 @@
-import { checkRunInSteps, type RowError } from "@/lib/domain/compensation/run-checks";
+import { checkRun, type RowError } from "@/lib/domain/compensation/run-checks";
 import type { FamilyRules, Finding, Purpose, Reading } from "@/lib/domain/compensation/types";
 import { finish, forEachInSteps, mapInSteps, type Steps } from "@/lib/domain/steps";
 import type { ParsedReadings } from "./gather-readings";
@@ -31,7 +31,7 @@ export function* judgeReadingsInSteps(
   parsed: ParsedReadings,
   errors: RowErrorList,
 ): Steps<Judged> {
-  const { errors: contradictions, findings } = yield* checkRunInSteps(rules, purpose, parsed.readings);
+  const { errors: contradictions, findings } = yield* checkRun(rules, purpose, parsed.readings);
   const isCertain = yield* certainty(parsed);
   yield* forEachInSteps(contradictions, (error) => {
     if (isCertain(error)) errors.add(error);

@@ -2,6 +2,7 @@ import { appErrorFromDatabase } from "@/db/constraint-codes";
 import { listImageBytes } from "@/db/queries/images";
 import { listFirmwareOtherThan, listSetsNotApproved } from "@/db/queries/package-inputs";
 import { findLivePackage, getPackage, type PackageRow, setPackageProgress } from "@/db/queries/packages";
+import { slicesOf } from "@/db/slices";
 import { EVIDENCE_MAX } from "@/lib/domain/package-checks/check";
 import { AppError } from "@/lib/errors";
 import type { Ctx } from "@/lib/services/context";
@@ -9,7 +10,7 @@ import { layoutsOfPackages } from "@/lib/services/devices/layouts-of-packages";
 import { findFirstOff } from "@/lib/services/proofs/list-lot-proofs";
 import { PackageChecker } from "./check-package";
 import type { LivePackage } from "./checking/difference-gatherer";
-import { composePackage, type ImagePart, type PackageInputs, partsOf, readPackageInputs } from "./compose-package";
+import { composePackage, type ImagePart, PART_DEVICES, type PackageInputs, readPackageInputs } from "./compose-package";
 import { failBuild } from "./end-build";
 import { countsOf } from "./package-counts";
 import { selectDevices } from "./select-devices";
@@ -55,7 +56,7 @@ async function build(ctx: Ctx, inputs: PackageInputs): Promise<Built> {
   const parts: ImagePart[] = [];
   let liveBytes = new Map<string, Buffer>();
   await tell("composing and checking", 0);
-  const composed = await composePackage(ctx.db, inputs, partsOf(packed), {
+  const composed = await composePackage(ctx.db, inputs, slicesOf(packed, PART_DEVICES), {
     beforePart: async (devices) => {
       liveBytes = live
         ? await listImageBytes(

@@ -75,11 +75,6 @@ export async function readPackageInputs(db: Db, pkg: PackageRow): Promise<Packag
   };
 }
 
-/** A list of devices in parts of {@link PART_DEVICES}. */
-export function* partsOf(devices: readonly PackedDevice[]): Generator<readonly PackedDevice[]> {
-  for (let from = 0; from < devices.length; from += PART_DEVICES) yield devices.slice(from, from + PART_DEVICES);
-}
-
 /**
  * The bytes of a package from its inputs: the same ones at every call, on any machine, years later. Builds and rebuilds
  * both come here; a build chooses the sets, a rebuild takes those that its image rows name.

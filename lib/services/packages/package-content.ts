@@ -15,6 +15,7 @@ import {
   listSerials,
 } from "@/db/queries/images";
 import { getLayoutById } from "@/db/queries/layouts";
+import { slicesOf } from "@/db/slices";
 import { AppError } from "@/lib/errors";
 
 /** Images read at a time: bounds memory and how long the event loop is held. */
@@ -66,8 +67,7 @@ export async function* eachHexFile(db: Db, { id, layout }: BuiltFrom): AsyncGene
   const template = new HexTemplate(layout);
   // By path: a dot stands after a hyphen, and so "A.hex" after "A-1.hex".
   const serials = (await listSerials(db, id)).sort((a, b) => byCodeUnits(`${a}.`, `${b}.`));
-  for (let from = 0; from < serials.length; from += PAGE_IMAGES) {
-    const page = serials.slice(from, from + PAGE_IMAGES);
+  for (const page of slicesOf(serials, PAGE_IMAGES)) {
     const images = await listImagesOfSerials(db, id, page);
     yield page.map((serial) => {
       const image = images.get(serial);

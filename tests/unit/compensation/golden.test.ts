@@ -2,6 +2,7 @@ import { describe, expect, it } from "vitest";
 import { derive } from "@/lib/domain/compensation/derive";
 import { checkRun } from "@/lib/domain/compensation/run-checks";
 import type { DerivationResult, PooledResult } from "@/lib/domain/compensation/types";
+import { finish } from "@/lib/domain/steps";
 import { readFamily, readJson, readLot, readRun } from "./golden-example";
 
 type Values = Record<string, number | null>;
@@ -84,7 +85,7 @@ describe("first golden lot", () => {
   it("finds nothing to block or to acknowledge, neither in the lot nor in its runs", () => {
     expect(severe(result)).toEqual([]);
     for (const run of readLot("")) {
-      const check = checkRun(family, run.purpose, run.readings);
+      const check = finish(checkRun(family, run.purpose, run.readings));
       expect(check.errors).toEqual([]);
       expect(check.findings.filter((finding) => finding.severity !== "note")).toEqual([]);
     }
