@@ -1,6 +1,7 @@
 import Link from "next/link";
 import { Card } from "@/app/_components/card";
 import { ComparisonSummary } from "@/app/_components/difference/comparison-summary";
+import { formatCount } from "@/lib/domain/format/figure";
 import { formatDate } from "@/lib/domain/format/time";
 import type { PersonCtx } from "@/lib/services/context";
 import { getLayout } from "@/lib/services/layouts/get-layout";
@@ -22,7 +23,7 @@ export async function WhatChanges({ ctx, view }: { ctx: PersonCtx; view: Package
     return (
       <>
         <Card title="The first package of the lot">
-          <p>Nothing is live: all {view.counts.devices} devices are new.</p>
+          <p>No release is before it: all {formatCount(view.counts.devices)} devices are new.</p>
           <Why view={view} />
         </Card>
         <OpenDifferences reviewDigest={reviewDigest} words="Open the values of all devices">
