@@ -23,7 +23,7 @@ export async function WhatChanges({ ctx, view }: { ctx: PersonCtx; view: Package
     return (
       <>
         <Card title="The first package of the lot">
-          <p>No release is before it: all {formatCount(view.counts.devices)} devices are new.</p>
+          <p>No package was built before it: all {formatCount(view.counts.devices)} devices are new.</p>
           <Why view={view} />
         </Card>
         <OpenDifferences reviewDigest={reviewDigest} words="Open the values of all devices">
